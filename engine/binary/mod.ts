@@ -1,0 +1,3 @@
+/** The binary room. @module */
+export * from "./binary.ts";
+export * from "./ephemeris.ts";

@@ -1,0 +1,1 @@
+/** The numerics room. @module */

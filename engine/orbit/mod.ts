@@ -1,0 +1,1 @@
+/** The orbit room. @module */

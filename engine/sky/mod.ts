@@ -1,0 +1,3 @@
+/** The sky room. @module */
+export * from "./bjd.ts";
+export * from "./spectral_line.ts";

@@ -1,0 +1,11 @@
+/** A spectral line, or a blend that is treated as one, with the rest wavelength chosen for it. */
+export interface SpectralLine {
+  /** Name as printed, as in "H beta". */
+  readonly name: string;
+  /** Rest wavelength in vacuum, Å. All velocities use this one: V/c = λ/λ0 − 1. */
+  readonly vacuum_angstrom: number;
+  /** The same in standard air, Å, for printing. */
+  readonly air_angstrom: number;
+  /** Where the wavelength comes from. */
+  readonly source: string;
+}

@@ -1,0 +1,2 @@
+/** The spectra room. @module */
+export * from "./spectrum.ts";

@@ -1,0 +1,2 @@
+/** The tomography room. @module */
+export * from "./velocity_map.ts";

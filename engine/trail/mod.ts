@@ -1,0 +1,3 @@
+/** The trail room. @module */
+export * from "./sampling.ts";
+export * from "./trail.ts";

@@ -1,0 +1,1 @@
+/** The weighing room. @module */

@@ -1,0 +1,2 @@
+/** The workers room. @module */
+export * from "./progress.ts";
