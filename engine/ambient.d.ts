@@ -77,3 +77,11 @@ declare module "@std/text" {
   ): string;
   export function levenshteinDistance(a: string, b: string): number;
 }
+
+declare module "@std/yaml" {
+  export function parse(content: string, options?: { allowDuplicateKeys?: boolean }): unknown;
+  export function stringify(
+    data: unknown,
+    options?: { lineWidth?: number; flowLevel?: number; sortKeys?: boolean; skipInvalid?: boolean },
+  ): string;
+}
