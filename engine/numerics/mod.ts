@@ -12,6 +12,7 @@ export * from "./gauss_legendre.ts";
 export * from "./information_criteria.ts";
 export * from "./kolmogorov.ts";
 export * from "./linear_least_squares.ts";
+export * from "./minimise.ts";
 export * from "./non_negative.ts";
 export * from "./ode.ts";
 export * from "./periodic.ts";

@@ -1,0 +1,292 @@
+import { Matrix, QrDecomposition, SingularValueDecomposition } from "ml-matrix";
+import { InputError } from "../errors.ts";
+import { type Bounds, readBounds } from "./bounds.ts";
+import type { DenseMatrix } from "./dense_matrix.ts";
+import { numericJacobian } from "./numeric_jacobian.ts";
+import { type ReducedModel, trustRegionStep } from "./trust_region_step.ts";
+
+/** Result of {@linkcode minimise}. */
+export interface LeastSquaresFit {
+  /** The K parameters reached. */
+  readonly parameters: Float64Array;
+  /**
+   * Their covariance, K × K, from the Jacobian at the end: right when residuals are in units of their
+   * errors; not rescaled. Rows and columns of parameters on a bound are 0. A parameter that the data do not
+   * determine has infinite variance.
+   */
+  readonly covariance: DenseMatrix;
+  /** Sum of squared residuals. */
+  readonly chi_square: number;
+  /** The N residuals at the end. */
+  readonly residuals: Float64Array;
+  /** Iterations, each with one Jacobian. */
+  readonly iterations: number;
+  /** Calls of the residual function, those for the Jacobian included. */
+  readonly evaluations: number;
+  /** False when the iterations ran out, or the function could not be lowered along its gradient. */
+  readonly converged: boolean;
+  /** For each parameter the bound it ended on, or null. Fixed parameters are on "lower". */
+  readonly at_bound: readonly ("lower" | "upper" | null)[];
+  /** How many of the parameters that are not on a bound the data determine. */
+  readonly rank: number;
+}
+
+/** Options of {@linkcode minimise}. */
+export interface MinimiseOptions {
+  /**
+   * K lower bounds.
+   *
+   * @default None
+   */
+  readonly lower?: ArrayLike<number>;
+  /**
+   * K upper bounds; equal to the lower one to hold a parameter fixed.
+   *
+   * @default None
+   */
+  readonly upper?: ArrayLike<number>;
+  /**
+   * Derivatives of the residuals, N × K row-major: element i·K + j is ∂r_i/∂p_j.
+   *
+   * @default Differences
+   */
+  readonly jacobian?: (parameters: Float64Array) => Float64Array;
+  /**
+   * Differences to use when no Jacobian is given.
+   *
+   * @default "forward"
+   */
+  readonly differences?: "forward" | "central";
+  /**
+   * Size below which each parameter counts as small, for the step of differences.
+   *
+   * @default |start|, or 1 where that is 0
+   */
+  readonly typical?: ArrayLike<number>;
+  /**
+   * Relative change of chi-square and of the scaled parameters at which to stop.
+   *
+   * @default 1e-10
+   */
+  readonly tolerance?: number;
+  /**
+   * Iterations allowed.
+   *
+   * @default 200
+   */
+  readonly max_iterations?: number;
+}
+
+type Residuals = (parameters: Float64Array) => Float64Array;
+
+function sumOfSquares(values: ArrayLike<number>): number {
+  let sum = 0;
+  for (let i = 0; i < values.length; i++) sum += values[i]! * values[i]!;
+  return sum;
+}
+
+// QR of [Jacobian | residuals]: its triangle holds R and, in the last column, Qᵀ·residuals.
+function reduce(jacobian: Float64Array, residuals: Float64Array, k: number): ReducedModel {
+  const rows = Math.max(residuals.length, k + 1);
+  const joined = Matrix.zeros(rows, k + 1);
+  for (let i = 0; i < residuals.length; i++) {
+    for (let j = 0; j < k; j++) joined.set(i, j, jacobian[i * k + j]!);
+    joined.set(i, k, residuals[i]!);
+  }
+  const whole = new QrDecomposition(joined).upperTriangularMatrix;
+  return {
+    triangle: whole.subMatrix(0, k - 1, 0, k - 1),
+    target: Float64Array.from({ length: k }, (_, i) => whole.get(i, k)),
+  };
+}
+
+function onBounds(at: Float64Array, bounds: Bounds): ("lower" | "upper" | null)[] {
+  return Array.from(at, (x, j) => {
+    if (x === bounds.lower[j]) return "lower";
+    return x === bounds.upper[j] ? "upper" : null;
+  });
+}
+
+function covarianceOf(triangle: Matrix, free: readonly number[]) {
+  const k = triangle.columns;
+  const covariance = Matrix.zeros(k, k);
+  if (free.length === 0) return { covariance, rank: 0 };
+  const columns = triangle.subMatrixColumn([...free]);
+  const lengths = free.map((_, i) => columns.getColumnVector(i).norm() || 1);
+  const svd = new SingularValueDecomposition(columns.divRowVector(lengths), {
+    autoTranspose: true,
+  });
+  const singular = svd.diagonal;
+  const right = svd.rightSingularVectors;
+  // Columns from differences carry errors of some 1e-8: a smaller singular value is one of those.
+  const rank = singular.filter((s) => s > 1e-8 * singular[0]!).length;
+  const undetermined = free.map((_, i) =>
+    singular.some((_s, s) => s >= rank && Math.abs(right.get(i, s)) > 1e-6)
+  );
+  free.forEach((a, i) =>
+    free.forEach((b, j) => {
+      let sum = 0;
+      for (let s = 0; s < rank; s++) {
+        sum += right.get(i, s) * right.get(j, s) / (singular[s]! * singular[s]!);
+      }
+      const infinite = i === j && undetermined[i];
+      covariance.set(a, b, infinite ? Infinity : sum / (lengths[i]! * lengths[j]!));
+    })
+  );
+  return { covariance, rank };
+}
+
+/**
+ * Non-linear least squares by the Levenberg–Marquardt method as a scaled trust region (Moré 1978, in
+ * "Numerical Analysis", Lecture Notes in Mathematics 630, 105), with bounds by an active set: minimises
+ * Σ r_i(p)². It finds the minimum near the start, which need not be the lowest one. A point where a
+ * residual is not finite is avoided.
+ *
+ * @param residuals Gives the N residuals, (data − model)/error, for K parameters; it must not keep or
+ * change its argument.
+ * @param start K starting values; not changed.
+ * @param options Bounds, Jacobian and when to stop.
+ * @returns The fit; look at `converged` and `at_bound`.
+ * @throws {InputError} When the start is out of bounds or its residuals are not finite.
+ *
+ * @example
+ * ```ts
+ * import { minimise } from "@millrace/millrace/numerics";
+ * import { assert, assertAlmostEquals } from "@std/assert";
+ *
+ * // Rosenbrock's valley.
+ * const fit = minimise(([x, y]) => Float64Array.of(10 * (y! - x! ** 2), 1 - x!), Float64Array.of(-1.2, 1));
+ * assert(fit.converged);
+ * assertAlmostEquals(fit.parameters[0]!, 1, 1e-8);
+ * ```
+ */
+export function minimise(
+  residuals: (parameters: Float64Array) => Float64Array,
+  start: Float64Array,
+  options: MinimiseOptions = {},
+): LeastSquaresFit {
+  const { tolerance = 1e-10, max_iterations = 200 } = options;
+  const k = start.length;
+  const bounds = readBounds(start, options.lower, options.upper);
+  let evaluations = 0;
+  const evaluate: Residuals = (at) => {
+    evaluations++;
+    return residuals(at.slice());
+  };
+
+  let at = start.slice();
+  let current = evaluate(at);
+  let chiSquare = sumOfSquares(current);
+  if (!Number.isFinite(chiSquare) || k === 0) {
+    throw new InputError({
+      action: "minimise",
+      rule: "there must be parameters, and finite residuals at their start",
+      value: Array.from(start),
+    });
+  }
+  const first = chiSquare;
+  const typical = options.typical
+    ? Float64Array.from(options.typical)
+    : start.map((x) => Math.abs(x) || 1);
+  const modelAt = (place: Float64Array, values: Float64Array) => {
+    const jacobian = options.jacobian?.(place.slice()) ?? numericJacobian(evaluate, place, {
+      residuals: values,
+      typical,
+      bounds,
+      central: options.differences === "central",
+    });
+    return reduce(jacobian, values, k);
+  };
+
+  const scale = new Float64Array(k);
+  let radius = 0;
+  let iterations = 0;
+  let converged = false;
+  let model = modelAt(at, current);
+  for (; iterations < max_iterations && !converged; iterations++) {
+    if (iterations > 0) model = modelAt(at, current);
+    const { triangle, target } = model;
+    const lengths = Float64Array.from(
+      { length: k },
+      (_, j) => triangle.getColumnVector(j).norm(),
+    );
+    const gradient = Float64Array.from(
+      { length: k },
+      (_, j) => target.reduce((sum, value, i) => sum + triangle.get(i, j) * value, 0),
+    );
+    for (let j = 0; j < k; j++) scale[j] = Math.max(scale[j]!, lengths[j]!) || 1;
+    const size = (values: Float64Array) =>
+      Math.sqrt(sumOfSquares(values.map((v, j) => v * scale[j]!)));
+    if (iterations === 0) radius = 100 * size(at) || 100;
+
+    // Cosine of the angle between residuals and the columns they may still be lowered along.
+    const cosine = Math.max(
+      ...gradient.map((g, j) => {
+        const pressed = (g >= 0 && at[j] === bounds.lower[j]) ||
+          (g <= 0 && at[j] === bounds.upper[j]);
+        return pressed || g === 0 ? 0 : Math.abs(g) / (lengths[j]! * Math.sqrt(chiSquare));
+      }),
+    );
+    if (!(cosine > Number.EPSILON)) {
+      converged = true;
+      break;
+    }
+
+    let accepted = false;
+    while (!accepted && !converged) {
+      const { step, cut } = trustRegionStep(model, at, { scale, radius, bounds, gradient });
+      const next = at.map((x, j) =>
+        Math.min(bounds.upper[j]!, Math.max(bounds.lower[j]!, x + step[j]!))
+      );
+      const modelled = target.map((value, i) =>
+        value + step.reduce((sum, p, j) => sum + triangle.get(i, j) * p, 0)
+      );
+      const predicted = (sumOfSquares(target) - sumOfSquares(modelled)) / chiSquare;
+      const there = evaluate(next);
+      const value = sumOfSquares(there);
+      const actual = Number.isFinite(value) ? 1 - value / chiSquare : -Infinity;
+      const ratio = predicted > 0 ? actual / predicted : 0;
+      const length = size(step);
+
+      if (iterations === 0) radius = Math.min(radius, length);
+      if (ratio <= 0.25) {
+        const slope = step.reduce((sum, p, j) => sum + p * gradient[j]!, 0) / chiSquare;
+        const fraction = actual >= 0 ? 0.5 : 0.5 * slope / (slope + 0.5 * actual);
+        radius = (fraction > 0.1 ? fraction : 0.1) * Math.min(radius, 10 * length);
+      } else if (!cut || ratio >= 0.75) {
+        radius = 2 * length;
+      }
+
+      if (ratio >= 1e-4) {
+        accepted = true;
+        at = next;
+        current = there;
+        chiSquare = value;
+      }
+      const small = Math.abs(actual) <= tolerance && predicted <= tolerance && ratio <= 2;
+      if (small || chiSquare <= first * Number.EPSILON ** 2) {
+        converged = true;
+      } else if (!(radius > tolerance * size(at))) {
+        // No shorter step helps: the end, unless the gradient says that one should.
+        converged = accepted || cosine < 1e-3 || chiSquare <= 1e-20 * first;
+        if (!converged) break;
+      }
+    }
+    if (!accepted && !converged) break;
+  }
+
+  const atBound = onBounds(at, bounds);
+  const free = atBound.flatMap((bound, j) => bound === null ? [j] : []);
+  const { covariance, rank } = covarianceOf(modelAt(at, current).triangle, free);
+  return {
+    parameters: at,
+    covariance,
+    chi_square: chiSquare,
+    residuals: current,
+    iterations,
+    evaluations,
+    converged,
+    at_bound: atBound,
+    rank,
+  };
+}
