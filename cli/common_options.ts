@@ -1,0 +1,44 @@
+import { Command, InvalidArgumentError } from "@commander-js/extra-typings";
+
+/** Options that every command takes. */
+export type CommonOptions = ReturnType<ReturnType<typeof commandWith>["opts"]>;
+
+/** A subcommand with the options that every command takes. */
+export function commandWith(name: string, summary: string) {
+  return new Command(name)
+    .description(summary)
+    .option("--out <dir>", "output folder (default: named after the target file, beside it)")
+    .option("--json", "one JSON document on standard output")
+    .option("--quiet", "no progress, no warnings")
+    .option("--overwrite", "replace files that Millrace did not write")
+    .option("--seed <n>", "seed of everything with chance in it", wholeNumber)
+    .option("--workers <n>", "number of workers", positiveWholeNumber)
+    .option(
+      "--set <section.key=value>",
+      "override one setting (repeatable)",
+      (value: string, before: string[]) => [...before, value],
+      [] as string[],
+    );
+}
+
+/** Reads a whole number, zero or above. */
+export function wholeNumber(text: string): number {
+  if (!/^\d+$/.test(text)) throw new InvalidArgumentError("It must be a whole number.");
+  return Number(text);
+}
+
+/** Reads a whole number above zero. */
+export function positiveWholeNumber(text: string): number {
+  if (!/^\d+$/.test(text) || Number(text) < 1) {
+    throw new InvalidArgumentError("It must be a whole number above zero.");
+  }
+  return Number(text);
+}
+
+/** Reads a number. */
+export function decimalNumber(text: string): number {
+  if (text.trim() === "" || !Number.isFinite(Number(text))) {
+    throw new InvalidArgumentError("It must be a number.");
+  }
+  return Number(text);
+}

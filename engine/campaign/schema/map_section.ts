@@ -1,0 +1,31 @@
+import { z } from "zod";
+import { nonNegative, positive, text } from "./common.ts";
+
+/** `[map]`: the velocity map and how it is made. */
+export interface MapSettings {
+  /** Inversion. */
+  readonly method: "back-projection" | "entropy" | "total-variation";
+  /** Velocity of the outermost pixel's centre, km/s. */
+  readonly half_width_kms: number;
+  /** Pixels along each side, odd. */
+  readonly pixels: number;
+  /** "uniform", "blurred", "axisymmetric", or a FITS file. */
+  readonly prior_image: string;
+  /** Goal of the fit: chi-square over the number of samples. */
+  readonly reduced_chi_square: number;
+  /** Number of resamples for the errors. */
+  readonly resamples: number;
+}
+
+/** Schema of MapSettings. */
+export const mapSection: z.ZodType<MapSettings> = z.strictObject({
+  method: z.enum(["back-projection", "entropy", "total-variation"]).default("back-projection"),
+  half_width_kms: positive.default(2000),
+  pixels: positive.int().refine((n) => n % 2 === 1, {
+    error: "must be odd, so that one pixel is at (0, 0)",
+  })
+    .default(151),
+  prior_image: text.default("blurred"),
+  reduced_chi_square: positive.default(1),
+  resamples: nonNegative.int().default(0),
+});
