@@ -60,7 +60,7 @@ function textIsOurs(bytes: Uint8Array): boolean {
  * | JSON | top-level keys `schema` (such as `"map/1"`) and `version`, both strings |
  * | ECSV | `creator: Millrace…` in the header's `meta` |
  * | PNG | `tEXt` chunk with keyword `Software` and a text that begins with `Millrace` |
- * | PDF | `/Creator (Millrace…)` or `/Producer (Millrace…)` |
+ * | PDF | `/Creator (Millrace…)`, `/Producer (Millrace…)`, or in XMP `<xmp:CreatorTool>Millrace…` |
  * | SVG, HTML and other mark-up | the word `Millrace` in the first 2048 bytes |
  * | other text (TOML, CSV, plain) | the words `written by Millrace` (any case) in the first 2048 bytes |
  *
@@ -82,7 +82,8 @@ export function writtenByMillrace(bytes: Uint8Array): boolean {
   if (startsWith(bytes, "SIMPLE  =")) return fitsIsOurs(bytes);
   if (startsWith(bytes, "\x89PNG\r\n\x1a\n")) return pngIsOurs(bytes);
   if (startsWith(bytes, "%PDF-")) {
-    return /\/(?:Creator|Producer)\s*\(Millrace\b/.test(latin1.decode(bytes));
+    const mark = /\/(?:Creator|Producer)\s*\(Millrace\b|<xmp:CreatorTool>Millrace\b/;
+    return mark.test(latin1.decode(bytes));
   }
   if (startsWith(bytes, "# %ECSV")) return ecsvIsOurs(bytes);
   if (/^\s*\{/.test(latin1.decode(bytes.subarray(0, 64)))) return jsonIsOurs(bytes);

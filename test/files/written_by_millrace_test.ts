@@ -35,6 +35,7 @@ const cases: [name: string, content: Uint8Array, ours: boolean][] = [
   ["PNG without", png, false],
   ["PNG cut off", marked.subarray(0, 40), false],
   ["PDF by creator", bytes("%PDF-1.7\n1 0 obj<</Creator (Millrace 0.1.0)>>"), true],
+  ["PDF by XMP", bytes("%PDF-1.7\n<xmp:CreatorTool>Millrace 0.1.0</xmp:CreatorTool>"), true],
   ["PDF of another", bytes("%PDF-1.7\n1 0 obj<</Title (Millrace)>>"), false],
   ["SVG", bytes('<?xml version="1.0"?><svg><desc>Millrace 0.1.0</desc></svg>'), true],
   ["SVG of another", bytes("<svg></svg>"), false],
