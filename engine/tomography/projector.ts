@@ -1,0 +1,152 @@
+import type { Sampling } from "../trail/mod.ts";
+import { InputError } from "../errors.ts";
+import { checkMapShape } from "./map_shape.ts";
+import { referenceProjector } from "./reference_projector.ts";
+import { checkResolution } from "./resolution.ts";
+import { slantProjector } from "./slant_projector.ts";
+
+/** The linear operator from a velocity map to the samples of a trail, and its adjoint. */
+export interface Projector {
+  /** Pixels along each side of the map, odd. */
+  readonly pixels: number;
+  /** Velocity of the centre of the outermost pixel, km/s. */
+  readonly half_width_kms: number;
+  /** Systemic velocity that was taken out, km/s. */
+  readonly systemic_kms: number;
+  /** The exposures. */
+  readonly sampling: Sampling;
+  /** Number of samples: the length of a data vector. */
+  readonly sample_count: number;
+  /** Which code does the work. */
+  readonly method: ProjectorMethod;
+  /**
+   * Data of a map: at each sample, Σ over pixels of intensity × pixel area × profile (per km/s),
+   * averaged over the exposure. `map`: pixels², rows of increasing Vy, columns of increasing Vx;
+   * result: normalised flux minus one, laid out as `sampling.velocity_kms`. The second argument,
+   * when given, receives and is the result.
+   */
+  readonly forward: (map: Float64Array, into?: Float64Array) => Float64Array;
+  /**
+   * The transpose of `forward`: ⟨forward(m), d⟩ = ⟨m, adjoint(d)⟩ to rounding. The second argument,
+   * when given, receives and is the result.
+   */
+  readonly adjoint: (data: Float64Array, into?: Float64Array) => Float64Array;
+}
+
+/** `fast`: linear deposit along slanted lines, then a Gaussian. `reference`: a Gaussian per pixel. */
+export type ProjectorMethod = "fast" | "reference";
+
+/** Options of {@linkcode makeProjector}. */
+export interface ProjectorOptions {
+  /** Pixels along each side of the map, odd. */
+  readonly pixels: number;
+  /** Velocity of the centre of the outermost pixel, km/s. */
+  readonly half_width_kms: number;
+  /** Systemic velocity γ, km/s; taken out as a factor on the wavelength. */
+  readonly systemic_kms: number;
+  /**
+   * Rest wavelength of the mapped component over the one that made the velocities (vacuum).
+   *
+   * @default {1}
+   */
+  readonly rest_ratio?: number;
+  /**
+   * Which code does the work.
+   *
+   * @default {"fast"}
+   */
+  readonly method?: ProjectorMethod;
+}
+
+/**
+ * Makes the projector of a sampling: emission at (Vx, Vy) is seen at
+ * V(φ) = γ − Vx cos 2πφ + Vy sin 2πφ (Marsh & Horne 1988, MNRAS 235, 269), through each exposure's
+ * Gaussian profile and averaged over its duration. The stated profile includes the detector's
+ * pixel, so samples are taken at pixel centres.
+ *
+ * `reference` puts a Gaussian for every map pixel, slowly and obviously. `fast` deposits the map
+ * on a grid finer than its pixels and blurs that once per instant. With map pixels of half the
+ * resolution (FWHM) it is within 1e-4 of the reference (rms over rms) for a whole map and within
+ * 1 % of the peak for a single bright pixel; both fall with the square of the pixel.
+ *
+ * @param sampling Phases, exposure widths, native velocities, profiles.
+ * @param options Map's size and the systemic velocity.
+ * @returns The operator. It keeps scratch arrays: one projector serves one caller at a time.
+ * @throws {InputError} When the map's shape is wrong, a resolution is unknown, or (`fast`) a map
+ * pixel is wider than half the resolution.
+ *
+ * @example A point source traces its S-wave
+ * ```ts
+ * import { makeProjector } from "@millrace/millrace/tomography";
+ * import { assertAlmostEquals } from "@std/assert";
+ *
+ * const velocity_kms = Float64Array.from({ length: 61 }, (_, k) => 20 * (k - 30));
+ * const sampling = {
+ *   count: 1,
+ *   phase: Float64Array.of(0.25),
+ *   cycle: Float64Array.of(0),
+ *   phase_width: Float64Array.of(0),
+ *   start: Uint32Array.of(0, 61),
+ *   velocity_kms,
+ *   pixel_kms: new Float64Array(61).fill(20),
+ *   profile_sigma_kms: Float64Array.of(40),
+ * };
+ * const projector = makeProjector(sampling, { pixels: 41, half_width_kms: 400, systemic_kms: 0 });
+ * const map = new Float64Array(41 * 41);
+ * map[35 * 41 + 20] = 1; // (0, +300) km/s, pixel area 400 (km/s)²
+ * const data = projector.forward(map);
+ * const flux = data.reduce((sum, d) => sum + 20 * d, 0);
+ * assertAlmostEquals(flux, 400, 0.01);
+ * assertAlmostEquals(data.reduce((sum, d, k) => sum + 20 * d * (velocity_kms[k] ?? 0), 0) / flux, 300, 0.1);
+ * ```
+ */
+export function makeProjector(sampling: Sampling, options: ProjectorOptions): Projector {
+  const { method = "fast" } = options;
+  checkMapShape(options);
+  checkSampling(sampling);
+  if (method === "reference") return referenceProjector(sampling, options);
+  checkResolution(sampling, options);
+  return slantProjector(sampling, options);
+}
+
+function checkSampling(sampling: Sampling): void {
+  const action = "make projector";
+  const samples = sampling.velocity_kms.length;
+  if (sampling.start[sampling.count] !== samples) {
+    throw new InputError({
+      action,
+      rule: `the last offset of the sampling must be its number of samples, ${samples}`,
+      value: sampling.start[sampling.count],
+    });
+  }
+  for (let i = 0; i < sampling.count; i++) {
+    const sigma = sampling.profile_sigma_kms[i] ?? NaN;
+    if (!(sigma > 0) || !Number.isFinite(sigma)) {
+      throw new InputError({
+        action,
+        rule: `the resolution of exposure ${i + 1} must be known`,
+        value: sigma,
+        unit: "km/s",
+        remedy:
+          "state it in the target file, as resolution_angstrom, resolution_kms or resolving_power",
+      });
+    }
+    const phase = sampling.phase[i] ?? NaN;
+    if (!Number.isFinite(phase)) {
+      throw new InputError({
+        action,
+        rule: `the phase of exposure ${i + 1} must be a number`,
+        value: phase,
+      });
+    }
+    const width = sampling.phase_width[i] ?? NaN;
+    if (!(width >= 0) || !(width < 1)) {
+      throw new InputError({
+        action,
+        rule: `exposure ${i + 1} must be shorter than one orbit`,
+        value: width,
+        unit: "cycles",
+      });
+    }
+  }
+}
