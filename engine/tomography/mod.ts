@@ -1,10 +1,15 @@
 /** The tomography room. @module */
+export * from "./axisymmetric_part.ts";
 export * from "./back_projection.ts";
+export * from "./blur_map.ts";
 export * from "./gather_lines.ts";
 export * from "./half_orbit.ts";
+export * from "./map_features.ts";
 export * from "./map_fit.ts";
 export * from "./map_peak.ts";
 export * from "./map_shape.ts";
+export * from "./nearest_part.ts";
+export * from "./noise_replica.ts";
 export * from "./profile_filter.ts";
 export * from "./projector.ts";
 export * from "./reference_projector.ts";
