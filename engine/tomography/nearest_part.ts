@@ -19,7 +19,8 @@ export type PartFinder = (place: MapPlace, reach_kms: number) => BinaryPart;
  * Prepares to name places by the parts of a binary: the donor's lobe; the stream at its ballistic
  * velocity from L1 to closest approach; the impact on the rim, anywhere between the stream's and
  * the disc's velocity for rims from the circularisation radius to the tidal limit; the accretor.
- * The impact goes before the stream where both are as near.
+ * Where the rim can be, the impact goes before the stream unless that is nearer by a tenth of the
+ * reach.
  *
  * @param binary The binary, whose zero of phase must be the donor's inferior conjunction.
  * @returns A function from a place and a reach to a name.
@@ -63,7 +64,8 @@ export function partFinder(
     ];
     let best: BinaryPart = "none", least = reach_kms;
     for (const [part, distance] of found) {
-      if (distance < least) [best, least] = [part, distance];
+      const margin = part === "stream" && best === "rim-impact" ? 0.1 * reach_kms : 0;
+      if (distance + margin < least) [best, least] = [part, distance];
     }
     return best;
   };
