@@ -1,0 +1,99 @@
+import { crc32, deflateSync } from "node:zlib";
+import { Buffer } from "node:buffer";
+import { PNG } from "pngjs";
+import type { RasterSize } from "./cells.ts";
+import { type Metadata, SOFTWARE } from "./marks.ts";
+
+/** A raster of colours. */
+export interface Raster extends RasterSize {
+  /** Colours, rows × columns × 3 bytes, the top row first. */
+  readonly rgb: Uint8Array;
+}
+
+/** How a PNG file is written. */
+export interface PngFileOptions {
+  /** Resolution, dots per inch; not stated when absent. */
+  readonly dpi?: number;
+  /** Facts for its metadata. @default {{}} */
+  readonly metadata?: Metadata;
+  /** Deflate level, 0 to 9. @default {6} */
+  readonly level?: number;
+}
+
+/**
+ * Writes a raster as a PNG file (RGB, 8 bits) with its resolution and metadata.
+ *
+ * @param raster The colours.
+ * @param options Resolution, metadata, compression.
+ * @returns The bytes of the file.
+ *
+ * @example
+ * ```ts
+ * import { pngFile } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const bytes = pngFile({ columns: 1, rows: 1, rgb: new Uint8Array([255, 0, 0]) }, { dpi: 300 });
+ * assertEquals([...bytes.subarray(1, 4)], [0x50, 0x4e, 0x47]);
+ * ```
+ */
+export function pngFile(raster: Raster, options: PngFileOptions = {}): Uint8Array {
+  const { dpi, metadata = {}, level = 6 } = options;
+  const { columns: width, rows: height, rgb } = raster;
+  const settings = {
+    width,
+    height,
+    colorType: 2,
+    inputColorType: 2,
+    inputHasAlpha: false,
+  } as const;
+  const png = new PNG(settings);
+  png.data = Buffer.from(rgb.buffer, rgb.byteOffset, rgb.byteLength);
+  const body = PNG.sync.write(png, {
+    ...settings,
+    filterType: 0,
+    deflateLevel: level,
+    deflateStrategy: 0,
+  });
+  const chunks = dpi === undefined ? [] : [resolutionChunk(dpi)];
+  for (const [key, value] of Object.entries({ Software: SOFTWARE, ...metadata })) {
+    chunks.push(textChunk(key, value));
+  }
+  // After the signature and the header, which are always 33 bytes.
+  return concat([body.subarray(0, 33), ...chunks, body.subarray(33)]);
+}
+
+function resolutionChunk(dpi: number): Uint8Array {
+  const data = new Uint8Array(9);
+  const view = new DataView(data.buffer);
+  view.setUint32(0, Math.round(dpi / 0.0254));
+  view.setUint32(4, Math.round(dpi / 0.0254));
+  data[8] = 1; // per metre
+  return chunk("pHYs", data);
+}
+
+function textChunk(key: string, value: string): Uint8Array {
+  const encoder = new TextEncoder();
+  if (/^[\x20-\x7e\n]*$/.test(value)) return chunk("tEXt", encoder.encode(`${key}\0${value}`));
+  const text = deflateSync(encoder.encode(value));
+  return chunk("iTXt", concat([encoder.encode(`${key}\0`), new Uint8Array([1, 0, 0, 0]), text]));
+}
+
+function chunk(type: string, data: Uint8Array): Uint8Array {
+  const body = concat([new TextEncoder().encode(type), data]);
+  const bytes = new Uint8Array(body.length + 8);
+  const view = new DataView(bytes.buffer);
+  view.setUint32(0, data.length);
+  bytes.set(body, 4);
+  view.setUint32(bytes.length - 4, crc32(body));
+  return bytes;
+}
+
+function concat(parts: readonly Uint8Array[]): Uint8Array {
+  const bytes = new Uint8Array(parts.reduce((sum, part) => sum + part.length, 0));
+  let at = 0;
+  for (const part of parts) {
+    bytes.set(part, at);
+    at += part.length;
+  }
+  return bytes;
+}
