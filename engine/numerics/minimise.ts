@@ -1,7 +1,8 @@
-import { Matrix, QrDecomposition, SingularValueDecomposition } from "ml-matrix";
+import { Matrix, QrDecomposition } from "ml-matrix";
 import { InputError } from "../errors.ts";
 import { type Bounds, readBounds } from "./bounds.ts";
 import type { DenseMatrix } from "./dense_matrix.ts";
+import { fitCovariance } from "./fit_covariance.ts";
 import { numericJacobian } from "./numeric_jacobian.ts";
 import { type ReducedModel, trustRegionStep } from "./trust_region_step.ts";
 
@@ -105,35 +106,6 @@ function onBounds(at: Float64Array, bounds: Bounds): ("lower" | "upper" | null)[
     if (x === bounds.lower[j]) return "lower";
     return x === bounds.upper[j] ? "upper" : null;
   });
-}
-
-function covarianceOf(triangle: Matrix, free: readonly number[]) {
-  const k = triangle.columns;
-  const covariance = Matrix.zeros(k, k);
-  if (free.length === 0) return { covariance, rank: 0 };
-  const columns = triangle.subMatrixColumn([...free]);
-  const lengths = free.map((_, i) => columns.getColumnVector(i).norm() || 1);
-  const svd = new SingularValueDecomposition(columns.divRowVector(lengths), {
-    autoTranspose: true,
-  });
-  const singular = svd.diagonal;
-  const right = svd.rightSingularVectors;
-  // Columns from differences carry errors of some 1e-8: a smaller singular value is one of those.
-  const rank = singular.filter((s) => s > 1e-8 * singular[0]!).length;
-  const undetermined = free.map((_, i) =>
-    singular.some((_s, s) => s >= rank && Math.abs(right.get(i, s)) > 1e-6)
-  );
-  free.forEach((a, i) =>
-    free.forEach((b, j) => {
-      let sum = 0;
-      for (let s = 0; s < rank; s++) {
-        sum += right.get(i, s) * right.get(j, s) / (singular[s]! * singular[s]!);
-      }
-      const infinite = i === j && undetermined[i];
-      covariance.set(a, b, infinite ? Infinity : sum / (lengths[i]! * lengths[j]!));
-    })
-  );
-  return { covariance, rank };
 }
 
 /**
@@ -263,12 +235,14 @@ export function minimise(
         current = there;
         chiSquare = value;
       }
-      const small = Math.abs(actual) <= tolerance && predicted <= tolerance && ratio <= 2;
-      if (small || chiSquare <= first * Number.EPSILON ** 2) {
+      const unmoved = Math.abs(actual) <= tolerance && predicted <= tolerance && ratio <= 2;
+      const exhausted = !(radius > tolerance * size(at)) ||
+        (predicted >= 0 && predicted <= Number.EPSILON);
+      if (chiSquare <= first * Number.EPSILON ** 2) {
         converged = true;
-      } else if (!(radius > tolerance * size(at))) {
-        // No shorter step helps: the end, unless the gradient says that one should.
-        converged = accepted || cosine < 1e-3 || chiSquare <= 1e-20 * first;
+      } else if (unmoved || exhausted) {
+        // No step helps any more: the end, unless the gradient says that one should.
+        converged = accepted || !cut || cosine < 1e-3 || chiSquare <= 1e-20 * first;
         if (!converged) break;
       }
     }
@@ -277,7 +251,7 @@ export function minimise(
 
   const atBound = onBounds(at, bounds);
   const free = atBound.flatMap((bound, j) => bound === null ? [j] : []);
-  const { covariance, rank } = covarianceOf(modelAt(at, current).triangle, free);
+  const { covariance, rank } = fitCovariance(modelAt(at, current).triangle, free);
   return {
     parameters: at,
     covariance,

@@ -32,7 +32,7 @@ export function nonNegativeLeastSquares(
 ): Float64Array {
   const action = "solve non-negative least squares";
   requireSameLength(action, "rows and samples", design.rows, data.length);
-  const length = Math.hypot(...Array.from(data, (value) => value)) || 1;
+  const length = Math.sqrt(Array.from(data).reduce((sum, value) => sum + value * value, 0));
   const columns = new Matrix(design.to2DArray());
   const lengths = Array.from(
     { length: design.columns },
@@ -44,7 +44,7 @@ export function nonNegativeLeastSquares(
   // A column of zeros changes nothing, and its parameter is 0.
   const used = lengths.flatMap((norm, j) => norm > 0 ? [j] : []);
   const parameters = new Float64Array(design.columns);
-  if (used.length === 0) return parameters;
+  if (used.length === 0 || length === 0) return parameters;
   const unit = columns.subMatrixColumn(used).divRowVector(used.map((j) => lengths[j]!));
   let solution: number[];
   try {
