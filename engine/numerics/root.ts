@@ -11,7 +11,7 @@ import { InputError, NotConverged } from "../errors.ts";
  * @default tolerance 0, as fine as rounding allows
  * @returns The root.
  * @throws {InputError} When the signs do not differ, or f is not a number at an end.
- * @throws {NotConverged} After 200 steps, as on a function that is NaN inside.
+ * @throws {NotConverged} When f is not a number inside, or after 200 steps; `partial` is the best point.
  *
  * @example
  * ```ts
@@ -83,6 +83,9 @@ export function findRoot(
     fa = fb;
     b += Math.abs(step) > least ? step : Math.sign(half) * Math.max(least, Number.MIN_VALUE);
     fb = f(b);
+    if (Number.isNaN(fb)) {
+      throw new NotConverged(`Cannot find root: the function is not a number at ${b}`, a);
+    }
   }
   throw new NotConverged(`Cannot find root: 200 steps ended at ${b}, where f is ${fb}`, b);
 }
