@@ -15,6 +15,7 @@ export * from "./projector.ts";
 export * from "./reference_projector.ts";
 export * from "./resolution.ts";
 export * from "./slant_geometry.ts";
+export * from "./slant_kernel.ts";
 export * from "./slant_plan.ts";
 export * from "./slant_projector.ts";
 export * from "./smearing.ts";

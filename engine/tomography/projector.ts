@@ -3,6 +3,7 @@ import { InputError } from "../errors.ts";
 import { checkMapShape } from "./map_shape.ts";
 import { referenceProjector } from "./reference_projector.ts";
 import { checkResolution } from "./resolution.ts";
+import { kernelProjector } from "./slant_kernel.ts";
 import { slantProjector } from "./slant_projector.ts";
 
 /** The linear operator from a velocity map to the samples of a trail, and its adjoint. */
@@ -17,8 +18,8 @@ export interface Projector {
   readonly sampling: Sampling;
   /** Number of samples: the length of a data vector. */
   readonly sample_count: number;
-  /** Which code does the work. */
-  readonly method: ProjectorMethod;
+  /** Which code does the work: WebAssembly, its TypeScript twin, or the double loop. */
+  readonly code: "kernel" | "plain" | "reference";
   /**
    * Data of a map: at each sample, Σ over pixels of intensity × pixel area × profile (per km/s),
    * averaged over the exposure. `map`: pixels², rows of increasing Vy, columns of increasing Vx;
@@ -33,8 +34,14 @@ export interface Projector {
   readonly adjoint: (data: Float64Array, into?: Float64Array) => Float64Array;
 }
 
-/** `fast`: linear deposit along slanted lines, then a Gaussian. `reference`: a Gaussian per pixel. */
-export type ProjectorMethod = "fast" | "reference";
+/**
+ * `fast`: along slanted lines, in WebAssembly where it has SIMD. `plain`: the same in TypeScript.
+ * `reference`: a Gaussian for every pixel.
+ */
+export type ProjectorMethod = "fast" | "plain" | "reference";
+
+/** Number format of the map and of the sums over it. */
+export type ProjectorPrecision = "double" | "single";
 
 /** Options of {@linkcode makeProjector}. */
 export interface ProjectorOptions {
@@ -51,11 +58,18 @@ export interface ProjectorOptions {
    */
   readonly rest_ratio?: number;
   /**
-   * Which code does the work.
+   * How it is done.
    *
    * @default {"fast"}
    */
   readonly method?: ProjectorMethod;
+  /**
+   * `single` lets the WebAssembly code keep the map in 32 bits: faster, 1e-6 of the peak. The other
+   * codes are always double.
+   *
+   * @default {"double"}
+   */
+  readonly precision?: ProjectorPrecision;
 }
 
 /**
@@ -106,7 +120,8 @@ export function makeProjector(sampling: Sampling, options: ProjectorOptions): Pr
   checkSampling(sampling);
   if (method === "reference") return referenceProjector(sampling, options);
   checkResolution(sampling, options);
-  return slantProjector(sampling, options);
+  if (method === "plain") return slantProjector(sampling, options);
+  return kernelProjector(sampling, options) ?? slantProjector(sampling, options);
 }
 
 function checkSampling(sampling: Sampling): void {

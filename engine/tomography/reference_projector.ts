@@ -84,7 +84,7 @@ export function referenceProjector(sampling: Sampling, options: ProjectorOptions
     systemic_kms,
     sampling,
     sample_count: velocity.length,
-    method: "reference",
+    code: "reference",
     forward(map, into = new Float64Array(velocity.length)) {
       into.fill(0);
       visit((pixel, k, value) => into[k] = (into[k] ?? 0) + value * (map[pixel] ?? 0));

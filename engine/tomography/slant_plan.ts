@@ -6,7 +6,7 @@ import { smearingRule } from "./smearing.ts";
 import { shiftVelocities, systemFrame } from "./system_frame.ts";
 
 /** Grid points per σ that keep a point source within 1 % of the exact profile and a map within 1e-4. */
-const POINTS_PER_SIGMA = 4;
+const POINTS_PER_SIGMA = 3;
 
 /** The Gaussian is cut at this many σ: 7e-6 of its area lies beyond. */
 const REACH = 4.5;

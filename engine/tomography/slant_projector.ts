@@ -41,7 +41,7 @@ export function slantProjector(sampling: Sampling, options: ProjectorOptions): P
     systemic_kms,
     sampling,
     sample_count,
-    method: "fast",
+    code: "plain",
     forward(map, into = new Float64Array(sample_count)) {
       into.fill(0);
       transpose(map, turned, pixels);

@@ -5,7 +5,7 @@ import { makeProjector, type Projector, type ProjectorMethod } from "@millrace/m
 import radon from "../reference/radon.json" with { type: "json" };
 import { benchSampling, gaussianMap, plainSampling, ragged } from "./samplings.ts";
 
-const METHODS: readonly ProjectorMethod[] = ["reference", "fast"];
+const METHODS: readonly ProjectorMethod[] = ["reference", "plain", "fast"];
 
 interface Blob {
   readonly id: string;
@@ -67,7 +67,7 @@ function blobProblem(
 
 // reference/radon.json kind blob: Gaussian in closed form, smearing by scipy's quad over phase.
 // Its tolerance is 1e-10 for a closed form; a sum over pixels and a 1e-9 smearing rule give 2e-8.
-// The fast one's linear deposit is right on average over the lines that a source covers; one line is
+// The fast ones' linear deposit is right on average over the lines that a source covers; one line is
 // off by up to (grid step / σ)²/12, 5e-3 here, and these blobs cover about ten: 5e-4.
 for (const method of METHODS) {
   for (const blob of blobs) {

@@ -1,0 +1,348 @@
+// The slanted projection in AssemblyScript with SIMD. Same arithmetic in the same order as
+// slant_projector.ts, so that results in double precision are the same to the bit.
+//
+// The caller owns the memory: every field of Plan that is an address points to an array it has laid
+// out. Map lines are `stride` values apart, with PAD zeros before each and at least PAD after it.
+
+/** Zeros on either side of a map line. */
+const PAD: i32 = 16;
+
+/** Lines, or instants, that share one pass through memory. */
+const GROUP: i32 = 4;
+
+@unmanaged
+class Plan {
+  pixels: i32;
+  stride: i32;
+  over: i32;
+  strand_length: i32;
+  instants: i32;
+  axis: usize; // i32 × instants
+  u0: usize; // f64 × instants
+  du: usize; // f64 × instants
+  tap_start: usize; // i32 × (instants + 1)
+  taps: usize; // f64
+  entry_start: usize; // i32 × (instants + 1)
+  sample: usize; // i32 × instants
+  first: usize; // i32 × entries
+  scale: usize; // f64 × entries
+  ratio: usize; // f64 × entries
+  data: usize; // f64 × samples
+  rows: usize; // T × pixels × stride
+  columns: usize; // T × pixels × stride
+  sum: usize; // T × GROUP × over × strand_length
+  part: usize; // T × GROUP × over × strand_length
+  whole: usize; // f64 × (over × strand_length + 2)
+  strand: usize; // i32 × GROUP × pixels: strand that a line lands on
+  at: usize; // i32 × GROUP × pixels: its place on the strand
+  offset: usize; // f64 × GROUP × pixels: its fractional offset
+  order: usize; // i32 × pixels: lines sorted by strand
+}
+
+@inline
+function i32At(array: usize, k: i32): i32 {
+  return load<i32>(array + (<usize> k << 2));
+}
+
+@inline
+function f64At(array: usize, k: i32): f64 {
+  return load<f64>(array + (<usize> k << 3));
+}
+
+@inline
+function address<T>(array: usize, k: i32): usize {
+  return array + <usize> k * sizeof<T>();
+}
+
+/** Finds where every line of instant t lands; the result goes to the given slot. */
+function placeLines(plan: Plan, t: i32, slot: i32): void {
+  const n = plan.pixels, over = plan.over;
+  const u0 = f64At(plan.u0, t), du = f64At(plan.du, t);
+  for (let l = 0; l < n; l++) {
+    const u = u0 + <f64> l * du;
+    const start = Math.floor(u);
+    const turn = <i32> start / over;
+    const k = <usize> (slot * n + l);
+    store<i32>(plan.strand + (k << 2), <i32> start - turn * over);
+    store<i32>(plan.at + (k << 2), turn);
+    store<f64>(plan.offset + (k << 3), u - start);
+  }
+}
+
+/** Adds one line to a strand of `sum` and of `part`. */
+function depositOne<T>(line: usize, at: i32, p: T, sum: usize, part: usize, pixels: i32): void {
+  const weight = v128.splat<T>(p);
+  const end = address<T>(line, pixels);
+  sum = address<T>(sum, at);
+  part = address<T>(part, at);
+  for (; line < end; line += 16, sum += 16, part += 16) {
+    const f = v128.load(line);
+    v128.store(sum, v128.add<T>(v128.load(sum), f));
+    v128.store(part, v128.add<T>(v128.load(part), v128.mul<T>(weight, f)));
+  }
+}
+
+/** Adds four lines to one strand; where a line does not reach, its zeros are added. */
+function depositFour<T>(
+  a: usize,
+  b: usize,
+  c: usize,
+  d: usize,
+  pa: T,
+  pb: T,
+  pc: T,
+  pd: T,
+  sum: usize,
+  part: usize,
+  count: i32,
+): void {
+  const wa = v128.splat<T>(pa), wb = v128.splat<T>(pb);
+  const wc = v128.splat<T>(pc), wd = v128.splat<T>(pd);
+  const end = address<T>(sum, count);
+  b -= a;
+  c -= a;
+  d -= a;
+  part -= sum;
+  for (; sum < end; sum += 16, a += 16) {
+    const fa = v128.load(a), fb = v128.load(a + b), fc = v128.load(a + c), fd = v128.load(a + d);
+    let s = v128.add<T>(v128.load(sum), fa);
+    s = v128.add<T>(s, fb);
+    s = v128.add<T>(s, fc);
+    v128.store(sum, v128.add<T>(s, fd));
+    let q = v128.add<T>(v128.load(sum + part), v128.mul<T>(wa, fa));
+    q = v128.add<T>(q, v128.mul<T>(wb, fb));
+    q = v128.add<T>(q, v128.mul<T>(wc, fc));
+    v128.store(sum + part, v128.add<T>(q, v128.mul<T>(wd, fd)));
+  }
+}
+
+function deposit<T>(plan: Plan, t: i32): void {
+  const n = plan.pixels, over = plan.over, stride = plan.stride, length = plan.strand_length;
+  const lines = i32At(plan.axis, t) == 1 ? plan.columns : plan.rows;
+  const order = plan.order, at = plan.at, offset = plan.offset;
+  memory.fill(plan.sum, 0, <usize> (over * length) * sizeof<T>());
+  memory.fill(plan.part, 0, <usize> (over * length) * sizeof<T>());
+  placeLines(plan, t, 0);
+  for (let strand = 0; strand < over; strand++) {
+    let count = 0;
+    for (let l = 0; l < n; l++) {
+      if (i32At(plan.strand, l) != strand) continue;
+      store<i32>(order + (<usize> count << 2), l);
+      count++;
+    }
+    const sum = address<T>(plan.sum, strand * length);
+    const part = address<T>(plan.part, strand * length);
+    let i = 0;
+    while (i < count) {
+      const a = i32At(order, i);
+      if (i + GROUP <= count) {
+        const b = i32At(order, i + 1), c = i32At(order, i + 2), d = i32At(order, i + 3);
+        const ka = i32At(at, a), kb = i32At(at, b), kc = i32At(at, c), kd = i32At(at, d);
+        // Lines come in order and the shift per line has one sign: the ends are the extremes.
+        const low = min(ka, kd), high = max(ka, kd);
+        if (high - low <= PAD) {
+          depositFour<T>(
+            address<T>(lines, a * stride + low - ka),
+            address<T>(lines, b * stride + low - kb),
+            address<T>(lines, c * stride + low - kc),
+            address<T>(lines, d * stride + low - kd),
+            <T> f64At(offset, a),
+            <T> f64At(offset, b),
+            <T> f64At(offset, c),
+            <T> f64At(offset, d),
+            address<T>(sum, low),
+            address<T>(part, low),
+            high - low + n,
+          );
+          i += GROUP;
+          continue;
+        }
+      }
+      const line = address<T>(lines, a * stride);
+      depositOne<T>(line, i32At(at, a), <T> f64At(offset, a), sum, part, n);
+      i++;
+    }
+  }
+  for (let strand = 0; strand < over; strand++) {
+    let s = address<T>(plan.sum, strand * length), p = address<T>(plan.part, strand * length);
+    let left = strand > 0
+      ? address<T>(plan.part, (strand - 1) * length)
+      : address<T>(plan.part, (over - 1) * length - 1);
+    let w = plan.whole + (<usize> strand << 3);
+    const end = address<T>(s, length);
+    if (strand == 0) {
+      store<f64>(w, <f64> (load<T>(s) - load<T>(p)));
+      s += sizeof<T>();
+      p += sizeof<T>();
+      left += sizeof<T>();
+      w += <usize> over << 3;
+    }
+    for (; s < end; s += sizeof<T>(), p += sizeof<T>(), left += sizeof<T>(), w += <usize> over << 3) {
+      store<f64>(w, <f64> (load<T>(s) - load<T>(p) + load<T>(left)));
+    }
+  }
+}
+
+@inline
+function lanes(a: f64, b: f64): v128 {
+  return f64x2.replace_lane(f64x2.splat(a), 1, b);
+}
+
+/** Blurs the whole grid of instant t to its samples, two samples at a time. */
+function blur(plan: Plan, t: i32): void {
+  const from = i32At(plan.entry_start, t), to = i32At(plan.entry_start, t + 1);
+  const taps = address<f64>(plan.taps, i32At(plan.tap_start, t));
+  const taps_end = address<f64>(plan.taps, i32At(plan.tap_start, t + 1));
+  const data = address<f64>(plan.data, i32At(plan.sample, t) - from);
+  let s = from;
+  for (; s + 1 < to; s += 2) {
+    const ra = f64At(plan.ratio, s), rb = f64At(plan.ratio, s + 1);
+    const rra = f64x2.splat(ra * ra), rrb = f64x2.splat(rb * rb);
+    let wa = address<f64>(plan.whole, i32At(plan.first, s));
+    let wb = address<f64>(plan.whole, i32At(plan.first, s + 1));
+    let pa = lanes(1, ra), pb = lanes(1, rb), sa = f64x2.splat(0), sb = f64x2.splat(0);
+    for (let j = taps; j < taps_end; j += 16, wa += 16, wb += 16) {
+      const c = v128.load(j);
+      sa = f64x2.add(sa, f64x2.mul(f64x2.mul(c, pa), v128.load(wa)));
+      sb = f64x2.add(sb, f64x2.mul(f64x2.mul(c, pb), v128.load(wb)));
+      pa = f64x2.mul(pa, rra);
+      pb = f64x2.mul(pb, rrb);
+    }
+    const a = (f64x2.extract_lane(sa, 0) + f64x2.extract_lane(sa, 1)) * f64At(plan.scale, s);
+    const b = (f64x2.extract_lane(sb, 0) + f64x2.extract_lane(sb, 1)) * f64At(plan.scale, s + 1);
+    const d = address<f64>(data, s);
+    v128.store(d, f64x2.add(v128.load(d), lanes(a, b)));
+  }
+  if (s < to) {
+    const r = f64At(plan.ratio, s);
+    const rr = f64x2.splat(r * r);
+    let w = address<f64>(plan.whole, i32At(plan.first, s));
+    let p = lanes(1, r), sum = f64x2.splat(0);
+    for (let j = taps; j < taps_end; j += 16, w += 16) {
+      sum = f64x2.add(sum, f64x2.mul(f64x2.mul(v128.load(j), p), v128.load(w)));
+      p = f64x2.mul(p, rr);
+    }
+    const d = address<f64>(data, s);
+    const value = (f64x2.extract_lane(sum, 0) + f64x2.extract_lane(sum, 1)) * f64At(plan.scale, s);
+    store<f64>(d, load<f64>(d) + value);
+  }
+}
+
+/** The transpose of `blur`, then the strands of the given slot. */
+function spread<T>(plan: Plan, t: i32, slot: i32): void {
+  const over = plan.over, length = plan.strand_length;
+  const from = i32At(plan.entry_start, t), to = i32At(plan.entry_start, t + 1);
+  const taps = address<f64>(plan.taps, i32At(plan.tap_start, t));
+  const taps_end = address<f64>(plan.taps, i32At(plan.tap_start, t + 1));
+  const data = address<f64>(plan.data, i32At(plan.sample, t) - from);
+  memory.fill(plan.whole, 0, <usize> (over * length + 1) << 3);
+  for (let s = from; s < to; s++) {
+    const r = f64At(plan.ratio, s);
+    const rr = f64x2.splat(r * r);
+    const d = f64x2.splat(f64At(data, s) * f64At(plan.scale, s));
+    let w = address<f64>(plan.whole, i32At(plan.first, s));
+    let p = lanes(1, r);
+    for (let j = taps; j < taps_end; j += 16, w += 16) {
+      v128.store(w, f64x2.add(v128.load(w), f64x2.mul(f64x2.mul(v128.load(j), p), d)));
+      p = f64x2.mul(p, rr);
+    }
+  }
+  const block = slot * over * length;
+  for (let strand = 0; strand < over; strand++) {
+    let s = address<T>(plan.sum, block + strand * length);
+    let p = address<T>(plan.part, block + strand * length);
+    let w = plan.whole + (<usize> strand << 3);
+    const end = address<T>(s, length);
+    for (; s < end; s += sizeof<T>(), p += sizeof<T>(), w += <usize> over << 3) {
+      const here = load<f64>(w);
+      store<T>(s, <T> here);
+      store<T>(p, <T> (load<f64>(w + 8) - here));
+    }
+  }
+}
+
+@inline
+function strandOf<T>(plan: Plan, array: usize, slot: i32, l: i32): usize {
+  const k = slot * plan.pixels + l;
+  const strand = slot * plan.over + i32At(plan.strand, k);
+  return address<T>(array, strand * plan.strand_length + i32At(plan.at, k));
+}
+
+function gatherOne<T>(plan: Plan, lines: usize, slot: i32): void {
+  const n = plan.pixels;
+  for (let l = 0; l < n; l++) {
+    const p = v128.splat<T>(<T> f64At(plan.offset, slot * n + l));
+    let s = strandOf<T>(plan, plan.sum, slot, l), q = strandOf<T>(plan, plan.part, slot, l);
+    let g = address<T>(lines, l * plan.stride);
+    const end = address<T>(g, n);
+    for (; g < end; g += 16, s += 16, q += 16) {
+      const value = v128.add<T>(v128.load(s), v128.mul<T>(p, v128.load(q)));
+      v128.store(g, v128.add<T>(v128.load(g), value));
+    }
+  }
+}
+
+function gatherFour<T>(plan: Plan, lines: usize): void {
+  const n = plan.pixels;
+  const apart = plan.part - plan.sum;
+  for (let l = 0; l < n; l++) {
+    const pa = v128.splat<T>(<T> f64At(plan.offset, l));
+    const pb = v128.splat<T>(<T> f64At(plan.offset, n + l));
+    const pc = v128.splat<T>(<T> f64At(plan.offset, 2 * n + l));
+    const pd = v128.splat<T>(<T> f64At(plan.offset, 3 * n + l));
+    let g = address<T>(lines, l * plan.stride);
+    const end = address<T>(g, n);
+    let a = strandOf<T>(plan, plan.sum, 0, l), b = strandOf<T>(plan, plan.sum, 1, l);
+    let c = strandOf<T>(plan, plan.sum, 2, l), d = strandOf<T>(plan, plan.sum, 3, l);
+    for (; g < end; g += 16, a += 16, b += 16, c += 16, d += 16) {
+      let f = v128.load(g);
+      f = v128.add<T>(f, v128.add<T>(v128.load(a), v128.mul<T>(pa, v128.load(a + apart))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(b), v128.mul<T>(pb, v128.load(b + apart))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(c), v128.mul<T>(pc, v128.load(c + apart))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(d), v128.mul<T>(pd, v128.load(d + apart))));
+      v128.store(g, f);
+    }
+  }
+}
+
+function forward<T>(plan: Plan): void {
+  for (let t = 0; t < plan.instants; t++) {
+    deposit<T>(plan, t);
+    blur(plan, t);
+  }
+}
+
+/** Instants are grouped by the direction of their lines. */
+function adjoint<T>(plan: Plan): void {
+  for (let axis = 0; axis < 2; axis++) {
+    const lines = axis == 1 ? plan.columns : plan.rows;
+    let filled = 0;
+    for (let t = 0; t < plan.instants; t++) {
+      if (i32At(plan.axis, t) != axis) continue;
+      placeLines(plan, t, filled);
+      spread<T>(plan, t, filled);
+      filled++;
+      if (filled == GROUP) {
+        gatherFour<T>(plan, lines);
+        filled = 0;
+      }
+    }
+    for (let slot = 0; slot < filled; slot++) gatherOne<T>(plan, lines, slot);
+  }
+}
+
+export function forward64(plan: Plan): void {
+  forward<f64>(plan);
+}
+
+export function adjoint64(plan: Plan): void {
+  adjoint<f64>(plan);
+}
+
+export function forward32(plan: Plan): void {
+  forward<f32>(plan);
+}
+
+export function adjoint32(plan: Plan): void {
+  adjoint<f32>(plan);
+}
