@@ -1,10 +1,10 @@
-import { Matrix, QrDecomposition } from "ml-matrix";
 import { InputError } from "../errors.ts";
 import { type Bounds, readBounds } from "./bounds.ts";
 import type { DenseMatrix } from "./dense_matrix.ts";
 import { fitCovariance } from "./fit_covariance.ts";
 import { numericJacobian } from "./numeric_jacobian.ts";
-import { type ReducedModel, trustRegionStep } from "./trust_region_step.ts";
+import { reduceModel } from "./reduce_model.ts";
+import { trustRegionStep } from "./trust_region_step.ts";
 
 /** Result of {@linkcode minimise}. */
 export interface LeastSquaresFit {
@@ -86,21 +86,6 @@ function sumOfSquares(values: ArrayLike<number>): number {
   return sum;
 }
 
-// QR of [Jacobian | residuals]: its triangle holds R and, in the last column, Qᵀ·residuals.
-function reduce(jacobian: Float64Array, residuals: Float64Array, k: number): ReducedModel {
-  const rows = Math.max(residuals.length, k + 1);
-  const joined = Matrix.zeros(rows, k + 1);
-  for (let i = 0; i < residuals.length; i++) {
-    for (let j = 0; j < k; j++) joined.set(i, j, jacobian[i * k + j]!);
-    joined.set(i, k, residuals[i]!);
-  }
-  const whole = new QrDecomposition(joined).upperTriangularMatrix;
-  return {
-    triangle: whole.subMatrix(0, k - 1, 0, k - 1),
-    target: Float64Array.from({ length: k }, (_, i) => whole.get(i, k)),
-  };
-}
-
 function onBounds(at: Float64Array, bounds: Bounds): ("lower" | "upper" | null)[] {
   return Array.from(at, (x, j) => {
     if (x === bounds.lower[j]) return "lower";
@@ -167,7 +152,7 @@ export function minimise(
       bounds,
       central: options.differences === "central",
     });
-    return reduce(jacobian, values, k);
+    return reduceModel(jacobian, values, k);
   };
 
   const scale = new Float64Array(k);
