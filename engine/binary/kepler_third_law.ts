@@ -1,8 +1,8 @@
-import { DAY_S as DAY, SOLAR_MASS_PARAMETER_M3_S2, SOLAR_RADIUS_M } from "../constants.ts";
+import { DAY_S as DAY, GM_SUN_M3_S2, SOLAR_RADIUS_M } from "../constants.ts";
 import { InputError } from "../errors.ts";
 
 // Everything below is in km, s and solar masses.
-const SOLAR_PARAMETER = SOLAR_MASS_PARAMETER_M3_S2.value / 1e9;
+const SOLAR_PARAMETER = GM_SUN_M3_S2.value / 1e9;
 const SOLAR_RADIUS_KM = SOLAR_RADIUS_M.value / 1e3;
 const DAY_S = DAY.value;
 
