@@ -1,4 +1,4 @@
-import { type DiscShape, radialLight } from "./disc_shape.ts";
+import { type DiscShape, radialLight, shearMean } from "./disc_shape.ts";
 import { integrate } from "./quadrature.ts";
 
 /**
@@ -19,13 +19,8 @@ import { integrate } from "./quadrature.ts";
  */
 export function discTotal(disc: DiscShape): number {
   const { inner_over_outer, emissivity_index, shear = 0 } = disc;
-  const azimuthal = shear === 0 ? 2 * Math.PI : 8 * integrate(
-    (theta) => Math.hypot(1, shear * Math.sin(theta) * Math.cos(theta)),
-    [0, Math.PI / 4],
-  );
-  return azimuthal * radialLight([inner_over_outer, 1], emissivity_index);
+  return 2 * Math.PI * shearMean(shear) * radialLight([inner_over_outer, 1], emissivity_index);
 }
-
 /**
  * Profile of a Keplerian disc without any instrument, as a density of unit area: Smak 1969, Acta
  * Astr. 19, 155 and 1981, Acta Astr. 31, 395 (optically thin); Horne & Marsh 1986, MNRAS 218, 761

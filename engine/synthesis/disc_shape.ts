@@ -1,3 +1,5 @@
+import { integrate } from "./quadrature.ts";
+
 /** A Keplerian disc as a shape without units: radii in units of its outer radius. */
 export interface DiscShape {
   /** Inner over outer radius, in (0, 1). */
@@ -60,4 +62,32 @@ export function radialLight(
   const power = 2 - emissivity_index;
   if (Math.abs(power) < 1e-9) return Math.log(high / low);
   return (high ** power - low ** power) / power;
+}
+
+/**
+ * Mean over azimuth of the surface brightness of an optically thick disc, [1 + κ² sin²θ cos²θ]^½.
+ *
+ * @param shear κ.
+ * @returns Mean, 1 for κ = 0.
+ *
+ * @example
+ * ```ts
+ * import { shearMean } from "@millrace/millrace/synthesis";
+ * import { assertAlmostEquals } from "@std/assert";
+ *
+ * assertAlmostEquals(shearMean(0), 1, 1e-14);
+ * assertAlmostEquals(shearMean(100), 100 / Math.PI, 0.1); // |sin θ cos θ| has the mean 1/π
+ * ```
+ */
+export function shearMean(shear: number): number {
+  if (shear === 0) return 1;
+  const brightness = (theta: number) => Math.hypot(1, shear * Math.sin(theta) * Math.cos(theta));
+  // Even about 45 degrees; nearly a kink at 0 when κ is large, hence panels growing from there.
+  let sum = 0;
+  let low = 0;
+  for (let width = Math.PI / 4 / 2 ** 8; low < Math.PI / 4 - 1e-12; width = low) {
+    sum += integrate(brightness, [low, low + width], { points: 16, panels: 1 });
+    low += width;
+  }
+  return 4 * sum / Math.PI;
 }
