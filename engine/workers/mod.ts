@@ -1,2 +1,8 @@
-/** The workers room. @module */
+/**
+ * One pool of worker threads with the same interface as one thread. No science.
+ *
+ * @module
+ */
 export * from "./progress.ts";
+export * from "./run_tasks.ts";
+export type { TaskModule } from "./task_module.ts";
