@@ -59,7 +59,8 @@ export async function runTask({ kind, k }: Task, shared: Shared): Promise<unknow
       await new Promise((resolve) => setTimeout(resolve, 5000));
       return k;
     case "forever":
-      while (true) k++;
+      while (k >= 0) k++;
+      return k;
     case "nested": {
       const inner = await runTasks<Task, unknown, Shared>(
         [0, 1, 2].map((i) => ({ kind: "noise", k: 10 * k + i })),
