@@ -8,4 +8,9 @@ export interface SpectralLine {
   readonly air_angstrom: number;
   /** Where the wavelength comes from. */
   readonly source: string;
+  /**
+   * Shortest and longest component in vacuum, Å, where the line is a blend: the rest wavelength of
+   * a blend is a choice, uncertain by a good part of this span.
+   */
+  readonly span_angstrom?: readonly [low: number, high: number];
 }
