@@ -25,10 +25,42 @@ export interface Trail {
   readonly continuum: Float64Array;
   /** Error of the continuum's level relative to itself, P values. */
   readonly continuum_error: Float64Array;
-  /** Noise scale applied to the errors (measured over stated): 1 when none. */
+  /** Noise scale applied to the errors (measured over stated): 1 when none. With several groups, the root mean square over exposures. */
   readonly noise_scale: number;
+  /** What was measured of the noise, whether applied or not. */
+  readonly noise: TrailNoise;
   /** What a user should know. */
   readonly warnings: readonly Warning[];
+}
+
+/** The noise of one group of exposures, as the continuum windows show it. */
+export interface GroupNoise {
+  /** Index of the `[[exposures]]` group. */
+  readonly group: number;
+  /** False when the files gave no errors and they were estimated from the scatter. */
+  readonly errors_given: boolean;
+  /** Scatter about the fitted continuum over the stated error. */
+  readonly measured_scale: number;
+  /** One standard deviation of `measured_scale`. */
+  readonly measured_scale_error: number;
+  /** Scale applied to the errors of the group. */
+  readonly applied_scale: number;
+  /** Correlation of the scatter at lags of 1, 2, … pixels, as far as it was measured. */
+  readonly lag_correlation: readonly number[];
+  /** Samples used. */
+  readonly samples: number;
+}
+
+/** The noise of a trail. */
+export interface TrailNoise {
+  /** One entry a group, in order of group. */
+  readonly groups: readonly GroupNoise[];
+  /**
+   * 1 + 2 Σ of the significant lag correlations, weighted by samples: 1 for independent pixels. The
+   * number of independent samples is the number of pixels over this; errors of fitted quantities
+   * grow by its square root.
+   */
+  readonly correlation_length_pixels: number;
 }
 
 /** A trail on a uniform velocity grid: rows are exposures (or phase bins), columns velocities. */
@@ -49,4 +81,9 @@ export interface TrailGrid {
   readonly flux: Float64Array;
   /** One standard deviation; infinite where not covered. */
   readonly error: Float64Array;
+  /**
+   * Covariance of each bin with the next one in its row (they share pixels), R × C with stride C; 0
+   * in the last column and where either is not covered.
+   */
+  readonly covariance_next: Float64Array;
 }

@@ -1,0 +1,261 @@
+import { type Ephemeris, phaseError } from "../binary/mod.ts";
+import type { Warning } from "../errors.ts";
+import { median, quantile } from "../numerics/mod.ts";
+import type { SplitDate } from "../sky/mod.ts";
+import { type MeanProfile, meanProfile } from "./mean_profile.ts";
+import { type PairNoise, pairNoise } from "./noise_pairs.ts";
+import { type PhaseCoverage, phaseCoverage } from "./phase_coverage.ts";
+import { measureProfile, type ProfileMeasures } from "./profile_measures.ts";
+import { FWHM_OVER_SIGMA } from "./profile_width.ts";
+import type { Trail } from "./trail.ts";
+
+/** Lowest, median and highest of a quantity over exposures. */
+export interface Spread {
+  /** Lowest. */
+  readonly low: number;
+  /** Median. */
+  readonly median: number;
+  /** Highest. */
+  readonly high: number;
+}
+
+/** Options of {@linkcode describeTrail}. */
+export interface DescribeOptions {
+  /** The ephemeris on which the trail was folded. */
+  readonly ephemeris: Ephemeris;
+  /** Any instant within the data, BJD(TDB): where the error of the phase is told. */
+  readonly epoch: SplitDate;
+  /**
+   * Velocity of the features that matter, km/s.
+   * @default half of the full width of the mean profile near zero, at most the reach
+   */
+  readonly velocity_kms?: number;
+  /**
+   * Systemic velocity, km/s.
+   * @default 0
+   */
+  readonly systemic_kms?: number;
+}
+
+/** What an observer wants to know of a trail before inverting it. */
+export interface TrailDescription {
+  /** Name of the line. */
+  readonly line: string;
+  /** Rest wavelength, vacuum, Å. */
+  readonly rest_vacuum_angstrom: number;
+  /** The same in air, Å. */
+  readonly rest_air_angstrom: number;
+  /** Number of exposures. */
+  readonly exposures: number;
+  /** Time from the first to the last mid-exposure, orbits. */
+  readonly span_orbits: number;
+  /** Coverage of the orbit. */
+  readonly coverage: PhaseCoverage;
+  /** Signal to noise of the continuum in a resolution element. */
+  readonly signal_to_noise: Spread;
+  /** Full width at half maximum of the instrumental profile, km/s: the resolution element. */
+  readonly resolution_kms: Spread;
+  /** Native pixel, km/s. */
+  readonly pixel_kms: number;
+  /** Velocity for which smear and number of exposures are told, km/s. */
+  readonly velocity_kms: number;
+  /** How far a feature of that speed moves within an exposure, 2π × velocity × width in phase, km/s. */
+  readonly smear_kms: Spread;
+  /** Exposures per half orbit for which such a feature moves by no more than a resolution element from one to the next. */
+  readonly exposures_needed_per_half_orbit: number;
+  /** Exposures there are per half orbit, all orbits together. */
+  readonly exposures_per_half_orbit: number;
+  /** Standard deviation of the phase from the ephemeris at the epoch, cycles. */
+  readonly phase_error: number;
+  /** How far that moves a feature of that speed on the map, km/s. */
+  readonly phase_error_kms: number;
+  /** Mean profile. */
+  readonly mean: MeanProfile;
+  /** What is measured on it. */
+  readonly measures: ProfileMeasures;
+  /** Whether the line is net in emission, net in absorption, or emission with a core below the continuum. */
+  readonly net: "emission" | "absorption" | "emission with absorption core";
+  /** Variation of the continuum from exposure to exposure: standard deviation over mean. */
+  readonly continuum_variation: number;
+  /** Semi-amplitude of the continuum with the orbital phase, over its mean: what dividing imprints on the line. */
+  readonly continuum_orbital_amplitude: number;
+  /** Noise within the line from repeats and mirrored pairs. */
+  readonly pairs: { readonly repeat: PairNoise | null; readonly mirror: PairNoise | null };
+  /** What a user should know. */
+  readonly warnings: readonly Warning[];
+}
+
+function spread(values: readonly number[]): Spread {
+  return { low: quantile(values, 0), median: median(values), high: quantile(values, 1) };
+}
+
+// Errors at the ends of the reach, where the line is faint, are those of the continuum.
+function continuumNoise(trail: Trail, row: number): number {
+  const { start, velocity_kms } = trail.sampling;
+  const [from, to] = [start[row]!, start[row + 1]!];
+  const reach = Math.max(...[...velocity_kms.subarray(from, to)].map(Math.abs));
+  const errors: number[] = [];
+  for (let k = from; k < to; k++) {
+    if (Math.abs(velocity_kms[k]!) > 0.8 * reach && Number.isFinite(trail.error[k]!)) {
+      errors.push(trail.error[k]!);
+    }
+  }
+  return errors.length === 0 ? NaN : median(errors);
+}
+
+function orbitalAmplitude(values: Float64Array, phase: Float64Array): number {
+  const mean = values.reduce((a, b) => a + b, 0) / values.length;
+  let [c, s] = [0, 0];
+  values.forEach((v, i) => {
+    c += (v / mean - 1) * Math.cos(2 * Math.PI * phase[i]!);
+    s += (v / mean - 1) * Math.sin(2 * Math.PI * phase[i]!);
+  });
+  return 2 * Math.hypot(c, s) / values.length;
+}
+
+/**
+ * Describes a trail as an observer checks it: coverage of the orbit, signal to noise, smear and
+ * resolution against what a map needs, error of the phase, shape of the line, noise.
+ *
+ * Signal to noise is that of the continuum in a resolution element, whose width stands beside it.
+ * The number of exposures needed is π V / FWHM per half orbit: then a feature of speed V moves by at
+ * most one resolution element from one exposure to the next.
+ *
+ * @param trail The trail.
+ * @param options Ephemeris and epoch; velocity of interest; systemic velocity.
+ * @returns The description.
+ *
+ * @example
+ * ```ts
+ * import { describeTrail } from "@millrace/millrace/trail";
+ * import { assertEquals } from "@std/assert";
+ *
+ * assertEquals(typeof describeTrail, "function");
+ * ```
+ */
+export function describeTrail(trail: Trail, options: DescribeOptions): TrailDescription {
+  const { ephemeris, epoch, systemic_kms = 0 } = options;
+  const { line, sampling, grid, noise } = trail;
+  const rows = Array.from({ length: sampling.count }, (_, i) => i);
+  const mean = meanProfile(trail);
+  const resolution_kms = spread(rows.map((i) => FWHM_OVER_SIGMA * sampling.profile_sigma_kms[i]!));
+  const flux = mean.flux.map((f) => f);
+  const total = flux.reduce((sum, f) => sum + (Number.isFinite(f) ? f : 0), 0);
+  const lowest = Math.min(...[...flux].filter((f) => Number.isFinite(f)));
+  const deepest = [...flux].findIndex((f) => f === lowest);
+  const net = total < 0
+    ? "absorption"
+    : lowest < -5 * mean.error[deepest]! && lowest < -0.02
+    ? "emission with absorption core"
+    : "emission";
+  const upright = { ...mean, flux: total < 0 ? flux.map((f) => -f) : flux };
+  const measures = measureProfile(upright, { smooth_kms: resolution_kms.median });
+  const reach = -grid.first_kms;
+  const velocity_kms = options.velocity_kms ??
+    (Number.isFinite(measures.full_width_kms)
+      ? Math.min(reach, 0.5 * measures.full_width_kms)
+      : 0.5 * reach);
+
+  const pixels = rows.map((i) =>
+    median(sampling.pixel_kms.subarray(sampling.start[i]!, sampling.start[i + 1]!))
+  );
+  const signal_to_noise = spread(
+    rows.map((i) => {
+      const elements = Math.max(1, FWHM_OVER_SIGMA * sampling.profile_sigma_kms[i]! / pixels[i]!);
+      return Math.sqrt(elements / noise.correlation_length_pixels) / continuumNoise(trail, i);
+    }).filter((value) => Number.isFinite(value)),
+  );
+  const smear_kms = spread(rows.map((i) => 2 * Math.PI * velocity_kms * sampling.phase_width[i]!));
+  const coverage = phaseCoverage(sampling);
+  const span_orbits = sampling.count === 0
+    ? 0
+    : sampling.cycle.at(-1)! + sampling.phase.at(-1)! - sampling.cycle[0]! - sampling.phase[0]!;
+  const needed = Math.ceil(Math.PI * velocity_kms / resolution_kms.median);
+  const sigma_phase = phaseError(ephemeris, epoch);
+  const level = trail.continuum.reduce((a, b) => a + b, 0) / sampling.count;
+  const variance = trail.continuum.reduce((sum, c) => sum + (c - level) ** 2, 0) / sampling.count;
+
+  const warnings: Warning[] = [];
+  const warn = (code: string, text: string) => warnings.push({ code, text, line: line.name });
+  if (coverage.largest_half_gap > 0.08) {
+    warn(
+      "phase-gap",
+      `no exposure covers ${
+        (100 * (1 - coverage.covered_half_fraction)).toFixed(0)
+      } % of the half orbit, ${
+        coverage.largest_half_gap.toFixed(2)
+      } cycles at a stretch: a map will show streaks`,
+    );
+  }
+  if (smear_kms.median > 1.5 * resolution_kms.median) {
+    warn(
+      "smeared",
+      `a feature at ${velocity_kms.toFixed(0)} km/s moves by ${
+        smear_kms.median.toFixed(0)
+      } km/s within an exposure, ${
+        (smear_kms.median / resolution_kms.median).toFixed(1)
+      } resolution elements: shorter exposures would show more`,
+    );
+  }
+  if (sampling.count < 0.7 * needed) {
+    warn(
+      "few-exposures",
+      `${sampling.count} exposures are fewer than the ${needed} per half orbit that features at ${
+        velocity_kms.toFixed(0)
+      } km/s need at this resolution`,
+    );
+  }
+  const phase_error_kms = 2 * Math.PI * velocity_kms * sigma_phase;
+  if (phase_error_kms > resolution_kms.median) {
+    warn(
+      "phase-uncertain",
+      `the ephemeris leaves the phase uncertain by ${
+        sigma_phase.toFixed(3)
+      } cycles: the map may be turned by ${(360 * sigma_phase).toFixed(0)} deg, ${
+        phase_error_kms.toFixed(0)
+      } km/s at ${velocity_kms.toFixed(0)} km/s`,
+    );
+  }
+  if (ephemeris.zero_marks === "emission-crossing") {
+    warn(
+      "zero-not-donor",
+      "the zero of phase is not the donor's conjunction: maps are rotated by an unknown angle and no structures are named",
+    );
+  }
+  if (net === "absorption") {
+    warn(
+      "line-in-absorption",
+      "the line is net in absorption: it is inverted with its sign turned, which is right only where it is nowhere above the continuum",
+    );
+  }
+  if (net === "emission with absorption core") {
+    warn(
+      "absorption-core",
+      "the mean profile falls below the continuum: entropy maps cannot be negative and will put a hole or a ring there; back-projection and signed total variation show it",
+    );
+  }
+  return {
+    line: line.name,
+    rest_vacuum_angstrom: line.vacuum_angstrom,
+    rest_air_angstrom: line.air_angstrom,
+    exposures: sampling.count,
+    span_orbits,
+    coverage,
+    signal_to_noise,
+    resolution_kms,
+    pixel_kms: median(pixels),
+    velocity_kms,
+    smear_kms,
+    exposures_needed_per_half_orbit: needed,
+    exposures_per_half_orbit: sampling.count / Math.max(1, 2 * span_orbits),
+    phase_error: sigma_phase,
+    phase_error_kms,
+    mean,
+    measures,
+    net,
+    continuum_variation: Math.sqrt(variance) / level,
+    continuum_orbital_amplitude: orbitalAmplitude(trail.continuum, sampling.phase),
+    pairs: pairNoise(trail, { systemic_kms }),
+    warnings,
+  };
+}
