@@ -1,5 +1,5 @@
-import { readColumnTexts, readScaling } from "./binary_table.ts";
 import type { ColumnHead, FitsColumn } from "./column.ts";
+import { readColumnTexts, readScaling } from "./column_texts.ts";
 import type { Scaling } from "./decode_numbers.ts";
 import { fitsError } from "./fits_error.ts";
 import type { FitsHeader } from "./header.ts";

@@ -4,14 +4,25 @@ import { CARD } from "./parse_header.ts";
 
 const action = "write FITS file";
 
+const GREEK = [
+  "alpha beta gamma delta epsilon zeta eta theta iota kappa lambda mu",
+  "nu xi omicron pi rho sigma sigma tau upsilon phi chi psi omega",
+].join(" ").split(" ");
+
+function spellGreek(letter: string): string {
+  const name = GREEK[letter.toLowerCase().charCodeAt(0) - 0x3b1] ?? "?";
+  return letter === letter.toLowerCase() ? name : name.charAt(0).toUpperCase() + name.slice(1);
+}
+
 /**
  * Brings a text to printable ASCII, the only letters of FITS.
  *
  * @param text The text.
- * @returns The text without accents, with question marks for what has no ASCII letter.
+ * @returns The text without accents, Greek letters spelt out, with question marks for what is left.
  */
 export function toAscii(text: string): string {
   return text.normalize("NFKD").replaceAll(/\p{M}/gu, "").replaceAll(/\s/gu, " ")
+    .replaceAll(/[\u2010-\u2015\u2212]/gu, "-").replaceAll(/[\u0391-\u03c9]/gu, spellGreek)
     .replaceAll(/[^ -~]/gu, "?");
 }
 
@@ -29,18 +40,16 @@ function formatNumber(value: number, keyword: string): string {
       rule: "a number in a header must be finite",
       value: String(value),
       key: keyword,
-      remedy: "leave the value out (null)",
+      remedy: "leave the card out",
     });
   }
   return Number.isSafeInteger(value) && !Object.is(value, -0) ? String(value) : formatReal(value);
 }
 
-function formatValue({ keyword, value }: CardSpec): string {
-  if (value === undefined || value === null) return "";
+function formatValue(value: Exclude<CardSpec["value"], string>, keyword: string): string {
   if (typeof value === "boolean") return value ? "T" : "F";
   if (typeof value === "bigint") return String(value);
   if (typeof value === "number") return formatNumber(value, keyword);
-  if (typeof value === "string") throw new TypeError("strings are written apart");
   return `(${formatNumber(value.re, keyword)}, ${formatNumber(value.im, keyword)})`;
 }
 
@@ -101,7 +110,7 @@ export function encodeCard(card: CardSpec): string[] {
   const keyword = card.keyword.toUpperCase();
   const comment = toAscii(card.comment ?? "").trim();
   if (keyword === "COMMENT" || keyword === "HISTORY") {
-    return encodeCommentary(keyword, String(card.value ?? ""));
+    return encodeCommentary(keyword, String(card.value));
   }
   const short = /^[A-Z0-9_-]{1,8}$/.test(keyword);
   if (!short && !/^[A-Z0-9_-]+(?: [A-Z0-9_-]+)*$/.test(keyword) || keyword.length > 40) {
@@ -114,6 +123,6 @@ export function encodeCard(card: CardSpec): string[] {
   }
   const prefix = short ? `${keyword.padEnd(8)}= ` : `HIERARCH ${keyword} = `;
   if (typeof card.value === "string") return encodeString(prefix, card.value, comment);
-  const value = formatValue(card);
+  const value = formatValue(card.value, keyword);
   return [finish(prefix + (short ? value.padStart(20) : value), comment)];
 }

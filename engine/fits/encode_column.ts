@@ -20,6 +20,7 @@ export interface EncodedColumn {
 interface Encoded {
   readonly bytes: Uint8Array;
   readonly elements: number;
+  readonly element_bytes: number;
   readonly form: (width: number) => string;
   readonly dim: readonly number[];
   readonly cards: readonly CardSpec[];
@@ -28,14 +29,15 @@ interface Encoded {
 function encodeTexts(data: readonly string[]): Encoded {
   const texts = data.map((text) => toAscii(text).trimEnd());
   const length = texts.reduce((most, text) => Math.max(most, text.length), 1);
-  const bytes = new TextEncoder().encode(texts.map((text) => text.padEnd(length)).join(""));
+  const bytes = new TextEncoder().encode(texts.map((text) => text.padEnd(length, "\0")).join(""));
   const form = (width: number) => `${width * length}A`;
-  return { bytes, elements: texts.length, form, dim: [length], cards: [] };
+  return { bytes, elements: texts.length, element_bytes: length, form, dim: [length], cards: [] };
 }
 
 function encodeLogicals(data: readonly (boolean | null)[]): Encoded {
   const bytes = Uint8Array.from(data, (value) => value === null ? 0 : value ? 0x54 : 0x46);
-  return { bytes, elements: data.length, form: (width) => `${width}L`, dim: [], cards: [] };
+  const form = (width: number) => `${width}L`;
+  return { bytes, elements: data.length, element_bytes: 1, form, dim: [], cards: [] };
 }
 
 function encodeReals(column: ColumnSpec, data: FitsNumbers, number: number): Encoded {
@@ -55,8 +57,10 @@ function encodeReals(column: ColumnSpec, data: FitsNumbers, number: number): Enc
     cards.push({ keyword: `TNULL${number}`, value });
   }
   const type = complex ? (letter === "E" ? "C" : "M") : letter;
-  const elements = complex ? data.length / 2 : data.length;
-  return { bytes, elements, form: (width) => `${width}${type}`, dim: [], cards };
+  const parts = complex ? 2 : 1;
+  const elements = data.length / parts;
+  const element_bytes = data.BYTES_PER_ELEMENT * parts;
+  return { bytes, elements, element_bytes, form: (width) => `${width}${type}`, dim: [], cards };
 }
 
 function encodeData(column: ColumnSpec, number: number): Encoded {
@@ -77,7 +81,7 @@ function encodeData(column: ColumnSpec, number: number): Encoded {
 export function encodeColumn(column: ColumnSpec, number: number): EncodedColumn {
   const { name, shape = [], unit, display, description } = column;
   const width = shape.reduce((product, length) => product * length, 1);
-  const { bytes, elements, form, dim, cards } = encodeData(column, number);
+  const { bytes, elements, element_bytes, form, dim, cards } = encodeData(column, number);
   const rows = elements / width;
   if (!Number.isInteger(rows) || !(width > 0)) {
     throw new InputError({
@@ -94,7 +98,7 @@ export function encodeColumn(column: ColumnSpec, number: number): EncodedColumn 
   return {
     bytes,
     rows,
-    cell: rows === 0 ? 0 : bytes.length / rows,
+    cell: element_bytes * width,
     cards: [
       {
         keyword: `TTYPE${number}`,

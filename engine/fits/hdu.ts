@@ -1,8 +1,10 @@
 import { closestString } from "@std/text";
 import { decodeAsciiColumn, readAsciiColumns } from "./ascii_table.ts";
-import { decodeBinaryColumn, readBinaryColumns } from "./binary_table.ts";
-import { readScaling } from "./binary_table.ts";
-import { onesComplementSum } from "./checksum.ts";
+import type { AsciiColumn } from "./ascii_table.ts";
+import { readBinaryColumns } from "./binary_columns.ts";
+import type { BinaryColumn } from "./binary_columns.ts";
+import { decodeBinaryColumn } from "./binary_table.ts";
+import { readScaling } from "./column_texts.ts";
 import type { FitsChecksums } from "./checksum.ts";
 import type { ColumnHead, FitsColumn } from "./column.ts";
 import { decodeNumbers } from "./decode_numbers.ts";
@@ -12,6 +14,7 @@ import type { FitsHeader } from "./header.ts";
 import { checkDecodedSize } from "./source.ts";
 import type { Source } from "./source.ts";
 import type { HduKind, Structure } from "./structure.ts";
+import { verifyChecksums } from "./verify_checksums.ts";
 import { toNumbers } from "./values.ts";
 import type { FitsNumbers, FitsValues } from "./values.ts";
 
@@ -110,6 +113,7 @@ export class Hdu {
   readonly #file: Uint8Array;
   readonly #source: Source;
   readonly #structure: Structure;
+  #columns: readonly (BinaryColumn | AsciiColumn)[] | undefined;
 
   /**
    * Made by {@linkcode parseFits}.
@@ -157,9 +161,7 @@ export class Hdu {
    * @throws {InputError} If a column's format is wrong.
    */
   get columns(): readonly ColumnHead[] {
-    if (this.kind !== "table") return [];
-    const read = this.#structure.extension === "TABLE" ? readAsciiColumns : readBinaryColumns;
-    return read(this.header, this.#source).map(({ head }) => head);
+    return this.kind === "table" ? this.#layout().map(({ head }) => head) : [];
   }
 
   /**
@@ -203,14 +205,11 @@ export class Hdu {
    */
   column(key: string | number): FitsColumn {
     this.#require("table");
-    const ascii = this.#structure.extension === "TABLE";
+    const found = this.#find(this.#layout(), key);
     const { header } = this;
-    if (ascii) {
-      const found = this.#find(readAsciiColumns(header, this.#source), key);
-      return decodeAsciiColumn(header, this.#source, found);
-    }
-    const found = this.#find(readBinaryColumns(header, this.#source), key);
-    return decodeBinaryColumn(header, this.#source, found);
+    return "form" in found
+      ? decodeBinaryColumn(header, this.#source, found)
+      : decodeAsciiColumn(header, this.#source, found);
   }
 
   /**
@@ -267,22 +266,13 @@ export class Hdu {
    * @returns Whether each agrees; null where the header has none.
    */
   checksums(): FitsChecksums {
-    const { header } = this;
-    const wanted = header.card("DATASUM")?.value;
-    const given = header.card("CHECKSUM")?.value;
-    const has = (value: unknown) => value !== undefined && value !== null && value !== "";
-    const hasData = has(wanted);
-    const hasHdu = has(given);
-    if (!hasData && !hasHdu) return { data: null, hdu: null };
-    const end = this.data_offset + Math.ceil(this.data_bytes / 2880) * 2880;
-    const sum = onesComplementSum(this.#file.subarray(this.data_offset, end));
-    const whole = hasHdu
-      ? onesComplementSum(this.#file.subarray(this.offset, this.data_offset), sum)
-      : 0;
-    return {
-      data: hasData ? Number(wanted) === sum : null,
-      hdu: hasHdu ? whole === 0xffffffff || whole === 0 : null,
-    };
+    const { header, offset, data_offset, data_bytes } = this;
+    return verifyChecksums(this.#file, { header, offset, data_offset, data_bytes });
+  }
+
+  #layout(): readonly (BinaryColumn | AsciiColumn)[] {
+    const read = this.#structure.extension === "TABLE" ? readAsciiColumns : readBinaryColumns;
+    return this.#columns ??= read(this.header, this.#source);
   }
 
   #require(kind: "image" | "table"): void {

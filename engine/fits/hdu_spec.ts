@@ -9,11 +9,11 @@ export interface CardSpec {
    */
   readonly keyword: string;
   /**
-   * Value; null or none for a keyword without value; for COMMENT and HISTORY the text. A string too
-   * long for one card is continued on the next. Letters outside ASCII lose their accents or become
-   * question marks, since FITS knows only ASCII.
+   * Value, or the text of COMMENT and HISTORY. A string too long for one card is continued on the
+   * next. Since FITS knows only ASCII, other letters lose their accents, Greek ones are spelt out,
+   * and what is left becomes a question mark. What has no value gets no card.
    */
-  readonly value?: string | number | bigint | boolean | FitsComplex | null;
+  readonly value: string | number | bigint | boolean | FitsComplex;
   /** Comment, cut where the card ends. */
   readonly comment?: string;
 }

@@ -8,6 +8,7 @@ export * from "./card.ts";
 export * from "./checksum.ts";
 export * from "./column.ts";
 export * from "./encode_fits.ts";
+export * from "./find_hdu.ts";
 export * from "./header.ts";
 export * from "./hdu.ts";
 export * from "./hdu_spec.ts";

@@ -49,7 +49,8 @@ function parseString(field: string): CardField {
   for (;;) {
     const quote = field.indexOf("'", at);
     if (quote < 0) {
-      return { value: null, text: field, comment: "", problem: "its quote is not closed" };
+      const text = field.trimEnd();
+      return { value: null, text, comment: "", problem: "its quote is not closed" };
     }
     value += field.slice(at, quote);
     at = quote + 1;
