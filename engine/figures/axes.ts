@@ -115,14 +115,20 @@ export interface Tick {
 export function axisTicks(axis: Axis): Tick[] {
   const { range, ticks = 5, format } = axis;
   const scale = scaleLinear().domain([...range]);
-  const values = typeof ticks === "number" ? scale.ticks(ticks) : [...ticks];
+  const [low, high] = [Math.min(...range), Math.max(...range)];
+  const inside = (value: number) => value >= low && value <= high;
+  const values = typeof ticks === "number" ? scale.ticks(ticks) : ticks.filter(inside);
   const whole = values.every(Number.isInteger);
   const count = typeof ticks === "number" ? ticks : values.length;
   // Without "d" whole numbers would get thousands commas.
-  const write = format === null
-    ? () => ""
-    : format ?? (whole ? scale.tickFormat(count, "d") : scale.tickFormat(count, undefined));
+  const chosen = whole ? scale.tickFormat(count, "d") : scale.tickFormat(count, undefined);
+  const write = format === null ? () => "" : format ?? (typeof ticks === "number" ? chosen : exact);
   return values.map((value) => ({ value, text: write(value) }));
+}
+
+/** Every digit of a value that was asked for, with a true minus sign. */
+function exact(value: number): string {
+  return String(Number(value.toPrecision(6))).replace("-", "−");
 }
 
 const TICK_LENGTH = 3;

@@ -95,7 +95,7 @@ function drawPath(document: Document, item: PathItem): void {
     document.strokeColor(item.stroke, item.stroke_opacity ?? 1);
     document.lineWidth(item.stroke_pt ?? 0.5).lineJoin("round").lineCap(item.cap ?? "butt");
     // The types know one length; the library takes a pattern.
-    if (item.dash_pt) document.dash(item.dash_pt as unknown as number, {});
+    if (item.dash_pt?.length) document.dash(item.dash_pt as unknown as number, {});
   }
   if (item.fill !== undefined && item.stroke !== undefined) document.fillAndStroke();
   else if (item.fill !== undefined) document.fill();

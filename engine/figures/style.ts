@@ -18,3 +18,6 @@ export const NOTE_PT = 7;
 export const HAIRLINE_PT = 0.5;
 /** Curves, pt. */
 export const CURVE_PT = 0.9;
+
+/** Colours of series that stand side by side: apart in lightness too, so that grey keeps them apart. */
+export const SERIES = [INK, ACCENT, "#3f86bd", "#8a7a2f"] as const;

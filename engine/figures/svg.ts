@@ -92,7 +92,7 @@ function drawPath(item: PathItem): string {
       paint += ` stroke-opacity="${trim(item.stroke_opacity)}"`;
     }
     if (item.cap === "round") paint += ` stroke-linecap="round"`;
-    if (item.dash_pt) paint += ` stroke-dasharray="${item.dash_pt.map(trim).join(" ")}"`;
+    if (item.dash_pt?.length) paint += ` stroke-dasharray="${item.dash_pt.map(trim).join(" ")}"`;
   }
   return `<path d="${item.d}"${paint}/>`;
 }

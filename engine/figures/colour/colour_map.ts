@@ -25,13 +25,14 @@ interface Curve {
   readonly b: readonly number[];
 }
 
-// Curves through CIE Lab. Lightness is even along each, so that a map reads the same in grey; the
+// Curves through CIE Lab. Lightness is even along ink and grey and falls all along tide, so that they
+// read the same in grey; the
 // hues keep to what the three kinds of colour blindness leave apart (green-blue, yellow-blue).
 const curves = {
   /** Paper to ink: more light in the line is darker on the page. */
   ink: { lightness: [98, 10], a: [0, -10, -14, -6, 14, 12], b: [2, 4, -12, -34, -36, -14] },
-  /** For signed values: below zero pale yellow, zero mid-grey, above zero deep blue. */
-  tide: { lightness: [94, 24], a: [-1, 0, 0, 8, 14], b: [40, 24, 0, -26, -44] },
+  /** For signed values: below zero pale yellow, zero light grey, above zero deep blue. */
+  tide: { lightness: [97, 69, 27], a: [-4, 0, 0, 6, 16], b: [50, 25, 0, -25, -46] },
   /** For signed values on a screen: zero is white. In grey the two signs look the same. */
   balance: {
     lightness: [32, 97, 32],

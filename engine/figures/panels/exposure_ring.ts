@@ -3,7 +3,7 @@ import type { Box, Item } from "../display_list.ts";
 import { linePath } from "../display_list.ts";
 import { labelRuns } from "../runs.ts";
 import { INK, NOTE_PT, QUIET } from "../style.ts";
-import type { MapShape } from "./map_place.ts";
+import type { WindowShape } from "./map_window.ts";
 
 const GAP_PT = 2;
 const TICK_PT = 5;
@@ -66,7 +66,7 @@ export interface RingOptions {
   /** The map's window, pt. */
   readonly window: Box;
   /** Shape of the window. @default {"round"} */
-  readonly shape?: MapShape;
+  readonly shape?: WindowShape;
 }
 
 function phaseLabel(phase: number, [x, y]: readonly [number, number]): Item {

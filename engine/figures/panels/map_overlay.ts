@@ -5,7 +5,7 @@ import { ACCENT, CURVE_PT, INK, NOTE_PT, PAPER } from "../style.ts";
 import type { BinaryMarks, VelocityCurve } from "./binary_marks.ts";
 
 /** A compact feature to be marked on a map. */
-export interface MapFeature {
+export interface MarkedFeature {
   /** Place, km/s. */
   readonly vx_kms: number;
   /** Place, km/s. */
@@ -57,10 +57,10 @@ function label(
  * @example
  * ```ts
  * import { binaryFrom } from "@millrace/millrace/binary";
- * import { binaryMarks, drawBinaryMarks, mapPlace } from "@millrace/millrace/figures";
+ * import { binaryMarks, drawBinaryMarks, mapWindow } from "@millrace/millrace/figures";
  * import { assert } from "@std/assert";
  *
- * const place = mapPlace({ pixels: 101, half_width_kms: 1000 }, { x: 0, y: 0, width: 200, height: 200 });
+ * const place = mapWindow({ pixels: 101, half_width_kms: 1000 }, { x: 0, y: 0, width: 200, height: 200 });
  * const marks = binaryMarks(binaryFrom({ k_accretor_kms: 80, k_donor_kms: 320 }));
  * const texts = drawBinaryMarks(marks, place).flatMap((item) => item.kind === "text" ? item.runs : []);
  * assert(texts.some((run) => run.text === "stream"));
@@ -132,15 +132,15 @@ function cross(x: number, y: number, r: number): string {
  *
  * @example
  * ```ts
- * import { drawFeatures, mapPlace } from "@millrace/millrace/figures";
+ * import { drawFeatures, mapWindow } from "@millrace/millrace/figures";
  * import { assertEquals } from "@std/assert";
  *
- * const place = mapPlace({ pixels: 101, half_width_kms: 1000 }, { x: 0, y: 0, width: 200, height: 200 });
+ * const place = mapWindow({ pixels: 101, half_width_kms: 1000 }, { x: 0, y: 0, width: 200, height: 200 });
  * const items = drawFeatures([{ vx_kms: -300, vy_kms: 400 }], place);
  * assertEquals(items.map((item) => item.kind), ["path", "path", "text"]);
  * ```
  */
-export function drawFeatures(features: readonly MapFeature[], place: PlotPlace): Item[] {
+export function drawFeatures(features: readonly MarkedFeature[], place: PlotPlace): Item[] {
   const scale = Math.abs(place.x(1) - place.x(0));
   return features.flatMap((feature, i) => {
     const x = place.x(feature.vx_kms);
@@ -158,7 +158,7 @@ export function drawFeatures(features: readonly MapFeature[], place: PlotPlace):
 }
 
 /** Axes of the one-sigma ellipse, km/s, and the angle of the larger from +Vx towards +Vy. */
-function errorAxes(feature: MapFeature): { major: number; minor: number; angle_deg: number } {
+function errorAxes(feature: MarkedFeature): { major: number; minor: number; angle_deg: number } {
   const sx = feature.vx_error_kms ?? 0;
   const sy = feature.vy_error_kms ?? 0;
   const cov = (feature.correlation ?? 0) * sx * sy;

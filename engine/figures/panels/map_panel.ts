@@ -6,8 +6,8 @@ import { type Box, boxPath, ellipsePath, type Group, type Item } from "../displa
 import { HAIRLINE_PT, QUIET } from "../style.ts";
 import type { BinaryMarks } from "./binary_marks.ts";
 import { exposureRing } from "./exposure_ring.ts";
-import { drawBinaryMarks, drawFeatures, type MapFeature } from "./map_overlay.ts";
-import { mapPlace, type MapShape, RING_PT } from "./map_place.ts";
+import { drawBinaryMarks, drawFeatures, type MarkedFeature } from "./map_overlay.ts";
+import { mapWindow, RING_PT, type WindowShape } from "./map_window.ts";
 import { KMS_LABEL } from "./trail_panel.ts";
 
 /** How a velocity map is drawn. */
@@ -17,13 +17,13 @@ export interface MapPanelOptions {
   /** Colours and limits. */
   readonly scale: ColourScale;
   /** Shape of the window; the round one leaves out velocities beyond the map's half-width. @default {"round"} */
-  readonly shape?: MapShape;
+  readonly shape?: WindowShape;
   /** Exposures for the ring; none when absent. */
   readonly sampling?: Pick<Sampling, "count" | "phase" | "phase_width">;
   /** Parts of the binary; null where it is not known. @default {null} */
   readonly marks?: BinaryMarks | null;
   /** Features found. @default {[]} */
-  readonly features?: readonly MapFeature[];
+  readonly features?: readonly MarkedFeature[];
   /** Items drawn over the map in its window: contours, rims, bands. @default {[]} */
   readonly overlay?: readonly Item[];
   /** False to leave out the label and values of the Vy axis. @default {true} */
@@ -52,7 +52,7 @@ export interface MapPanelOptions {
 export function mapPanel(map: VelocityMap, options: MapPanelOptions): Group {
   const { frame, scale, shape = "round", sampling, marks = null, features = [] } = options;
   const { overlay = [], y_labels = true, name = "map" } = options;
-  const place = mapPlace(map, frame);
+  const place = mapWindow(map, frame);
   const { window, reach_kms } = place;
   const centre = [window.x + window.width / 2, window.y + window.height / 2] as const;
   const outline = shape === "round"

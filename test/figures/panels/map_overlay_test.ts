@@ -5,11 +5,11 @@ import {
   drawFeatures,
   exposureRing,
   type Item,
-  mapPlace,
+  mapWindow,
 } from "../../../engine/figures/mod.ts";
 
 const frame = { x: 0, y: 0, width: 234, height: 234 };
-const place = mapPlace({ pixels: 101, half_width_kms: 1000 }, frame);
+const place = mapWindow({ pixels: 101, half_width_kms: 1000 }, frame);
 
 /** Extent of a path's points. */
 function extent(item: Item | undefined) {
@@ -20,7 +20,7 @@ function extent(item: Item | undefined) {
   return { width: Math.max(...x) - Math.min(...x), height: Math.max(...y) - Math.min(...y) };
 }
 
-Deno.test("mapPlace() puts pixel edges, not centres, at the window's edges", () => {
+Deno.test("mapWindow() puts pixel edges, not centres, at the window's edges", () => {
   assertEquals(place.reach_kms, 1010);
   assertAlmostEquals(place.x(-1010), place.window.x, 1e-9);
   assertAlmostEquals(place.y(1010), place.window.y, 1e-9);

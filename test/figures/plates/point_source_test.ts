@@ -1,12 +1,10 @@
 import { assertAlmostEquals } from "@std/assert";
 import {
   type Box,
-  mapPlace,
+  type Item,
   pdfBytes,
   type Picture,
   pngBytes,
-  RING_PT,
-  standardLayout,
   standardPlate,
   svgText,
 } from "../../../engine/figures/mod.ts";
@@ -21,12 +19,23 @@ const DPI = 300;
 function pointPlate(): { picture: Picture; window: Box; observed: Box } {
   const blobs = [{ vx: VX, vy: VY, sigma: 50, flux: 100 }];
   const content = exampleContent({ blobs, noise: 0, orbits: 1 });
-  const layout = standardLayout("two-column");
-  return {
-    picture: standardPlate({ ...content, binary: null, features: [], systemic_kms: 0 }),
-    window: mapPlace(content.map, layout.map).window,
-    observed: layout.trails[0],
+  const subject = { ...content, binary: null, features: [], systemic_kms: 0 };
+  const picture = standardPlate(subject);
+  return { picture, window: imageIn(picture, "map"), observed: imageIn(picture, "trail") };
+}
+
+/** The image of a named panel. */
+function imageIn(picture: Picture, name: string): Box {
+  const find = (items: readonly Item[], inside: boolean): Box | undefined => {
+    for (const item of items) {
+      if (item.kind === "image" && inside) return item;
+      if (item.kind !== "group") continue;
+      const found = find(item.items, inside || item.name === name);
+      if (found) return found;
+    }
+    return undefined;
   };
+  return find(picture.items, false)!;
 }
 
 function checkMap(pixels: Pixels): void {
@@ -68,9 +77,9 @@ Deno.test("standardPlate() puts a point source at (Vx, Vy), the right way up, in
     /data-name="map"[\s\S]*?<image x="([\d.]+)" y="([\d.]+)" width="([\d.]+)" height="([\d.]+)"[^>]*base64,([^"]+)"/,
   )!;
   const [x, y, width, height] = image.slice(1, 5).map(Number) as [number, number, number, number];
-  const { map } = standardLayout("two-column");
-  assertAlmostEquals(x, map.x + RING_PT, 0.001);
-  assertAlmostEquals(y, map.y + RING_PT, 0.001);
+  const { window } = pointPlate();
+  assertAlmostEquals(x, window.x, 0.001);
+  assertAlmostEquals(y, window.y, 0.001);
   assertAlmostEquals(width, height, 1e-9);
   const pixels = decodePng(Uint8Array.from(atob(image[5]!), (c) => c.charCodeAt(0)));
   const box = { x: 0, y: 0, width: pixels.columns, height: pixels.rows };

@@ -3,10 +3,10 @@ import type { Box } from "../display_list.ts";
 import { type PlotPlace, plotPlace } from "../axes.ts";
 
 /** How a map's window is cut. */
-export type MapShape = "round" | "square";
+export type WindowShape = "round" | "square";
 
 /** Where a velocity map stands on the page. */
-export interface MapPlace extends PlotPlace {
+export interface MapWindow extends PlotPlace {
   /** The square that the map's pixels fill, pt. */
   readonly window: Box;
   /** Velocity from the middle to the edge of the outermost pixel, km/s. */
@@ -26,18 +26,18 @@ export const RING_PT = 17;
  *
  * @example
  * ```ts
- * import { mapPlace } from "@millrace/millrace/figures";
+ * import { mapWindow } from "@millrace/millrace/figures";
  * import { assertEquals } from "@std/assert";
  *
- * const place = mapPlace({ pixels: 101, half_width_kms: 1000 }, { x: 0, y: 0, width: 200, height: 200 });
+ * const place = mapWindow({ pixels: 101, half_width_kms: 1000 }, { x: 0, y: 0, width: 200, height: 200 });
  * assertEquals([place.x(0), place.y(0)], [100, 100]);
  * assertEquals(place.reach_kms, 1010);
  * ```
  */
-export function mapPlace(
+export function mapWindow(
   map: Pick<VelocityMap, "pixels" | "half_width_kms">,
   frame: Box,
-): MapPlace {
+): MapWindow {
   const side = Math.min(frame.width, frame.height) - 2 * RING_PT;
   const window = {
     x: frame.x + (frame.width - side) / 2,

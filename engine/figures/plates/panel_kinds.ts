@@ -1,0 +1,12 @@
+import { mapKinds } from "./map_kinds.ts";
+import type { PanelKind } from "./panel_kind.ts";
+import type { PanelName } from "./panel_names.ts";
+import { plotKinds } from "./plot_kinds.ts";
+import { trailKinds } from "./trail_kinds.ts";
+
+/** Every panel that a plate may hold, by name. */
+export const panelKinds: Readonly<Record<PanelName, PanelKind>> = {
+  ...mapKinds,
+  ...trailKinds,
+  ...plotKinds,
+};

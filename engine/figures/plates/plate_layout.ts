@@ -1,0 +1,118 @@
+import { type Box, POINTS_PER_MM } from "../display_list.ts";
+import type { PanelKind } from "./panel_kind.ts";
+
+/** A panel to be laid out. */
+export interface LaidPanel {
+  /** Its kind. */
+  readonly kind: PanelKind;
+  /** Which subject it shows: neighbours share an axis within one subject only. */
+  readonly subject: number;
+  /** True when a name or letter stands above it. */
+  readonly named: boolean;
+}
+
+/** A row to be laid out. */
+export interface LaidRow {
+  /** Its panels. */
+  readonly panels: readonly LaidPanel[];
+  /** Height of the frames, mm; chosen when absent. */
+  readonly height_mm?: number;
+}
+
+/** A panel's place on the plate. */
+export interface PanelBox {
+  /** The plotting area, pt. */
+  readonly frame: Box;
+  /** False when the neighbour at the left shows the same vertical axis. */
+  readonly first: boolean;
+  /** Index of the first panel, and number of panels, with which it shares its vertical axis. */
+  readonly group: { readonly from: number; readonly count: number };
+}
+
+/** Where everything of a plate stands. */
+export interface PlateLayout {
+  /** Height of the plate, pt. */
+  readonly height: number;
+  /** Boxes, row by row. */
+  readonly rows: readonly (readonly PanelBox[])[];
+}
+
+const LEFT = 36; // values and label of a vertical axis
+const BELOW = 27; // values and label of a horizontal axis
+const RIGHT = 8; // half of the last value of a horizontal axis
+const GAP = 9; // between panels that share an axis, and between rows
+/** Distance of a colour bar's top above its frame, pt. */
+export const BAR_RISE_PT = 8;
+/** Height of a colour bar, pt. */
+export const BAR_PT = 4;
+/** Distance of a panel name's baseline above its frame where there is a colour bar, pt. */
+export const NAME_RISE_PT = 18.5;
+
+/**
+ * Lays out a plate. Within a row all frames have one height: that of the square panels, which take
+ * their part of the width by weight, or the greatest that a panel asks for.
+ *
+ * @param rows The rows.
+ * @param width Width of the plate, pt.
+ * @returns Boxes of all panels.
+ *
+ * @example
+ * ```ts
+ * import { panelKinds, plateLayout } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const map = { kind: panelKinds.map, subject: 0, named: false };
+ * const [[box]] = plateLayout([{ panels: [map] }], 244).rows as [[{ frame: { width: number } }]];
+ * assertEquals(box.frame.width, 200); // 244 pt less 36 at the left and 8 at the right
+ * ```
+ */
+export function plateLayout(rows: readonly LaidRow[], width: number): PlateLayout {
+  let top = 0;
+  const placed = rows.map((row) => {
+    top += above(row);
+    const { boxes, height } = layRow(row, { top, width });
+    top += height + BELOW + GAP;
+    return boxes;
+  });
+  return { height: top - GAP, rows: placed };
+}
+
+function above(row: LaidRow): number {
+  return Math.max(...row.panels.map(({ kind, named }) => kind.scale ? 30 : named ? 16 : 8));
+}
+
+function layRow(row: LaidRow, options: { top: number; width: number }) {
+  const { top, width } = options;
+  const { panels } = row;
+  const first = panels.map((panel, i) => !sharesAxis(panels[i - 1], panel));
+  const margins = first.map((isFirst, i) => !isFirst ? GAP : LEFT + (i === 0 ? 0 : GAP));
+  const free = width - RIGHT - margins.reduce((sum, margin) => sum + margin, 0);
+  const weights = panels.reduce((sum, { kind }) => sum + kind.weight, 0);
+  const squares = panels.filter(({ kind }) => kind.square).length;
+  let height = row.height_mm === undefined ? undefined : row.height_mm * POINTS_PER_MM;
+  if (squares > 0) {
+    const share = free * 3 / weights;
+    const side = squares === panels.length ? free / squares : Math.min(share, 200);
+    height = Math.min(height ?? side, side);
+  }
+  height ??= Math.max(...panels.map(({ kind }) => kind.height_pt));
+  const rest = free - squares * height;
+  const restWeights = panels.reduce((sum, { kind }) => sum + (kind.square ? 0 : kind.weight), 0);
+  let x = 0;
+  const boxes = panels.map(({ kind }, i): PanelBox => {
+    x += margins[i]!;
+    const wide = kind.square ? height! : rest * kind.weight / restWeights;
+    const frame = { x, y: top, width: wide, height: height! };
+    x += wide;
+    const from = first.lastIndexOf(true, i);
+    const next = first.indexOf(true, i + 1);
+    const count = (next < 0 ? panels.length : next) - from;
+    return { frame, first: first[i]!, group: { from, count } };
+  });
+  return { boxes, height };
+}
+
+function sharesAxis(left: LaidPanel | undefined, panel: LaidPanel): boolean {
+  if (left === undefined || panel.kind.axis === undefined) return false;
+  return left.kind.axis === panel.kind.axis && left.subject === panel.subject;
+}

@@ -1,0 +1,220 @@
+import type { Group } from "../display_list.ts";
+import { coveragePanel } from "../panels/coverage_panel.ts";
+import { diagnosticPanel } from "../panels/diagnostic_panel.ts";
+import { discSpacePanel } from "../panels/disc_space_panel.ts";
+import { lightCentrePanel } from "../panels/light_centre_panel.ts";
+import { azimuthProfilePanel, radialProfilePanel } from "../panels/map_profile_panel.ts";
+import { phaseCurvePanel } from "../panels/phase_curve_panel.ts";
+import { inclinationPlanePanel, massPlanePanel, type Plane } from "../panels/plane_panel.ts";
+import type { PanelPlace } from "../panels/plot_panel.ts";
+import { periodogramPanel, type Scan, systemicScanPanel } from "../panels/scan_panel.ts";
+import { spectrumPanel } from "../panels/spectrum_panel.ts";
+import { velocityCurvePanel } from "../panels/velocity_curve_panel.ts";
+import { captionNumber, type PanelKind, requireField } from "./panel_kind.ts";
+import type { PanelName } from "./panel_names.ts";
+import type { PlateSubject } from "./plate_subject.ts";
+import type { MapPanelName } from "./map_kinds.ts";
+import type { TrailPanelName } from "./trail_kinds.ts";
+
+/** Panels that are line plots. */
+export type PlotPanelName = Exclude<PanelName, MapPanelName | TrailPanelName>;
+
+interface PlotKind<K extends keyof PlateSubject> {
+  readonly panel: PlotPanelName;
+  readonly field: K;
+  readonly made_by: string;
+  readonly draw: (
+    value: NonNullable<PlateSubject[K]>,
+    place: PanelPlace,
+    subject: PlateSubject,
+  ) => Group;
+  readonly tell: (value: NonNullable<PlateSubject[K]>, subject: PlateSubject) => string;
+  readonly square?: boolean;
+  readonly weight?: number;
+  readonly height_pt?: number;
+}
+
+/** A kind of panel that draws one field of the subject as a line plot. */
+function plotKind<K extends keyof PlateSubject>(kind: PlotKind<K>): PanelKind {
+  const { square = false, weight = 2, height_pt = 100 } = kind;
+  const field = (subject: PlateSubject) => requireField(subject, kind);
+  return {
+    square,
+    weight,
+    height_pt,
+    name: () => "",
+    draw: (subject, { frame }) => kind.draw(field(subject), { frame, name: kind.panel }, subject),
+    tell: (subject) => kind.tell(field(subject), subject),
+  };
+}
+
+function centreOf(subject: PlateSubject) {
+  return { vx_kms: 0, vy_kms: subject.binary ? -subject.binary.k_accretor_kms : 0 };
+}
+
+function tellBest(scan: Scan, unit: string): string {
+  const { best = null, best_error = null, levels = [] } = scan;
+  const error = best_error === null ? "" : ` ± ${captionNumber(best_error)}`;
+  const lines = levels.map((level) => `${level.name} at ${captionNumber(level.y)}`);
+  return (best === null ? "" : ` Best value: ${captionNumber(best)}${error} ${unit}.`) +
+    (lines.length === 0 ? "" : ` Dashed: ${lines.join(", ")}.`);
+}
+
+function tellPlane(plane: Plane): string {
+  const { adopted } = plane;
+  if (!adopted) return "";
+  const value = (v: number, e?: number) =>
+    e === undefined ? captionNumber(v) : `${captionNumber(v)} ± ${captionNumber(e)}`;
+  return ` Adopted: ${value(adopted.x, adopted.x_error)}, ${value(adopted.y, adopted.y_error)}.`;
+}
+
+/** The panels that are line plots. */
+export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
+  "radial-profile": plotKind({
+    panel: "radial-profile",
+    field: "map",
+    made_by: "millrace map",
+    draw: (map, place, subject) => radialProfilePanel(map, { ...place, centre: centreOf(subject) }),
+    tell: (_, subject) =>
+      `Mean of the map against speed about (0, ${captionNumber(centreOf(subject).vy_kms)}) km/s; ` +
+      "band: spread of its pixels.",
+  }),
+  "azimuth-profile": plotKind({
+    panel: "azimuth-profile",
+    field: "map",
+    made_by: "millrace map",
+    draw: (map, place, subject) =>
+      azimuthProfilePanel(map, { ...place, centre: centreOf(subject) }),
+    tell: (_, subject) =>
+      `Mean of the map against azimuth about (0, ${
+        captionNumber(centreOf(subject).vy_kms)
+      }) km/s, ` +
+      "0° towards +Vx, 90° towards +Vy; band: spread of its pixels.",
+  }),
+  spectrum: plotKind({
+    panel: "spectrum",
+    field: "spectrum",
+    made_by: "millrace profile",
+    weight: 3,
+    height_pt: 110,
+    draw: (spectrum, place) => spectrumPanel(spectrum, { ...place, lines: spectrum.lines ?? [] }),
+    tell: () => "Mean spectrum.",
+  }),
+  "equivalent-width": plotKind({
+    panel: "equivalent-width",
+    field: "equivalent_width",
+    made_by: "millrace profile",
+    draw: (curves, place) => phaseCurvePanel(curves, { ...place, label: "equivalent width (Å)" }),
+    tell: () => "Equivalent width against phase, one standard deviation.",
+  }),
+  "violet-red": plotKind({
+    panel: "violet-red",
+    field: "violet_red",
+    made_by: "millrace profile",
+    draw: (curves, place) => phaseCurvePanel(curves, { ...place, label: "*V*/*R*" }),
+    tell: () => "Ratio of the violet to the red peak against phase, one standard deviation.",
+  }),
+  continuum: plotKind({
+    panel: "continuum",
+    field: "continuum",
+    made_by: "millrace profile",
+    draw: (curves, place) => phaseCurvePanel(curves, { ...place, label: "continuum" }),
+    tell: () => "Continuum at the line against phase, one standard deviation.",
+  }),
+  "velocity-curve": plotKind({
+    panel: "velocity-curve",
+    field: "velocities",
+    made_by: "millrace orbit",
+    height_pt: 140,
+    draw: (curves, place) => velocityCurvePanel(curves, place),
+    tell: (curves) =>
+      "Velocities with fitted orbits, and what is left of them: " +
+      curves.map(({ k_kms, systemic_kms, crossing_phase }) =>
+        `K = ${captionNumber(k_kms)} km/s, γ = ${
+          captionNumber(systemic_kms)
+        } km/s, upward crossing ` +
+        `at phase ${captionNumber(crossing_phase)}`
+      ).join("; ") + ".",
+  }),
+  diagnostic: plotKind({
+    panel: "diagnostic",
+    field: "diagnostic",
+    made_by: "millrace orbit",
+    height_pt: 190,
+    draw: diagnosticPanel,
+    tell: ({ chosen_kms = null }) =>
+      "Orbits of the wings against the separation of two Gaussians; K and γ in km/s." +
+      (chosen_kms === null ? "" : ` Chosen: ${captionNumber(chosen_kms)} km/s.`),
+  }),
+  "light-centre": plotKind({
+    panel: "light-centre",
+    field: "light_centre",
+    made_by: "millrace orbit",
+    square: true,
+    draw: lightCentrePanel,
+    tell: ({ line }) =>
+      "Light-centre diagram of the wings" +
+      (line
+        ? `, extrapolated to −K1 = ${captionNumber(line.intercept_kms)} ± ` +
+          `${captionNumber(line.intercept_error_kms)} km/s.`
+        : "."),
+  }),
+  periodogram: plotKind({
+    panel: "periodogram",
+    field: "periodogram",
+    made_by: "millrace orbit",
+    draw: periodogramPanel,
+    tell: (scan) => `Periodogram.${tellBest(scan, "cycles per day")}`,
+  }),
+  "systemic-scan": plotKind({
+    panel: "systemic-scan",
+    field: "systemic_scan",
+    made_by: "millrace map",
+    draw: (scan, place) => systemicScanPanel(scan, { ...place, y_label: scan.label }),
+    tell: (scan) => `Misfit of maps made with each systemic velocity.${tellBest(scan, "km/s")}`,
+  }),
+  "mass-plane": plotKind({
+    panel: "mass-plane",
+    field: "mass_plane",
+    made_by: "millrace orbit",
+    square: true,
+    draw: massPlanePanel,
+    tell: (plane) => `Constraints on the two masses (solar).${tellPlane(plane)}`,
+  }),
+  "inclination-plane": plotKind({
+    panel: "inclination-plane",
+    field: "inclination_plane",
+    made_by: "millrace orbit",
+    square: true,
+    draw: inclinationPlanePanel,
+    tell: (plane) => `Constraints on mass ratio and inclination (degrees).${tellPlane(plane)}`,
+  }),
+  "disc-in-space": plotKind({
+    panel: "disc-in-space",
+    field: "binary",
+    made_by: "millrace orbit",
+    weight: 3,
+    height_pt: 120,
+    draw: (binary, place, subject) => discSpacePanel(subject.disc ?? { binary }, place),
+    tell: (binary, subject) =>
+      `The binary from above its orbit for q = ${
+        captionNumber(binary.mass_ratio)
+      }, in units of the ` +
+      "separation: both lobes and the ballistic stream" +
+      ((subject.disc?.circles ?? []).length === 0
+        ? "."
+        : `; circles of ${
+          subject.disc!.circles!.map((c) => captionNumber(c.radius_over_a)).join(", ")
+        }.`),
+  }),
+  coverage: plotKind({
+    panel: "coverage",
+    field: "coverage",
+    made_by: "millrace trail",
+    height_pt: 46,
+    draw: coveragePanel,
+    tell: (rows) =>
+      "Phases observed: " +
+      rows.map((row) => `${row.name}, ${row.phase.length} exposures`).join("; ") + ".",
+  }),
+};

@@ -1,0 +1,112 @@
+import { robustLimits } from "../colour/limits.ts";
+import type { Group } from "../display_list.ts";
+import { stackedProfilesPanel } from "../panels/stacked_profiles_panel.ts";
+import { trailPanel } from "../panels/trail_panel.ts";
+import {
+  captionNumber,
+  type PanelDrawing,
+  type PanelKind,
+  type PanelScale,
+  requireField,
+  tellScale,
+} from "./panel_kind.ts";
+import type { PanelName } from "./panel_names.ts";
+import type { PlateStyle } from "./plate_description.ts";
+import type { PlateSubject } from "./plate_subject.ts";
+
+/** Panels of velocity against phase. */
+export type TrailPanelName = Extract<
+  PanelName,
+  "trail" | "model" | "residual" | "stacked-profiles"
+>;
+
+function need<K extends "trail" | "model" | "residual">(
+  subject: PlateSubject,
+  field: K,
+  panel: TrailPanelName,
+) {
+  const made_by = field === "trail" ? "millrace trail" : "millrace map";
+  return requireField(subject, { field, panel, made_by });
+}
+
+function fluxScale(subjects: readonly PlateSubject[], style: PlateStyle): PanelScale {
+  const { colour_map: map = "ink", stretch, trail_limits } = style;
+  const ends = subjects.map((subject) => robustLimits(need(subject, "trail", "trail").grid.flux));
+  const low = Math.min(...ends.map((end) => end[0]));
+  const high = Math.max(...ends.map((end) => end[1]));
+  const unit = "*F*/*F*_{c} − 1";
+  return { map, stretch, limits: trail_limits ?? [low, high], unit, divide_by: 1 };
+}
+
+function drawTrail(
+  subject: PlateSubject,
+  drawing: PanelDrawing,
+  options: { readonly name: TrailPanelName; readonly values?: Float64Array },
+): Group {
+  return trailPanel(need(subject, "trail", options.name).grid, {
+    frame: drawing.frame,
+    scale: drawing.scale!,
+    y_labels: drawing.first,
+    x_label: drawing.names_axis,
+    systemic_kms: subject.systemic_kms,
+    ...options,
+  });
+}
+
+const shape = { square: false, weight: 1, height_pt: 150, axis: "phase" } as const;
+
+/** The panels of velocity against phase. */
+export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
+  trail: {
+    ...shape,
+    name: () => "observed",
+    scale_family: "trail",
+    scale: fluxScale,
+    draw: (subject, drawing) => drawTrail(subject, drawing, { name: "trail" }),
+    tell: (subject, scale) =>
+      `Trail as observed over two cycles, phases without an exposure blank; ${
+        tellScale(scale)
+      } of ` +
+      `the continuum; the wedge marks the systemic velocity, ${
+        captionNumber(subject.systemic_kms)
+      } km/s.`,
+  },
+  model: {
+    ...shape,
+    name: () => "map, projected",
+    scale_family: "trail",
+    scale: fluxScale,
+    draw: (subject, drawing) =>
+      drawTrail(subject, drawing, { name: "model", values: need(subject, "model", "model") }),
+    tell: () => "The map projected again, colours as for the trail.",
+  },
+  residual: {
+    ...shape,
+    name: () => "residual",
+    scale_family: "residual",
+    scale: (_, style) => {
+      const { signed_colour_map: map = "tide", residual_limit_sigma: limit = 5 } = style;
+      return { map, limits: [-limit, limit], unit: "*σ*", divide_by: 1 };
+    },
+    draw: (subject, drawing) =>
+      drawTrail(subject, drawing, {
+        name: "residual",
+        values: need(subject, "residual", "residual"),
+      }),
+    tell: (_, scale) => `Data less model in standard deviations; ${tellScale(scale)}.`,
+  },
+  "stacked-profiles": {
+    square: false,
+    weight: 1.4,
+    height_pt: 180,
+    name: () => "",
+    draw: (subject, { frame }) =>
+      stackedProfilesPanel(need(subject, "trail", "stacked-profiles").grid, {
+        frame,
+        ...(subject.model ? { model: subject.model } : {}),
+      }),
+    tell: (subject) =>
+      "Profiles averaged in 12 bins of phase, each standing on the level of its phase" +
+      `${subject.model ? "; grey underneath, the model" : ""}.`,
+  },
+};

@@ -1,0 +1,178 @@
+import { assert, assertEquals, assertStringIncludes, assertThrows } from "@std/assert";
+import { InputError } from "../../../engine/errors.ts";
+import {
+  drawPlate,
+  type Group,
+  type Item,
+  type PanelName,
+  panelNames,
+  type Picture,
+  type PlateDescription,
+  type PlateSubject,
+  runsText,
+  svgText,
+  type TextItem,
+  textWidth,
+} from "../../../engine/figures/mod.ts";
+import { exampleSecondLine, exampleSubject } from "../example_subject.ts";
+
+const subject = exampleSubject();
+
+function groups(items: readonly Item[]): Group[] {
+  return items.flatMap((item) => item.kind === "group" ? [item, ...groups(item.items)] : []);
+}
+
+function words(items: readonly Item[]): string[] {
+  return items.flatMap((item) => {
+    if (item.kind === "group") return words(item.items);
+    return item.kind === "text" ? [runsText(item.runs)] : [];
+  });
+}
+
+/** Every line of text lies on the page. */
+function assertInside(picture: Picture): void {
+  for (const text of texts(picture.items)) {
+    const length = textWidth(text.runs, text.size_pt);
+    const before = text.anchor === "end" ? 1 : text.anchor === "middle" ? 0.5 : 0;
+    const turned = text.rotate_deg === -90;
+    const from = turned ? text.y - (1 - before) * length : text.x - before * length;
+    const size = turned ? picture.height : picture.width;
+    const name = runsText(text.runs);
+    assert(from >= 0 && from + length <= size, `${name}: ${from} to ${from + length} of ${size}`);
+  }
+}
+
+function texts(items: readonly Item[]): TextItem[] {
+  return items.flatMap((item) => {
+    return item.kind === "text" ? [item] : item.kind === "group" ? texts(item.items) : [];
+  });
+}
+
+for (const panel of panelNames) {
+  Deno.test(`drawPlate() draws panel ${panel} in both widths with finite numbers`, () => {
+    for (const width of ["one-column", "two-column"] as const) {
+      const { picture, caption } = drawPlate({ width, rows: [{ panels: [panel] }] }, [subject]);
+      const svg = svgText(picture).replaceAll(/base64,[^"]+/g, "");
+      assert(groups(picture.items).some((group) => group.name === panel), panel);
+      assert(!/NaN|Infinity|undefined/.test(svg), svg.match(/.{40}(NaN|Infinity|undefined)/)?.[0]);
+      assertInside(picture);
+      assert(caption.length > 10);
+      assert(!/NaN|undefined/.test(caption), caption);
+    }
+  });
+}
+
+const fields: Partial<Record<PanelName, keyof PlateSubject>> = {
+  map: "map",
+  trail: "trail",
+  model: "model",
+  residual: "residual",
+  "half-one": "halves",
+  "detection-limit": "detection_limit",
+  spectrum: "spectrum",
+  "velocity-curve": "velocities",
+  periodogram: "periodogram",
+  "mass-plane": "mass_plane",
+  coverage: "coverage",
+};
+
+for (const [panel, field] of Object.entries(fields) as [PanelName, keyof PlateSubject][]) {
+  Deno.test(`drawPlate() says what panel ${panel} lacks and which command makes it`, () => {
+    const bare = { ...subject, [field]: undefined };
+    const error = assertThrows(
+      () => drawPlate({ rows: [{ panels: [panel] }] }, [bare]),
+      InputError,
+      `it needs ${field.replaceAll("_", " ")} of H beta; run "millrace `,
+    );
+    assertStringIncludes(error.message, 'Cannot draw panel "');
+  });
+}
+
+Deno.test("drawPlate() letters panels in reading order, in figure and caption", () => {
+  const rows = [{ panels: ["map", "trail"] as const }, { panels: ["coverage"] as const }];
+  const { picture, caption } = drawPlate({ letters: true, rows }, [subject]);
+  const letters = words(picture.items).filter((word) => /^\([a-z]\)/.test(word));
+  assertEquals(letters.map((word) => word.slice(0, 3)), ["(a)", "(b)", "(c)"]);
+  assert(
+    /\(a\) Velocity map .*\(b\) Trail .*\(c\) Phases observed: night 1, 35 exposures/.test(caption),
+  );
+});
+
+Deno.test("drawPlate() gives subjects one scale when it is shared, and their own otherwise", () => {
+  const other = exampleSecondLine();
+  const rows = [{ panels: ["map"] as const }];
+  const limits = (share: PlateDescription["share"]) =>
+    drawPlate({ rows, each_subject: true, ...(share ? { share } : {}) }, [subject, other])
+      .caption.match(/colours from [^ ]+ to [^ ]+/g);
+  const own = limits(undefined)!;
+  const shared = limits(["map"])!;
+  assert(own[0] !== own[1]);
+  assertEquals(shared[0], shared[1]);
+});
+
+Deno.test("drawPlate() puts one colour bar over trail and model, which share their scale", () => {
+  const bars = (panels: readonly PanelName[]) => {
+    const { picture } = drawPlate({ rows: [{ panels }] }, [subject]);
+    return picture.items.filter((item) => item.kind === "image" && item.rows === 1).length;
+  };
+  assertEquals(bars(["trail", "model", "residual"]), 2);
+  assertEquals(bars(["trail", "residual", "model"]), 3);
+});
+
+Deno.test("drawPlate() states stretch and limits that were chosen", () => {
+  const { caption } = drawPlate({
+    rows: [{ panels: ["map", "trail"] }],
+    stretch: "asinh",
+    map_limits: [0, 0.001],
+    trail_limits: [-0.5, 2],
+  }, [subject]);
+  assertStringIncludes(caption, "colours from 0 to 0.001, asinh stretch per km/s");
+  assertStringIncludes(caption, "colours from −0.5 to 2, asinh stretch of the continuum");
+});
+
+Deno.test("drawPlate() lays a row of squares over the whole width", () => {
+  const { picture } = drawPlate(
+    { width: 174, rows: [{ panels: ["map", "asymmetric", "spread"] }] },
+    [subject],
+  );
+  const images = groups(picture.items).flatMap((group) => group.items)
+    .filter((item) => item.kind === "image");
+  assertEquals(
+    new Set(images.map((item) => item.kind === "image" && item.width.toFixed(6))).size,
+    1,
+  );
+});
+
+const wrong: [string, PlateDescription, string][] = [
+  [
+    "the panel is not known",
+    { rows: [{ panels: ["mapp" as PanelName] }] },
+    "a panel must be one of map, trail, model, residual, asymmetric, half-one, half-two, spread, " +
+    "significance, resolution, detection-limit, radial-profile, azimuth-profile, stacked-profiles, " +
+    "spectrum, equivalent-width, violet-red, continuum, velocity-curve, diagnostic, light-centre, " +
+    "periodogram, systemic-scan, mass-plane, inclination-plane, disc-in-space, coverage: current " +
+    'value is "mapp" (key plate.rows[0])',
+  ],
+  [
+    "a row is empty",
+    { rows: [{ panels: [] }] },
+    "Cannot lay out plate as every row must have a panel (key plate.rows[0])",
+  ],
+  [
+    "the subject is not there",
+    { rows: [{ panels: [{ panel: "map", subject: 3 }] }] },
+    "the subject of a panel must be from 0 to 0: current value is 3",
+  ],
+  ["the width is nothing", { width: 0 }, "40 to 1200 mm: current value is 0 mm (key plate.width)"],
+  ["the width is no number", { width: NaN }, "40 to 1200 mm"],
+];
+
+for (const [when, description, message] of wrong) {
+  Deno.test(`drawPlate() names the rule when ${when}`, () => {
+    assertThrows(() => drawPlate(description, [subject]), InputError, message);
+  });
+}
+
+Deno.test("drawPlate() asks for a line when there is none", () => {
+  assertThrows(() => drawPlate({}, []), InputError, "there must be at least one line to show");
+});
