@@ -4,7 +4,15 @@
  * @module
  */
 export * from "./air.ts";
+export * from "./barycentre.ts";
 export * from "./bjd.ts";
+export { type Direction, directionFromEquinox } from "./direction.ts";
 export * from "./doppler.ts";
+export * from "./iso_date.ts";
+export * from "./julian_date.ts";
+export { LEAP_SECONDS_KNOWN_UNTIL, leapSecondWarnings, taiMinusUtc } from "./leap_seconds.ts";
 export * from "./line_list.ts";
+export * from "./sexagesimal.ts";
+export * from "./site.ts";
 export * from "./spectral_line.ts";
+export * from "./time_scales.ts";
