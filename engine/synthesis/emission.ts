@@ -1,4 +1,3 @@
-import type { PartName } from "./model.ts";
 import type { VelocityMap } from "../tomography/mod.ts";
 
 /** One exposure to which light is added. */
@@ -21,8 +20,6 @@ export interface ExposureSamples {
 
 /** A part made ready for one binary. */
 export interface Emission {
-  /** The part. */
-  readonly part: PartName;
   /** Adds the part's light to an exposure's samples. */
   readonly addTo: (exposure: ExposureSamples) => void;
   /** Adds its intensity to a velocity map that is being made. */

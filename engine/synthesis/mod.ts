@@ -1,12 +1,14 @@
 /** The synthesis room. @module */
+export * from "./check_model.ts";
 export * from "./complete_model.ts";
 export * from "./disc_profile.ts";
 export * from "./disc_shape.ts";
+export * from "./line_of_sight.ts";
 export * from "./model.ts";
 export * from "./model_map.ts";
 export * from "./model_parameters.ts";
 export * from "./pixel_mean.ts";
 export * from "./ring_profile.ts";
 export * from "./rotation_profile.ts";
-export * from "./spot_cloud.ts";
+export * from "./spot_place.ts";
 export * from "./synthesize.ts";

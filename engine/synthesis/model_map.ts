@@ -1,6 +1,7 @@
 import type { Binary } from "../binary/mod.ts";
 import type { Warning } from "../errors.ts";
 import { checkMapShape, mapStep, type VelocityMap } from "../tomography/mod.ts";
+import { requirePossible } from "./check_model.ts";
 import { completeModel } from "./complete_model.ts";
 import type { Model, PartName } from "./model.ts";
 import { prepareEmission } from "./prepare_emission.ts";
@@ -51,6 +52,7 @@ export function modelMap(model: Model, options: ModelMapOptions): ModelMap {
   const { binary, pixels = 201, half_width_kms = 2000 } = options;
   checkMapShape({ pixels, half_width_kms });
   const complete = completeModel(model);
+  requirePossible(complete, binary);
   const map: VelocityMap = {
     pixels,
     half_width_kms,
@@ -61,7 +63,9 @@ export function modelMap(model: Model, options: ModelMapOptions): ModelMap {
   for (const part of complete.parts) {
     const emission = prepareEmission(part, complete, {
       binary,
-      instrument_sigma_kms: mapStep(map),
+      // Points of a disc on elliptical orbits are as close as the map's narrowest Gaussian asks.
+      instrument_sigma_kms: 0.7 * mapStep(map),
+      occultation: null,
     });
     if (emission.no_map === null) {
       emission.addToMap(map);
@@ -72,6 +76,12 @@ export function modelMap(model: Model, options: ModelMapOptions): ModelMap {
         text: `No fixed map stands for the ${part}: ${emission.no_map}.`,
       });
     }
+  }
+  if (complete.eclipse.enabled && parts.length > 0) {
+    warnings.push({
+      code: "eclipse-not-in-map",
+      text: "The map shows the light out of eclipse: no fixed map stands for an eclipse.",
+    });
   }
   return { map, parts, warnings };
 }

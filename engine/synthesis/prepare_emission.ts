@@ -1,14 +1,20 @@
 import type { Binary } from "../binary/mod.ts";
-import { InputError } from "../errors.ts";
+import { accretorCloud, outflowClouds } from "./compact_clouds.ts";
+import { discClouds } from "./disc_clouds.ts";
 import { addDiscToMap } from "./disc_map.ts";
 import { shearStrength } from "./disc_shape.ts";
 import { discTables } from "./disc_tables.ts";
+import { donorCloud } from "./donor_cloud.ts";
+import type { Occultation } from "./eclipse.ts";
 import type { Emission } from "./emission.ts";
+import { inclinationOf } from "./inclination.ts";
 import { addSpotToMap } from "./map_light.ts";
 import type { PartName } from "./model.ts";
 import type { CompleteModel } from "./model_parameters.ts";
 import { cloudAdder, type PointCloud } from "./point_cloud.ts";
 import { spotCloud } from "./spot_cloud.ts";
+import { streamCloud } from "./stream_cloud.ts";
+import type { VelocityMap } from "../tomography/mod.ts";
 
 /** What a part needs to be made ready. */
 export interface EmissionContext {
@@ -16,6 +22,8 @@ export interface EmissionContext {
   readonly binary: Binary;
   /** Narrowest instrumental profile of any exposure, in the system's frame, km/s. */
   readonly instrument_sigma_kms: number;
+  /** What the donor hides; null without eclipses. */
+  readonly occultation: Occultation | null;
 }
 
 /** Makes a part ready for a binary: everything that does not depend on the exposure is done here. */
@@ -24,66 +32,87 @@ export function prepareEmission(
   model: CompleteModel,
   context: EmissionContext,
 ): Emission {
+  const { binary } = context;
   switch (part) {
     case "disc":
       return discEmission(model.disc, context);
-    case "spot":
-      return cloudEmission(
-        part,
-        spotCloud(model, context.binary),
-        "a beamed spot's light varies with phase",
-      );
-    default:
-      throw new Error(part);
+    case "spot": {
+      const beamed = model.spot.beaming > 0;
+      return cloudEmission([spotCloud(model, binary)], {
+        context,
+        no_map: beamed ? "a beamed spot's light varies with phase" : null,
+      });
+    }
+    case "stream":
+      return cloudEmission([streamCloud(model, binary)], { context, no_map: null });
+    case "donor":
+      return cloudEmission([donorCloud(model, context)], {
+        context,
+        no_map: "each piece of its surface is in sight for part of the orbit only",
+      });
+    case "accretor":
+      return cloudEmission([accretorCloud(model, binary)], {
+        context,
+        no_map: model.accretor.redshift_kms === 0
+          ? null
+          : "its redshift is the same at all phases, which no velocity in the map gives",
+      });
+    case "outflow":
+      return cloudEmission(outflowClouds(model, binary), {
+        context,
+        no_map: model.outflow.trough_equivalent_width_kms === 0
+          ? null
+          : "its trough is on the blue side at all phases, which no velocity in the map gives",
+      });
   }
 }
 
-/** A part that is one cloud; `varies` says why it has no map if its brightness varies. */
-function cloudEmission(part: PartName, cloud: PointCloud, varies: string): Emission {
+/** A part that is made of clouds of points. */
+function cloudEmission(
+  clouds: readonly PointCloud[],
+  { context, no_map }: { readonly context: EmissionContext; readonly no_map: string | null },
+): Emission {
+  const adders = clouds.map((cloud) => cloudAdder(cloud, context.occultation));
   return {
-    part,
-    addTo: cloudAdder(cloud),
-    no_map: cloud.brightness === null ? null : varies,
-    addToMap(map) {
-      const { vx_kms, vy_kms, light_kms, sigma_kms } = cloud;
-      for (let k = 0; k < light_kms.length; k++) {
-        addSpotToMap(map, {
-          vx_kms: vx_kms[k]!,
-          vy_kms: vy_kms[k]!,
-          sigma_kms,
-          light: light_kms[k]!,
-        });
-      }
+    addTo(exposure) {
+      for (const add of adders) add(exposure);
     },
+    no_map,
+    addToMap: (map) => addCloudsToMap(map, clouds),
   };
 }
 
+function addCloudsToMap(map: VelocityMap, clouds: readonly PointCloud[]): void {
+  for (const { vx_kms, vy_kms, light_kms, sigma_kms } of clouds) {
+    for (let k = 0; k < light_kms.length; k++) {
+      const place = { vx_kms: vx_kms[k]!, vy_kms: vy_kms[k]! };
+      addSpotToMap(map, { ...place, sigma_kms, light: light_kms[k]! });
+    }
+  }
+}
+
+/** The disc: by tables where it may be, by points where places matter. */
 function discEmission(disc: CompleteModel["disc"], context: EmissionContext): Emission {
-  const { binary, instrument_sigma_kms } = context;
+  const { binary, occultation } = context;
   const thick = disc.optical_depth === "thick";
   const shear = thick ? shearStrength(inclinationOf(binary), disc.shear_coefficient) : 0;
+  const options = { ...context, shear };
+  const circular = disc.eccentricity === 0;
+  const tables = circular ? discTables(disc, options) : null;
+  let byPoints: Emission["addTo"][] | undefined;
   return {
-    part: "disc",
-    addTo: discTables(disc, { binary, instrument_sigma_kms, shear }),
+    addTo(exposure) {
+      const hidden = occultation?.mayHide(exposure.phase, exposure.phase_width) ?? false;
+      if (tables !== null && !hidden) return tables(exposure);
+      byPoints ??= discClouds(disc, options).map((cloud) => cloudAdder(cloud, occultation));
+      for (const add of byPoints) add(exposure);
+    },
     no_map: thick
-      ? "an optically thick disc's surface brightness depends on the direction from which it is seen"
+      ? "an optically thick disc's brightness depends on the direction from which it is seen"
       : null,
-    addToMap: (map) => addDiscToMap(map, disc, binary),
+    addToMap(map) {
+      if (circular) addDiscToMap(map, disc, binary);
+      else addCloudsToMap(map, discClouds(disc, options));
+    },
   };
-}
-
-/** The inclination, degrees. */
-export function inclinationOf(binary: Binary): number {
-  const { inclination_deg } = binary;
-  if (inclination_deg !== null && inclination_deg >= 0 && inclination_deg < 90) {
-    return inclination_deg;
-  }
-  throw new InputError({
-    action: "build model",
-    rule: "this part of the model needs an inclination of at least 0 and below 90 deg",
-    value: inclination_deg,
-    unit: "deg",
-    key: "binary.inclination_deg",
-    remedy: "state it, or leave out the part or option that needs it",
-  });
 }

@@ -1,83 +1,12 @@
-import { type Binary, keplerianVelocity } from "../binary/mod.ts";
-import { completeModel } from "./complete_model.ts";
-import type { Model } from "./model.ts";
+import type { Binary } from "../binary/mod.ts";
 import type { CompleteModel } from "./model_parameters.ts";
 import type { PointCloud } from "./point_cloud.ts";
 import { legendre } from "./quadrature.ts";
-import { streamPath } from "./stream_path.ts";
+import { rimVelocity, spotHead } from "./rim_gas.ts";
 
 /** The tail is followed over this many of its lengths, and not farther than round the rim. */
 const TAIL_LENGTHS = 8;
 const TAIL_POINTS = 48;
-
-/** Radius of the impact: the spot's own, or the disc's rim. */
-export function impactRadius(model: CompleteModel): number {
-  return model.spot.radius_over_a ?? model.disc.outer_radius_over_a;
-}
-
-/** A place on the rim and the velocity of its gas in map coordinates. */
-export interface RimPlace {
-  /** From the accretor towards the donor, a. */
-  readonly x: number;
-  /** Along the donor's orbital motion, a. */
-  readonly y: number;
-  /** Map coordinate, km/s. */
-  readonly vx_kms: number;
-  /** Map coordinate, km/s. */
-  readonly vy_kms: number;
-}
-
-/**
- * Where the stream meets the rim, and how fast the spot's gas moves there: (1 − m) times the
- * stream's own velocity plus m times the rim's Keplerian one (Marsh 1990 and others place spots
- * between the two).
- *
- * @param model The model: rim, or the spot's own radius, and mixing.
- * @param binary The binary.
- * @returns The place, in units of the separation, and its velocity.
- * @throws {InputError} When the stream does not reach the rim.
- *
- * @example A spot with the stream's velocity is on the stream's path in the map
- * ```ts
- * import { spotPlace } from "@millrace/millrace/synthesis";
- * import { binaryFrom } from "@millrace/millrace/binary";
- * import { assertAlmostEquals } from "@std/assert";
- *
- * const binary = binaryFrom({ k_accretor_kms: 80, k_donor_kms: 320 });
- * const spot = spotPlace({ parts: ["spot"], disc: { outer_radius_over_a: 0.3 } }, binary);
- * assertAlmostEquals(Math.hypot(spot.x, spot.y), 0.3, 1e-9);
- * ```
- */
-export function spotPlace(model: Model, binary: Binary): RimPlace {
-  return spotHead(completeModel(model), binary);
-}
-
-function spotHead(model: CompleteModel, binary: Binary): RimPlace {
-  const { x, y, vx, vy } = streamPath(binary.mass_ratio).at(impactRadius(model));
-  const sum = binary.k_accretor_kms + binary.k_donor_kms;
-  const { mixing } = model.spot;
-  const rim = rimVelocity(model, { x, y }, binary);
-  return {
-    x,
-    y,
-    vx_kms: (1 - mixing) * sum * vx + mixing * rim.vx_kms,
-    vy_kms: (1 - mixing) * sum * vy + mixing * rim.vy_kms,
-  };
-}
-
-/** Velocity of the disc's own gas at a place, sub-Keplerian where the disc is. */
-function rimVelocity(
-  model: CompleteModel,
-  place: { readonly x: number; readonly y: number },
-  binary: Binary,
-): { vx_kms: number; vy_kms: number } {
-  const kepler = keplerianVelocity(place, binary);
-  const f = model.disc.keplerian_factor;
-  return {
-    vx_kms: f * kepler.vx_kms,
-    vy_kms: f * (kepler.vy_kms + binary.k_accretor_kms) - binary.k_accretor_kms,
-  };
-}
 
 /**
  * The bright spot. Its tail runs along the rim in the sense of rotation, fading by e over
@@ -116,6 +45,7 @@ export function spotCloud(model: CompleteModel, binary: Binary): PointCloud {
     sigma_kms,
     shift_kms: 0,
     place: { x, y, z: new Float64Array(count) },
+    profile: null,
     brightness: beaming === 0 ? null : (phase, share) => {
       const factor = 1 + beaming * Math.cos(2 * Math.PI * (phase - beaming_phase));
       for (let k = 0; k < count; k++) share[k]! *= factor;

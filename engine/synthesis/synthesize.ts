@@ -2,7 +2,11 @@ import type { Binary } from "../binary/mod.ts";
 import { InputError } from "../errors.ts";
 import { shiftVelocities, systemFrame } from "../tomography/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
+import { requirePossible } from "./check_model.ts";
 import { completeModel } from "./complete_model.ts";
+import { continuumLight } from "./continuum_light.ts";
+import { donorOccultation } from "./eclipse.ts";
+import { inclinationOf } from "./inclination.ts";
 import type { Model, PartName } from "./model.ts";
 import { prepareEmission } from "./prepare_emission.ts";
 
@@ -98,6 +102,7 @@ export function synthesizeParts(
 ): Map<PartName, Float64Array> {
   const { binary, sampling, systemic_kms = 0 } = options;
   const complete = completeModel(model);
+  requirePossible(complete, binary);
   const frame = systemFrame(systemic_kms);
   const velocity = shiftVelocities(sampling.velocity_kms, frame);
   const sigma = sampling.profile_sigma_kms.map((value, i) => {
@@ -110,7 +115,11 @@ export function synthesizeParts(
     });
   });
   const finest = sigma.reduce((a, b) => Math.min(a, b), Infinity);
-  const context = { binary, instrument_sigma_kms: finest };
+  const occultation = complete.eclipse.enabled
+    ? donorOccultation(binary.mass_ratio, inclinationOf(binary))
+    : null;
+  const context = { binary, instrument_sigma_kms: finest, occultation };
+  const in_sight = occultation === null ? null : continuumLight(complete, { binary, occultation });
   const trails = new Map<PartName, Float64Array>();
   for (const part of complete.parts) {
     const emission = prepareEmission(part, complete, context);
@@ -125,6 +134,10 @@ export function synthesizeParts(
         to: sampling.start[i + 1]!,
         into,
       });
+      if (in_sight === null) continue;
+      // The observer divides by the continuum that is left.
+      const left = in_sight(sampling.phase[i]!, sampling.phase_width[i]!);
+      for (let n = sampling.start[i]!; n < sampling.start[i + 1]!; n++) into[n]! /= left;
     }
     trails.set(part, into);
   }

@@ -54,6 +54,6 @@ Deno.test("completeModel() names values of the wrong type or out of range", () =
   );
   assertEquals(
     message({ parts: [], spot: { sigma_kms: NaN } }),
-    'Cannot build model as it must be a number from 0 to 3000: current value is NaN km/s (key model.spot.sigma_kms)',
+    "Cannot build model as it must be a number from 0 to 3000: current value is NaN km/s (key model.spot.sigma_kms)",
   );
 });
