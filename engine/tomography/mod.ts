@@ -1,19 +1,34 @@
-/** The tomography room. @module */
+/**
+ * Velocity maps: the projector from a map to a trail and its adjoint, filtered back-projection,
+ * maximum entropy, and what can be said of a map.
+ *
+ * @module
+ */
 export * from "./axisymmetric_part.ts";
 export * from "./back_projection.ts";
+export * from "./baseline.ts";
+export * from "./blend_projector.ts";
 export * from "./blur_map.ts";
+export * from "./check_trail.ts";
+export * from "./entropy_measure.ts";
+export * from "./entropy_solver.ts";
 export * from "./gather_lines.ts";
 export * from "./half_orbit.ts";
+export * from "./linear_operator.ts";
 export * from "./map_features.ts";
 export * from "./map_fit.ts";
 export * from "./map_peak.ts";
 export * from "./map_shape.ts";
+export * from "./maximum_entropy.ts";
+export * from "./mean_flux.ts";
 export * from "./nearest_part.ts";
 export * from "./noise_replica.ts";
+export * from "./prior_image.ts";
 export * from "./profile_filter.ts";
 export * from "./projector.ts";
 export * from "./reference_projector.ts";
 export * from "./resolution.ts";
+export * from "./search_subspace.ts";
 export * from "./slant_geometry.ts";
 export * from "./slant_kernel.ts";
 export * from "./slant_plan.ts";
@@ -21,5 +36,6 @@ export * from "./slant_projector.ts";
 export * from "./smearing.ts";
 export * from "./system_frame.ts";
 export * from "./uniform_profiles.ts";
+export * from "./vector_algebra.ts";
 export * from "./velocity_map.ts";
 export * from "./wiener_gain.ts";

@@ -1,13 +1,19 @@
 import type { Sampling } from "../trail/mod.ts";
 import { InputError } from "../errors.ts";
+import type { LinearOperator } from "./linear_operator.ts";
 import { checkMapShape } from "./map_shape.ts";
 import { referenceProjector } from "./reference_projector.ts";
 import { checkResolution } from "./resolution.ts";
 import { kernelProjector } from "./slant_kernel.ts";
 import { slantProjector } from "./slant_projector.ts";
 
-/** The linear operator from a velocity map to the samples of a trail, and its adjoint. */
-export interface Projector {
+/**
+ * The linear operator from a velocity map to the samples of a trail, and its adjoint. `forward`: at
+ * each sample, Σ over pixels of intensity × pixel area × profile (per km/s), averaged over the
+ * exposure. An image has pixels² values, rows of increasing Vy, columns of increasing Vx; samples are
+ * normalised flux minus one, laid out as `sampling.velocity_kms`.
+ */
+export interface Projector extends LinearOperator {
   /** Pixels along each side of the map, odd. */
   readonly pixels: number;
   /** Velocity of the centre of the outermost pixel, km/s. */
@@ -16,22 +22,8 @@ export interface Projector {
   readonly systemic_kms: number;
   /** The exposures. */
   readonly sampling: Sampling;
-  /** Number of samples: the length of a data vector. */
-  readonly sample_count: number;
   /** Which code does the work: WebAssembly, its TypeScript twin, or the double loop. */
   readonly code: "kernel" | "plain" | "reference";
-  /**
-   * Data of a map: at each sample, Σ over pixels of intensity × pixel area × profile (per km/s),
-   * averaged over the exposure. `map`: pixels², rows of increasing Vy, columns of increasing Vx;
-   * result: normalised flux minus one, laid out as `sampling.velocity_kms`. The second argument,
-   * when given, receives and is the result.
-   */
-  readonly forward: (map: Float64Array, into?: Float64Array) => Float64Array;
-  /**
-   * The transpose of `forward`: ⟨forward(m), d⟩ = ⟨m, adjoint(d)⟩ to rounding. The second argument,
-   * when given, receives and is the result.
-   */
-  readonly adjoint: (data: Float64Array, into?: Float64Array) => Float64Array;
 }
 
 /**

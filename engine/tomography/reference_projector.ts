@@ -83,6 +83,7 @@ export function referenceProjector(sampling: Sampling, options: ProjectorOptions
     half_width_kms,
     systemic_kms,
     sampling,
+    image_size: pixels * pixels,
     sample_count: velocity.length,
     code: "reference",
     forward(map, into = new Float64Array(velocity.length)) {

@@ -88,6 +88,7 @@ export function kernelProjector(sampling: Sampling, options: ProjectorOptions): 
     half_width_kms,
     systemic_kms,
     sampling,
+    image_size: pixels * pixels,
     sample_count,
     code: "kernel",
     forward(map, into = new Float64Array(sample_count)) {

@@ -40,6 +40,7 @@ export function slantProjector(sampling: Sampling, options: ProjectorOptions): P
     half_width_kms,
     systemic_kms,
     sampling,
+    image_size: pixels * pixels,
     sample_count,
     code: "plain",
     forward(map, into = new Float64Array(sample_count)) {

@@ -1,0 +1,355 @@
+import { NotConverged } from "../errors.ts";
+import { type EntropyMeasure, POSITIVE_ENTROPY } from "./entropy_measure.ts";
+import type { LinearOperator } from "./linear_operator.ts";
+import type { Samples } from "./map_fit.ts";
+import { subspaceStep } from "./search_subspace.ts";
+import { combine, dotProduct, weightedGram } from "./vector_algebra.ts";
+
+/** A maximum-entropy problem. */
+export interface EntropyProblem {
+  /** From an image to the samples. */
+  readonly operator: LinearOperator;
+  /** Data and errors; infinite errors mask. */
+  readonly samples: Samples;
+  /** The default image that belongs to an image: called once an iteration. */
+  readonly prior: (image: Float64Array) => Float64Array;
+  /** Image to start from. */
+  readonly start: Float64Array;
+  /**
+   * Entropy.
+   *
+   * @default {POSITIVE_ENTROPY}
+   */
+  readonly measure?: EntropyMeasure;
+}
+
+/** Options of {@linkcode entropySteps} and {@linkcode solveEntropy}. */
+export interface EntropyOptions {
+  /**
+   * Chi-square per sample to reach. Not used with a fixed multiplier.
+   *
+   * @default {1}
+   */
+  readonly reduced_chi_square?: number;
+  /**
+   * Fixed multiplier α of the objective χ² − α S, instead of a goal for chi-square.
+   *
+   * @default {null}
+   */
+  readonly multiplier?: number | null;
+  /**
+   * Tolerance of chi-square over its goal (with a fixed multiplier the gradients'
+   * ratio must be as near to it as `misalignment` allows).
+   *
+   * @default {1e-3}
+   */
+  readonly chi_square_tolerance?: number;
+  /**
+   * Largest misalignment at the end.
+   *
+   * @default {0.01}
+   */
+  readonly misalignment?: number;
+  /**
+   * Largest number of iterations.
+   *
+   * @default {200}
+   */
+  readonly max_iterations?: number;
+  /**
+   * Number of past steps kept as search directions.
+   *
+   * @default {9}
+   */
+  readonly memory?: number;
+}
+
+/** Where a solution stands. */
+export interface EntropyState {
+  /** The image. */
+  readonly image: Float64Array;
+  /** Its samples. */
+  readonly model: Float64Array;
+  /** The default image that went with it. */
+  readonly prior: Float64Array;
+  /** Chi-square over the number of unmasked samples. */
+  readonly reduced_chi_square: number;
+  /**
+   * Half the squared difference of the unit gradients of entropy and chi-square, in the entropy's
+   * metric: 0 at the solution, 1 where they are at right angles.
+   */
+  readonly misalignment: number;
+  /** Entropy relative to the default image, in units of the image. */
+  readonly entropy: number;
+  /** Ratio of the two gradients: the multiplier α of the objective χ² − α S. */
+  readonly multiplier: number;
+  /** Iterations so far. */
+  readonly iterations: number;
+  /** Calls of `forward` and `adjoint` so far. */
+  readonly operator_calls: number;
+  /** Whether the goals are met. */
+  readonly converged: boolean;
+}
+
+/** Largest share of the image's sum that the squared length of one step may have. */
+const TRUST = 0.3;
+
+/** A pixel falls to no less than this share of itself in one step. */
+const LEAST_SHRINK = 0.1;
+
+/** Chi-square counts as being at its goal within this share of it. */
+const NEAR = 1e-3;
+
+/** A goal is out of reach when so many steps in a row could not win this share of what is missing, */
+const STALLED_STEPS = 5, STALLED_GAIN = 0.02;
+
+/** or when chi-square has lost no more than this share of itself in so many steps. */
+const PATIENCE = 10, LEAST_LOSS = 5e-3;
+
+/**
+ * Maximum entropy step by step. Each step searches the span of one new direction, the gradient of
+ * χ² − α S in the entropy's metric, and of the last steps taken, whose samples are known: two calls
+ * of the operator a step. The control within the span is that of Skilling & Bryan (1984, MNRAS
+ * 211, 111).
+ *
+ * @param problem Operator, data, default image, start.
+ * @param options Goal, tolerances.
+ * @returns A generator of states, the last of which is the solution; it throws `NotConverged` with
+ * the last state when the goal is out of reach or the iterations run out.
+ *
+ * @example
+ * ```ts
+ * import { entropySteps } from "@millrace/millrace/tomography";
+ * import { assertAlmostEquals } from "@std/assert";
+ *
+ * const identity = (x: Float64Array, into = new Float64Array(x.length)) => {
+ *   into.set(x);
+ *   return into;
+ * };
+ * const steps = entropySteps({
+ *   operator: { image_size: 2, sample_count: 2, forward: identity, adjoint: identity },
+ *   samples: { flux: Float64Array.of(3, 1), error: Float64Array.of(0.1, 0.1) },
+ *   prior: () => Float64Array.of(2, 2),
+ *   start: Float64Array.of(2, 2),
+ * });
+ * let last = NaN;
+ * for (const state of steps) last = state.reduced_chi_square;
+ * assertAlmostEquals(last, 1, 1e-3);
+ * ```
+ */
+export function* entropySteps(
+  problem: EntropyProblem,
+  options: EntropyOptions = {},
+): Generator<EntropyState, void, void> {
+  const { operator, samples, measure = POSITIVE_ENTROPY } = problem;
+  const { reduced_chi_square: goal = 1, multiplier: fixed = null, memory = 9 } = options;
+  const { chi_square_tolerance = 1e-3, misalignment: aligned = 0.01 } = options;
+  const { max_iterations = 200 } = options;
+  const size = operator.image_size, count = operator.sample_count;
+  const weight = samples.error.map((e) => 1 / (e * e));
+  const used = weight.reduce((n, w) => w > 0 ? n + 1 : n, 0);
+  const target = goal * used;
+
+  let calls = 0;
+  const forward = (image: Float64Array, into?: Float64Array) => {
+    calls++;
+    return operator.forward(image, into);
+  };
+  let image = problem.start.slice();
+  let model = forward(image).slice();
+  const gradient = new Float64Array(size), metric = new Float64Array(size);
+  const pull = new Float64Array(size), residual = new Float64Array(count);
+  const directions: Direction[] = [];
+  const history: number[] = [];
+  let alpha = fixed, stalled = 0;
+
+  for (let iterations = 0;; iterations++) {
+    const prior = problem.prior(image);
+    const entropy = measure.evaluate(image, prior, { gradient, metric });
+    let chi_square = 0;
+    for (let k = 0; k < count; k++) {
+      const w = weight[k]!;
+      const r = w > 0 ? model[k]! - samples.flux[k]! : 0;
+      residual[k] = 2 * w * r;
+      chi_square += w * r * r;
+    }
+    calls++;
+    operator.adjoint(residual, pull);
+    let ss = 0, cc = 0, sc = 0, total = 0;
+    for (let i = 0; i < size; i++) {
+      const g = metric[i]!, s = gradient[i]!, c = pull[i]!;
+      ss += g * s * s;
+      cc += g * c * c;
+      sc += g * s * c;
+      total += g;
+    }
+    const multiplier = ss > 0 ? Math.sqrt(cc / ss) : 0;
+    const misalignment = ss > 0 && cc > 0 ? 1 - sc / Math.sqrt(ss * cc) : cc > 0 ? 1 : 0;
+    const reached = fixed === null
+      ? Math.abs(chi_square / target - 1) <= chi_square_tolerance
+      : Math.abs(multiplier / fixed - 1) <= Math.sqrt(2 * aligned);
+    const converged = reached && misalignment <= aligned;
+    const reduced_chi_square = chi_square / used;
+    const state: EntropyState = {
+      ...{ image, model, prior, reduced_chi_square, misalignment, entropy, multiplier },
+      ...{ iterations, operator_calls: calls, converged },
+    };
+    yield state;
+    if (converged) return;
+    if (iterations >= max_iterations) throw unfinished(state, goal);
+
+    alpha ??= multiplier > 0 ? multiplier : null;
+    // At the goal the new direction must not move chi-square, or every step would be undone.
+    const near = fixed === null && Math.abs(chi_square / target - 1) < NEAR;
+    if (near && sc > 0) alpha = cc / sc;
+    const fresh = new Float64Array(size);
+    let length = 0;
+    for (let i = 0; i < size; i++) {
+      const g = (alpha ?? 0) * gradient[i]! - pull[i]!;
+      fresh[i] = metric[i]! * g;
+      length += metric[i]! * g * g;
+    }
+    scale(fresh, 1 / Math.sqrt(length > 0 ? length : 1));
+    directions.unshift({ step: fresh, seen: forward(fresh).slice(), curvature: [] });
+    measureCurvature(directions, weight);
+
+    const inverse = metric.map((g) => 1 / g);
+    const steps = directions.map((d) => d.step);
+    const chosen = subspaceStep({
+      metric: weightedGram(steps, inverse),
+      curvature: curvatureMatrix(directions),
+      entropy_slope: Float64Array.from(steps, (step) => dotProduct(step, gradient)),
+      chi_slope: Float64Array.from(steps, (step) => dotProduct(step, pull)),
+      chi_square,
+    }, { target: fixed === null ? target : null, multiplier: fixed, longest: TRUST * total });
+    if (fixed === null) {
+      alpha = chosen.multiplier;
+      const missing = chi_square - target;
+      const gain = chi_square - chosen.least_chi_square;
+      stalled = !near && missing > 0 && gain < STALLED_GAIN * missing ? stalled + 1 : 0;
+      history.push(chi_square);
+      const before = history[history.length - 1 - PATIENCE];
+      const slow = !near && missing > 0 && before !== undefined && iterations > 2 * PATIENCE &&
+        chi_square > (1 - LEAST_LOSS) * before;
+      if (slow || stalled >= STALLED_STEPS) throw outOfReach(state, goal);
+    }
+
+    const step = combine(steps, chosen.coefficients);
+    const seen = combine(directions.map((d) => d.seen), chosen.coefficients);
+    const next = new Float64Array(size);
+    let cut = false;
+    for (let i = 0; i < size; i++) {
+      const f = image[i]! + step[i]!;
+      const least = LEAST_SHRINK * image[i]!;
+      next[i] = measure.positive && f < least ? least : f;
+      if (next[i] !== f) {
+        step[i] = next[i]! - image[i]!;
+        cut = true;
+      }
+    }
+    if (cut) {
+      const after = forward(next).slice();
+      for (let k = 0; k < count; k++) seen[k] = after[k]! - model[k]!;
+      model = after;
+    } else {
+      model = model.map((m, k) => m + seen[k]!);
+    }
+    image = next;
+    let square = 0;
+    for (let i = 0; i < size; i++) square += step[i]! * step[i]! * inverse[i]!;
+    directions.shift();
+    if (square > 0) {
+      const unit = 1 / Math.sqrt(square);
+      scale(step, unit);
+      scale(seen, unit);
+      directions.unshift({ step, seen, curvature: [] });
+      if (directions.length > memory) directions.pop();
+      measureCurvature(directions, weight);
+    }
+  }
+}
+
+/**
+ * Runs {@linkcode entropySteps} to its end.
+ *
+ * @param problem Operator, data, default image, start.
+ * @param options Goal, tolerances.
+ * @returns The solution.
+ * @throws {NotConverged} With the last state when the goal is out of reach or the iterations run out.
+ *
+ * @example
+ * ```ts
+ * import { solveEntropy } from "@millrace/millrace/tomography";
+ * import { assertAlmostEquals } from "@std/assert";
+ *
+ * const identity = (x: Float64Array, into = new Float64Array(x.length)) => {
+ *   into.set(x);
+ *   return into;
+ * };
+ * const { image } = solveEntropy({
+ *   operator: { image_size: 1, sample_count: 1, forward: identity, adjoint: identity },
+ *   samples: { flux: Float64Array.of(3), error: Float64Array.of(0.1) },
+ *   prior: () => Float64Array.of(2),
+ *   start: Float64Array.of(2),
+ * });
+ * assertAlmostEquals(image[0] ?? NaN, 2.9, 1e-4); // one error off the data
+ * ```
+ */
+export function solveEntropy(problem: EntropyProblem, options: EntropyOptions = {}): EntropyState {
+  let last: EntropyState | undefined;
+  for (const state of entropySteps(problem, options)) last = state;
+  return last!;
+}
+
+interface Direction {
+  /** In the image, of unit length in the metric it was made in. */
+  readonly step: Float64Array;
+  /** In the samples. */
+  readonly seen: Float64Array;
+  /** Second derivatives of chi-square with itself and the directions after it. */
+  curvature: number[];
+}
+
+/** Fills the second derivatives of the first direction with all. */
+function measureCurvature(directions: readonly Direction[], weight: Float64Array): void {
+  const [first] = directions;
+  if (first === undefined) return;
+  const weighted = first.seen.map((a, k) => 2 * weight[k]! * a);
+  first.curvature = directions.map((d) => dotProduct(weighted, d.seen));
+}
+
+function curvatureMatrix(directions: readonly Direction[]): Float64Array {
+  const count = directions.length;
+  const matrix = new Float64Array(count * count);
+  directions.forEach((d, a) => {
+    for (let b = a; b < count; b++) {
+      matrix[a * count + b] = matrix[b * count + a] = d.curvature[b - a]!;
+    }
+  });
+  return matrix;
+}
+
+function scale(vector: Float64Array, factor: number): void {
+  for (let i = 0; i < vector.length; i++) vector[i] = vector[i]! * factor;
+}
+
+function unfinished(state: EntropyState, goal: number): NotConverged<EntropyState> {
+  return new NotConverged(
+    `Cannot finish maximum-entropy map in ${state.iterations} iterations: reduced chi-square is ` +
+      `${state.reduced_chi_square.toPrecision(5)} for ${goal}, misalignment ` +
+      `${state.misalignment.toPrecision(2)}; allow more iterations`,
+    state,
+  );
+}
+
+function outOfReach(state: EntropyState, goal: number): NotConverged<EntropyState> {
+  const reached = state.reduced_chi_square;
+  return new NotConverged(
+    `Cannot fit maximum-entropy map to reduced chi-square ${goal}: it stalled at ` +
+      `${
+        reached.toPrecision(5)
+      } after ${state.iterations} iterations, as no map of this kind fits the ` +
+      `data so closely; set map.reduced_chi_square to ${(1.02 * reached).toPrecision(3)} or more`,
+    state,
+  );
+}

@@ -1,0 +1,271 @@
+import { InputError, NotConverged, type Warning } from "../errors.ts";
+import { median } from "../numerics/mod.ts";
+import { makeGrid } from "../trail/mod.ts";
+import { backProject } from "./back_projection.ts";
+import { freeBaselines } from "./baseline.ts";
+import { type BlendMember, blendProjector } from "./blend_projector.ts";
+import { checkTrail, type TrailSamples } from "./check_trail.ts";
+import { type EntropyOptions, type EntropyState, entropySteps } from "./entropy_solver.ts";
+import type { LinearOperator } from "./linear_operator.ts";
+import type { Samples } from "./map_fit.ts";
+import { type MapShape, mapStep } from "./map_shape.ts";
+import { meanFlux } from "./mean_flux.ts";
+import { type PriorImage, priorImage } from "./prior_image.ts";
+import type { ProjectorMethod, ProjectorPrecision } from "./projector.ts";
+import type { VelocityMap } from "./velocity_map.ts";
+
+/** Options of {@linkcode maximumEntropy}. */
+export interface MaximumEntropyOptions extends MapShape, EntropyOptions {
+  /** Systemic velocity γ, km/s. */
+  readonly systemic_kms: number;
+  /**
+   * The image that the map falls back on.
+   *
+   * @default {{ kind: "blurred", fwhm_kms: three times the resolution }}
+   */
+  readonly prior?: PriorImage;
+  /**
+   * Level of the uniform image, normalised flux × km/s per (km/s)².
+   *
+   * @default {the data's mean flux spread evenly over the map}
+   */
+  readonly level?: number;
+  /**
+   * Map to start from; its positive part is used.
+   *
+   * @default {the filtered back-projection of the data}
+   */
+  readonly start?: VelocityMap;
+  /**
+   * Other members of a blend that share the map.
+   *
+   * @default {[]}
+   */
+  readonly blends?: readonly BlendMember[];
+  /**
+   * Whether each exposure's straight baseline is free.
+   *
+   * @default {false}
+   */
+  readonly free_baselines?: boolean;
+  /**
+   * Whether the line is in absorption: the data are inverted with their sign turned.
+   *
+   * @default {false}
+   */
+  readonly absorption?: boolean;
+  /**
+   * Whether to go on in spite of a large gap in phase.
+   *
+   * @default {false}
+   */
+  readonly force?: boolean;
+  /**
+   * How the projector works.
+   *
+   * @default {"fast"}
+   */
+  readonly method?: ProjectorMethod;
+  /**
+   * Number format of the projector.
+   *
+   * @default {"double"}
+   */
+  readonly precision?: ProjectorPrecision;
+}
+
+/** A maximum-entropy map, or where it stands on its way. */
+export interface EntropyMap {
+  /** The map; positive, with the sign turned when the line was said to be in absorption. */
+  readonly map: VelocityMap;
+  /** The default image that went with it. */
+  readonly prior: VelocityMap;
+  /** Level of the uniform image. */
+  readonly level: number;
+  /** The map's data, sign as in the trail; baselines taken out when they were free. */
+  readonly model: Float64Array;
+  /** Chi-square over the number of unmasked samples. */
+  readonly reduced_chi_square: number;
+  /** Half the squared difference of the unit gradients of entropy and chi-square, in the metric of the entropy. */
+  readonly misalignment: number;
+  /** Entropy relative to the default image. */
+  readonly entropy: number;
+  /** Multiplier α of the objective χ² − α S. */
+  readonly multiplier: number;
+  /** Iterations so far. */
+  readonly iterations: number;
+  /** Calls of the projector and its adjoint so far. */
+  readonly operator_calls: number;
+  /** Whether it met its goals. */
+  readonly converged: boolean;
+  /** What a user should know. */
+  readonly warnings: readonly Warning[];
+}
+
+/** Share of the level that the starting map never falls below. */
+const START_FLOOR = 0.05;
+
+/**
+ * Maximum-entropy map of a trail, step by step (Marsh & Horne 1988, MNRAS 235, 269; control of
+ * Skilling & Bryan 1984, MNRAS 211, 111): of all positive maps that fit the data to the wanted
+ * chi-square, the one nearest to its default image.
+ *
+ * @param trail Exposures, data, errors.
+ * @param options Map's shape, systemic velocity, default image, goal.
+ * @returns A generator of maps; the last one is the solution.
+ * @throws {InputError} When the data cannot be mapped (see {@linkcode checkTrail}), or the line's mean
+ * flux has the wrong sign.
+ * @throws {NotConverged} With the last map when the goal is out of reach or iterations run out.
+ *
+ * @example
+ * ```ts
+ * import { makeProjector, maximumEntropySteps } from "@millrace/millrace/tomography";
+ * import { assertAlmostEquals } from "@std/assert";
+ *
+ * const count = 12, bins = 61;
+ * const sampling = {
+ *   count,
+ *   phase: Float64Array.from({ length: count }, (_, i) => i / count),
+ *   cycle: new Float64Array(count),
+ *   phase_width: new Float64Array(count),
+ *   start: Uint32Array.from({ length: count + 1 }, (_, i) => i * bins),
+ *   velocity_kms: Float64Array.from({ length: count * bins }, (_, k) => 20 * (k % bins - 30)),
+ *   pixel_kms: new Float64Array(count * bins).fill(20),
+ *   profile_sigma_kms: new Float64Array(count).fill(40),
+ * };
+ * const shape = { pixels: 21, half_width_kms: 400, systemic_kms: 0 };
+ * const truth = new Float64Array(441);
+ * truth[15 * 21 + 6] = 1;
+ * const flux = makeProjector(sampling, shape).forward(truth).map((f, k) => f + 0.01 * Math.cos(k * k));
+ * const trail = { sampling, flux, error: flux.map(() => 0.007) };
+ * let last;
+ * for (const state of maximumEntropySteps(trail, shape)) last = state;
+ * assertAlmostEquals(last?.reduced_chi_square ?? NaN, 1, 1e-3);
+ * ```
+ */
+export function* maximumEntropySteps(
+  trail: TrailSamples,
+  options: MaximumEntropyOptions,
+): Generator<EntropyMap, void, void> {
+  const { pixels, half_width_kms } = options;
+  const { blends = [], free_baselines = false, absorption = false } = options;
+  const warnings = checkTrail(trail, options);
+  const sign = absorption ? -1 : 1;
+  const { sampling, error } = trail;
+  const flux = trail.flux.map((f, k) => error[k] === Infinity ? 0 : sign * f);
+  const shape = { pixels, half_width_kms };
+
+  let operator: LinearOperator = blendProjector(sampling, {
+    ...options,
+    members: blends,
+  });
+  let samples: Samples = { flux, error };
+  if (free_baselines) {
+    ({ operator, samples } = freeBaselines(operator, { sampling, samples }));
+  }
+  const shares = blends.reduce((sum, member) => sum + member.flux_ratio, 1);
+  const level = options.level ?? defaultLevel({ sampling, flux, error }, { ...options, shares });
+  const prior = options.prior ?? {
+    kind: "blurred",
+    fwhm_kms: 3 * Math.sqrt(8 * Math.LN2) * median(sampling.profile_sigma_kms),
+  };
+  const start = options.start?.intensity ?? backProjected({ sampling, flux, error }, options);
+  const floor = START_FLOOR * level;
+  const steps = entropySteps({
+    operator,
+    samples,
+    prior: (image) => priorImage(prior, { ...shape, image, level }),
+    start: start.map((f) => Math.max(f / shares, floor)),
+  }, options);
+
+  const describe = (state: EntropyState): EntropyMap => {
+    const { image, prior, model, ...numbers } = state;
+    return {
+      ...numbers,
+      map: { ...shape, intensity: image },
+      prior: { ...shape, intensity: prior },
+      model: sign === 1 ? model : model.map((m) => -m),
+      level,
+      warnings,
+    };
+  };
+  try {
+    for (const state of steps) yield describe(state);
+  } catch (cause) {
+    if (!(cause instanceof NotConverged)) throw cause;
+    throw new NotConverged(cause.message, describe(cause.partial));
+  }
+}
+
+/**
+ * Runs {@linkcode maximumEntropySteps} to its end.
+ *
+ * @param trail Exposures, data, errors.
+ * @param options Map's shape, systemic velocity, default image, goal.
+ * @returns The map with its fit to the data.
+ * @throws {InputError} When the data cannot be mapped.
+ * @throws {NotConverged} With the last map when the goal is out of reach or iterations run out.
+ *
+ * @example A goal below what the data allow is said
+ * ```ts
+ * import { maximumEntropy } from "@millrace/millrace/tomography";
+ * import { NotConverged } from "@millrace/millrace/errors";
+ * import { assertThrows } from "@std/assert";
+ *
+ * const count = 8, bins = 31;
+ * const sampling = {
+ *   count,
+ *   phase: Float64Array.from({ length: count }, (_, i) => i / count),
+ *   cycle: new Float64Array(count),
+ *   phase_width: new Float64Array(count),
+ *   start: Uint32Array.from({ length: count + 1 }, (_, i) => i * bins),
+ *   velocity_kms: Float64Array.from({ length: count * bins }, (_, k) => 20 * (k % bins - 15)),
+ *   pixel_kms: new Float64Array(count * bins).fill(20),
+ *   profile_sigma_kms: new Float64Array(count).fill(40),
+ * };
+ * const flux = Float64Array.from({ length: count * bins }, (_, k) => 0.1 + Math.cos(k * k));
+ * const trail = { sampling, flux, error: flux.map(() => 0.01) };
+ * assertThrows(
+ *   () => maximumEntropy(trail, { pixels: 21, half_width_kms: 200, systemic_kms: 0 }),
+ *   NotConverged,
+ * );
+ * ```
+ */
+export function maximumEntropy(
+  trail: TrailSamples,
+  options: MaximumEntropyOptions,
+): EntropyMap {
+  let last: EntropyMap | undefined;
+  for (const state of maximumEntropySteps(trail, options)) last = state;
+  return last!;
+}
+
+function defaultLevel(
+  trail: TrailSamples,
+  options: MaximumEntropyOptions & { readonly shares: number },
+): number {
+  const { half_width_kms, systemic_kms, pixels, shares } = options;
+  const flux = meanFlux(trail, { centre_kms: systemic_kms, half_range_kms: half_width_kms });
+  if (!(flux > 0)) {
+    throw new InputError({
+      action: "make maximum-entropy map",
+      rule: options.absorption === true
+        ? "a line inverted with its sign turned must be in absorption on the whole"
+        : "a line inverted as it is must be in emission on the whole",
+      value: Number(((options.absorption === true ? -1 : 1) * flux).toPrecision(4)),
+      unit: "km/s mean equivalent width",
+      remedy: options.absorption === true
+        ? "invert it as it is"
+        : "invert it with its sign turned, or give the level of the default image",
+    });
+  }
+  return flux / shares / (pixels * mapStep(options)) ** 2;
+}
+
+function backProjected(trail: TrailSamples, options: MaximumEntropyOptions): Float64Array {
+  const { half_width_kms, systemic_kms, pixels } = options;
+  const grid = makeGrid(trail.sampling, trail, {
+    reach_kms: 1.2 * half_width_kms + Math.abs(systemic_kms),
+  });
+  return backProject({ grid }, { pixels, half_width_kms, systemic_kms }).intensity;
+}
