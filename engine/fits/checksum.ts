@@ -6,6 +6,21 @@ export interface FitsChecksums {
   readonly hdu: boolean | null;
 }
 
+// 2^20 words stay below 2^53, so their carries can wait that long.
+const CHUNK = 2 ** 22;
+
+function fold(sum: number): number {
+  while (sum >= 2 ** 32) sum = sum % 2 ** 32 + Math.floor(sum / 2 ** 32);
+  return sum;
+}
+
+function sumWords(bytes: Uint8Array): number {
+  const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+  let sum = 0;
+  for (let at = 0; at < bytes.length; at += 4) sum += view.getUint32(at);
+  return sum;
+}
+
 /**
  * The 32-bit one's complement sum of FITS 4.0, Appendix J: big-endian words, carries added back.
  *
@@ -24,22 +39,16 @@ export interface FitsChecksums {
  * ```
  */
 export function onesComplementSum(bytes: Uint8Array, start = 0): number {
-  const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
   const whole = bytes.length - bytes.length % 4;
   let sum = start;
-  for (let at = 0; at < whole;) {
-    // 2^20 words stay below 2^53, so the carries can wait that long.
-    const end = Math.min(whole, at + 2 ** 22);
-    for (; at < end; at += 4) sum += view.getUint32(at);
-    while (sum >= 2 ** 32) sum = sum % 2 ** 32 + Math.floor(sum / 2 ** 32);
+  for (let at = 0; at < whole; at += CHUNK) {
+    sum = fold(sum + sumWords(bytes.subarray(at, Math.min(whole, at + CHUNK))));
   }
   let rest = 0;
   for (let at = whole; at < whole + 4 && whole < bytes.length; at++) {
     rest = rest * 256 + (bytes[at] ?? 0);
   }
-  sum += rest;
-  while (sum >= 2 ** 32) sum = sum % 2 ** 32 + Math.floor(sum / 2 ** 32);
-  return sum;
+  return fold(sum + rest);
 }
 
 // Punctuation between digits and letters that the encoding must not use.

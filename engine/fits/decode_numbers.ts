@@ -1,4 +1,5 @@
 import { turnByteOrder } from "./byte_order.ts";
+import { toDoubles } from "./values.ts";
 import type { FitsNumbers, NumberValues } from "./values.ts";
 
 /** TFORM letters of real numbers. */
@@ -57,26 +58,36 @@ function findBlanks(data: FitsNumbers, blank: number | bigint | null): Uint8Arra
   return missing;
 }
 
-// Zero points that only shift the sign: the other signedness of each width (FITS 4.0, table 11).
+// Zero points that only shift the sign: the other signedness of each width (FITS 4.0, table 11). In
+// two's complement that is the highest bit turned over.
 function otherSignedness(data: FitsNumbers, { scale, zero }: Scaling): FitsNumbers | null {
   if (scale !== 1) return null;
-  if (data instanceof Uint8Array && zero === -128) return Int8Array.from(data, (x) => x ^ 0x80);
+  const { buffer } = data;
+  if (data instanceof Uint8Array && zero === -128) {
+    for (let k = 0; k < data.length; k++) data[k]! ^= 0x80;
+    return new Int8Array(buffer);
+  }
   if (data instanceof Int16Array && zero === 2 ** 15) {
-    return Uint16Array.from(data, (x) => x ^ 0x8000);
+    const out = new Uint16Array(buffer);
+    for (let k = 0; k < out.length; k++) out[k]! ^= 0x8000;
+    return out;
   }
   if (data instanceof Int32Array && zero === 2 ** 31) {
-    return Uint32Array.from(data, (x) => x ^ 0x80000000);
+    for (let k = 0; k < data.length; k++) data[k]! ^= 0x80000000;
+    return new Uint32Array(buffer);
   }
   if (data instanceof BigInt64Array && zero === 2 ** 63) {
-    return BigUint64Array.from(data, (x) => x + 2n ** 63n);
+    const out = new BigUint64Array(buffer);
+    for (let k = 0; k < out.length; k++) out[k]! ^= 2n ** 63n;
+    return out;
   }
   return null;
 }
 
 function scaled(data: FitsNumbers, missing: Uint8Array | null, scaling: Scaling): Float64Array {
   const { scale, zero } = scaling;
-  const out = new Float64Array(data.length);
-  for (let k = 0; k < out.length; k++) out[k] = zero + scale * Number(data[k]);
+  const out = toDoubles(data);
+  for (let k = 0; k < out.length; k++) out[k] = zero + scale * out[k]!;
   if (missing !== null) {
     for (let k = 0; k < out.length; k++) if (missing[k] === 1) out[k] = NaN;
   }

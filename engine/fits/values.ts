@@ -70,6 +70,30 @@ export type FixedValues = NumberValues | LogicalValues | BitValues | TextValues 
 export type FitsValues = FixedValues | VariableValues;
 
 /**
+ * Numbers as doubles.
+ *
+ * @param data The numbers.
+ * @returns Doubles, rounded to the nearest; a `Float64Array` is given as it is, not copied.
+ *
+ * @example
+ * ```ts
+ * import { toDoubles } from "@millrace/millrace/fits";
+ * import { assertEquals } from "@std/assert";
+ *
+ * assertEquals(toDoubles(new BigInt64Array([2n ** 53n + 1n])), new Float64Array([2 ** 53]));
+ * ```
+ */
+export function toDoubles(data: FitsNumbers): Float64Array {
+  if (data instanceof Float64Array) return data;
+  if (!(data instanceof BigInt64Array || data instanceof BigUint64Array)) {
+    return new Float64Array(data);
+  }
+  const out = new Float64Array(data.length);
+  for (let k = 0; k < out.length; k++) out[k] = Number(data[k]);
+  return out;
+}
+
+/**
  * Gives numbers, logical values or bits as doubles.
  *
  * @param values The values.
@@ -92,11 +116,10 @@ export function toNumbers(values: FitsValues): Float64Array | null {
     return null;
   }
   const { data } = values;
-  if (data instanceof Float64Array) return data;
-  const out = data instanceof BigInt64Array || data instanceof BigUint64Array
-    ? Float64Array.from(data as ArrayLike<bigint>, Number)
-    : new Float64Array(data);
+  const out = toDoubles(data);
   const missing = values.kind === "bit" ? null : values.missing;
-  if (missing !== null) missing.forEach((is, index) => is === 1 && (out[index] = NaN));
+  if (missing !== null && out !== data) {
+    for (let k = 0; k < out.length; k++) if (missing[k] === 1) out[k] = NaN;
+  }
   return out;
 }

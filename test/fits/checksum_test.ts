@@ -15,17 +15,23 @@ function slowSum(bytes: Uint8Array): number {
 Deno.test("onesComplementSum() agrees with the definition, at every length and start", () => {
   for (let seed = 1; seed <= 100; seed++) {
     const random = randomStream(seed);
-    const bytes = Uint8Array.from({ length: random.integer(50) }, () => random.integer(256));
+    const bytes = Uint8Array.from({ length: random.integer(4000) }, () => random.integer(256));
     assertEquals(onesComplementSum(bytes), slowSum(bytes));
     const cut = 4 * random.integer(Math.floor(bytes.length / 4) + 1);
     const first = onesComplementSum(bytes.subarray(0, cut));
     assertEquals(onesComplementSum(bytes.subarray(cut), first), slowSum(bytes));
+    // At an address that is no multiple of four.
+    const shifted = new Uint8Array(bytes.length + 1);
+    shifted.set(bytes, 1);
+    assertEquals(onesComplementSum(shifted.subarray(1)), slowSum(bytes));
   }
 });
 
 Deno.test("onesComplementSum() carries correctly over more words than a double can sum", () => {
   // 3 × 2^21 words of ones: their one's complement sum is all ones (minus zero).
-  assertEquals(onesComplementSum(new Uint8Array(3 * 2 ** 23).fill(255)), 0xffffffff);
+  const ones = new Uint8Array(3 * 2 ** 23 + 1).fill(255);
+  assertEquals(onesComplementSum(ones.subarray(0, -1)), 0xffffffff);
+  assertEquals(onesComplementSum(ones.subarray(1)), 0xffffffff);
 });
 
 Deno.test("encodeChecksum() writes letters and digits that bring the sum to all ones", () => {
