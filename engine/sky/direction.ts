@@ -42,7 +42,7 @@ export function unitVector({ ra_deg, dec_deg }: Direction): [x: number, y: numbe
  *
  * // Near the equator the right ascension grows by 0.64° in 50 years.
  * const { ra_deg } = directionFromEquinox({ ra_deg: 0, dec_deg: 0 }, 1950);
- * assertAlmostEquals(ra_deg, 0.6406, 1e-4);
+ * assertAlmostEquals(ra_deg, 0.6405, 1e-4);
  * ```
  */
 export function directionFromEquinox(direction: Direction, equinox_year: number): Direction {

@@ -12,6 +12,8 @@ export * from "./iso_date.ts";
 export * from "./julian_date.ts";
 export { LEAP_SECONDS_KNOWN_UNTIL, leapSecondWarnings, taiMinusUtc } from "./leap_seconds.ts";
 export * from "./line_list.ts";
+export * from "./night_sky.ts";
+export * from "./observed_windows.ts";
 export * from "./sexagesimal.ts";
 export * from "./site.ts";
 export * from "./spectral_line.ts";
