@@ -45,8 +45,14 @@ export async function main(args: readonly string[]): Promise<number> {
 type AddCommand = (finish: (status: number) => void) => Command;
 
 async function commands(): Promise<AddCommand[]> {
-  const { checkCommand } = await import("./commands/check.ts");
-  return [checkCommand] as unknown as AddCommand[];
+  const modules = await Promise.all([
+    import("./commands/check.ts").then(({ checkCommand }) => checkCommand),
+    import("./commands/trail.ts").then(({ trailCommand }) => trailCommand),
+    import("./commands/map.ts").then(({ mapCommand }) => mapCommand),
+    import("./commands/plate.ts").then(({ plateCommand }) => plateCommand),
+    import("./commands/geometry.ts").then(({ geometryCommand }) => geometryCommand),
+  ]);
+  return modules as unknown as AddCommand[];
 }
 
 function report(error: unknown): number {

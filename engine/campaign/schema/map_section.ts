@@ -7,8 +7,8 @@ export interface MapSettings {
   readonly method: "back-projection" | "entropy" | "total-variation";
   /** Velocity of the outermost pixel's centre, km/s. */
   readonly half_width_kms: number;
-  /** Pixels along each side, odd. */
-  readonly pixels: number;
+  /** Pixels along each side, odd; chosen from the resolution when absent. */
+  readonly pixels?: number;
   /** "uniform", "blurred", "axisymmetric", or a FITS file. */
   readonly prior_image: string;
   /** Goal of the fit: chi-square over the number of samples. */
@@ -24,8 +24,8 @@ export const mapSection: z.ZodType<MapSettings> = z.strictObject({
   pixels: positive.int().refine((n) => n % 2 === 1, {
     error: "must be odd, so that one pixel is at (0, 0)",
   })
-    .default(151),
+    .optional(),
   prior_image: text.default("blurred"),
   reduced_chi_square: positive.default(1),
-  resamples: nonNegative.int().default(0),
+  resamples: nonNegative.int().default(50),
 });

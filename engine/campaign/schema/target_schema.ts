@@ -1,4 +1,7 @@
 import { z } from "zod";
+import type { Model } from "../../synthesis/mod.ts";
+import { modelSection } from "./model_section.ts";
+import { weighSection, type WeighSettings } from "./weigh_section.ts";
 import { text } from "./common.ts";
 import { binarySection, type BinarySettings } from "./binary_section.ts";
 import { exposuresSection, type ExposuresSettings } from "./exposures_section.ts";
@@ -31,6 +34,10 @@ export interface TargetSettings {
   readonly lines: readonly LineSettings[];
   /** `[map]`. */
   readonly map: MapSettings;
+  /** `[model]`. */
+  readonly model: Model;
+  /** `[weigh]`. */
+  readonly weigh: WeighSettings;
   /** `[plate]`. */
   readonly plate: PlateSettings;
 }
@@ -47,5 +54,7 @@ export const targetSchema: z.ZodType<TargetSettings> = z.strictObject({
   trail: trailSection.prefault({}),
   lines: z.array(linesSection).default([]),
   map: mapSection.prefault({}),
+  model: modelSection.prefault({ parts: ["disc"] }),
+  weigh: weighSection.prefault({}),
   plate: plateSection.prefault({}),
 });

@@ -1,0 +1,47 @@
+import { type MapDocument, runMap } from "../../engine/campaign/mod.ts";
+import { targetCommand } from "../target_command.ts";
+import { plainNumber, tableLines, withError } from "../terminal/table.ts";
+
+/** `millrace map`: the velocity map. */
+export const mapCommand = targetCommand("map", {
+  summary: "the velocity map",
+  run: async ({ session, output }) => {
+    const result = await runMap(session, output);
+    return { ...result, lines: mapLines(result.document) };
+  },
+});
+
+/**
+ * The maps as a table: one row a line, then its features.
+ *
+ * @param document The map document.
+ * @returns Lines of text.
+ */
+export function mapLines(document: MapDocument): string[] {
+  return document.maps.flatMap((map) => [
+    `  ${map.line} (${plainNumber(map.rest_air_angstrom, 2)} Å in air), ${map.method}, ` +
+    `γ = ${plainNumber(map.systemic_kms)} km/s: χ²/N = ${
+      plainNumber(map.reduced_chi_square, 3)
+    }, ` +
+    `peak at (${plainNumber(map.peak.vx_kms, 0)}, ${plainNumber(map.peak.vy_kms, 0)}) km/s`,
+    ...(map.features.length === 0
+      ? ["    no compact excess over the axisymmetric part"]
+      : tableLines([
+        ["feature", "Vx / km/s", "Vy / km/s", "flux share", "significance", "nearest"],
+        ...map.features.map((feature, i) => [
+          String(i + 1),
+          withError(feature.vx_kms, feature.vx_error_kms),
+          withError(feature.vy_kms, feature.vy_error_kms),
+          plainNumber(feature.flux_fraction, 3),
+          feature.significance_sigma === null
+            ? "–"
+            : `${plainNumber(feature.significance_sigma, 1)} σ`,
+          feature.nearest ?? "–",
+        ]),
+      ], {
+        heading: true,
+        indent: 4,
+        align: ["right", "right", "right", "right", "right", "left"],
+      })),
+  ]);
+}

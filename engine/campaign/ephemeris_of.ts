@@ -1,0 +1,53 @@
+import type { Ephemeris } from "../binary/mod.ts";
+import { InputError } from "../errors.ts";
+import { heliocentricToBjd, type SplitDate } from "../sky/mod.ts";
+import { needed, type Target } from "./target.ts";
+
+/**
+ * The ephemeris of a target file, its zero brought to BJD(TDB).
+ *
+ * @param target The target.
+ * @param options Where the target is, for a heliocentric zero.
+ * @param options.direction ICRS direction; null when not known.
+ * @returns The ephemeris.
+ * @throws {InputError} When period or zero are missing, or a heliocentric zero has no direction.
+ */
+export function ephemerisOf(
+  target: Target,
+  options: { direction: { ra_deg: number; dec_deg: number } | null },
+): Ephemeris {
+  const { orbit } = target.settings;
+  const action = "fold the exposures on the orbit";
+  const period_d = needed(target, { value: orbit.period_d, key: "orbit.period_d", action });
+  const written = needed(target, {
+    value: orbit.zero_bjd_tdb ?? orbit.zero_hjd_utc ?? orbit.zero_hjd_tt,
+    key: "orbit.zero_bjd_tdb (or zero_hjd_utc, zero_hjd_tt)",
+    action,
+  });
+  const date: SplitDate = [Math.floor(written), written - Math.floor(written)];
+  let zero = date;
+  if (orbit.zero_bjd_tdb === undefined) {
+    if (options.direction === null) {
+      throw new InputError({
+        action: "bring the heliocentric zero of phase to BJD(TDB)",
+        rule: "the direction of the target must be known",
+        file: target.file,
+        key: "sky.ra_deg",
+        remedy: "give sky.ra_deg and sky.dec_deg",
+      });
+    }
+    zero = heliocentricToBjd(date, {
+      scale: orbit.zero_hjd_utc === undefined ? "tt" : "utc",
+      target: options.direction,
+    });
+  }
+  return {
+    period_d,
+    period_error_d: orbit.period_error_d ?? 0,
+    zero,
+    zero_error_d: orbit.zero_error_d ?? 0,
+    covariance_d2: orbit.zero_period_covariance_d2,
+    period_derivative: orbit.period_derivative,
+    zero_marks: orbit.zero_marks,
+  };
+}

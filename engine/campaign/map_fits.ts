@@ -1,0 +1,62 @@
+import { encodeFits, type HduSpec } from "../fits/mod.ts";
+import { fitsHead, hduName } from "./fits_head.ts";
+import type { MappedLine } from "./map_line.ts";
+import type { Target } from "./target.ts";
+import { velocityAxisCards } from "./trail_fits.ts";
+
+/**
+ * `map.fits`: for every line the velocity map and the trail that it predicts.
+ *
+ * @param target The target.
+ * @param options What to write.
+ * @param options.maps One map a line.
+ * @returns The file's bytes.
+ */
+export function mapFits(target: Target, options: { maps: readonly MappedLine[] }): Uint8Array {
+  return encodeFits([
+    fitsHead(target, {
+      content:
+        "Velocity maps: normalised flux x km/s per (km/s)^2; the sum times the pixel's area " +
+        "is the equivalent width in km/s. Donor at (0, +K2), accretor at (0, -K1).",
+    }),
+    ...options.maps.flatMap(mapHdus),
+  ]);
+}
+
+function mapHdus(mapped: MappedLine): HduSpec[] {
+  const { map, trail } = mapped;
+  const middle = (map.pixels + 1) / 2;
+  const step = (2 * map.half_width_kms) / (map.pixels - 1);
+  const axis = (n: 1 | 2, name: string) => [
+    { keyword: `CTYPE${n}`, value: name },
+    { keyword: `CUNIT${n}`, value: "km/s" },
+    { keyword: `CRPIX${n}`, value: middle },
+    { keyword: `CRVAL${n}`, value: 0 },
+    { keyword: `CDELT${n}`, value: step },
+  ];
+  return [
+    {
+      kind: "image",
+      name: hduName(trail.line.name),
+      shape: [map.pixels, map.pixels],
+      data: map.intensity,
+      unit: "s/km",
+      cards: [
+        ...axis(1, "VX"),
+        ...axis(2, "VY"),
+        { keyword: "LINENAME", value: trail.line.name },
+        { keyword: "METHOD", value: mapped.method },
+        { keyword: "SYSTEMIC", value: mapped.systemic_kms, comment: "[km/s] systemic velocity" },
+        { keyword: "REDCHISQ", value: mapped.reduced_chi_square, comment: "chi-square / samples" },
+        { keyword: "SCALE", value: mapped.scale, comment: "factor on the predicted trail" },
+      ],
+    },
+    {
+      kind: "image",
+      name: hduName(trail.line.name, "predicted"),
+      shape: [trail.grid.columns, trail.grid.rows],
+      data: mapped.model,
+      cards: velocityAxisCards(trail),
+    },
+  ];
+}

@@ -1,0 +1,96 @@
+import { join, relative, resolve } from "@std/path";
+import { InputError, type Warning } from "../errors.ts";
+import { expandGlob, readBytes, sha256 } from "../files/mod.ts";
+import { type Decision, readExposures, type Spectrum } from "../spectra/mod.ts";
+import type { Progress } from "../workers/mod.ts";
+import type { InputDigest } from "./output_head.ts";
+import { pause } from "./pause.ts";
+import type { Target } from "./target.ts";
+
+/** All exposures of a target. */
+export interface TargetExposures {
+  /** Spectra, in order of groups and files. */
+  readonly spectra: readonly Spectrum[];
+  /** What each "auto" decided. */
+  readonly decisions: readonly Decision[];
+  /** What a user should know. */
+  readonly warnings: readonly Warning[];
+  /** Files read, with digests. */
+  readonly inputs: readonly InputDigest[];
+}
+
+/**
+ * Reads every `[[exposures]]` group of a target.
+ *
+ * @param target The target.
+ * @param options Progress and interrupt.
+ * @param options.progress Told of each group's files.
+ * @param options.signal Aborts the work.
+ * @returns The exposures.
+ * @throws {InputError} When the target names no exposures, a glob finds none, or a file cannot be
+ * read as what it should be.
+ */
+export async function readTargetExposures(
+  target: Target,
+  options: { progress?: Progress; signal?: AbortSignal } = {},
+): Promise<TargetExposures> {
+  const { progress, signal } = options;
+  const { exposures, sky } = target.settings;
+  if (exposures.length === 0) {
+    throw new InputError({
+      action: "read exposures",
+      rule: "the target file must name at least one set of files",
+      file: target.file,
+      remedy: 'add a table such as [[exposures]] with files = ["night1/*.fits"]',
+    });
+  }
+  const spectra: Spectrum[] = [];
+  const decisions: Decision[] = [];
+  const warnings: Warning[] = [];
+  const inputs = new Map<string, InputDigest>();
+  for (const [group, settings] of exposures.entries()) {
+    const paths: string[] = [];
+    for (const [index, pattern] of settings.files.entries()) {
+      const key = `exposures[${group}].files[${index}]`;
+      try {
+        paths.push(...await expandGlob(pattern, { base: target.folder, key }));
+      } catch (error) {
+        if (!(error instanceof InputError)) throw error;
+        throw error.at({ file: target.file, line: target.places.get(key)?.line, key });
+      }
+    }
+    const log = settings.log === undefined ? undefined : join(target.folder, settings.log);
+    for (const [done, path] of [...new Set(paths), ...(log === undefined ? [] : [log])].entries()) {
+      progress?.(done, paths.length, "digests of exposures");
+      const name = relative(target.folder, resolve(target.folder, path));
+      inputs.set(name, {
+        file: name,
+        sha256: sha256(await readBytes(path, { decompress: false })),
+      });
+      await pause(signal);
+    }
+    const read = await readExposures([...new Set(paths)], {
+      layout: settings.layout,
+      log,
+      keys: settings.keys,
+      site: sky.site,
+      target: sky.ra_deg === undefined || sky.dec_deg === undefined
+        ? undefined
+        : { ra_deg: sky.ra_deg, dec_deg: sky.dec_deg },
+      wavelength_medium: settings.wavelength_medium,
+      wavelength_frame: settings.wavelength_frame,
+      time_scale: settings.time_scale,
+      time_place: settings.time_place,
+      time_marks: settings.time_marks,
+      resolution_angstrom: settings.resolution_angstrom,
+      resolution_kms: settings.resolution_kms,
+      resolving_power: settings.resolving_power,
+      group,
+    });
+    spectra.push(...read.spectra);
+    decisions.push(...read.decisions);
+    warnings.push(...read.warnings);
+    await pause(signal);
+  }
+  return { spectra, decisions, warnings, inputs: [...inputs.values()] };
+}

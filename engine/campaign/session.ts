@@ -1,0 +1,135 @@
+import type { Binary, Ephemeris } from "../binary/mod.ts";
+import { InputError, type Warning } from "../errors.ts";
+import type { Trail } from "../trail/mod.ts";
+import type { Progress } from "../workers/mod.ts";
+import { binaryOf } from "./binary_of.ts";
+import { ephemerisOf } from "./ephemeris_of.ts";
+import { linesOf } from "./line_of.ts";
+import { mapLine, type MappedLine } from "./map_line.ts";
+import { pause } from "./pause.ts";
+import { readTargetExposures, type TargetExposures } from "./read_target_exposures.ts";
+import type { LineSettings } from "./schema/lines_section.ts";
+import type { Target } from "./target.ts";
+import { trailOf } from "./trail_of.ts";
+
+/**
+ * One target at work: what several commands need is made once, when it is first asked for.
+ */
+export interface Session {
+  /** The target. */
+  readonly target: Target;
+  /** The exposures. */
+  readonly exposures: () => Promise<TargetExposures>;
+  /** The ephemeris. */
+  readonly ephemeris: () => Promise<Ephemeris>;
+  /** The binary; null when the target file does not fix it. */
+  readonly binary: () => Binary | null;
+  /** The trail of a line. */
+  readonly trail: (line: LineSettings) => Promise<Trail>;
+  /** The map of a line. */
+  readonly map: (line: LineSettings) => Promise<MappedLine>;
+  /** The lines, at least one. */
+  readonly lines: (action: string) => readonly LineSettings[];
+  /** Systemic velocity, km/s, with the warning where it had to be assumed. */
+  readonly systemic: () => { readonly kms: number; readonly warnings: readonly Warning[] };
+  /** Number of workers to use. */
+  readonly workers: number;
+  /** Told how far the work has come. */
+  readonly progress?: Progress;
+  /** Aborts the work. */
+  readonly signal?: AbortSignal;
+}
+
+/**
+ * Opens a session on a target.
+ *
+ * @param target The target.
+ * @param options How to work.
+ * @param options.workers Number of workers. @default 1
+ * @param options.progress Told how far the work has come.
+ * @param options.signal Aborts the work.
+ * @returns The session.
+ */
+export function openSession(
+  target: Target,
+  options: { workers?: number; progress?: Progress; signal?: AbortSignal } = {},
+): Session {
+  const { workers = 1, progress, signal } = options;
+  const exposures = once(() => readTargetExposures(target, { progress, signal }));
+  const ephemeris = once(() => {
+    const { sky } = target.settings;
+    const direction = sky.ra_deg !== undefined && sky.dec_deg !== undefined
+      ? { ra_deg: sky.ra_deg, dec_deg: sky.dec_deg }
+      : null;
+    return Promise.resolve(ephemerisOf(target, { direction }));
+  });
+  const binary = () => binaryOf(target);
+  const systemic = () => systemicOf(target);
+  const trail = perLine(async (line) => {
+    const [{ spectra }, folded] = [await exposures(), await ephemeris()];
+    await pause(signal);
+    return trailOf(spectra, { target, line, ephemeris: folded });
+  });
+  const map = perLine(async (line) => {
+    const made = await trail(line);
+    await pause(signal);
+    return mapLine(made, {
+      settings: target.settings.map,
+      systemic_kms: systemic().kms,
+      binary: binary(),
+      ephemeris: await ephemeris(),
+      seed: target.settings.seed,
+      stream: 1000 * target.settings.lines.indexOf(line),
+      progress,
+      signal,
+    });
+  });
+  return {
+    target,
+    exposures,
+    ephemeris,
+    binary,
+    trail,
+    map,
+    lines: (action) => linesOf(target, { action }),
+    systemic,
+    workers,
+    progress,
+    signal,
+  };
+}
+
+function systemicOf(target: Target): { kms: number; warnings: Warning[] } {
+  const { systemic_kms } = target.settings.orbit;
+  if (systemic_kms === "search") {
+    throw new InputError({
+      action: "take out the systemic velocity",
+      rule: 'orbit.systemic_kms must be a number: "search" is not offered yet',
+      value: systemic_kms,
+      file: target.file,
+      line: target.places.get("orbit.systemic_kms")?.line,
+    });
+  }
+  if (systemic_kms !== undefined) return { kms: systemic_kms, warnings: [] };
+  return {
+    kms: 0,
+    warnings: [{
+      code: "systemic-velocity-missing",
+      text: "orbit.systemic_kms is not given: 0 km/s is taken, and a wrong one blurs the map",
+    }],
+  };
+}
+
+function once<T>(make: () => Promise<T>): () => Promise<T> {
+  let made: Promise<T> | undefined;
+  return () => made ??= make();
+}
+
+function perLine<T>(make: (line: LineSettings) => Promise<T>): (line: LineSettings) => Promise<T> {
+  const made = new Map<LineSettings, Promise<T>>();
+  return (line) => {
+    const known = made.get(line) ?? make(line);
+    made.set(line, known);
+    return known;
+  };
+}

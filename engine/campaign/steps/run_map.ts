@@ -1,0 +1,95 @@
+import { uniqueWarnings } from "../output_head.ts";
+import type { MapFeature, MapPeak } from "../../tomography/mod.ts";
+import { jsonText, type OutputHead, outputHead } from "../output_head.ts";
+import { mapFits } from "../map_fits.ts";
+import type { MappedLine } from "../map_line.ts";
+import type { Session } from "../session.ts";
+import { type StepOutput, type StepResult, writeStep } from "./step.ts";
+
+/** `map.json`. */
+export interface MapDocument extends OutputHead {
+  /** One entry a line. */
+  readonly maps: readonly MapSummary[];
+}
+
+/** One line's map in numbers. */
+export interface MapSummary {
+  /** Name of the line. */
+  readonly line: string;
+  /** Rest wavelength in air, Å. */
+  readonly rest_air_angstrom: number;
+  /** Inversion. */
+  readonly method: string;
+  /** Pixels along each side. */
+  readonly pixels: number;
+  /** Velocity of the outermost pixel's centre, km/s. */
+  readonly half_width_kms: number;
+  /** Systemic velocity taken out, km/s. */
+  readonly systemic_kms: number;
+  /** χ² over the number of samples. */
+  readonly reduced_chi_square: number;
+  /** Number of unmasked samples. */
+  readonly sample_count: number;
+  /** Factor on the predicted trail that fits the data best. */
+  readonly scale: number;
+  /** Iterations. */
+  readonly iterations: number;
+  /** Whether the iteration met its goal. */
+  readonly converged: boolean;
+  /** Factor applied to the stated errors. */
+  readonly noise_scale: number;
+  /** Brightest place. */
+  readonly peak: MapPeak;
+  /** Compact excesses over the part that is axisymmetric about the accretor. */
+  readonly features: readonly MapFeature[];
+}
+
+/**
+ * Makes `map.fits` and `map.json`: the velocity maps of all lines.
+ *
+ * @param session The target at work.
+ * @param output Where to write.
+ * @returns Document, files, warnings.
+ */
+export async function runMap(
+  session: Session,
+  output: StepOutput,
+): Promise<StepResult<MapDocument>> {
+  const maps: MappedLine[] = [];
+  for (const line of session.lines("make the velocity map")) maps.push(await session.map(line));
+  const { inputs, warnings: reading } = await session.exposures();
+  const warnings = uniqueWarnings([
+    ...reading,
+    ...session.systemic().warnings,
+    ...maps.flatMap((mapped) => [...mapped.trail.warnings, ...mapped.warnings]),
+  ]);
+  const document: MapDocument = {
+    ...outputHead(session.target, { schema: "map/1", inputs, warnings }),
+    maps: maps.map(summary),
+  };
+  const files = await writeStep([
+    ["map.fits", mapFits(session.target, { maps })],
+    ["map.json", jsonText(document)],
+  ], output);
+  return { document, files, warnings };
+}
+
+function summary(mapped: MappedLine): MapSummary {
+  const { trail, map } = mapped;
+  return {
+    line: trail.line.name,
+    rest_air_angstrom: trail.line.air_angstrom,
+    method: mapped.method,
+    pixels: map.pixels,
+    half_width_kms: map.half_width_kms,
+    systemic_kms: mapped.systemic_kms,
+    reduced_chi_square: mapped.reduced_chi_square,
+    sample_count: mapped.sample_count,
+    scale: mapped.scale,
+    iterations: mapped.iterations,
+    converged: mapped.converged,
+    noise_scale: trail.noise_scale,
+    peak: mapped.peak,
+    features: mapped.features,
+  };
+}

@@ -1,0 +1,43 @@
+import { assertAlmostEquals, assertEquals, assertStringIncludes } from "@std/assert";
+import { runMillrace } from "./run_millrace.ts";
+
+Deno.test("millrace geometry prints one JSON document", async () => {
+  const { code, stdout, stderr } = await runMillrace([
+    "geometry",
+    "--mass-ratio",
+    "0.2",
+    "--k-donor-kms",
+    "400",
+    "--json",
+  ]);
+  assertEquals(code, 0, stderr);
+  assertEquals(stderr, "");
+  const geometry = JSON.parse(stdout);
+  assertEquals(geometry.schema, "geometry/1");
+  assertAlmostEquals(geometry.k_accretor_kms, 80, 1e-9);
+  // test/reference/roche.json holds the numbers; the engine's tests compare them.
+  assertAlmostEquals(geometry.lobe_radius_eggleton_over_a, 0.2518, 1e-3);
+});
+
+Deno.test("millrace geometry draws a picture and refuses what is not enough", async () => {
+  const good = await runMillrace(["geometry", "--mass-ratio", "0.2", "--k-donor-kms", "400"]);
+  assertEquals(good.code, 0);
+  assertStringIncludes(good.stdout, "K1 (accretor)");
+  assertStringIncludes(good.stdout, "D");
+  const bad = await runMillrace(["geometry", "--k-donor-kms", "300", "--json"]);
+  assertEquals([bad.code, bad.stdout], [2, ""]);
+  assertStringIncludes(
+    bad.stderr,
+    "Cannot build binary as mass_ratio, k_accretor_kms do not follow",
+  );
+});
+
+Deno.test("millrace names the nearest command and prints help", async () => {
+  const wrong = await runMillrace(["geometri"]);
+  assertEquals(wrong.code, 2);
+  assertStringIncludes(wrong.stderr, "Did you mean geometry?");
+  const help = await runMillrace(["--help"]);
+  assertEquals([help.code, help.stderr], [0, ""]);
+  const none = await runMillrace([]);
+  assertEquals(none.code, 2);
+});
