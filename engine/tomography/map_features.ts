@@ -98,6 +98,8 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
 
   const features: (MapFeature & { readonly height: number })[] = [];
   for (const peak of peaks(here, map.pixels)) {
+    // The corners lie beyond the velocities on which every profile was seen.
+    if (!(speedAt(peak, map) < map.half_width_kms)) continue;
     const found = blobAt(here, peak, map);
     if (found === null) continue;
     let spread: Spread | null = null;
@@ -136,6 +138,12 @@ function peaks(values: Float64Array, pixels: number): number[] {
     }
   }
   return found;
+}
+
+function speedAt(k: number, map: VelocityMap): number {
+  const column = k % map.pixels, row = (k - column) / map.pixels;
+  const middle = (map.pixels - 1) / 2;
+  return Math.hypot(column - middle, row - middle) * mapStep(map);
 }
 
 function uphill(values: Float64Array, k: number, pixels: number): number {

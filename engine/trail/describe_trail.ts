@@ -27,7 +27,8 @@ export interface DescribeOptions {
   readonly epoch: SplitDate;
   /**
    * Velocity of the features that matter, km/s.
-   * @default half of the full width of the mean profile near zero, at most the reach
+   * @default half of the separation of the mean profile's peaks, where most of a disc's light is; with
+   * one peak alone half of the full width at half maximum; at most the reach
    */
   readonly velocity_kms?: number;
   /**
@@ -152,9 +153,10 @@ export function describeTrail(trail: Trail, options: DescribeOptions): TrailDesc
   const measures = measureProfile(upright, { smooth_kms: resolution_kms.median });
   const reach = -grid.first_kms;
   const velocity_kms = options.velocity_kms ??
-    (Number.isFinite(measures.full_width_kms)
-      ? Math.min(reach, 0.5 * measures.full_width_kms)
-      : 0.5 * reach);
+    Math.min(
+      reach,
+      [measures.peak_separation_kms, measures.fwhm_kms, reach].find((width) => width > 0)! / 2,
+    );
 
   const pixels = rows.map((i) =>
     median(sampling.pixel_kms.subarray(sampling.start[i]!, sampling.start[i + 1]!))
