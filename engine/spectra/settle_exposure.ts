@@ -1,0 +1,278 @@
+import { InputError, type Warning } from "../errors.ts";
+import {
+  addDays,
+  airToVacuum,
+  type BarycentricMoment,
+  type Direction,
+  midExposureBjd,
+  type Site,
+  type SplitDate,
+  toTt,
+  ttToTdb,
+} from "../sky/mod.ts";
+import { inOrder } from "./check_axis.ts";
+import type { OneDecision } from "./decision.ts";
+import { findFrame, findMedium } from "./find_frame.ts";
+import { DIRECTION_KEYS, findDirection, findSite, SITE_KEYS } from "./find_place.ts";
+import { findResolution } from "./find_resolution.ts";
+import {
+  EXPOSURE_KEYS,
+  findDuration,
+  findTime,
+  type RecordedTime,
+  TIME_KEYS,
+} from "./find_time.ts";
+import type { ReadExposuresOptions } from "./read_options.ts";
+import type { RecordedExposure } from "./recorded_exposure.ts";
+import type { Spectrum } from "./spectrum.ts";
+
+/** An exposure settled. */
+export interface SettledExposure {
+  /** The spectrum; `error` is empty when the file gave none. */
+  readonly spectrum: Spectrum;
+  /** What was decided, from which key. */
+  readonly decisions: readonly OneDecision[];
+  /** What a user should know. */
+  readonly warnings: readonly Warning[];
+}
+
+const F_NU = /\bm?jy\b|jansky|hz/i;
+
+function timeOf(recorded: RecordedExposure, options: ReadExposuresOptions): RecordedTime {
+  const time = findTime(recorded.times, options);
+  if (time !== null) return time;
+  throw new InputError({
+    action: "read time of exposure",
+    rule: `the file or its log must give one; ${
+      TIME_KEYS.slice(0, 8).join(", ")
+    }, BJD, HJD, JD, MJD and their variants were tried`,
+    value: "none of them",
+    file: recorded.file,
+    remedy: "name the key by keys.mid or keys.start",
+  });
+}
+
+function durationOf(recorded: RecordedExposure, options: ReadExposuresOptions) {
+  const duration = findDuration(recorded.facts, options.keys ?? {});
+  if (duration === null) {
+    throw new InputError({
+      action: "read exposure time",
+      rule: `the file or its log must give it; ${EXPOSURE_KEYS.join(", ")} were tried`,
+      value: "none of them",
+      file: recorded.file,
+      remedy: "name the key by keys.exposure_s",
+    });
+  }
+  if (!(duration.exposure_s > 0 && duration.exposure_s < 1e6)) {
+    throw new InputError({
+      action: "read exposure time",
+      rule: "exposure time must be positive, and below 1e6 s",
+      value: duration.exposure_s,
+      unit: "s",
+      file: recorded.file,
+      key: duration.decision.from.split(",")[0]!,
+      remedy: "mend the header or the log, or leave the exposure out",
+    });
+  }
+  return duration;
+}
+
+interface Sight {
+  readonly site: Site | null;
+  readonly target: Direction | null;
+  readonly decisions: readonly OneDecision[];
+}
+
+// Where the observer stood and looked: needed unless both time and wavelength are barycentric.
+function sightOf(
+  recorded: RecordedExposure,
+  options: ReadExposuresOptions & { readonly needed: string | null },
+): Sight {
+  const { needed, keys = {} } = options;
+  const site = findSite(recorded.facts, { site: options.site, keys });
+  const target = findDirection(recorded.facts, { target: options.target, keys });
+  const refuse = (what: string, tried: readonly string[], remedy: string) => {
+    throw new InputError({
+      action: "correct to the barycentre",
+      rule: `${needed} needs ${what}; ${tried.join(", ")} were tried`,
+      value: "none of them",
+      file: recorded.file,
+      remedy,
+    });
+  };
+  if (needed !== null && target === null) {
+    const tried = [...DIRECTION_KEYS.ra.slice(0, 5), ...DIRECTION_KEYS.dec.slice(0, 5)];
+    refuse("the target's coordinates", tried, "state ra_deg and dec_deg under [sky]");
+  }
+  if (needed !== null && site === null) {
+    const { latitude, longitude } = SITE_KEYS;
+    const tried = ["OBSGEO-X", "OBSGEO-L", ...latitude.slice(0, 3), ...longitude.slice(0, 3)];
+    refuse("the observatory's place", tried, "state site under [sky]");
+  }
+  return {
+    site: site?.site ?? null,
+    target: target?.target ?? null,
+    decisions: [site, target].flatMap((found) => found === null ? [] : [found.decision]),
+  };
+}
+
+const HALF: Readonly<Record<RecordedTime["mark"], number>> = { start: 0.5, mid: 0, end: -0.5 };
+
+// Mid-exposure in BJD(TDB), and the moment at the observatory where the target's direction is known.
+function momentOf(
+  time: RecordedTime,
+  sight: Sight,
+  exposure_s: number,
+): { readonly mid: SplitDate; readonly moment: BarycentricMoment | null } {
+  const { date, scale, place, mark: marks } = time;
+  const moment = sight.target === null ? null : midExposureBjd(
+    { date, scale, place, marks, exposure_s },
+    { target: sight.target, site: sight.site },
+  );
+  if (place !== "barycentric") return { mid: moment!.bjd, moment };
+  // A barycentric date needs no light time: only its scale, without the rounding of a way there and back.
+  return { mid: addDays(ttToTdb(toTt(date, scale)), HALF[marks] * exposure_s / 86400), moment };
+}
+
+function assumptions(decisions: readonly OneDecision[]): Warning[] {
+  const of = (what: string) => decisions.find((d) => d.what === what && d.assumed);
+  const warnings: Warning[] = [];
+  const medium = of("wavelength medium");
+  if (medium !== undefined) {
+    warnings.push({
+      code: "wavelength-medium-assumed",
+      text:
+        `wavelengths are taken as in ${medium.value}, as no file says (the other would shift them by 83 km/s): state wavelength_medium`,
+    });
+  }
+  const scale = of("time scale");
+  if (scale !== undefined) {
+    warnings.push({
+      code: "time-scale-assumed",
+      text:
+        `times are taken as ${scale.value.toUpperCase()}, ${scale.from} (UTC and TDB differ by about 69 s): state time_scale`,
+    });
+  }
+  const mark = of("time marks");
+  if (mark !== undefined && !/DATE-OBS/.test(mark.from)) {
+    warnings.push({
+      code: "time-mark-assumed",
+      text: `times are taken as ${mark.value} of exposure, ${mark.from}: state time_marks`,
+    });
+  }
+  return warnings;
+}
+
+/**
+ * Settles one recorded exposure: decides medium and frame of its wavelengths, and, apart from them,
+ * what its time marks, in which scale and for which place; brings wavelengths to vacuum and the
+ * barycentric frame, and the time to mid-exposure in BJD(TDB). Wavelengths may be barycentric while
+ * times are UTC at the observatory.
+ *
+ * @param recorded What the file holds.
+ * @param options What is known better.
+ * @returns The spectrum, the decisions, and warnings about those that were assumed.
+ * @throws {InputError} When something needed is missing (it lists what was tried), an exposure time
+ * is not positive, or wavelengths are not monotonic.
+ *
+ * @example
+ * ```ts
+ * import { namedFacts, settleExposure } from "@millrace/millrace/spectra";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const facts = namedFacts([["BJD_TDB", "2460311.5"], ["EXPTIME", "60"], ["SPECSYS", "BARYCENT"]]);
+ * const { spectrum } = settleExposure({
+ *   source: "a.txt",
+ *   file: "a.txt",
+ *   axis: { wavelength_angstrom: Float64Array.of(5000, 5001), medium: "vacuum", decisions: [] },
+ *   flux: Float64Array.of(1, 2),
+ *   error: Float64Array.of(0.1, 0.1),
+ *   unit: "",
+ *   times: facts,
+ *   facts,
+ *   decisions: [],
+ * });
+ * assertEquals([spectrum.mid, spectrum.observer_factor], [[2460311, 0.5], null]);
+ * ```
+ */
+export function settleExposure(
+  recorded: RecordedExposure,
+  options: ReadExposuresOptions = {},
+): SettledExposure {
+  const { wavelength_medium = "auto", wavelength_frame = "auto", group = 0 } = options;
+  const { file, source, facts } = recorded;
+  const decisions: OneDecision[] = [...recorded.axis.decisions, ...recorded.decisions];
+  const inFile = <T>(work: () => T): T => {
+    try {
+      return work();
+    } catch (error) {
+      throw error instanceof InputError ? error.at({ file }) : error;
+    }
+  };
+
+  const samples = inOrder({
+    wavelength: recorded.axis.wavelength_angstrom,
+    flux: recorded.flux,
+    error: recorded.error,
+  }, { file });
+  const typical = samples.wavelength[samples.wavelength.length >> 1]!;
+  const medium = findMedium(facts, {
+    asked: wavelength_medium,
+    axis: recorded.axis.medium,
+    wavelength_angstrom: typical,
+  });
+  const frame = inFile(() => findFrame(facts, wavelength_frame));
+  const time = timeOf(recorded, options);
+  const duration = durationOf(recorded, options);
+  const needed = frame.frame !== "barycentric"
+    ? `bringing ${frame.frame} wavelengths to the barycentre`
+    : time.place !== "barycentric"
+    ? `bringing ${
+      time.place === "observatory" ? "times of the observatory" : "heliocentric times"
+    } to BJD`
+    : null;
+  const sight = sightOf(recorded, { ...options, needed });
+  decisions.push(medium.decision, frame.decision, ...time.decisions, duration.decision);
+  decisions.push(...sight.decisions);
+
+  const { mid, moment } = inFile(() => momentOf(time, sight, duration.exposure_s));
+  const applied = frame.frame === "topocentric"
+    ? moment!.observer_factor
+    : frame.frame === "heliocentric"
+    ? moment!.observer_factor / moment!.heliocentric_factor
+    : 1;
+  const vacuum = medium.medium === "air"
+    ? samples.wavelength.map((w) => w < 2000 ? w : airToVacuum(w))
+    : samples.wavelength;
+  const perFrequency = F_NU.test(recorded.unit);
+  if (perFrequency) {
+    decisions.push({
+      what: "flux",
+      value: "per frequency, brought to per wavelength",
+      from: `unit ${recorded.unit}`,
+      assumed: false,
+    });
+  }
+  // F_λ = F_ν c/λ²; the constant is left out: only its course with wavelength matters.
+  const density = (values: Float64Array) =>
+    perFrequency ? values.map((v, i) => v * (typical / samples.wavelength[i]!) ** 2) : values;
+  const wavelength_angstrom = vacuum.map((w) => w * applied);
+  const resolution = findResolution(facts, { ...options, wavelength_angstrom });
+  if (resolution !== null) decisions.push(resolution.decision);
+  return {
+    spectrum: {
+      source,
+      group,
+      wavelength_angstrom,
+      flux: density(samples.flux),
+      error: samples.error === null ? new Float64Array(0) : density(samples.error),
+      errors_given: samples.error !== null,
+      mid,
+      exposure_s: duration.exposure_s,
+      observer_factor: moment?.observer_factor ?? null,
+      resolution_angstrom: resolution?.resolution_angstrom ?? null,
+    },
+    decisions,
+    warnings: [...assumptions(decisions), ...(moment?.warnings ?? [])],
+  };
+}
