@@ -137,6 +137,39 @@ function timeVariance(ephemeris: Ephemeris, orbits: number): number {
 }
 
 /**
+ * The instant at which a number of orbits have passed since the zero: the inverse of
+ * {@linkcode orbitsSinceZero}.
+ *
+ * @param ephemeris The ephemeris; its quadratic term is used.
+ * @param orbits Orbits since the zero, whole or not.
+ * @returns BJD(TDB), its fraction in [0, 1).
+ * @throws {InputError} When the period is not positive.
+ *
+ * @example
+ * ```ts
+ * import { type Ephemeris, instantOf } from "@millrace/millrace/binary";
+ * import { assertAlmostEquals, assertEquals } from "@std/assert";
+ *
+ * const ephemeris: Ephemeris = {
+ *   period_d: 0.1, period_error_d: 0, zero: [2460000, 0.9], zero_error_d: 0,
+ *   covariance_d2: 0, period_derivative: 0, zero_marks: "donor-conjunction",
+ * };
+ * const [whole, fraction] = instantOf(ephemeris, 2.5);
+ * assertEquals(whole, 2460001);
+ * assertAlmostEquals(fraction, 0.15, 1e-12);
+ * ```
+ */
+export function instantOf(ephemeris: Ephemeris, orbits: number): SplitDate {
+  requirePeriod(ephemeris);
+  const { period_d, period_derivative, zero } = ephemeris;
+  const days = period_d * orbits * (1 + period_derivative * orbits / 2);
+  const whole = Math.floor(days);
+  const fraction = zero[1] + (days - whole);
+  const carry = Math.floor(fraction);
+  return [zero[0] + whole + carry, fraction - carry];
+}
+
+/**
  * The same ephemeris with its zero a whole number of orbits later (or earlier): phases stay, cycle
  * numbers change; errors and covariance are carried along.
  *
@@ -168,14 +201,11 @@ export function moveZero(ephemeris: Ephemeris, orbits: number): Ephemeris {
       value: orbits,
     });
   }
-  const { period_d, period_error_d, covariance_d2, period_derivative, zero } = ephemeris;
+  const { period_d, period_error_d, covariance_d2, period_derivative } = ephemeris;
   const drift = 1 + period_derivative * orbits;
-  const days = period_d * orbits * (1 + period_derivative * orbits / 2);
-  const whole = Math.floor(days);
-  const carry = Math.floor(zero[1] + (days - whole));
   return {
     ...ephemeris,
-    zero: [zero[0] + whole + carry, zero[1] + (days - whole) - carry],
+    zero: instantOf(ephemeris, orbits),
     zero_error_d: Math.sqrt(timeVariance(ephemeris, orbits)),
     period_d: period_d * drift,
     period_error_d: period_error_d * drift,
