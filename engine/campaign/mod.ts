@@ -3,6 +3,7 @@
  *
  * @module
  */
+export * from "./new_target.ts";
 export * from "./output_head.ts";
 export * from "./override.ts";
 export * from "./target.ts";

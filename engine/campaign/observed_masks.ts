@@ -12,11 +12,11 @@ import type { TrailSettings } from "./schema/trail_section.ts";
 const USUAL_RESOLUTION = 2;
 
 /** A window in air as a mask in vacuum. */
-function maskOf({ name, low_angstrom, high_angstrom }: ObservedWindow): ObservedMask {
+function maskOf(window: Omit<ObservedWindow, "source">): ObservedMask {
   return {
-    name,
-    low_angstrom: airToVacuum(low_angstrom),
-    high_angstrom: airToVacuum(high_angstrom),
+    name: window.name,
+    low_angstrom: airToVacuum(window.low_air_angstrom),
+    high_angstrom: airToVacuum(window.high_air_angstrom),
   };
 }
 
@@ -54,13 +54,8 @@ export function observedMasks(
   const named = lists(resolution_angstrom);
   return [
     ...settings.mask.flatMap((name) => named[name]().map(maskOf)),
-    ...settings.mask_observed_angstrom.map(([low_angstrom, high_angstrom]) =>
-      maskOf({
-        name: `${low_angstrom} to ${high_angstrom} Å`,
-        low_angstrom,
-        high_angstrom,
-        source: "target file",
-      })
+    ...settings.mask_observed_angstrom.map(([low, high]) =>
+      maskOf({ name: `${low} to ${high} Å`, low_air_angstrom: low, high_air_angstrom: high })
     ),
   ];
 }
