@@ -34,6 +34,6 @@ export function verifyChecksums(file: Uint8Array, span: Span): FitsChecksums {
   const whole = hasHdu ? onesComplementSum(file.subarray(offset, data_offset), sum) : 0;
   return {
     data: isGiven(wanted) ? Number(wanted) === sum : null,
-    hdu: hasHdu ? whole === 0xffffffff || whole === 0 : null,
+    hdu: hasHdu ? whole === 0xffffffff : null,
   };
 }

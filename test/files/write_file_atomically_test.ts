@@ -211,3 +211,11 @@ Deno.test("checkReplaceable() looks only at the head of a very large file", () =
     file.close();
     await checkReplaceable(path);
   }));
+
+Deno.test("checkReplaceable() reads a JSON file of some megabytes whole", () =>
+  inFolder(async (folder) => {
+    const path = join(folder, "weigh.json");
+    const document = { schema: "weigh/1", residuals: "0".repeat(3e6), version: "0.1.0" };
+    await Deno.writeTextFile(path, JSON.stringify(document));
+    await checkReplaceable(path);
+  }));

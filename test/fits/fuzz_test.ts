@@ -7,6 +7,8 @@ Deno.test("parseFits() throws nothing but InputError and never hangs when files 
   assertEquals(read + refused, 2000);
   // Mutations that always or never broke the file would test little.
   assert(read > 200 && refused > 200, `${read} read, ${refused} refused`);
-  // Not a measure of speed but of hanging: an input takes well under a millisecond.
-  assert(slowest.ms < 1000, `input ${slowest.index} took ${slowest.ms} ms`);
+  // Not a measure of speed but of hanging: an input takes well under a millisecond. One that was held
+  // up by something else on the machine gets a second chance.
+  const again = slowest.ms < 1000 ? slowest : (await fuzz(slowest.index, 1)).slowest;
+  assert(again.ms < 1000, `input ${again.index} took ${again.ms} ms`);
 });
