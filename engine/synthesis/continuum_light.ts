@@ -1,6 +1,10 @@
 import { smearingRule } from "../tomography/mod.ts";
 import type { Binary } from "../binary/mod.ts";
-import type { Occultation } from "./eclipse.ts";
+import { requirePossible } from "./check_model.ts";
+import { completeModel } from "./complete_model.ts";
+import { donorOccultation, type Occultation } from "./eclipse.ts";
+import { inclinationOf } from "./inclination.ts";
+import type { Model } from "./model.ts";
 import type { CompleteModel } from "./model_parameters.ts";
 import type { CloudPlace } from "./point_cloud.ts";
 import { legendre } from "./quadrature.ts";
@@ -9,6 +13,18 @@ import { spotHead } from "./rim_gas.ts";
 const RADII = 24;
 const AZIMUTHS = 120;
 const ABRUPT = 5;
+
+/** {@linkcode continuumLight} of a model whose eclipse may be off. */
+export function continuumInSight(
+  model: Model,
+  binary: Binary,
+): (phase: number, phase_width: number) => number {
+  const complete = completeModel(model);
+  if (!complete.eclipse.enabled) return () => 1;
+  requirePossible(complete, binary);
+  const occultation = donorOccultation(binary.mass_ratio, inclinationOf(binary));
+  return continuumLight(complete, { binary, occultation });
+}
 
 /**
  * The share of the continuum that is in sight during an exposure: one minus what the donor hides
