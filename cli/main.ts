@@ -47,6 +47,7 @@ type AddCommand = (finish: (status: number) => void) => Command;
 async function commands(): Promise<AddCommand[]> {
   const modules = await Promise.all([
     import("./commands/new.ts").then(({ newCommand }) => newCommand),
+    import("./commands/demo.ts").then(({ demoCommand }) => demoCommand),
     import("./commands/check.ts").then(({ checkCommand }) => checkCommand),
     import("./commands/trail.ts").then(({ trailCommand }) => trailCommand),
     import("./commands/map.ts").then(({ mapCommand }) => mapCommand),

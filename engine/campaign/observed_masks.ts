@@ -11,13 +11,9 @@ import type { TrailSettings } from "./schema/trail_section.ts";
 /** Width of a night-sky line where the resolution is not known, Å. */
 const USUAL_RESOLUTION = 2;
 
-/** A window in air as a mask in vacuum. */
-function maskOf(window: Omit<ObservedWindow, "source">): ObservedMask {
-  return {
-    name: window.name,
-    low_angstrom: airToVacuum(window.low_air_angstrom),
-    high_angstrom: airToVacuum(window.high_air_angstrom),
-  };
+/** A window of the kept lists as a mask. */
+function maskOf({ name, low_angstrom, high_angstrom }: ObservedWindow): ObservedMask {
+  return { name, low_angstrom, high_angstrom };
 }
 
 const lists = (resolution: number) => ({
@@ -54,8 +50,10 @@ export function observedMasks(
   const named = lists(resolution_angstrom);
   return [
     ...settings.mask.flatMap((name) => named[name]().map(maskOf)),
-    ...settings.mask_observed_angstrom.map(([low, high]) =>
-      maskOf({ name: `${low} to ${high} Å`, low_air_angstrom: low, high_air_angstrom: high })
-    ),
+    ...settings.mask_observed_angstrom.map(([low, high]) => ({
+      name: `${low} to ${high} Å`,
+      low_angstrom: airToVacuum(low),
+      high_angstrom: airToVacuum(high),
+    })),
   ];
 }

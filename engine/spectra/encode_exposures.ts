@@ -32,6 +32,8 @@ const card = (keyword: string, value: CardSpec["value"], comment: string): CardS
   comment,
 });
 
+const CREATOR = card("CREATOR", "Millrace", "program that wrote this file");
+
 function startCards(exposure: RawExposure): CardSpec[] {
   return [
     card("DATE-OBS", isoDate(exposure.start), "start of exposure"),
@@ -42,6 +44,7 @@ function startCards(exposure: RawExposure): CardSpec[] {
 function siteCards(exposure: RawExposure): CardSpec[] {
   const [x, y, z] = geocentricOfSite(exposure.site);
   return [
+    CREATOR,
     card("OBJECT", exposure.object, "target"),
     card("RA", exposure.ra_deg, "[deg] right ascension, ICRS"),
     card("DEC", exposure.dec_deg, "[deg] declination, ICRS"),
@@ -114,7 +117,7 @@ function encodeImage(exposure: RawExposure): Uint8Array {
 
 function encodeTable(exposure: RawExposure): Uint8Array {
   const { flux, flux_unit, error, wavelength_angstrom, medium } = exposure;
-  return encodeFits([{
+  return encodeFits([{ kind: "image", shape: [], data: null, cards: [CREATOR] }, {
     kind: "table",
     name: "SPECTRUM",
     cards: [...startCards(exposure), ...siteCards(exposure)],
@@ -194,6 +197,7 @@ function encodeStack(exposures: readonly RawExposure[]): Uint8Array {
 function encodeText(exposure: RawExposure): Uint8Array {
   const { flux, error, wavelength_angstrom, medium } = exposure;
   const lines = [
+    "# written by Millrace",
     `# wavelength in ${medium}, angstrom, topocentric; flux, ${exposure.flux_unit}${
       error === null ? "" : "; error, 0 = masked"
     }`,
@@ -224,7 +228,7 @@ function encodeLog(exposures: readonly RawExposure[], names: readonly string[]):
       e.resolution_angstrom ?? "",
     ].join(",")
   );
-  return new TextEncoder().encode(`${[header, ...rows].join("\n")}\n`);
+  return new TextEncoder().encode(`${["# written by Millrace", header, ...rows].join("\n")}\n`);
 }
 
 /**

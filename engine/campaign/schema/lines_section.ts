@@ -1,5 +1,7 @@
 import { z } from "zod";
+import type { Model } from "../../synthesis/mod.ts";
 import { positive, range, text } from "./common.ts";
+import { modelSection } from "./model_section.ts";
 
 const blend = z.strictObject({
   name: text.optional(),
@@ -47,6 +49,8 @@ export interface LineSettings {
   readonly traces: "accretor" | "donor";
   /** "none", or one or several template spectra. */
   readonly template: string | readonly string[];
+  /** What this line's emission is made of, where it differs from `[model]`. */
+  readonly model?: Model;
 }
 
 /** Schema of LineSettings. */
@@ -63,6 +67,7 @@ export const linesSection: z.ZodType<LineSettings> = z.strictObject({
   blends: z.array(blend).default([]),
   traces: z.enum(["accretor", "donor"]).default("accretor"),
   template: z.union([text, z.array(text)]).default("none"),
+  model: modelSection.optional(),
 }).superRefine((line, context) => {
   if (line.air_angstrom !== undefined && line.vacuum_angstrom !== undefined) {
     context.addIssue({

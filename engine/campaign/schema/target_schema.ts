@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { observationSection, type ObservationSettings } from "./observation_section.ts";
 import type { Model } from "../../synthesis/mod.ts";
 import { modelSection } from "./model_section.ts";
 import { weighSection, type WeighSettings } from "./weigh_section.ts";
@@ -36,6 +37,8 @@ export interface TargetSettings {
   readonly map: MapSettings;
   /** `[model]`. */
   readonly model: Model;
+  /** `[observation]`. */
+  readonly observation?: ObservationSettings;
   /** `[weigh]`. */
   readonly weigh: WeighSettings;
   /** `[plate]`. */
@@ -55,6 +58,7 @@ export const targetSchema: z.ZodType<TargetSettings> = z.strictObject({
   lines: z.array(linesSection).default([]),
   map: mapSection.prefault({}),
   model: modelSection.prefault({ parts: ["disc"] }),
+  observation: observationSection.optional(),
   weigh: weighSection.prefault({}),
   plate: plateSection.prefault({}),
 });
