@@ -1,5 +1,6 @@
 /** The synthesis room. @module */
 export * from "./check_model.ts";
+export * from "./compare_trail.ts";
 export * from "./complete_model.ts";
 export * from "./disc_profile.ts";
 export * from "./disc_shape.ts";
