@@ -12,6 +12,8 @@ export interface OrderedSamples {
   readonly turned: boolean;
 }
 
+const rounded = (value: number) => Number(value.toFixed(4));
+
 /**
  * Puts samples in increasing order of wavelength: turns them round when they decrease throughout.
  *
@@ -55,9 +57,9 @@ export function inOrder(
     throw new InputError({
       action,
       rule: `wavelengths must increase (or decrease) throughout, and pixel ${i + 1} does not${
-        i === 0 ? "" : ` after ${wavelength[i - 1]}`
+        i === 0 ? "" : ` after ${rounded(wavelength[i - 1]!)}`
       }`,
-      value: here,
+      value: rounded(here),
       unit: "angstrom",
       ...place,
       remedy: "join overlapping orders into one spectrum, or give each its own",

@@ -4,11 +4,13 @@ import {
   airToVacuum,
   type BarycentricMoment,
   type Direction,
+  factorOfVelocity,
   midExposureBjd,
   type Site,
   type SplitDate,
   toTt,
   ttToTdb,
+  velocityOfFactor,
 } from "../sky/mod.ts";
 import { inOrder } from "./check_axis.ts";
 import type { OneDecision } from "./decision.ts";
@@ -22,6 +24,7 @@ import {
   type RecordedTime,
   TIME_KEYS,
 } from "./find_time.ts";
+import { numberOf } from "./number_text.ts";
 import type { ReadExposuresOptions } from "./read_options.ts";
 import type { RecordedExposure } from "./recorded_exposure.ts";
 import type { Spectrum } from "./spectrum.ts";
@@ -114,6 +117,15 @@ function sightOf(
     target: target?.target ?? null,
     decisions: [site, target].flatMap((found) => found === null ? [] : [found.decision]),
   };
+}
+
+// VELOSYS is the speed of the observer against the frame of the wavelengths; writers differ in its sign,
+// so the centre of the Earth, 0.47 km/s off at most, decides.
+function statedFactor(recorded: RecordedExposure, rough: number): number | null {
+  const stated = numberOf(recorded.facts.find("VELOSYS")?.text ?? "");
+  if (stated === null) return null;
+  const factors = [stated, -stated].map((v) => factorOfVelocity(v / 1000));
+  return factors.find((f) => Math.abs(velocityOfFactor(f / rough)) < 0.6) ?? null;
 }
 
 const HALF: Readonly<Record<RecordedTime["mark"], number>> = { start: 0.5, mid: 0, end: -0.5 };
@@ -241,6 +253,17 @@ export function settleExposure(
     : frame.frame === "heliocentric"
     ? moment!.observer_factor / moment!.heliocentric_factor
     : 1;
+  let observer_factor = moment?.observer_factor ?? null;
+  if (sight.site === null && observer_factor !== null) {
+    const stated = statedFactor(recorded, observer_factor);
+    observer_factor = stated ?? observer_factor;
+    decisions.push({
+      what: "observer's frame",
+      value: stated === null ? "centre of the Earth, up to 0.47 km/s off" : "as stated",
+      from: stated === null ? "no site" : "VELOSYS",
+      assumed: stated === null,
+    });
+  }
   const vacuum = medium.medium === "air"
     ? samples.wavelength.map((w) => w < 2000 ? w : airToVacuum(w))
     : samples.wavelength;
@@ -269,7 +292,7 @@ export function settleExposure(
       errors_given: samples.error !== null,
       mid,
       exposure_s: duration.exposure_s,
-      observer_factor: moment?.observer_factor ?? null,
+      observer_factor,
       resolution_angstrom: resolution?.resolution_angstrom ?? null,
     },
     decisions,

@@ -78,11 +78,19 @@ export function selectExposures(spectra: readonly Spectrum[]): SelectedExposures
   }
   const full = spectra.filter((s) => !blank.includes(s));
   const sorted = full.toSorted((a, b) => daysBetween(a.mid, b.mid));
-  const order = sorted.filter((s, i) => s !== full[i]);
-  if (order.length > 0) {
+  // Groups follow one another however their times interlace: order counts within each.
+  const last = new Map<number, Spectrum>();
+  const late = full.filter((s) => {
+    const before = last.get(s.group);
+    last.set(s.group, s);
+    return before !== undefined && daysBetween(s.mid, before.mid) < 0;
+  });
+  if (late.length > 0) {
     warnings.push({
       code: "exposures-reordered",
-      text: `${order.length} of ${full.length} exposures were not in order of time and were sorted`,
+      text: `exposures were sorted by time, as some came before earlier ones: ${
+        listed(late.map((s) => s.source))
+      }`,
     });
   }
   const kept: Spectrum[] = [];

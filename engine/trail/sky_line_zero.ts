@@ -1,12 +1,16 @@
 import { SPEED_OF_LIGHT_KMS } from "../constants.ts";
 import { median, minimise } from "../numerics/mod.ts";
+import { nightSkyLines } from "../sky/mod.ts";
 import type { Spectrum } from "../spectra/mod.ts";
 import type { ZeroShift } from "./wavelength_zero.ts";
 
 /** Options of {@linkcode measureSkyLines}. */
 export interface SkyLineOptions {
-  /** Wavelengths of sharp night-sky lines, vacuum, observer's frame, Å. */
-  readonly lines_angstrom: readonly number[];
+  /**
+   * Wavelengths of sharp night-sky lines, vacuum, observer's frame, Å.
+   * @default the isolated lines of the kept list
+   */
+  readonly lines_angstrom?: readonly number[];
   /**
    * Half width of the fit about a line, km/s.
    * @default 250
@@ -101,9 +105,13 @@ function fitOne(
  */
 export function measureSkyLines(
   spectra: readonly Spectrum[],
-  options: SkyLineOptions,
+  options: SkyLineOptions = {},
 ): ZeroShift[] {
-  const { lines_angstrom, half_width_kms: half = 250, faintest = 10 } = options;
+  const {
+    lines_angstrom = nightSkyLines.filter((l) => l.isolated).map((l) => l.vacuum_angstrom),
+    half_width_kms: half = 250,
+    faintest = 10,
+  } = options;
   return spectra.map((spectrum) => {
     const { source, observer_factor } = spectrum;
     const fits = observer_factor === null
