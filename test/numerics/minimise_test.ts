@@ -1,6 +1,8 @@
 import { assert, assertAlmostEquals, assertEquals, assertThrows } from "@std/assert";
+import { Matrix } from "ml-matrix";
 import { InputError } from "@millrace/millrace/errors";
 import { minimise, randomStream } from "@millrace/millrace/numerics";
+import { trustRegionStep } from "../../engine/numerics/trust_region_step.ts";
 
 const of = (...values: number[]) => Float64Array.of(...values);
 const range = (n: number, f: (i: number) => number) =>
@@ -156,6 +158,43 @@ Deno.test("minimise() never leaves the bounds when it looks for differences", ()
     // tolerance of 1e-10 in the sum of squares, 0.01, leaves 1e-6 in √x.
     assertAlmostEquals(fit.parameters[0]!, 1.562488e-6, 2.5e-9);
   }
+});
+
+Deno.test("minimise() looks inwards for differences when it starts on the upper bound", () => {
+  for (const differences of ["forward", "central"] as const) {
+    const f = ([x]: Float64Array) => {
+      assert(x! <= 1, `evaluated at ${x}`);
+      return of(x! - 0.25, 2 * x! - 0.5);
+    };
+    const fit = minimise(f, of(1), { upper: [1], differences });
+    assertAlmostEquals(fit.parameters[0]!, 0.25, 1e-9);
+  }
+});
+
+Deno.test("trustRegionStep() reaches the constrained minimum of a coupled model at once", () => {
+  // ‖R p + c‖² with p1 held at 1 by its bound: then p0 = −(c0 + 2)/1 and the second row is fixed.
+  const model = { triangle: new Matrix([[1, 2], [0, 3]]), target: of(4, -9) };
+  const gradient = of(4, 2 * 4 - 27);
+  const { step, cut } = trustRegionStep(model, of(0, 0), {
+    scale: of(1, 1),
+    radius: 100,
+    bounds: { lower: of(-Infinity, -Infinity), upper: of(Infinity, 1) },
+    gradient,
+  });
+  assertAlmostEquals(step[0]!, -6, 1e-12);
+  assertEquals([step[1], cut], [1, false]);
+});
+
+Deno.test("trustRegionStep() is as long as the radius when that cuts it", () => {
+  const model = { triangle: new Matrix([[1, 2], [0, 3]]), target: of(4, -9) };
+  const { step, cut } = trustRegionStep(model, of(0, 0), {
+    scale: of(2, 1),
+    radius: 0.5,
+    bounds: { lower: of(-9, -9), upper: of(9, 9) },
+    gradient: of(4, -19),
+  });
+  assert(cut);
+  assertAlmostEquals(Math.hypot(2 * step[0]!, step[1]!), 0.5, 0.05);
 });
 
 Deno.test("minimise() agrees with an exhaustive search when bounds cut Rosenbrock's valley", () => {

@@ -43,6 +43,13 @@ Deno.test("minimiseScalar() finds minima when functions are smooth, cusped or at
   assertThrows(() => minimiseScalar((t) => t, [1, 0]), InputError, "lower end first");
 });
 
+Deno.test("minimiseScalar() is frugal when the function is nearly a parabola", () => {
+  let calls = 0;
+  minimiseScalar((x) => (calls++, Math.cosh(x - 0.7)), [-3, 5]);
+  // Golden sections alone need 40 calls for eight digits.
+  assert(calls < 20, `${calls} calls`);
+});
+
 Deno.test("gaussLegendre() is exact when the degree is 2n − 1 or less", () => {
   for (const n of [1, 2, 3, 8, 31, 64]) {
     const { nodes, weights } = gaussLegendre(n);

@@ -8,6 +8,7 @@ export type Kind =
   | "slow"
   | "input"
   | "work"
+  | "late"
   | "partial"
   | "bare"
   | "uncloneable"
@@ -46,6 +47,9 @@ export async function runTask({ kind, k }: Task, shared: Shared): Promise<unknow
       throw Object.assign(new WorkError({ action: "try", reason: `task ${k} broke` }), {
         cause: new RangeError("below"),
       });
+    case "late":
+      await new Promise((resolve) => setTimeout(resolve, 300));
+      throw new WorkError({ action: "try", reason: `task ${k} broke late` });
     case "partial":
       throw new NotConverged("Cannot try: stalled", { map: Float64Array.of(k, 2) });
     case "bare":

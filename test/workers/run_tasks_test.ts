@@ -80,6 +80,7 @@ for (const workers of [1, 2]) {
   Deno.test(`runTasks() reports the first failure in order when workers are ${workers}`, async () => {
     const kinds: Kind[] = ["slow", "noise", "work", "work", "noise", "work"];
     await assertRejects(() => run(kinds, workers), WorkError, "task 2 broke");
+    await assertRejects(() => run(["late", "work"], workers), WorkError, "task 0 broke late");
   });
 
   Deno.test(`runTasks() fails when a result cannot cross and workers are ${workers}`, async () => {
