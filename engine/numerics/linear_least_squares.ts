@@ -1,6 +1,7 @@
 import { Matrix, SingularValueDecomposition } from "ml-matrix";
 import { InputError } from "../errors.ts";
 import type { DenseMatrix } from "./dense_matrix.ts";
+import { reduceModel } from "./reduce_model.ts";
 import { requireSameLength } from "./require.ts";
 
 /** Solution of a linear least-squares problem. */
@@ -50,16 +51,16 @@ export function solveLeastSquares(
   requireSameLength(action, "rows and samples", design.rows, data.length);
   if (error) requireSameLength(action, "samples and errors", data.length, error.length);
 
-  const designRows = design.to2DArray();
-  const rows: number[][] = [];
+  const columns = design.columns;
+  const rows: number[] = [];
   const target: number[] = [];
-  for (let i = 0; i < data.length; i++) {
+  design.to2DArray().forEach((designRow, i) => {
     const sigma = error ? error[i]! : 1;
     if (!(sigma > 0)) {
       throw new InputError({ action, rule: "errors must be positive", value: sigma });
     }
-    if (sigma === Infinity) continue;
-    const row = designRows[i]!.map((value) => value / sigma);
+    if (sigma === Infinity) return;
+    const row = designRow.map((value) => value / sigma);
     const sample = data[i]! / sigma;
     if (!Number.isFinite(sample) || !row.every(Number.isFinite)) {
       throw new InputError({
@@ -69,25 +70,26 @@ export function solveLeastSquares(
         key: `sample ${i}`,
       });
     }
-    rows.push(row);
+    rows.push(...row);
     target.push(sample);
-  }
-  const columns = design.columns;
-  if (rows.length === 0 || columns === 0) {
+  });
+  if (target.length === 0 || columns === 0) {
     throw new InputError({
       action,
       rule: "there must be an unmasked sample and a parameter",
-      value: [rows.length, columns],
+      value: [target.length, columns],
     });
   }
 
-  const scaled = new Matrix(rows);
-  const lengths = Array.from({ length: columns }, (_, j) => scaled.getColumnVector(j).norm() || 1);
-  const svd = new SingularValueDecomposition(scaled.clone().divRowVector(lengths), {
-    autoTranspose: true,
-  });
+  const reduced = reduceModel(Float64Array.from(rows), Float64Array.from(target), columns);
+  const triangle = reduced.triangle;
+  const lengths = Array.from(
+    { length: columns },
+    (_, j) => triangle.getColumnVector(j).norm() || 1,
+  );
+  const svd = new SingularValueDecomposition(triangle.clone().divRowVector(lengths));
   const singular = svd.diagonal;
-  const least = singular[0]! * Number.EPSILON * Math.max(rows.length, columns);
+  const least = singular[0]! * Number.EPSILON * Math.max(target.length, columns);
   const rank = singular.filter((value) => value > least).length;
   const left = svd.leftSingularVectors;
   const right = svd.rightSingularVectors;
@@ -96,7 +98,7 @@ export function solveLeastSquares(
   const covariance = Matrix.zeros(columns, columns);
   for (let s = 0; s < rank; s++) {
     let along = 0;
-    for (let i = 0; i < target.length; i++) along += left.get(i, s) * target[i]!;
+    for (let i = 0; i < columns; i++) along += left.get(i, s) * reduced.target[i]!;
     for (let j = 0; j < columns; j++) {
       const v = right.get(j, s) / (lengths[j]! * singular[s]!);
       parameters[j]! += v * along;
@@ -106,9 +108,9 @@ export function solveLeastSquares(
       }
     }
   }
-  const chiSquare = rows.reduce((sum, row, i) => {
-    const model = row.reduce((total, value, j) => total + value * parameters[j]!, 0);
-    return sum + (target[i]! - model) ** 2;
+  const chiSquare = target.reduce((sum, sample, i) => {
+    const model = parameters.reduce((total, value, j) => total + value * rows[i * columns + j]!, 0);
+    return sum + (sample - model) ** 2;
   }, 0);
-  return { parameters, covariance, chi_square: chiSquare, rank, sample_count: rows.length };
+  return { parameters, covariance, chi_square: chiSquare, rank, sample_count: target.length };
 }

@@ -11,6 +11,7 @@ export * from "./fourier.ts";
 export * from "./gauss_legendre.ts";
 export * from "./information_criteria.ts";
 export * from "./kolmogorov.ts";
+export * from "./least_squares_fit.ts";
 export * from "./linear_least_squares.ts";
 export * from "./minimise.ts";
 export * from "./non_negative.ts";

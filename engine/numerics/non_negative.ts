@@ -1,7 +1,7 @@
 import { fcnnlsVector } from "ml-fcnnls";
-import { Matrix } from "ml-matrix";
 import { InputError, WorkError } from "../errors.ts";
 import type { DenseMatrix } from "./dense_matrix.ts";
+import { reduceModel } from "./reduce_model.ts";
 import { requireSameLength } from "./require.ts";
 
 /**
@@ -33,22 +33,24 @@ export function nonNegativeLeastSquares(
   const action = "solve non-negative least squares";
   requireSameLength(action, "rows and samples", design.rows, data.length);
   const length = Math.sqrt(Array.from(data).reduce((sum, value) => sum + value * value, 0));
-  const columns = new Matrix(design.to2DArray());
-  const lengths = Array.from(
-    { length: design.columns },
-    (_, j) => columns.getColumnVector(j).norm(),
-  );
-  if (!Number.isFinite(length) || !lengths.every(Number.isFinite)) {
+  const finite = Float64Array.from(design.to2DArray().flat());
+  if (!Number.isFinite(length) || !finite.every(Number.isFinite)) {
     throw new InputError({ action, rule: "design and data must be finite" });
   }
+  // The triangle of a QR decomposition has the same solution as the tall design.
+  const { triangle, target } = reduceModel(finite, Float64Array.from(data), design.columns);
+  const lengths = Array.from(
+    { length: design.columns },
+    (_, j) => triangle.getColumnVector(j).norm(),
+  );
   // A column of zeros changes nothing, and its parameter is 0.
   const used = lengths.flatMap((norm, j) => norm > 0 ? [j] : []);
   const parameters = new Float64Array(design.columns);
   if (used.length === 0 || length === 0) return parameters;
-  const unit = columns.subMatrixColumn(used).divRowVector(used.map((j) => lengths[j]!));
+  const unit = triangle.subMatrixColumn(used).divRowVector(used.map((j) => lengths[j]!));
   let solution: number[];
   try {
-    solution = fcnnlsVector(unit, Array.from(data, (value) => value / length), {
+    solution = fcnnlsVector(unit, Array.from(target, (value) => value / length), {
       gradientTolerance: 1e-12,
       maxIterations: 10 * used.length + 30,
     }).K.to1DArray();

@@ -14,6 +14,7 @@ export { LEAP_SECONDS_KNOWN_UNTIL, leapSecondWarnings, taiMinusUtc } from "./lea
 export * from "./line_list.ts";
 export * from "./night_sky.ts";
 export * from "./observed_windows.ts";
+export * from "./published_date.ts";
 export * from "./sexagesimal.ts";
 export * from "./site.ts";
 export * from "./spectral_line.ts";
