@@ -61,6 +61,13 @@ export function requirePossible(model: CompleteModel, binary: Binary): void {
       unit: "a",
     });
   }
+  const patterns = disc.one_armed_amplitude + disc.two_armed_amplitude;
+  if (patterns > 1) {
+    refuse("model.disc.two_armed_amplitude", disc.two_armed_amplitude, {
+      rule: `the amplitudes of both patterns must add up to 1 at most, and they are ${patterns}: ` +
+        "brightness would be negative",
+    });
+  }
   if (disc.core_equivalent_width_kms > 0 && disc.core_radius_over_a > disc.outer_radius_over_a) {
     refuse("model.disc.core_radius_over_a", disc.core_radius_over_a, {
       rule: `the core's radius must not exceed the disc's, ${disc.outer_radius_over_a} a`,

@@ -8,6 +8,9 @@ import type { PointCloud } from "./point_cloud.ts";
 /** Total variances within a cloud differ by at most this factor. */
 const CLOUD_RATIO = 1.05;
 
+/** Share of its speed by which a very fast ring may be spread. */
+const BLEND = 0.01;
+
 /** One point of the disc, before the points are gathered into clouds. */
 interface DiscPoint {
   readonly x: number;
@@ -53,7 +56,7 @@ export function discClouds(
     }
   };
   place(
-    discRings(disc, binary, sigma_kms),
+    discRings(disc, binary, { sigma_kms, blend: BLEND }),
     shear,
     (ring, count) => gasOf(disc, binary, ring, count),
   );

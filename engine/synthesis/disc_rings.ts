@@ -45,32 +45,34 @@ function coreSpeed(disc: CompleteModel["disc"], binary: Binary): number {
 
 /**
  * The disc as rings whose sum, seen with a Gaussian of at least `sigma_kms`, is the disc: a
- * Gauss–Legendre rule in the speed of rotation, so fine that the sum converges exponentially.
+ * Gauss–Legendre rule in the speed of rotation, so fine that the sum converges exponentially. With
+ * `blend`, rings that turn so fast that this share of their speed exceeds the Gaussian are spread by
+ * it: that bounds the number of rings, at 5e-5 of the profile's peak.
  */
 export function discRings(
   disc: CompleteModel["disc"],
   binary: Binary,
-  sigma_kms: number,
+  { sigma_kms, blend = 0 }: { readonly sigma_kms: number; readonly blend?: number },
 ): DiscRing[] {
   const { inner_radius_over_a, outer_radius_over_a, emissivity_index: beta } = disc;
   const rim = disc.keplerian_factor * keplerianSpeed(outer_radius_over_a, binary);
   const fastest = (inner_radius_over_a / outer_radius_over_a) ** -0.5;
-  const panels = Math.ceil((fastest - 1) * rim / (PANEL_SIGMA * sigma_kms));
-  const half = (fastest - 1) / panels / 2;
   const scale = disc.equivalent_width_kms /
     radialLight([inner_radius_over_a / outer_radius_over_a, 1], beta);
   const { nodes, weights } = legendre(POINTS);
   const rings: DiscRing[] = [];
-  for (let p = 0; p < panels; p++) {
+  for (let low = 1, high; low < fastest; low = high) {
+    const spread = blend * rim * low > sigma_kms ? blend * rim * low : 0;
+    high = Math.min(fastest, low + PANEL_SIGMA * Math.max(sigma_kms, spread) / rim);
     for (let k = 0; k < POINTS; k++) {
-      const u = 1 + (2 * p + 1 + nodes[k]!) * half;
+      const u = low + (high - low) * (1 + nodes[k]!) / 2;
       const radius_over_a = outer_radius_over_a * u ** -2;
       rings.push({
         radius_over_a,
         speed_kms: rim * u,
         // r = u^−2, so r^(1−β) dr is 2 u^(2β−5) du.
-        light_kms: scale * weights[k]! * half * 2 * u ** (2 * beta - 5),
-        sigma_kms: turbulence(disc, radius_over_a),
+        light_kms: scale * weights[k]! * (high - low) * u ** (2 * beta - 5),
+        sigma_kms: Math.hypot(turbulence(disc, radius_over_a), spread),
       });
     }
   }

@@ -45,7 +45,7 @@ export function discTables(
   },
 ): (exposure: ExposureSamples) => void {
   const sigma_kms = finestSigma(disc, instrument_sigma_kms);
-  const rings = discRings(disc, binary, sigma_kms);
+  const rings = discRings(disc, binary, { sigma_kms });
   const core = coreRings(disc, binary, sigma_kms);
   const step = sigma_kms / POINTS_PER_SIGMA;
   const reach = Math.max(

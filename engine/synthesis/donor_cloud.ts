@@ -26,7 +26,7 @@ function tilesOf(mass_ratio: number, rings: number): DonorSurface {
 /**
  * The donor's surface as tiles. Irradiated: re-emission in proportion to the accretor's light that
  * falls on a tile, cos(incidence)/distance², none in the disc's shadow and none beyond the horizon
- * (Horne & Schneider 1989, ApJ 343, 888). Photospheric: absorption in proportion to the tile's
+ * (Muñoz-Darias, Casares & Martínez-Pais 2005, ApJ 635, 502). Photospheric: absorption in proportion to the tile's
  * flux, ∝ g^4β (von Zeipel 1924, MNRAS 84, 665; Lucy 1967, Z. Astrophys. 65, 89), less the share
  * that heating quenches (Wade & Horne 1988, ApJ 324, 411). Either is seen as cos μ times the linear
  * law of limb darkening.

@@ -37,6 +37,10 @@ Deno.test("checkModel() refuses what cannot be, and synthesize() with it", () =>
     refusal({ parts: ["spot"], disc: { outer_radius_over_a: 0.08 } }),
     "Cannot build model as the spot must lie on the stream, which runs from L1 at 0.6504 a to its closest approach at 0.0974 a: current value is 0.08 a (key model.disc.outer_radius_over_a)",
   );
+  assertEquals(
+    refusal({ parts: ["disc"], disc: { one_armed_amplitude: 0.5, two_armed_amplitude: 0.75 } }),
+    "Cannot build model as the amplitudes of both patterns must add up to 1 at most, and they are 1.25: brightness would be negative: current value is 0.75 (key model.disc.two_armed_amplitude)",
+  );
   const core = { core_equivalent_width_kms: 10, core_radius_over_a: 0.4 };
   assertEquals(
     refusal({ parts: ["disc"], disc: core }),

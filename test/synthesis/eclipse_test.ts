@@ -3,6 +3,7 @@ import { binaryFrom, lagrangePoints } from "@millrace/millrace/binary";
 import { randomStream } from "@millrace/millrace/numerics";
 import { isOcculted, type Model, synthesize, synthesizeParts } from "@millrace/millrace/synthesis";
 import { donorOccultation } from "../../engine/synthesis/eclipse.ts";
+import roche from "../reference/roche.json" with { type: "json" };
 import { binary, evenSampling, moments } from "./samplings.ts";
 
 const edge_on = { ...binary, inclination_deg: 82 };
@@ -127,6 +128,27 @@ Deno.test("the accretor's eclipse is wider for larger inclination and larger mas
   assertAlmostEquals(halfWidth(0.3, 90) / (Math.asin(0.2813) / (2 * Math.PI)), 1, 0.05);
 });
 
+Deno.test("the donor's silhouette is the reference's lobe from above, from the side and from behind", () => {
+  // reference/roche.json: outline and radii of the exact lobe (numpy, scipy); tolerance 1e-10.
+  for (const c of roche.cases) {
+    const q = c.q;
+    // From above, i = 0, the outline in the orbital plane; the corner at L1 is left out.
+    for (const [k, x] of c.outline_x.entries()) {
+      if (k === 16) continue;
+      const y = c.outline_y[k]!;
+      const at = (share: number) => [1 + share * (x - 1), share * y, -0.9] as const;
+      assert(hides(at(0.9999), { q, i: 0, phase: 0 }), `${c.id} inside ${k}`);
+      assert(!hides(at(1.0001), { q, i: 0, phase: 0 }), `${c.id} outside ${k}`);
+    }
+    // From the side, phase 0.25, the poles and the back.
+    const side = { q, i: 90, phase: 0.25 };
+    for (const [radius, dx, dz] of [[c.donor_R_pole, 0, 1], [c.donor_R_back, 1, 0]] as const) {
+      assert(hides([1 + 0.9999 * radius * dx, 0.9, 0.9999 * radius * dz], side), c.id);
+      assert(!hides([1 + 1.0001 * radius * dx, 0.9, 1.0001 * radius * dz], side), c.id);
+    }
+  }
+});
+
 Deno.test("synthesize() of an eclipsed disc hides the approaching side first", () => {
   const model: Model = { parts: ["disc"], eclipse: { enabled: true } };
   const sampling = evenSampling([-0.045, 0.045, 0.25]);
@@ -149,6 +171,7 @@ Deno.test("synthesize() gives the same disc by tables and by points", () => {
     { parts: ["disc"], disc: { turbulence_kms: 50, turbulence_index: 0.8 } },
     { parts: ["disc"], disc: { two_armed_amplitude: 0.5, two_armed_pitch_deg: 25 } },
     { parts: ["disc"], disc: { core_equivalent_width_kms: 300 } },
+    { parts: ["disc"], disc: { inner_radius_over_a: 0.001 } },
   ];
   for (const model of models) {
     const tables = synthesize(model, { binary: edge_on, sampling });
