@@ -1,7 +1,7 @@
 import type { SplitDate, TimeMark, TimePlace, TimeScale } from "../sky/mod.ts";
 import type { OneDecision } from "./decision.ts";
-import { type Fact, type Facts, firstFact } from "./facts.ts";
-import { numberOf } from "./number_text.ts";
+import { type Facts, firstFact } from "./facts.ts";
+import { markOf, placeOf, scaleOf, type TimeKey } from "./time_meaning.ts";
 import { withTimeOfDay, writtenTime } from "./written_time.ts";
 
 /** A time as recorded, and what it means. */
@@ -41,15 +41,7 @@ export interface FindTimeOptions {
   readonly time_marks?: "auto" | TimeMark;
 }
 
-interface Candidate {
-  readonly key: string;
-  /** What it marks by definition or custom. */
-  readonly mark: TimeMark;
-  /** Whether the FITS standard defines the mark. */
-  readonly defined: boolean;
-}
-
-function candidates(prefixes: readonly string[]): Candidate[] {
+function candidates(prefixes: readonly string[]): TimeKey[] {
   const spell = (stem: string) => {
     const joined = ["TDB", "TT", "UTC"].flatMap((
       s,
@@ -68,7 +60,7 @@ function candidates(prefixes: readonly string[]): Candidate[] {
 }
 
 // FITS 4.0, table 30, then the custom of the trade.
-const CANDIDATES: readonly Candidate[] = [
+const CANDIDATES: readonly TimeKey[] = [
   { key: "DATE-AVG", mark: "mid", defined: true },
   { key: "DATE-BEG", mark: "start", defined: true },
   { key: "DATE-OBS", mark: "start", defined: false },
@@ -105,92 +97,6 @@ const TIME_OF_DAY = [
 /** Keys that are looked up for a time, in order. */
 export const TIME_KEYS: readonly string[] = CANDIDATES.map((c) => c.key);
 
-function markOf(fact: Fact, candidate: Candidate, asked: "auto" | TimeMark) {
-  if (asked !== "auto") return { mark: asked, from: "time_marks", assumed: false };
-  if (candidate.defined) return { mark: candidate.mark, from: fact.key, assumed: false };
-  const said: [RegExp, TimeMark][] = [
-    [/\bmid|cent(re|er)|\bmean\b|average/i, "mid"],
-    [/\bstart|\bbegin|\bshutter open/i, "start"],
-    [/\bend\b|\bstop\b|\bshutter close/i, "end"],
-  ];
-  const found = said.find(([words]) =>
-    words.test(`${fact.key.replace(/_/g, " ")} ${fact.comment}`)
-  );
-  if (found !== undefined) {
-    return { mark: found[1], from: `${fact.key} / ${fact.comment}`, assumed: false };
-  }
-  return { mark: candidate.mark, from: `custom for ${fact.key}`, assumed: true };
-}
-
-function placeOf(fact: Fact, facts: Facts, asked: "auto" | TimePlace) {
-  if (asked !== "auto") return { place: asked, from: "time_place", assumed: false };
-  const words = `${fact.key} ${fact.comment}`;
-  if (/BJD|barycent/i.test(words)) {
-    return { place: "barycentric" as const, from: fact.key, assumed: false };
-  }
-  if (/HJD|heliocent/i.test(words)) {
-    return { place: "heliocentric" as const, from: fact.key, assumed: false };
-  }
-  const reference = facts.find("TREFPOS");
-  if (reference !== undefined && /^(DATE|MJD)[-_]/i.test(fact.key)) {
-    const text = reference.text.toUpperCase();
-    const from = `TREFPOS = '${reference.text}'`;
-    if (text.startsWith("BARY")) return { place: "barycentric" as const, from, assumed: false };
-    if (text.startsWith("HELIO")) return { place: "heliocentric" as const, from, assumed: false };
-    if (/^(TOPO|GEO)/.test(text)) return { place: "observatory" as const, from, assumed: false };
-  }
-  return { place: "observatory" as const, from: `custom for ${fact.key}`, assumed: true };
-}
-
-const SCALES: Readonly<Record<string, TimeScale>> = {
-  UTC: "utc",
-  GMT: "utc",
-  UT: "utc",
-  UT1: "utc",
-  TT: "tt",
-  TDT: "tt",
-  ET: "tt",
-  TDB: "tdb",
-  TCB: "tdb",
-  TAI: "tai",
-  IAT: "tai",
-};
-
-function scaleOf(fact: Fact, facts: Facts, parts: { asked: "auto" | TimeScale; place: TimePlace }) {
-  const { asked, place } = parts;
-  if (asked !== "auto") return { scale: asked, from: "time_scale", assumed: false };
-  const named = /(TDB|TDT|TAI|UTC|TT|UT)/i.exec(fact.key.replace(/^(UTSTART|UTMID\w*)$/i, "UT"))
-    ?.[1];
-  if (named !== undefined) {
-    return { scale: SCALES[named.toUpperCase()]!, from: fact.key, assumed: false };
-  }
-  const commented = /\b(TDB|TDT|TAI|UTC|TT|UT)\b/i.exec(fact.comment)?.[1];
-  if (commented !== undefined) {
-    return {
-      scale: SCALES[commented.toUpperCase()]!,
-      from: `${fact.key} / ${fact.comment}`,
-      assumed: false,
-    };
-  }
-  const system = facts.find("TIMESYS");
-  const known = system === undefined
-    ? undefined
-    : SCALES[system.text.toUpperCase().replace(/\(.*/, "")];
-  if (known !== undefined && place === "observatory") {
-    return { scale: known, from: `TIMESYS = '${system!.text}'`, assumed: false };
-  }
-  if (place === "barycentric") {
-    return { scale: "tdb" as const, from: "custom for barycentric dates", assumed: true };
-  }
-  const standard = /^(DATE|MJD)[-_]/i.test(fact.key);
-  const from = place === "heliocentric"
-    ? "custom for heliocentric dates"
-    : standard
-    ? "no TIMESYS: UTC by FITS 4.0"
-    : `custom for ${fact.key}`;
-  return { scale: "utc" as const, from, assumed: !standard };
-}
-
 /**
  * Finds the time of an exposure among its facts: the keys of FITS 4.0 first, then those in common
  * use, and decides apart what it marks, for which place it holds and in which scale it is told.
@@ -198,6 +104,7 @@ function scaleOf(fact: Fact, facts: Facts, parts: { asked: "auto" | TimeScale; p
  * @param facts The facts of the exposure.
  * @param options Names of keys, and what is known better.
  * @returns The time; null when there is none.
+ * @throws {InputError} When TIMESYS names a scale that is not read.
  *
  * @example
  * ```ts
@@ -210,7 +117,7 @@ function scaleOf(fact: Fact, facts: Facts, parts: { asked: "auto" | TimeScale; p
  */
 export function findTime(facts: Facts, options: FindTimeOptions = {}): RecordedTime | null {
   const { keys = {}, time_scale = "auto", time_place = "auto", time_marks = "auto" } = options;
-  const named = (["mid", "start", "end"] as const).flatMap((mark): Candidate[] =>
+  const named = (["mid", "start", "end"] as const).flatMap((mark): TimeKey[] =>
     keys[mark] === undefined ? [] : [{ key: keys[mark], mark, defined: true }]
   );
   for (const candidate of [...named, ...CANDIDATES]) {
@@ -248,67 +155,6 @@ export function findTime(facts: Facts, options: FindTimeOptions = {}): RecordedT
         { what: "time place", value: place, ...byPlace },
         { what: "time scale", value: scale, ...byScale },
       ],
-    };
-  }
-  return null;
-}
-
-/** An exposure time, and where it stood. */
-export interface RecordedDuration {
-  /** Exposure time, s. */
-  readonly exposure_s: number;
-  /** What was decided. */
-  readonly decision: OneDecision;
-}
-
-/** Keys that are looked up for an exposure time, in order. */
-export const EXPOSURE_KEYS: readonly string[] = [
-  "XPOSURE",
-  "EXPTIME",
-  "EXPOSURE",
-  "exposure_s",
-  "EXP_TIME",
-  "EXPOTIME",
-  "TEXPTIME",
-  "ITIME",
-  "TELAPSE",
-  "DURATION",
-];
-
-/**
- * Finds the exposure time among the facts of an exposure.
- *
- * @param facts The facts.
- * @param keys Names of keys by what they hold: `exposure_s`.
- * @returns The exposure time, whatever its sign; null when there is none.
- *
- * @example
- * ```ts
- * import { findDuration, namedFacts } from "@millrace/millrace/spectra";
- * import { assertEquals } from "@std/assert";
- *
- * assertEquals(findDuration(namedFacts([["EXPTIME", "300.0"]]), {})?.exposure_s, 300);
- * ```
- */
-export function findDuration(
-  facts: Facts,
-  keys: Readonly<Record<string, string>>,
-): RecordedDuration | null {
-  const wanted = keys["exposure_s"] === undefined ? EXPOSURE_KEYS : [keys["exposure_s"]];
-  for (const key of wanted) {
-    const fact = facts.find(key);
-    const value = fact === undefined ? null : numberOf(fact.text);
-    if (fact === undefined || value === null) continue;
-    const minutes = /\bmin(utes?)?\b/i.test(fact.comment);
-    const unit = minutes ? `min (${fact.comment})` : "s";
-    return {
-      exposure_s: minutes ? 60 * value : value,
-      decision: {
-        what: "exposure time",
-        value: minutes ? "minutes" : "seconds",
-        from: `${fact.key}, ${unit}`,
-        assumed: false,
-      },
     };
   }
   return null;

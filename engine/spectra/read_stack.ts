@@ -1,8 +1,9 @@
 import { InputError } from "../errors.ts";
 import type { FitsFile, Hdu } from "../fits/mod.ts";
 import { type Fact, type Facts, headerFacts, joinFacts } from "./facts.ts";
-import { EXPOSURE_KEYS, findTime, TIME_KEYS } from "./find_time.ts";
-import { type FluxImage, openFluxImage } from "./read_image.ts";
+import { EXPOSURE_KEYS } from "./find_duration.ts";
+import { findTime, TIME_KEYS } from "./find_time.ts";
+import { type FluxImage, openFluxImage } from "./flux_image.ts";
 import type { RecordedExposure } from "./recorded_exposure.ts";
 import { tableRowFacts } from "./table_facts.ts";
 

@@ -1,32 +1,14 @@
 import { InputError, type Warning } from "../errors.ts";
-import {
-  addDays,
-  airToVacuum,
-  type BarycentricMoment,
-  type Direction,
-  factorOfVelocity,
-  midExposureBjd,
-  type Site,
-  type SplitDate,
-  toTt,
-  ttToTdb,
-  velocityOfFactor,
-} from "../sky/mod.ts";
+import { airToVacuum } from "../sky/mod.ts";
 import { inOrder } from "./check_axis.ts";
 import type { OneDecision } from "./decision.ts";
+import { EXPOSURE_KEYS, findDuration } from "./find_duration.ts";
 import { findFrame, findMedium } from "./find_frame.ts";
-import { DIRECTION_KEYS, findDirection, findSite, SITE_KEYS } from "./find_place.ts";
 import { findResolution } from "./find_resolution.ts";
-import {
-  EXPOSURE_KEYS,
-  findDuration,
-  findTime,
-  type RecordedTime,
-  TIME_KEYS,
-} from "./find_time.ts";
-import { numberOf } from "./number_text.ts";
+import { findTime, type RecordedTime, TIME_KEYS } from "./find_time.ts";
 import type { ReadExposuresOptions } from "./read_options.ts";
 import type { RecordedExposure } from "./recorded_exposure.ts";
+import { momentOf, sightOf, statedFactor } from "./sight_line.ts";
 import type { Spectrum } from "./spectrum.ts";
 
 /** An exposure settled. */
@@ -78,72 +60,6 @@ function durationOf(recorded: RecordedExposure, options: ReadExposuresOptions) {
     });
   }
   return duration;
-}
-
-interface Sight {
-  readonly site: Site | null;
-  readonly target: Direction | null;
-  readonly decisions: readonly OneDecision[];
-}
-
-// Where the observer stood and looked: needed unless both time and wavelength are barycentric.
-function sightOf(
-  recorded: RecordedExposure,
-  options: ReadExposuresOptions & { readonly needed: string | null },
-): Sight {
-  const { needed, keys = {} } = options;
-  const site = findSite(recorded.facts, { site: options.site, keys });
-  const target = findDirection(recorded.facts, { target: options.target, keys });
-  const refuse = (what: string, tried: readonly string[], remedy: string) => {
-    throw new InputError({
-      action: "correct to the barycentre",
-      rule: `${needed} needs ${what}; ${tried.join(", ")} were tried`,
-      value: "none of them",
-      file: recorded.file,
-      remedy,
-    });
-  };
-  if (needed !== null && target === null) {
-    const tried = [...DIRECTION_KEYS.ra.slice(0, 5), ...DIRECTION_KEYS.dec.slice(0, 5)];
-    refuse("the target's coordinates", tried, "state ra_deg and dec_deg under [sky]");
-  }
-  if (needed !== null && site === null) {
-    const { latitude, longitude } = SITE_KEYS;
-    const tried = ["OBSGEO-X", "OBSGEO-L", ...latitude.slice(0, 3), ...longitude.slice(0, 3)];
-    refuse("the observatory's place", tried, "state site under [sky]");
-  }
-  return {
-    site: site?.site ?? null,
-    target: target?.target ?? null,
-    decisions: [site, target].flatMap((found) => found === null ? [] : [found.decision]),
-  };
-}
-
-// VELOSYS is the speed of the observer against the frame of the wavelengths; writers differ in its sign,
-// so the centre of the Earth, 0.47 km/s off at most, decides.
-function statedFactor(recorded: RecordedExposure, rough: number): number | null {
-  const stated = numberOf(recorded.facts.find("VELOSYS")?.text ?? "");
-  if (stated === null) return null;
-  const factors = [stated, -stated].map((v) => factorOfVelocity(v / 1000));
-  return factors.find((f) => Math.abs(velocityOfFactor(f / rough)) < 0.6) ?? null;
-}
-
-const HALF: Readonly<Record<RecordedTime["mark"], number>> = { start: 0.5, mid: 0, end: -0.5 };
-
-// Mid-exposure in BJD(TDB), and the moment at the observatory where the target's direction is known.
-function momentOf(
-  time: RecordedTime,
-  sight: Sight,
-  exposure_s: number,
-): { readonly mid: SplitDate; readonly moment: BarycentricMoment | null } {
-  const { date, scale, place, mark: marks } = time;
-  const moment = sight.target === null ? null : midExposureBjd(
-    { date, scale, place, marks, exposure_s },
-    { target: sight.target, site: sight.site },
-  );
-  if (place !== "barycentric") return { mid: moment!.bjd, moment };
-  // A barycentric date needs no light time: only its scale, without the rounding of a way there and back.
-  return { mid: addDays(ttToTdb(toTt(date, scale)), HALF[marks] * exposure_s / 86400), moment };
 }
 
 function assumptions(decisions: readonly OneDecision[]): Warning[] {
@@ -234,7 +150,7 @@ export function settleExposure(
     wavelength_angstrom: typical,
   });
   const frame = inFile(() => findFrame(facts, wavelength_frame));
-  const time = timeOf(recorded, options);
+  const time = inFile(() => timeOf(recorded, options));
   const duration = durationOf(recorded, options);
   const needed = frame.frame !== "barycentric"
     ? `bringing ${frame.frame} wavelengths to the barycentre`

@@ -8,6 +8,7 @@ import { type PhaseCoverage, phaseCoverage } from "./phase_coverage.ts";
 import { measureProfile, type ProfileMeasures } from "./profile_measures.ts";
 import { FWHM_OVER_SIGMA } from "./profile_width.ts";
 import type { Trail } from "./trail.ts";
+import { trailAdvice } from "./trail_advice.ts";
 
 /** Lowest, median and highest of a quantity over exposures. */
 export interface Spread {
@@ -128,10 +129,40 @@ function orbitalAmplitude(values: Float64Array, phase: Float64Array): number {
  *
  * @example
  * ```ts
- * import { describeTrail } from "@millrace/millrace/trail";
- * import { assertEquals } from "@std/assert";
+ * import { describeTrail, makeTrail } from "@millrace/millrace/trail";
+ * import { lineNamed } from "@millrace/millrace/sky";
+ * import { assertAlmostEquals } from "@std/assert";
  *
- * assertEquals(typeof describeTrail, "function");
+ * const line = lineNamed("H beta");
+ * const ephemeris = {
+ *   period_d: 0.1,
+ *   period_error_d: 1e-6,
+ *   zero: [2460311, 0.5],
+ *   zero_error_d: 1e-4,
+ *   covariance_d2: 0,
+ *   period_derivative: 0,
+ *   zero_marks: "donor-conjunction",
+ * } as const;
+ * const wavelength_angstrom = Float64Array.from({ length: 500 }, (_, i) => 4740 + 0.5 * i);
+ * const spectra = Array.from({ length: 20 }, (_, k) => ({
+ *   source: `${k}.fits`,
+ *   group: 0,
+ *   wavelength_angstrom,
+ *   flux: wavelength_angstrom.map((w) =>
+ *     100 + 0.001 * k + 200 * Math.exp(-(((w - line.vacuum_angstrom) / 8) ** 2))
+ *   ),
+ *   error: wavelength_angstrom.map(() => 5),
+ *   errors_given: true,
+ *   mid: [2460311, 0.5 + 0.005 * k] as const,
+ *   exposure_s: 300,
+ *   observer_factor: 1,
+ *   resolution_angstrom: wavelength_angstrom.map(() => 1.2),
+ * }));
+ * const trail = makeTrail(spectra, { line, ephemeris, noise_scale: 1 });
+ * const told = describeTrail(trail, { ephemeris, epoch: [2460311, 0.55], velocity_kms: 500 });
+ * // 300 s of 8640 s, at 2 pi 500 km/s per orbit.
+ * assertAlmostEquals(told.smear_kms.median, 2 * Math.PI * 500 * 300 / 8640, 1e-9);
+ * assertAlmostEquals(told.phase_error, 1e-3, 1e-5);
  * ```
  */
 export function describeTrail(trail: Trail, options: DescribeOptions): TrailDescription {
@@ -177,66 +208,8 @@ export function describeTrail(trail: Trail, options: DescribeOptions): TrailDesc
   const level = trail.continuum.reduce((a, b) => a + b, 0) / sampling.count;
   const variance = trail.continuum.reduce((sum, c) => sum + (c - level) ** 2, 0) / sampling.count;
 
-  const warnings: Warning[] = [];
-  const warn = (code: string, text: string) => warnings.push({ code, text, line: line.name });
-  if (coverage.largest_half_gap > 0.08) {
-    warn(
-      "phase-gap",
-      `no exposure covers ${
-        (100 * (1 - coverage.covered_half_fraction)).toFixed(0)
-      } % of the half orbit, ${
-        coverage.largest_half_gap.toFixed(2)
-      } cycles at a stretch: a map will show streaks`,
-    );
-  }
-  if (smear_kms.median > 1.5 * resolution_kms.median) {
-    warn(
-      "smeared",
-      `a feature at ${velocity_kms.toFixed(0)} km/s moves by ${
-        smear_kms.median.toFixed(0)
-      } km/s within an exposure, ${
-        (smear_kms.median / resolution_kms.median).toFixed(1)
-      } resolution elements: shorter exposures would show more`,
-    );
-  }
-  if (sampling.count < 0.7 * needed) {
-    warn(
-      "few-exposures",
-      `${sampling.count} exposures are fewer than the ${needed} per half orbit that features at ${
-        velocity_kms.toFixed(0)
-      } km/s need at this resolution`,
-    );
-  }
   const phase_error_kms = 2 * Math.PI * velocity_kms * sigma_phase;
-  if (phase_error_kms > resolution_kms.median) {
-    warn(
-      "phase-uncertain",
-      `the ephemeris leaves the phase uncertain by ${
-        sigma_phase.toFixed(3)
-      } cycles: the map may be turned by ${(360 * sigma_phase).toFixed(0)} deg, ${
-        phase_error_kms.toFixed(0)
-      } km/s at ${velocity_kms.toFixed(0)} km/s`,
-    );
-  }
-  if (ephemeris.zero_marks === "emission-crossing") {
-    warn(
-      "zero-not-donor",
-      "the zero of phase is not the donor's conjunction: maps are rotated by an unknown angle and no structures are named",
-    );
-  }
-  if (net === "absorption") {
-    warn(
-      "line-in-absorption",
-      "the line is net in absorption: it is inverted with its sign turned, which is right only where it is nowhere above the continuum",
-    );
-  }
-  if (net === "emission with absorption core") {
-    warn(
-      "absorption-core",
-      "the mean profile falls below the continuum: entropy maps cannot be negative and will put a hole or a ring there; back-projection and signed total variation show it",
-    );
-  }
-  return {
+  const description: Omit<TrailDescription, "warnings"> = {
     line: line.name,
     rest_vacuum_angstrom: line.vacuum_angstrom,
     rest_air_angstrom: line.air_angstrom,
@@ -258,6 +231,6 @@ export function describeTrail(trail: Trail, options: DescribeOptions): TrailDesc
     continuum_variation: Math.sqrt(variance) / level,
     continuum_orbital_amplitude: orbitalAmplitude(trail.continuum, sampling.phase),
     pairs: pairNoise(trail, { systemic_kms }),
-    warnings,
   };
+  return { ...description, warnings: trailAdvice(description, ephemeris) };
 }

@@ -151,10 +151,40 @@ function noisyCopy(trail: Trail, random: RandomStream) {
  *
  * @example
  * ```ts
- * import { measureTrail } from "@millrace/millrace/trail";
- * import { assertEquals } from "@std/assert";
+ * import { measureTrail, makeTrail } from "@millrace/millrace/trail";
+ * import { lineNamed } from "@millrace/millrace/sky";
+ * import { randomStream } from "@millrace/millrace/numerics";
+ * import { assertAlmostEquals } from "@std/assert";
  *
- * assertEquals(typeof measureTrail, "function");
+ * const line = lineNamed("H beta");
+ * const ephemeris = {
+ *   period_d: 0.1,
+ *   period_error_d: 1e-6,
+ *   zero: [2460311, 0.5],
+ *   zero_error_d: 1e-4,
+ *   covariance_d2: 0,
+ *   period_derivative: 0,
+ *   zero_marks: "donor-conjunction",
+ * } as const;
+ * const wavelength_angstrom = Float64Array.from({ length: 500 }, (_, i) => 4740 + 0.5 * i);
+ * const spectra = Array.from({ length: 20 }, (_, k) => ({
+ *   source: `${k}.fits`,
+ *   group: 0,
+ *   wavelength_angstrom,
+ *   flux: wavelength_angstrom.map((w) =>
+ *     100 + 0.001 * k + 200 * Math.exp(-(((w - line.vacuum_angstrom) / 8) ** 2))
+ *   ),
+ *   error: wavelength_angstrom.map(() => 5),
+ *   errors_given: true,
+ *   mid: [2460311, 0.5 + 0.005 * k] as const,
+ *   exposure_s: 300,
+ *   observer_factor: 1,
+ *   resolution_angstrom: wavelength_angstrom.map(() => 1.2),
+ * }));
+ * const trail = makeTrail(spectra, { line, ephemeris, noise_scale: 1 });
+ * const { mean } = measureTrail(trail, { random: randomStream(1), resamples: 20 });
+ * // A Gaussian twice as high as the continuum and 8 angstrom wide to a factor e.
+ * assertAlmostEquals(mean.equivalent_width_angstrom.value, 2 * 8 * Math.sqrt(Math.PI), 0.3);
  * ```
  */
 export function measureTrail(trail: Trail, options: MeasureTrailOptions): TrailMeasurements {
