@@ -49,8 +49,10 @@ async function commands(): Promise<AddCommand[]> {
     import("./commands/new.ts").then(({ newCommand }) => newCommand),
     import("./commands/demo.ts").then(({ demoCommand }) => demoCommand),
     import("./commands/check.ts").then(({ checkCommand }) => checkCommand),
+    import("./commands/profile.ts").then(({ profileCommand }) => profileCommand),
     import("./commands/trail.ts").then(({ trailCommand }) => trailCommand),
     import("./commands/map.ts").then(({ mapCommand }) => mapCommand),
+    import("./commands/synth.ts").then(({ synthCommand }) => synthCommand),
     import("./commands/plate.ts").then(({ plateCommand }) => plateCommand),
     import("./commands/geometry.ts").then(({ geometryCommand }) => geometryCommand),
   ]);

@@ -1,4 +1,5 @@
-import { encodeFits, type HduSpec } from "../fits/mod.ts";
+import { type CardSpec, encodeFits, type HduSpec } from "../fits/mod.ts";
+import type { VelocityMap } from "../tomography/mod.ts";
 import { fitsHead, hduName } from "./fits_head.ts";
 import type { MappedLine } from "./map_line.ts";
 import type { Target } from "./target.ts";
@@ -23,8 +24,8 @@ export function mapFits(target: Target, options: { maps: readonly MappedLine[] }
   ]);
 }
 
-function mapHdus(mapped: MappedLine): HduSpec[] {
-  const { map, trail } = mapped;
+/** Cards of a map's axes: linear, km/s, (0, 0) in the middle pixel. */
+export function mapAxisCards(map: VelocityMap): CardSpec[] {
   const middle = (map.pixels + 1) / 2;
   const step = (2 * map.half_width_kms) / (map.pixels - 1);
   const axis = (n: 1 | 2, name: string) => [
@@ -34,6 +35,11 @@ function mapHdus(mapped: MappedLine): HduSpec[] {
     { keyword: `CRVAL${n}`, value: 0 },
     { keyword: `CDELT${n}`, value: step },
   ];
+  return [...axis(1, "VX"), ...axis(2, "VY")];
+}
+
+function mapHdus(mapped: MappedLine): HduSpec[] {
+  const { map, trail } = mapped;
   return [
     {
       kind: "image",
@@ -42,8 +48,7 @@ function mapHdus(mapped: MappedLine): HduSpec[] {
       data: map.intensity,
       unit: "s/km",
       cards: [
-        ...axis(1, "VX"),
-        ...axis(2, "VY"),
+        ...mapAxisCards(map),
         { keyword: "LINENAME", value: trail.line.name },
         { keyword: "METHOD", value: mapped.method },
         { keyword: "SYSTEMIC", value: mapped.systemic_kms, comment: "[km/s] systemic velocity" },

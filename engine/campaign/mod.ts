@@ -31,5 +31,7 @@ export * from "./simulate.ts";
 export * from "./steps/run_check.ts";
 export * from "./steps/run_map.ts";
 export * from "./steps/run_plate.ts";
+export * from "./steps/run_profile.ts";
+export * from "./steps/run_synth.ts";
 export * from "./steps/run_trail.ts";
 export * from "./steps/step.ts";

@@ -1,4 +1,4 @@
-import { join, relative, resolve } from "@std/path";
+import { join, relative } from "@std/path";
 import { InputError, type Warning } from "../errors.ts";
 import { expandGlob, readBytes, sha256 } from "../files/mod.ts";
 import { type Decision, readExposures, type Spectrum } from "../spectra/mod.ts";
@@ -62,7 +62,7 @@ export async function readTargetExposures(
     const log = settings.log === undefined ? undefined : join(target.folder, settings.log);
     for (const [done, path] of [...new Set(paths), ...(log === undefined ? [] : [log])].entries()) {
       progress?.(done, paths.length, "digests of exposures");
-      const name = relative(target.folder, resolve(target.folder, path));
+      const name = relative(target.folder, path);
       inputs.set(name, {
         file: name,
         sha256: sha256(await readBytes(path, { decompress: false })),

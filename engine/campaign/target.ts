@@ -1,4 +1,4 @@
-import { basename, dirname, extname, join, resolve } from "@std/path";
+import { basename, dirname, extname, join } from "@std/path";
 import { InputError } from "../errors.ts";
 import { readText, sha256 } from "../files/mod.ts";
 import { overrideSetting } from "./override.ts";
@@ -103,7 +103,7 @@ export function parseTarget(
   const name = basename(file, extname(file));
   return {
     file,
-    folder: dirname(resolve(file)),
+    folder: dirname(file),
     name,
     title: settings.title ?? name,
     settings,
