@@ -9,6 +9,12 @@ export interface FontMetrics {
    */
   has(code: number): boolean;
   /**
+   * Index of a character's glyph; 0 where there is none.
+   *
+   * @param code Unicode code point.
+   */
+  glyph(code: number): number;
+  /**
    * Sum of the advance widths, in units of the font size.
    *
    * @param text The characters.
@@ -53,6 +59,7 @@ export function readFontMetrics(bytes: Uint8Array): FontMetrics {
   };
   return {
     has: (code) => (glyphs.get(code) ?? 0) !== 0,
+    glyph: (code) => glyphs.get(code) ?? 0,
     width(text) {
       let sum = 0;
       for (const character of text) sum += advance(character.codePointAt(0)!);

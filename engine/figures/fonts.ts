@@ -7,10 +7,8 @@ import italic from "@expo-google-fonts/stix-two-text/400Regular_Italic/STIXTwoTe
 import sans from "dejavu-fonts-ttf/ttf/DejaVuSans.ttf" with { type: "bytes" };
 import { type FontMetrics, readFontMetrics } from "./font_metrics.ts";
 import type { Run } from "./display_list.ts";
+import { type FaceName, type FacePiece, FALLBACK_FAMILY, TEXT_FAMILY } from "./font_names.ts";
 import { runStyle } from "./runs.ts";
-
-/** The faces in use: the text family upright and italic, and a fallback for signs it lacks. */
-export type FaceName = "regular" | "italic" | "fallback";
 
 /** A font face: its bytes and its measures. */
 export interface Face {
@@ -22,25 +20,12 @@ export interface Face {
   readonly metrics: FontMetrics;
 }
 
-/** Family name of the text face, as SVG names it. */
-export const TEXT_FAMILY = "STIX Two Text";
-/** Family name of the fallback face. */
-export const FALLBACK_FAMILY = "DejaVu Sans";
-
 /** The three faces. */
 export const faces: Readonly<Record<FaceName, Face>> = {
   regular: { family: TEXT_FAMILY, bytes: regular, metrics: readFontMetrics(regular) },
   italic: { family: TEXT_FAMILY, bytes: italic, metrics: readFontMetrics(italic) },
   fallback: { family: FALLBACK_FAMILY, bytes: sans, metrics: readFontMetrics(sans) },
 };
-
-/** Characters that one face can write. */
-export interface FacePiece {
-  /** The characters. */
-  readonly text: string;
-  /** The face that has them. */
-  readonly face: FaceName;
-}
 
 /**
  * Splits a run where its face lacks a character that the fallback has. Renderers differ in what

@@ -1,11 +1,12 @@
 import { Buffer } from "node:buffer";
 import PDFDocument from "pdfkit";
 import type { Group, ImageItem, Item, PathItem, Picture, TextItem } from "./display_list.ts";
-import { type FaceName, facePieces, faces } from "./fonts.ts";
+import type { FaceName } from "./font_names.ts";
+import { facePieces, faces } from "./fonts.ts";
 import { type Metadata, SOFTWARE } from "./marks.ts";
 import { pngFile } from "./png_file.ts";
 import { runStyle } from "./runs.ts";
-import { HALO_PART } from "./svg.ts";
+import { HALO_PART } from "./svg_draw.ts";
 
 /** How a PDF is written. */
 export interface PdfOptions {

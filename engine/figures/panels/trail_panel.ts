@@ -110,7 +110,7 @@ function velocityAxis(
   const unit = thousands ? `10^{3} ${KMS_LABEL}` : KMS_LABEL;
   return {
     range,
-    ticks: Math.max(3, Math.round(options.length_pt / (thousands ? 14 : 30))),
+    ticks: Math.max(3, Math.round(options.length_pt / (thousands ? 18 : 30))),
     ...(thousands ? { format: (value) => String(value / 1000).replace("-", "−") } : {}),
     ...(options.named ? { label: `velocity (${unit})` } : {}),
   };

@@ -62,8 +62,8 @@ export const NAME_RISE_PT = 18.5;
  * import { assertEquals } from "@std/assert";
  *
  * const map = { kind: panelKinds.map, subject: 0, named: false };
- * const [[box]] = plateLayout([{ panels: [map] }], 244).rows as [[{ frame: { width: number } }]];
- * assertEquals(box.frame.width, 200); // 244 pt less 36 at the left and 8 at the right
+ * const { rows } = plateLayout([{ panels: [map] }], 244);
+ * assertEquals(rows[0]?.[0]?.frame.width, 200); // 244 pt less 36 at the left and 8 at the right
  * ```
  */
 export function plateLayout(rows: readonly LaidRow[], width: number): PlateLayout {
