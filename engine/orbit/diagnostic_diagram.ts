@@ -2,10 +2,12 @@ import { SPEED_OF_LIGHT_KMS } from "../constants.ts";
 import { InputError } from "../errors.ts";
 import { median } from "../numerics/mod.ts";
 import type { Trail } from "../trail/mod.ts";
-import { type CircularFit, fitCircular } from "./circular_fit.ts";
-import { measureWings } from "./double_gaussian.ts";
-import { exposureProfile, type LineProfile, meanProfile } from "./line_profile.ts";
-import { FEWEST_VELOCITIES, type VelocityCurve } from "./velocity_curve.ts";
+import type { CircularFit } from "./circular_fit.ts";
+import { measureWings } from "./wing_root.ts";
+import { fitOrNull } from "./fit_or_null.ts";
+import { exposureMean } from "./exposure_mean.ts";
+import { exposureProfile, type LineProfile } from "./line_profile.ts";
+import type { VelocityCurve } from "./velocity_curve.ts";
 import { scanWings } from "./wing_scan.ts";
 
 /** The orbit that one separation of the two Gaussians gives. */
@@ -103,7 +105,7 @@ function extentOf(profile: LineProfile) {
 }
 
 function defaultSeparations(trail: Trail, sigma_kms: number): number[] {
-  const { half_width, reach } = extentOf(meanProfile(trail));
+  const { half_width, reach } = extentOf(exposureMean(trail));
   // The inner flank of the Gaussians clear of the peaks, where rim and spot are.
   const first = Math.max(half_width, sigma_kms) + sigma_kms;
   const step = sigma_kms / 2;
@@ -152,7 +154,7 @@ export function diagnosticDiagram(
   const count = sampling.count, width = separations.length;
   const velocity = separations.map(() => new Float64Array(count).fill(NaN));
   const error = separations.map(() => new Float64Array(count).fill(Infinity));
-  const { centre } = extentOf(meanProfile(trail));
+  const { centre } = extentOf(exposureMean(trail));
   const covariance = Array.from({ length: count }, (_, i) => {
     const scan = scanWings(exposureProfile(trail, i), sigma_kms);
     const kernels = separations.map((half_separation_kms, a) => {
@@ -206,16 +208,4 @@ export function diagnosticDiagram(
     };
   });
   return { line: trail.line.name, sigma_kms, rows, covariance };
-}
-
-/** The orbit of a curve, or null when its velocities are too few or phases too bunched. */
-export function fitOrNull(curve: VelocityCurve): CircularFit | null {
-  const measured = curve.error_kms.reduce((sum, e) => sum + (e < Infinity ? 1 : 0), 0);
-  if (measured < FEWEST_VELOCITIES) return null;
-  try {
-    return fitCircular(curve);
-  } catch (error) {
-    if (error instanceof InputError) return null;
-    throw error;
-  }
 }

@@ -65,7 +65,22 @@ export interface PeriodSearchOptions {
 
 const MOST_FREQUENCIES = 2_000_000;
 
-function requireRange([shortest, longest]: readonly [number, number]): void {
+/**
+ * Throws unless a range of periods can be searched.
+ *
+ * @param range Shortest and longest period, d.
+ * @throws {InputError} When it is empty, not positive or not finite.
+ *
+ * @example
+ * ```ts
+ * import { requirePeriodRange } from "@millrace/millrace/orbit";
+ * import { assertThrows } from "@std/assert";
+ *
+ * assertThrows(() => requirePeriodRange([0.3, 0.05]), Error, "key period_range_d");
+ * ```
+ */
+export function requirePeriodRange(range: readonly [shortest: number, longest: number]): void {
+  const [shortest, longest] = range;
   if (shortest > 0 && longest > shortest && Number.isFinite(longest)) return;
   throw new InputError({
     action: "search period",
@@ -113,7 +128,7 @@ function peaks(power: Float64Array): number[] {
  */
 export function searchPeriod(series: TimeSeries, options: PeriodSearchOptions): PeriodSearch {
   const { period_range_d, oversampling = 10, candidates: most = 10, random, trials } = options;
-  requireRange(period_range_d);
+  requirePeriodRange(period_range_d);
   requireSeries(series, "search period");
   const first = series.time.reduce((a, b) => Math.min(a, b));
   const last = series.time.reduce((a, b) => Math.max(a, b));

@@ -1,6 +1,7 @@
 import { chiSquareTail, fTail } from "../numerics/mod.ts";
 import { type CircularFit, fitCircular } from "./circular_fit.ts";
-import { type DiagnosticDiagram, fitOrNull } from "./diagnostic_diagram.ts";
+import type { DiagnosticDiagram } from "./diagnostic_diagram.ts";
+import { fitOrNull } from "./fit_or_null.ts";
 import { measuredOnly, type VelocityCurve } from "./velocity_curve.ts";
 
 /** What a diagnostic diagram says about the accretor's orbit. */

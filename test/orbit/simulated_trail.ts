@@ -90,3 +90,47 @@ export function withNoise(trail: Trail, random: RandomStream): Trail {
   const flux = trail.flux.map((f, n) => f + trail.error[n]! * random.normal());
   return { ...trail, flux, grid: { ...trail.grid, flux } };
 }
+
+/** The sodium doublet, vacuum Å: 8183.26 and 8194.82 in air. */
+export const SODIUM: readonly [number, number] = [8185.51, 8197.07];
+
+/**
+ * Absorption lines of a donor: Gaussian components of the instrument's width, broadened by rotation
+ * (uniform disc, by sums over 41 strips) and by 15 sub-exposures.
+ */
+export function donorTrail(sampling: Sampling, options: {
+  error: number;
+  depth?: number;
+  k_kms?: number;
+  systemic_kms?: number;
+  v_sin_i_kms?: number;
+  zero?: number;
+  components?: readonly (readonly [vacuum_angstrom: number, strength: number])[];
+}): Trail {
+  const { error, depth = 0.15, k_kms = 340, systemic_kms = -15, zero = 0 } = options;
+  const { v_sin_i_kms = 0, components = SODIUM.map((wave) => [wave, 1] as const) } = options;
+  const flux = new Float64Array(sampling.velocity_kms.length);
+  const strips = v_sin_i_kms > 0 ? 41 : 1, parts = 15;
+  for (let i = 0; i < sampling.count; i++) {
+    const sigma = sampling.profile_sigma_kms[i]!;
+    for (let part = 0; part < parts; part++) {
+      const phase = sampling.phase[i]! + sampling.phase_width[i]! * ((part + 0.5) / parts - 0.5);
+      const v = systemic_kms + k_kms * Math.sin(2 * Math.PI * (phase - zero));
+      for (let strip = 0; strip < strips; strip++) {
+        const x = strips === 1 ? 0 : 2 * (strip + 0.5) / strips - 1;
+        const share = strips === 1 ? 1 : 4 / (Math.PI * strips) * Math.sqrt(1 - x * x);
+        for (const [wave, strength] of components) {
+          const factor = wave / SODIUM[0] * (1 + (v + x * v_sin_i_kms) / 299792.458);
+          const centre = 299792.458 * (factor - 1);
+          for (let n = sampling.start[i]!; n < sampling.start[i + 1]!; n++) {
+            const u = (sampling.velocity_kms[n]! - centre) / sigma;
+            if (Math.abs(u) < 7) {
+              flux[n]! -= depth * strength * share / parts * Math.exp(-0.5 * u * u);
+            }
+          }
+        }
+      }
+    }
+  }
+  return trailOf(sampling, flux, { error, name: "Na I 8190", vacuum_angstrom: SODIUM[0] });
+}
