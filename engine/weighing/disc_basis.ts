@@ -1,0 +1,183 @@
+import { type Binary, keplerianSpeed } from "../binary/mod.ts";
+import { type CompleteModel, type Model, synthesizeParts } from "../synthesis/mod.ts";
+import { shiftVelocities, systemFrame } from "../tomography/mod.ts";
+import type { Sampling } from "../trail/mod.ts";
+import { blurHarmonic, discHarmonics } from "./disc_harmonics.ts";
+
+/** What a part's templates are made for. */
+export interface TemplateContext {
+  /** Exposures and pixels. */
+  readonly sampling: Sampling;
+  /** Geometry of the binary. */
+  readonly binary: Binary;
+  /** Systemic velocity, km/s. */
+  readonly systemic_kms: number;
+  /** Highest order m of the disc's asymmetry, 0 to 2. */
+  readonly asymmetry: 0 | 1 | 2;
+}
+
+/** Grid points to a standard deviation: cubic interpolation is then good to 3e-4 of a Gaussian's peak. */
+const BINS_PER_SIGMA = 4;
+/** Widths of instrumental profiles that differ by less than this are taken as one. */
+const SAME_SIGMA = 2e-3;
+
+/**
+ * Templates of a disc of unit equivalent width: the axisymmetric one, then those whose surface
+ * brightness is cos θ, sin θ, cos 2θ, sin 2θ times as much, as far as wanted. Summed with
+ * amplitudes they make any disc with straight one- and two-armed patterns.
+ *
+ * @param model The model, of which the disc counts.
+ * @param context For what.
+ * @returns 1, 3 or 5 trails, laid out as the sampling.
+ */
+export function discBasis(model: CompleteModel, context: TemplateContext): Float64Array[] {
+  const { disc, eclipse } = model;
+  const plain = disc.optical_depth === "thin" && disc.eccentricity === 0 &&
+    disc.turbulence_index === 0 && disc.core_equivalent_width_kms === 0 && !eclipse.enabled;
+  return plain ? thinDiscBasis(disc, context) : generalDiscBasis(model, context);
+}
+
+/** Any disc, by differences of whole syntheses: slow. */
+export function generalDiscBasis(model: CompleteModel, context: TemplateContext): Float64Array[] {
+  const { asymmetry } = context;
+  const { disc } = model;
+  const trail = (change: Model["disc"]) => {
+    const changed = {
+      ...disc,
+      equivalent_width_kms: 1,
+      one_armed_amplitude: 0,
+      two_armed_amplitude: 0,
+      two_armed_pitch_deg: 90,
+      // The core is a share of the disc: it scales with it.
+      core_equivalent_width_kms: disc.core_equivalent_width_kms / disc.equivalent_width_kms,
+      ...change,
+    };
+    return synthesizeParts({ ...model, parts: ["disc"], disc: changed }, context).get("disc")!;
+  };
+  const even = trail({});
+  const patterns: Model["disc"][] = [];
+  if (asymmetry >= 1) {
+    patterns.push({ one_armed_amplitude: 1, one_armed_deg: 0 });
+    patterns.push({ one_armed_amplitude: 1, one_armed_deg: 90 });
+  }
+  if (asymmetry >= 2) {
+    patterns.push({ two_armed_amplitude: 1, two_armed_deg: 0 });
+    patterns.push({ two_armed_amplitude: 1, two_armed_deg: 45 });
+  }
+  return [even, ...patterns.map((pattern) => trail(pattern).map((value, n) => value - even[n]!))];
+}
+
+/** A transparent circular disc, by tables of its harmonics in the accretor's frame: fast. */
+export function thinDiscBasis(
+  disc: CompleteModel["disc"],
+  context: TemplateContext,
+): Float64Array[] {
+  const { sampling, binary, systemic_kms, asymmetry } = context;
+  const frame = systemFrame(systemic_kms);
+  const velocity = shiftVelocities(sampling.velocity_kms, frame);
+  const { start, count, phase, phase_width } = sampling;
+  const k1 = binary.k_accretor_kms;
+  const shape = {
+    rim_kms: disc.keplerian_factor * keplerianSpeed(disc.outer_radius_over_a, binary),
+    inner_over_outer: disc.inner_radius_over_a / disc.outer_radius_over_a,
+    emissivity_index: disc.emissivity_index,
+  };
+  // The accretor's motion within an exposure blurs by a box, here by its variance.
+  const sigmas = sampling.profile_sigma_kms.map((sigma, i) => {
+    const smear = 2 * Math.PI * k1 * phase_width[i]! * Math.cos(2 * Math.PI * phase[i]!);
+    return Math.hypot(sigma * frame.factor, disc.turbulence_kms, smear / Math.sqrt(12));
+  });
+  let fastest = 0;
+  for (let n = 0; n < velocity.length; n++) fastest = Math.max(fastest, Math.abs(velocity[n]!));
+  const finest = sigmas.reduce((a, b) => Math.min(a, b));
+  const step_kms = finest / BINS_PER_SIGMA;
+  const harmonics = discHarmonics(shape, {
+    step_kms,
+    reach_kms: fastest + k1 + 6 * sigmas.reduce((a, b) => Math.max(a, b)),
+    sigma_kms: finest,
+    orders: asymmetry,
+  });
+
+  const tables = new Map<number, ReturnType<typeof blurAll>>();
+  const blurAll = (sigma: number) => {
+    // A bin's own width is part of the blur.
+    const sigma_bins = Math.sqrt((sigma / step_kms) ** 2 - 1 / 12);
+    return {
+      even0: blurHarmonic(harmonics.even0, { sigma_bins, odd: false }),
+      odd1: asymmetry >= 1 ? blurHarmonic(harmonics.odd1, { sigma_bins, odd: true }) : null,
+      even2: asymmetry >= 2 ? blurHarmonic(harmonics.even2, { sigma_bins, odd: false }) : null,
+    };
+  };
+  const tablesOf = (sigma: number) => {
+    const level = Math.round(Math.log(sigma / finest) / SAME_SIGMA);
+    const known = tables.get(level);
+    if (known !== undefined) return known;
+    const made = blurAll(finest * Math.exp(level * SAME_SIGMA));
+    tables.set(level, made);
+    return made;
+  };
+
+  const trails = Array.from({ length: 1 + 2 * asymmetry }, () => new Float64Array(velocity.length));
+  for (let i = 0; i < count; i++) {
+    const angle = 2 * Math.PI * phase[i]!;
+    const from = start[i]!, to = start[i + 1]!;
+    const table = tablesOf(sigmas[i]!);
+    const half = 2 * Math.PI * phase_width[i]! / 2;
+    const exposure = { velocity, from, to, centre: -k1 * Math.sin(angle), step_kms };
+    lookUp(table.even0, exposure, [[trails[0]!, 1]]);
+    if (table.odd1 !== null) {
+      const kept = sinc(half);
+      lookUp(table.odd1, exposure, [
+        [trails[1]!, kept * Math.sin(angle)],
+        [trails[2]!, kept * Math.cos(angle)],
+      ]);
+    }
+    if (table.even2 !== null) {
+      const kept = sinc(2 * half);
+      lookUp(table.even2, exposure, [
+        [trails[3]!, kept * Math.cos(2 * angle)],
+        [trails[4]!, -kept * Math.sin(2 * angle)],
+      ]);
+    }
+  }
+  return trails;
+}
+
+function sinc(x: number): number {
+  return x === 0 ? 1 : Math.sin(x) / x;
+}
+
+/** Writes a table's cubic interpolation, times a factor, into each target. */
+function lookUp(
+  table: { readonly half: number; readonly values: Float64Array },
+  { velocity, from, to, centre, step_kms }: {
+    readonly velocity: Float64Array;
+    readonly from: number;
+    readonly to: number;
+    readonly centre: number;
+    readonly step_kms: number;
+  },
+  targets: readonly (readonly [into: Float64Array, factor: number])[],
+): void {
+  const { half, values } = table;
+  const perStep = 1 / step_kms;
+  const offset = half - centre * perStep;
+  const last = 2 * half - 2;
+  const [first, firstFactor] = targets[0]!;
+  for (let n = from; n < to; n++) {
+    const x = velocity[n]! * perStep + offset;
+    const k = Math.floor(x);
+    if (k < 1 || k > last) continue;
+    const t = x - k, s = 1 - t;
+    const outer = t * s / 6;
+    const inner = (1 + t) * (1 + s) / 2;
+    first[n] = inner * (s * values[k]! + t * values[k + 1]!) -
+      outer * ((1 + s) * values[k - 1]! + (1 + t) * values[k + 2]!);
+  }
+  const second = targets[1];
+  if (second !== undefined) {
+    const [into, factor] = second;
+    for (let n = from; n < to; n++) into[n] = factor * first[n]!;
+  }
+  if (firstFactor !== 1) { for (let n = from; n < to; n++) first[n]! *= firstFactor; }
+}

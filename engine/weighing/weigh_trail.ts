@@ -1,0 +1,217 @@
+import type { Warning } from "../errors.ts";
+import type { Progress } from "../workers/mod.ts";
+import { compareHypotheses, type Comparison } from "./compare_hypotheses.ts";
+import { type StrongestSource, strongestSource } from "./compact_source.ts";
+import { type DetectionLimit, detectionLimit } from "./detection_limit.ts";
+import type { FitSetup } from "./fit_setup.ts";
+import { defaultSets, hypothesesOf } from "./hypothesis.ts";
+import { judge, type Judgement, NEEDED } from "./judge.ts";
+import { noiseBank } from "./noise_bank.ts";
+import type { NullTable } from "./null_table.ts";
+import { type PreparedProblem, type PrepareOptions, prepareProblem } from "./prepare_problem.ts";
+import { placeErrors } from "./structure_errors.ts";
+import { type StructureProbabilities, structureProbabilities } from "./structure_probabilities.ts";
+import { type Verdict, verdictOf } from "./verdict.ts";
+import { type WeighableTrail, weighingData, type WeighingDataOptions } from "./weighing_data.ts";
+
+/** Options of {@linkcode weighTrail}. */
+export interface WeighOptions
+  extends FitSetup, WeighingDataOptions, Partial<Omit<PrepareOptions, "sets">> {
+  /**
+   * Sets of parts.
+   *
+   * @default {defaultSets}
+   */
+  readonly sets?: readonly (readonly string[])[];
+  /**
+   * Trials of each calibration at most.
+   *
+   * @default {200}
+   */
+  readonly trials?: number;
+  /**
+   * Seed of everything that is drawn.
+   *
+   * @default {1}
+   */
+  readonly seed?: number;
+  /**
+   * Threads.
+   *
+   * @default {1}
+   */
+  readonly workers?: number;
+  /**
+   * Tables of trials that were kept: those of the same configuration are not run again.
+   *
+   * @default {[]}
+   */
+  readonly tables?: readonly NullTable[];
+  /**
+   * Whether to compute what a compact source would need to be found.
+   *
+   * @default {true}
+   */
+  readonly limit?: boolean;
+  /** Called as trials are done. */
+  readonly progress?: Progress;
+  /** Ends the work. */
+  readonly signal?: AbortSignal;
+}
+
+/** A compact source that was looked for everywhere, and where it may belong. */
+export interface SeatedSource extends StrongestSource {
+  /** Standard deviation along Vx, geometry included, km/s. */
+  readonly vx_error_kms: number;
+  /** Standard deviation along Vy, geometry included, km/s. */
+  readonly vy_error_kms: number;
+  /** Probability of each structure as its seat. */
+  readonly structures: StructureProbabilities;
+}
+
+/** A line, weighed. */
+export interface WeighedLine {
+  /** The trail it was. */
+  readonly trail: WeighableTrail;
+  /** Systemic velocity that was assumed, km/s. */
+  readonly systemic_kms: number;
+  /** Samples, whitening, and what was measured of nuisances. */
+  readonly prepared: PreparedProblem;
+  /** The hypotheses, best supported first. */
+  readonly comparison: Comparison;
+  /** Calibrated tests. */
+  readonly judgement: Judgement;
+  /** What a compact source would need to be found on top of the simplest set; null when not wanted. */
+  readonly limit: DetectionLimit | null;
+  /** The strongest compact source on top of the simplest set, significant or not; null without one. */
+  readonly source: SeatedSource | null;
+  /** The conclusion. */
+  readonly verdict: Verdict;
+  /** Tables of all trials that were run or used, to be kept. */
+  readonly tables: readonly NullTable[];
+  /** What to know. */
+  readonly warnings: readonly Warning[];
+}
+
+/**
+ * Weighs hypotheses about a line: fits every set of parts in data space, compares them, measures by
+ * simulation how often the simpler of the leading ones would look like this, and says what follows.
+ *
+ * @param trail The trail.
+ * @param options The binary, what is known of it, the sets, and how many trials.
+ * @returns Everything that was found.
+ * @throws {InputError} When a set is not one, or the trail holds too little.
+ *
+ * @example
+ * ```ts
+ * import { simulateTrail, weighTrail } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 40 });
+ * const sets = [["disc"], ["disc", "spot"]];
+ * const { verdict } = await weighTrail(trail, { binary, sets, trials: 20, limit: false });
+ * assertEquals(verdict.preferred, ["disc"]);
+ * ```
+ */
+export async function weighTrail(
+  trail: WeighableTrail,
+  options: WeighOptions,
+): Promise<WeighedLine> {
+  const { trials = 200, seed = 1, workers = 1, tables = [], progress, signal, errors = {} } =
+    options;
+  const sets = hypothesesOf(options.sets ?? defaultSets);
+  const data = weighingData(trail, options);
+  const prepared = prepareProblem(data, options, { ...options, sets });
+  const { problem, richest, line_scale } = prepared;
+  const comparison = compareHypotheses(prepared, sets, { seed });
+  const bank = noiseBank(problem, richest, { line_scale });
+  const judgement = await judge(comparison, {
+    problem,
+    bank,
+    trials,
+    seed,
+    tables,
+    workers,
+    ...(progress === undefined ? {} : { progress }),
+    ...(signal === undefined ? {} : { signal }),
+  });
+
+  const simplest = comparison.hypotheses.reduce((a, b) => b.parts.length < a.parts.length ? b : a);
+  const { fit, fit_errors } = simplest;
+  const search = options.limit === false
+    ? null
+    : detectionLimit(problem, { fit, fit_errors, bank, trials, seed });
+  const found = search === null ? null : strongestSource(problem, { fit, search });
+  let source: SeatedSource | null = null;
+  if (found !== null && search !== null) {
+    // What the fit left free is in its covariance already; phases and γ turn and pull the rest.
+    const place = placeErrors(found, { errors, phases: data.sampling.phase });
+    const [xx, , yy] = place.covariance;
+    source = {
+      ...found,
+      vx_error_kms: Math.sqrt(xx),
+      vy_error_kms: Math.sqrt(yy),
+      structures: structureProbabilities(place, {
+        binary: options.binary,
+        errors,
+        half_width_kms: search.limit.half_width_kms,
+        seed,
+      }),
+    };
+  }
+  const limit = search?.limit ?? null;
+  const verdict = verdictOf(judgement, { limit });
+  const calibrations = [
+    ...judgement.part_tests.map(({ calibration }) => calibration),
+    ...judgement.contest === null
+      ? []
+      : [judgement.contest.rival_true, judgement.contest.leader_true],
+  ];
+  return {
+    trail,
+    systemic_kms: options.systemic_kms ?? 0,
+    prepared,
+    comparison,
+    judgement,
+    limit,
+    source,
+    verdict,
+    tables: calibrations.map(({ table }) => table),
+    warnings: [
+      ...warningsOf(prepared, { trials, white: bank.kind === "white" }),
+      ...comparison.hypotheses.filter((hypothesis, k) => k === 0 || hypothesis.adequate)
+        .flatMap(({ warnings }) => warnings),
+    ],
+  };
+}
+
+function warningsOf(
+  { problem, line_scale }: PreparedProblem,
+  { trials, white }: { readonly trials: number; readonly white: boolean },
+): Warning[] {
+  const warnings: Warning[] = [];
+  const warn = (code: string, text: string) => warnings.push({ code, text });
+  if (problem.data.sign < 0) {
+    warn("absorption-turned", "the line is in absorption: its sign was turned");
+  }
+  if (1 / (trials + 1) > NEEDED) {
+    warn("too-few-trials", `${trials} trials cannot show a false-alarm rate of 1 %: 99 can`);
+  }
+  if (white) {
+    warn(
+      "noise-assumed-white",
+      "there are fewer than 16 exposures of a set-up: trials have white noise instead of the data's own",
+    );
+  }
+  if (line_scale.rms > 3 * line_scale.rms_error) {
+    warn(
+      "line-varies",
+      `the line's brightness varies by ${(100 * line_scale.rms).toFixed(1)} ± ${
+        (100 * line_scale.rms_error).toFixed(1)
+      } % from exposure to exposure: that was given no weight`,
+    );
+  }
+  return warnings;
+}
