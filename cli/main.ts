@@ -51,6 +51,7 @@ async function commands(): Promise<AddCommand[]> {
     import("./commands/check.ts").then(({ checkCommand }) => checkCommand),
     import("./commands/profile.ts").then(({ profileCommand }) => profileCommand),
     import("./commands/trail.ts").then(({ trailCommand }) => trailCommand),
+    import("./commands/orbit.ts").then(({ orbitCommand }) => orbitCommand),
     import("./commands/map.ts").then(({ mapCommand }) => mapCommand),
     import("./commands/synth.ts").then(({ synthCommand }) => synthCommand),
     import("./commands/plate.ts").then(({ plateCommand }) => plateCommand),

@@ -1,14 +1,19 @@
 import { resolve } from "@std/path";
 import {
+  binaryOf,
   openSession,
+  type OrbitDocument,
   outputFolder,
   readTarget,
   runCheck,
   runMap,
+  runOrbit,
   runPlate,
   runTrail,
   simulateDemo,
+  type Target,
   trueSpot,
+  uniqueWarnings,
   VERSION,
 } from "../../engine/campaign/mod.ts";
 import recipe from "../../examples/demo/recipe.toml" with { type: "text" };
@@ -18,6 +23,7 @@ import { runCommand } from "../run_command.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 import { checkLines } from "./check.ts";
 import { mapLines } from "./map.ts";
+import { orbitLines } from "./orbit.ts";
 
 /**
  * `millrace demo`: an invented night, from raw exposures to the figure.
@@ -49,7 +55,10 @@ export const demoCommand = (finish: (status: number) => void) =>
           const check = await runCheck(session, output);
           const trail = await runTrail(session, output);
           const map = await runMap(session, output);
+          const orbit = await runOrbit(session, output);
           const plate = await runPlate(session, output);
+          const truth = binaryOf(campaign.recipe);
+          const warnings = uniqueWarnings([...orbit.warnings, ...plate.warnings]);
           const spots = map.document.maps.map(({ line, features }) => ({
             line,
             found: features[0] ?? null,
@@ -63,12 +72,16 @@ export const demoCommand = (finish: (status: number) => void) =>
               exposures: campaign.exposures.length,
               maps: map.document.maps,
               spots,
-              warnings: plate.warnings,
+              orbit: orbit.document,
+              truth: { binary: truth, systemic_kms: campaign.recipe.settings.orbit.systemic_kms },
+              warnings,
             },
             lines: [
               ...checkLines(check.document),
               "",
               ...mapLines(map.document),
+              "",
+              ...orbitLines(orbit.document),
               "",
               "  the bright spot, found and true",
               ...tableLines([
@@ -91,11 +104,58 @@ export const demoCommand = (finish: (status: number) => void) =>
                 align: ["left", "right", "right", "right", "right", "right"],
               }),
               "",
-              `  target file ${campaign.target_file}, raw exposures in ${folder}/blue`,
+              "  the binary, found and true",
+              ...tableLines(
+                orbitTruth(orbit.document, campaign.recipe),
+                { heading: true, align: ["left", "right", "right"] },
+              ),
+              "",
+              `  target file ${campaign.target_file}, raw exposures in ${folder}/blue and ${folder}/red`,
             ],
-            files: [...check.files, ...trail.files, ...map.files, ...plate.files],
-            warnings: plate.warnings,
+            files: [check, trail, map, orbit, plate].flatMap(({ files }) => files),
+            warnings,
           };
         }),
       );
     });
+
+function orbitTruth(found: OrbitDocument, recipe: Target): string[][] {
+  const truth = binaryOf(recipe)!;
+  const { systemic_kms } = recipe.settings.orbit;
+  const { accretor, donor, masses } = found;
+  const measured = (value: number | null | undefined, error: number | null | undefined) =>
+    value === null || value === undefined ? "not measured" : withError(value, error ?? null);
+  const half = (low: number | null, high: number | null) => ((low ?? 0) + (high ?? 0)) / 2;
+  return [
+    ["", "found", "true"],
+    [
+      "K1 / km/s",
+      measured(accretor?.k_kms, accretor?.k_error_kms),
+      plainNumber(truth.k_accretor_kms, 1),
+    ],
+    [
+      "K2 / km/s",
+      measured(donor?.k_centre_kms, donor?.k_centre_error_kms),
+      plainNumber(truth.k_donor_kms, 1),
+    ],
+    [
+      "γ / km/s",
+      measured(donor?.systemic_kms, donor?.systemic_error_kms),
+      plainNumber(Number(systemic_kms), 1),
+    ],
+    ["M2/M1", measured(found.mass_ratio, found.mass_ratio_error), plainNumber(truth.mass_ratio, 3)],
+    [
+      "M1 / Msun",
+      measured(
+        masses.accretor_msun,
+        half(masses.accretor_error_low_msun, masses.accretor_error_high_msun),
+      ),
+      plainNumber(truth.mass_accretor_msun, 3),
+    ],
+    [
+      "M2 / Msun",
+      measured(masses.donor_msun, half(masses.donor_error_low_msun, masses.donor_error_high_msun)),
+      plainNumber(truth.mass_donor_msun, 3),
+    ],
+  ];
+}

@@ -80,3 +80,15 @@ export function linesOf(
   });
   return lines;
 }
+
+/**
+ * The lines of which maps are made: those of the gas. A line that moves with the donor is measured
+ * by `orbit`; it is mapped only where the target file has no other.
+ *
+ * @param lines All lines.
+ * @returns The lines to map.
+ */
+export function mappedLines(lines: readonly LineSettings[]): readonly LineSettings[] {
+  const gas = lines.filter(({ traces }) => traces === "accretor");
+  return gas.length === 0 ? lines : gas;
+}

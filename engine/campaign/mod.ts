@@ -30,6 +30,7 @@ export * from "./session.ts";
 export * from "./simulate.ts";
 export * from "./steps/run_check.ts";
 export * from "./steps/run_map.ts";
+export * from "./steps/run_orbit.ts";
 export * from "./steps/run_plate.ts";
 export * from "./steps/run_profile.ts";
 export * from "./steps/run_synth.ts";

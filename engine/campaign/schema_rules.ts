@@ -37,6 +37,7 @@ const UNITS: readonly (readonly [suffix: string, unit: string])[] = [
  * @param context.schema Its schema, for the names of known keys.
  * @param context.action What is being done, for the message.
  * @param context.placeOf Place of a path in the document.
+ * @param context.document What the document is, for messages. @default "the target file"
  * @returns The error.
  */
 export function ruleError(
@@ -46,14 +47,15 @@ export function ruleError(
     schema: z.ZodType;
     action: string;
     placeOf: (path: readonly PropertyKey[]) => RulePlace;
+    document?: string;
   },
 ): InputError {
-  const { value, schema, action, placeOf } = context;
+  const { value, schema, action, placeOf, document = "the target file" } = context;
   if (issue.code === "unrecognized_keys") {
     const unknown = issue.keys[0]!;
     const path = [...issue.path, unknown];
     const known = keysAt(schema, issue.path);
-    const section = issue.path.length === 0 ? "the target file" : `[${sectionName(issue.path)}]`;
+    const section = issue.path.length === 0 ? document : `[${sectionName(issue.path)}]`;
     return new InputError({
       action,
       rule: `key "${unknown}" is not known in ${section}`,
@@ -65,7 +67,7 @@ export function ruleError(
     });
   }
   const key = pathKey(issue.path);
-  const name = key === "" ? "the target file" : String(lastName(issue.path));
+  const name = key === "" ? document : String(lastName(issue.path));
   const current = valueAt(value, issue.path);
   const unit = typeof current === "number"
     ? UNITS.find(([suffix]) => name.replace(/\[\d+\]$/, "").endsWith(suffix))?.[1]

@@ -1,5 +1,6 @@
 import type { Binary, Ephemeris } from "../binary/mod.ts";
 import { InputError, type Warning } from "../errors.ts";
+import type { OrbitMeasurement } from "../orbit/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
@@ -10,6 +11,7 @@ import { pause } from "./pause.ts";
 import { readTargetExposures, type TargetExposures } from "./read_target_exposures.ts";
 import type { LineSettings } from "./schema/lines_section.ts";
 import type { Target } from "./target.ts";
+import { measureTargetOrbit } from "./steps/run_orbit.ts";
 import { trailOf } from "./trail_of.ts";
 
 /**
@@ -28,6 +30,8 @@ export interface Session {
   readonly trail: (line: LineSettings) => Promise<Trail>;
   /** The map of a line. */
   readonly map: (line: LineSettings) => Promise<MappedLine>;
+  /** The orbit as measured. */
+  readonly orbit: () => Promise<OrbitMeasurement>;
   /** The lines, at least one. */
   readonly lines: (action: string) => readonly LineSettings[];
   /** Systemic velocity, km/s, with the warning where it had to be assumed. */
@@ -84,19 +88,21 @@ export function openSession(
       signal,
     });
   });
-  return {
+  const session: Session = {
     target,
     exposures,
     ephemeris,
     binary,
     trail,
     map,
+    orbit: once(() => measureTargetOrbit(session)),
     lines: (action) => linesOf(target, { action }),
     systemic,
     workers,
     progress,
     signal,
   };
+  return session;
 }
 
 function systemicOf(target: Target): { kms: number; warnings: Warning[] } {

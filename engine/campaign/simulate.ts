@@ -43,27 +43,29 @@ export async function simulateExposures(
     key: "binary (any numbers that fix K1 and K2)",
     action,
   });
+  const exposures = planExposures(parseIsoDate(observation.first_utc), observation);
+  const raw = observe(model, {
+    object: target.title,
+    target: direction,
+    site,
+    binary,
+    ephemeris: ephemerisOf(target, { direction }),
+    systemic_kms: orbit.systemic_kms === "search" ? 0 : orbit.systemic_kms,
+    exposures,
+    arms: observation.arms,
+    lines: linesOf(target, { action }).map((line) => ({
+      line: lineOf(line, { target }),
+      model: line.model,
+    })),
+    variability: observation.variability,
+    instrument: observation.instrument,
+    sky: observation.sky,
+  }, { stream: randomStream(settings.seed) });
+  await pause(signal);
   const written: string[] = [];
-  for (const [index, { name, ...arm }] of observation.arms.entries()) {
-    const raw = observe(model, {
-      object: target.title,
-      target: direction,
-      site,
-      binary,
-      ephemeris: ephemerisOf(target, { direction }),
-      systemic_kms: orbit.systemic_kms === "search" ? 0 : orbit.systemic_kms,
-      exposures: planExposures(parseIsoDate(observation.first_utc), observation),
-      arms: [arm],
-      lines: linesOf(target, { action }).map((line) => ({
-        line: lineOf(line, { target }),
-        model: line.model,
-      })),
-      variability: observation.variability,
-      instrument: observation.instrument,
-      sky: observation.sky,
-    }, { stream: randomStream(settings.seed, index) });
-    await pause(signal);
-    const files = encodeExposures(raw, { layout: observation.layout, stem: name });
+  for (const [index, { name }] of observation.arms.entries()) {
+    const own = raw.slice(index * exposures.length, (index + 1) * exposures.length);
+    const files = encodeExposures(own, { layout: observation.layout, stem: name });
     await makeFolder(join(folder, name));
     for (const [done, file] of files.entries()) {
       const path = join(folder, name, file.name);

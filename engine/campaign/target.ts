@@ -1,6 +1,7 @@
 import { basename, dirname, extname, join } from "@std/path";
 import { InputError } from "../errors.ts";
 import { readText, sha256 } from "../files/mod.ts";
+import { canonicalJson } from "./canonical.ts";
 import { overrideSetting } from "./override.ts";
 import { ruleError } from "./schema_rules.ts";
 import { targetSchema, type TargetSettings } from "./schema/target_schema.ts";
@@ -107,7 +108,7 @@ export function parseTarget(
     name,
     title: settings.title ?? name,
     settings,
-    settings_digest: sha256(new TextEncoder().encode(canonical(settings))),
+    settings_digest: sha256(new TextEncoder().encode(canonicalJson(settings))),
     text,
     overrides: [...set],
     places: document.places,
@@ -141,16 +142,4 @@ export function needed<T>(
 /** Path of the output folder of a target: beside the file, named after it, unless stated. */
 export function outputFolder(target: Target, out?: string): string {
   return out ?? join(dirname(target.file), target.name);
-}
-
-function canonical(value: unknown): string {
-  return JSON.stringify(
-    value,
-    (_key, entry) =>
-      entry !== null && typeof entry === "object" && !Array.isArray(entry)
-        ? Object.fromEntries(
-          Object.entries(entry).sort(([a], [b]) => (a < b ? -1 : a > b ? 1 : 0)),
-        )
-        : entry,
-  );
 }

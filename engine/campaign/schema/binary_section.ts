@@ -21,6 +21,16 @@ export interface BinarySettings {
   readonly inclination_error_deg?: number;
   /** Range of inclination where only that is known, degrees. */
   readonly inclination_range_deg?: readonly [number, number];
+  /** Full width of the eclipse of the accretor's centre, cycles. */
+  readonly eclipse_width_cycles?: number;
+  /** Its standard deviation, cycles. */
+  readonly eclipse_width_error_cycles?: number;
+  /** Superhump period over orbital period, less one. */
+  readonly superhump_excess?: number;
+  /** Its standard deviation. */
+  readonly superhump_excess_error?: number;
+  /** Angle up to which the disc shadows the donor, degrees. */
+  readonly disc_shadow_deg?: number;
   /** Mass of the accretor, solar. */
   readonly mass_accretor_msun?: number;
   /** Mass of the donor, solar. */
@@ -42,6 +52,11 @@ export const binarySection: z.ZodType<BinarySettings> = z.strictObject({
   inclination_deg: number.gt(0).lte(90).optional(),
   inclination_error_deg: nonNegative.optional(),
   inclination_range_deg: range.optional(),
+  eclipse_width_cycles: positive.optional(),
+  eclipse_width_error_cycles: nonNegative.optional(),
+  superhump_excess: positive.optional(),
+  superhump_excess_error: nonNegative.optional(),
+  disc_shadow_deg: number.gte(0).lt(60).optional(),
   mass_accretor_msun: positive.optional(),
   mass_donor_msun: positive.optional(),
   separation_rsun: positive.optional(),

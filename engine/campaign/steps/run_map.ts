@@ -1,6 +1,7 @@
 import { uniqueWarnings } from "../output_head.ts";
 import type { MapFeature, MapPeak } from "../../tomography/mod.ts";
 import { jsonText, type OutputHead, outputHead } from "../output_head.ts";
+import { mappedLines } from "../line_of.ts";
 import { mapFits } from "../map_fits.ts";
 import type { MappedLine } from "../map_line.ts";
 import type { Session } from "../session.ts";
@@ -56,7 +57,9 @@ export async function runMap(
   output: StepOutput,
 ): Promise<StepResult<MapDocument>> {
   const maps: MappedLine[] = [];
-  for (const line of session.lines("make the velocity map")) maps.push(await session.map(line));
+  for (const line of mappedLines(session.lines("make the velocity map"))) {
+    maps.push(await session.map(line));
+  }
   const { inputs, warnings: reading } = await session.exposures();
   const warnings = uniqueWarnings([
     ...reading,

@@ -1,5 +1,6 @@
 import { type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
 import type { Session } from "../session.ts";
+import { mappedLines } from "../line_of.ts";
 import { hduName } from "../fits_head.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
@@ -25,7 +26,7 @@ export async function runPlate(
   const { pdfBytes, pngBytes, standardPlate, svgText } = await import("../../figures/mod.ts");
   const { plate } = session.target.settings;
   const made: [name: string, data: Uint8Array | string][] = [];
-  const lines = session.lines("draw the plate");
+  const lines = mappedLines(session.lines("draw the plate"));
   const { inputs, warnings: reading } = await session.exposures();
   const warnings = [...reading, ...session.systemic().warnings];
   for (const [index, line] of lines.entries()) {

@@ -1,0 +1,140 @@
+import { median, randomStream } from "../../numerics/mod.ts";
+import { type EcsvTable, formatEcsv } from "../../files/mod.ts";
+import {
+  measureOrbit,
+  type OrbitLine,
+  type OrbitMeasurement,
+  type OrbitReport,
+  type VelocityRow,
+} from "../../orbit/mod.ts";
+import { airToVacuum } from "../../sky/mod.ts";
+import { FWHM_OVER_SIGMA } from "../../trail/mod.ts";
+import { inclinationOf } from "../inclination_of.ts";
+import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
+import { pause } from "../pause.ts";
+import { readTemplates } from "../read_template.ts";
+import { refinedTarget } from "../refined_target.ts";
+import type { Session } from "../session.ts";
+import { VERSION } from "../version.ts";
+import { type StepOutput, type StepResult, writeStep } from "./step.ts";
+
+/** Stream of chance of `orbit`, not that of any other step. */
+const STREAM = 600_000;
+
+/** `orbit.json`. */
+export interface OrbitDocument extends OutputHead, OrbitReport {}
+
+/**
+ * Measures the orbit of a session's target: once, whoever asks.
+ *
+ * @param session The target at work.
+ * @returns Report, velocities, data for plates.
+ */
+export async function measureTargetOrbit(session: Session): Promise<OrbitMeasurement> {
+  const { target, signal } = session;
+  const lines: OrbitLine[] = [];
+  for (const settings of session.lines("measure the orbit")) {
+    const trail = await session.trail(settings);
+    const resolution_kms = FWHM_OVER_SIGMA * median(trail.sampling.profile_sigma_kms);
+    const templates = await readTemplates(target, { settings, line: trail.line, resolution_kms });
+    lines.push({
+      trail,
+      traces: settings.traces,
+      ...(templates.length === 0 ? {} : { templates }),
+      ...(settings.components_air_angstrom === undefined ? {} : {
+        components_vacuum_angstrom: settings.components_air_angstrom.map(airToVacuum),
+      }),
+    });
+    await pause(signal);
+  }
+  return measureOrbit(lines, {
+    ephemeris: await session.ephemeris(),
+    random: randomStream(target.settings.seed, STREAM),
+    period_range_d: target.settings.orbit.period_range_d,
+    inclination: inclinationOf(target),
+    disc_shadow_deg: target.settings.binary.disc_shadow_deg ?? null,
+    superhump_excess: superhump(session),
+  });
+}
+
+function superhump(session: Session) {
+  const { superhump_excess, superhump_excess_error = 0 } = session.target.settings.binary;
+  return superhump_excess === undefined
+    ? null
+    : { value: superhump_excess, error: superhump_excess_error };
+}
+
+/**
+ * Makes `orbit.json` and `velocities.ecsv`, and with `refine` an improved target file.
+ *
+ * @param session The target at work.
+ * @param output Where to write.
+ * @param options What more to do.
+ * @param options.refine Whether to write an improved target file beside the old one. @default false
+ * @returns Document, files, warnings.
+ */
+export async function runOrbit(
+  session: Session,
+  output: StepOutput,
+  options: { refine?: boolean } = {},
+): Promise<StepResult<OrbitDocument> & { readonly measurement: OrbitMeasurement }> {
+  const { target } = session;
+  const measurement = await session.orbit();
+  const { inputs, warnings: reading } = await session.exposures();
+  const trails = await Promise.all(session.lines("measure the orbit").map(session.trail));
+  const warnings = uniqueWarnings([
+    ...reading,
+    ...trails.flatMap((trail) => trail.warnings),
+    ...measurement.warnings,
+  ]);
+  const document: OrbitDocument = {
+    ...outputHead(target, { schema: "orbit/1", inputs, warnings }),
+    ...measurement.report,
+  };
+  const files = await writeStep([
+    ["orbit.json", jsonText(document)],
+    ["velocities.ecsv", formatEcsv(velocityTable(measurement.velocities, target.title))],
+  ], output);
+  const refined = options.refine
+    ? await writeStep(
+      [[`${target.name}-refined.toml`, refinedTarget(target, measurement.report)]],
+      { folder: target.folder, overwrite: output.overwrite },
+    )
+    : [];
+  return { document, files: [...files, ...refined], warnings, measurement };
+}
+
+function velocityTable(rows: readonly VelocityRow[], title: string): EcsvTable {
+  const texts = (key: "line" | "method" | "star" | "source") => ({
+    name: key,
+    datatype: "string" as const,
+    values: rows.map((row) => row[key]),
+  });
+  const numbers = (
+    key: Exclude<keyof VelocityRow, "line" | "method" | "star" | "source">,
+    unit: string | undefined,
+    description: string,
+  ) => ({
+    name: key,
+    datatype: "float64" as const,
+    unit,
+    description,
+    values: rows.map((row) => row[key]),
+  });
+  return {
+    meta: { creator: "Millrace", version: VERSION, schema: "velocities/1", target: title },
+    columns: [
+      texts("line"),
+      texts("method"),
+      texts("star"),
+      texts("source"),
+      numbers("bjd_day", "d", "whole part of mid-exposure, BJD(TDB)"),
+      numbers("bjd_fraction", "d", "fraction of mid-exposure, BJD(TDB)"),
+      numbers("cycle", undefined, "cycle on the reported ephemeris"),
+      numbers("phase", undefined, "phase on the reported ephemeris"),
+      numbers("exposure_cycles", undefined, "length of the exposure, cycles"),
+      numbers("velocity_kms", "km / s", "velocity, barycentric"),
+      numbers("error_kms", "km / s", "one standard deviation"),
+    ],
+  };
+}
