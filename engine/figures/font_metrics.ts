@@ -32,11 +32,12 @@ export interface FontMetrics {
  *
  * @example
  * ```ts
- * import { faces } from "@millrace/millrace/figures";
+ * import { fontFace } from "@millrace/millrace/figures";
  * import { assert } from "@std/assert";
  *
- * assert(faces.regular.metrics.has(0x3b3)); // γ
- * assert(faces.regular.metrics.width("W") > faces.regular.metrics.width("i"));
+ * const { metrics } = fontFace("regular");
+ * assert(metrics.has(0x3b3)); // γ
+ * assert(metrics.width("W") > metrics.width("i"));
  * ```
  */
 export function readFontMetrics(bytes: Uint8Array): FontMetrics {

@@ -2,7 +2,7 @@ import { Buffer } from "node:buffer";
 import PDFDocument from "pdfkit";
 import type { Group, ImageItem, Item, PathItem, Picture, TextItem } from "./display_list.ts";
 import type { FaceName } from "./font_names.ts";
-import { facePieces, faces } from "./fonts.ts";
+import { faceNames, facePieces, fontFace } from "./fonts.ts";
 import { type Metadata, SOFTWARE } from "./marks.ts";
 import { pngFile } from "./png_file.ts";
 import { runStyle } from "./runs.ts";
@@ -45,7 +45,7 @@ export function pdfBytes(picture: Picture, options: PdfOptions = {}): Promise<Ui
     displayTitle: true,
     lang: "en",
     // A font here keeps pdfkit from reading its built-in ones from the disc.
-    font: Buffer.from(faces.regular.bytes) as unknown as string,
+    font: Buffer.from(fontFace("regular").bytes) as unknown as string,
     info: {
       Title: picture.title,
       Subject: facts,
@@ -54,8 +54,8 @@ export function pdfBytes(picture: Picture, options: PdfOptions = {}): Promise<Ui
       CreationDate: new Date(0),
     },
   });
-  for (const [name, face] of Object.entries(faces)) {
-    document.registerFont(name, Buffer.from(face.bytes));
+  for (const name of faceNames) {
+    document.registerFont(name, Buffer.from(fontFace(name).bytes));
   }
   const bytes = collect(document);
   const figure = document.struct("Figure", { alt: picture.description }, () => {

@@ -1,9 +1,9 @@
 import { initWasm, Resvg } from "@resvg/resvg-wasm";
-import wasm from "@resvg/resvg-wasm/index_bg.wasm" with { type: "bytes" };
 import { resampleCells } from "./cells.ts";
 import { type Picture } from "./display_list.ts";
 import { TEXT_FAMILY } from "./font_names.ts";
-import { faces } from "./fonts.ts";
+import { faceNames, fontFace } from "./fonts.ts";
+import { packageFile } from "./package_file.ts";
 import type { Metadata } from "./marks.ts";
 import { pngFile, type Raster } from "./png_file.ts";
 import { svgText } from "./svg.ts";
@@ -20,14 +20,14 @@ let ready: Promise<void> | undefined;
 
 async function renderer(svg: string, scale: number): Promise<InstanceType<typeof Resvg>> {
   // The module may be started once in a process.
-  ready ??= initWasm(wasm);
+  ready ??= initWasm(packageFile(import.meta.resolve("@resvg/resvg-wasm/index_bg.wasm")));
   await ready;
   return new Resvg(svg, {
     background: "#ffffff",
     fitTo: { mode: "zoom", value: scale },
     imageRendering: 1, // cells are already at the resolution of the output
     font: {
-      fontBuffers: Object.values(faces).map((face) => face.bytes),
+      fontBuffers: faceNames.map((name) => fontFace(name).bytes),
       defaultFontFamily: TEXT_FAMILY,
       serifFamily: TEXT_FAMILY,
     },

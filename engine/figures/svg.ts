@@ -1,7 +1,7 @@
 import { Buffer } from "node:buffer";
 import { resampleCells } from "./cells.ts";
 import type { ImageItem, Picture } from "./display_list.ts";
-import { facePieces, faces } from "./fonts.ts";
+import { facePieces, fontFace } from "./fonts.ts";
 import type { Metadata } from "./marks.ts";
 import { pngFile } from "./png_file.ts";
 import { drawSvg, type SvgTools } from "./svg_draw.ts";
@@ -43,7 +43,7 @@ export function svgText(picture: Picture, options: SvgOptions = {}): string {
 
 const fontTools: Pick<SvgTools, "pieces" | "piece_width"> = {
   pieces: facePieces,
-  piece_width: ({ text, face }) => faces[face].metrics.width(text),
+  piece_width: ({ text, face }) => fontFace(face).metrics.width(text),
 };
 
 function url(png: Uint8Array): string {

@@ -17,7 +17,7 @@ Deno.bench("standard plate: PDF", { group: "plate" }, async () => {
 // The goal is 1.5 s on a quiet machine of two cores, process start, layout and all three formats included.
 Deno.bench("standard plate: cold start to SVG, PNG and PDF", { n: 5, warmup: 1 }, async () => {
   const script = new URL("plate_cold.ts", import.meta.url).pathname;
-  const args = ["run", "--no-prompt", "--no-check", script];
+  const args = ["run", "--no-prompt", "--no-check", "--allow-read", script];
   const { success } = await new Deno.Command(Deno.execPath(), { args }).output();
   if (!success) throw new Error("the plate was not drawn");
 });

@@ -2,7 +2,7 @@ import { assert, assertAlmostEquals, assertEquals, assertThrows } from "@std/ass
 import { InputError } from "../../engine/errors.ts";
 import {
   facePieces,
-  faces,
+  fontFace,
   labelRuns,
   readFontMetrics,
   textWidth,
@@ -10,14 +10,14 @@ import {
 
 Deno.test("readFontMetrics() finds the Latin, Greek and signs that labels use", () => {
   for (const character of "AVkmsÅ°±×−½γλφχσβαπ0123456789") {
-    assert(faces.regular.metrics.has(character.codePointAt(0)!), character);
+    assert(fontFace("regular").metrics.has(character.codePointAt(0)!), character);
   }
-  assert(!faces.regular.metrics.has("☉".codePointAt(0)!));
-  assert(faces.fallback.metrics.has("☉".codePointAt(0)!));
+  assert(!fontFace("regular").metrics.has("☉".codePointAt(0)!));
+  assert(fontFace("fallback").metrics.has("☉".codePointAt(0)!));
 });
 
 Deno.test("readFontMetrics() gives all figures one width, as tables need", () => {
-  const widths = [..."0123456789"].map((digit) => faces.regular.metrics.width(digit));
+  const widths = [..."0123456789"].map((digit) => fontFace("regular").metrics.width(digit));
   assertEquals(new Set(widths).size, 1);
 });
 

@@ -1,6 +1,6 @@
 import { Buffer } from "node:buffer";
 import { TEXT_FAMILY } from "../font_names.ts";
-import { faces } from "../fonts.ts";
+import { fontFace } from "../fonts.ts";
 import { webFont } from "./web_font.ts";
 
 /** Latin, Greek and the signs of the trade: what pages are written in. */
@@ -28,7 +28,7 @@ function pageCharacters(): string {
 export function pageFonts(): string {
   const characters = pageCharacters();
   const rule = (face: "regular" | "italic", style: string) => {
-    const woff = Buffer.from(webFont(faces[face].bytes, { characters })).toString("base64");
+    const woff = Buffer.from(webFont(fontFace(face).bytes, { characters })).toString("base64");
     return `@font-face{font-family:'${TEXT_FAMILY}';font-style:${style};font-weight:400;` +
       `src:url(data:font/woff;base64,${woff}) format('woff')}`;
   };

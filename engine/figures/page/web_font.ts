@@ -28,10 +28,10 @@ const KEPT = [
  *
  * @example
  * ```ts
- * import { faces, webFont } from "@millrace/millrace/figures";
+ * import { fontFace, webFont } from "@millrace/millrace/figures";
  * import { assert } from "@std/assert";
  *
- * const ttf = faces.regular.bytes;
+ * const ttf = fontFace("regular").bytes;
  * const woff = webFont(ttf, { characters: "km s−1" });
  * assert(woff.length < ttf.length / 10);
  * ```
