@@ -3,15 +3,15 @@ import { unpackError } from "./error_crossing.ts";
 import type { FromWorker, ToWorker } from "./messages.ts";
 
 /** What {@linkcode runOnPool} needs besides the tasks. */
-export interface PoolOptions {
+export interface PoolOptions<Result> {
   /** Address of the task module. */
   readonly module: string;
   /** Number of workers. */
   readonly workers: number;
   /** What all tasks have in common. */
   readonly shared: unknown;
-  /** Called after each task. */
-  readonly onDone: (done: number) => void;
+  /** Called after each task with how many are done, its number and its result. */
+  readonly onDone: (done: number, index: number, result: Result) => void;
   /** Ends everything at once. */
   readonly signal: AbortSignal | undefined;
 }
@@ -23,7 +23,7 @@ export interface PoolOptions {
  */
 export function runOnPool<Result>(
   tasks: readonly unknown[],
-  { module, workers, shared, onDone, signal }: PoolOptions,
+  { module, workers, shared, onDone, signal }: PoolOptions<Result>,
 ): Promise<Result[]> {
   const { promise, resolve, reject } = Promise.withResolvers<Result[]>();
   const results = new Array<Result>(tasks.length);
@@ -73,7 +73,7 @@ export function runOnPool<Result>(
       case "done":
         running.delete(worker);
         results[message.index] = message.result as Result;
-        onDone(++done);
+        onDone(++done, message.index, message.result as Result);
         return handOut(worker);
       case "failed":
         running.delete(worker);

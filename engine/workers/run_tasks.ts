@@ -7,8 +7,9 @@ import { loadTaskModule } from "./task_module.ts";
  * Options of {@linkcode runTasks}.
  *
  * @typeParam Shared What all tasks have in common.
+ * @typeParam Result What comes of a task.
  */
-export interface RunTasksOptions<Shared> {
+export interface RunTasksOptions<Shared, Result = unknown> {
   /** Module to run, a {@linkcode TaskModule}: `new URL("./my_task.ts", import.meta.url)`. */
   readonly module: URL;
   /**
@@ -29,6 +30,13 @@ export interface RunTasksOptions<Shared> {
    * @default None
    */
   readonly progress?: Progress;
+  /**
+   * Called with the number of a task and its result as soon as there is one, in the order in which
+   * tasks end.
+   *
+   * @default None
+   */
+  readonly onResult?: (index: number, result: Result) => void;
   /**
    * What is being done, for `progress`.
    *
@@ -87,9 +95,9 @@ function turn(): Promise<void> {
  */
 export async function runTasks<Task, Result, Shared = undefined>(
   tasks: readonly Task[],
-  options: RunTasksOptions<Shared>,
+  options: RunTasksOptions<Shared, Result>,
 ): Promise<Result[]> {
-  const { module, workers = 1, progress, what = "tasks", signal } = options;
+  const { module, workers = 1, progress, onResult, what = "tasks", signal } = options;
   if (!Number.isInteger(workers) || workers < 1) {
     throw new InputError({
       action: "run tasks",
@@ -98,7 +106,10 @@ export async function runTasks<Task, Result, Shared = undefined>(
     });
   }
   const total = tasks.length;
-  const onDone = (done: number) => progress?.(done, total, what);
+  const onDone = (done: number, index: number, result: Result) => {
+    onResult?.(index, result);
+    progress?.(done, total, what);
+  };
   signal?.throwIfAborted();
   if (total === 0) return [];
   if (workers > 1 && total > 1 && !insideWorker()) {
@@ -109,11 +120,12 @@ export async function runTasks<Task, Result, Shared = undefined>(
   const { runTask } = await loadTaskModule<Task, Result, Shared>(module.href);
   const shared = structuredClone(options.shared) as Shared;
   const results: Result[] = [];
-  for (const task of tasks) {
+  for (const [index, task] of tasks.entries()) {
     await turn();
     signal?.throwIfAborted();
-    results.push(structuredClone(await runTask(structuredClone(task), shared)));
-    onDone(results.length);
+    const result = structuredClone(await runTask(structuredClone(task), shared));
+    results.push(result);
+    onDone(results.length, index, result);
   }
   return results;
 }

@@ -12,6 +12,7 @@ function run<Result = unknown>(
     shared?: Shared;
     signal?: AbortSignal;
     progress?: (done: number, total: number) => void;
+    onResult?: (index: number, result: Result) => void;
   } = {},
 ): Promise<Result[]> {
   const tasks = kinds.map((kind, k): Task => ({ kind, k }));
@@ -38,6 +39,19 @@ Deno.test("runTasks() keeps the order of tasks when the first ones are slow", as
   assertEquals(results[0], 0);
   assert(results[3] instanceof Float64Array);
   assertEquals(progress, [0.25, 0.5, 0.75, 1]);
+});
+
+Deno.test("runTasks() tells each result with its number as soon as there is one", async () => {
+  for (const workers of [1, 2]) {
+    const told = new Map<number, unknown>();
+    const results = await run<unknown>(["slow", "noise", "noise", "noise"], workers, {
+      onResult: (index, result) => told.set(index, result),
+    });
+    assertEquals(told.size, 4);
+    assertEquals([0, 1, 2, 3].map((index) => told.get(index)), results);
+    // With two workers the slow first task ends after others.
+    assertEquals([...told.keys()][0] === 0, workers === 1);
+  }
 });
 
 Deno.test("runTasks() really runs elsewhere when workers are more than one", async () => {
