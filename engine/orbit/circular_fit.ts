@@ -1,6 +1,6 @@
 import { Matrix } from "ml-matrix";
 import { type DenseMatrix, findRoot, median, solveLeastSquares } from "../numerics/mod.ts";
-import { InputError } from "../errors.ts";
+import { requirePhaseSpread } from "./phase_spread.ts";
 import {
   measuredOnly,
   requireVelocities,
@@ -76,22 +76,6 @@ function residualsOf(design: Matrix, velocity: Float64Array, parameters: Float64
   );
 }
 
-/** Throws when the phases do not tell γ, A and B apart. */
-function requirePhases(curve: VelocityCurve, design: Matrix): void {
-  const { covariance, rank } = solveLeastSquares(design, curve.velocity_kms);
-  const worst = Math.max(covariance.get(0, 0), covariance.get(1, 1), covariance.get(2, 2));
-  // An even spread gives 2/N; a hundred times that is an orbit seen from one side only.
-  if (rank === 3 && worst < 200 / curve.orbits.length) return;
-  const phases = Array.from(curve.orbits, (x) => x - Math.floor(x)).sort((a, b) => a - b);
-  throw new InputError({
-    action: `fit orbit to ${curve.line} by ${curve.method}`,
-    rule: "the phases must spread over the orbit, or K, γ and the zero cannot be told apart",
-    value: `${phases[0]!.toFixed(3)} to ${phases.at(-1)!.toFixed(3)}`,
-    unit: "cycles",
-    remedy: "add exposures at other phases",
-  });
-}
-
 /** Weights of Tukey's biweight, by residuals in units of their robust scatter. */
 function biweight(u: number): number {
   const share = Math.abs(u) / 4.685;
@@ -134,7 +118,7 @@ export function fitCircular(curve: VelocityCurve, options: CircularFitOptions = 
   requireVelocities(curve, "fit orbit");
   const used = measuredOnly(curve);
   const design = designOf(used, smear);
-  requirePhases(used, design);
+  requirePhaseSpread(used.orbits, `fit orbit to ${curve.line} by ${curve.method}`);
   const { velocity_kms, error_kms } = used;
   const count = velocity_kms.length;
   const degrees_of_freedom = count - 3;

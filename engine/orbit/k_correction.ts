@@ -74,7 +74,7 @@ function lightOf(mass_ratio: number, options: KCorrectionOptions) {
  * import { kCorrection } from "@millrace/millrace/orbit";
  * import { assert, assertAlmostEquals } from "@std/assert";
  *
- * assert(kCorrection(0.3, { light: "irradiated" }) < 0.7);
+ * assert(kCorrection(0.3, { light: "irradiated" }) < 0.75);
  * assert(kCorrection(0.3, { light: "quenched" }) > 1);
  * // The light of the whole surface hardly differs from the centre of mass.
  * assertAlmostEquals(kCorrection(0.3, { light: "photosphere" }), 1, 0.02);

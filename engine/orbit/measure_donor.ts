@@ -73,6 +73,9 @@ const LEAST_MEASURED = 0.7;
 const LEAST_K_SIGMA = 3;
 const MOST_STATIONARY = 0.25;
 
+/** Velocities that donors mostly have, km/s: common practice, no source. */
+const LIKELY_KMS = 400;
+
 /** Gaussian widths tried, in instrumental σ. */
 const WIDTHS = [1, 1.4, 2, 2.8, 4];
 
@@ -104,6 +107,18 @@ function chooseTemplate(trail: Trail, options: DonorOptions) {
     if (gain > best.gain) best = { ...candidate, gain };
   }
   return best;
+}
+
+/** Share of the line's information that masked pixels take, over exposures and likely velocities. */
+function hiddenShare(matches: readonly ExposureMatch[]): number {
+  let seen = 0, whole = 0;
+  for (const match of matches) {
+    for (let v = -LIKELY_KMS; v <= LIKELY_KMS; v += LIKELY_KMS / 4) {
+      seen += match.information(v);
+      whole += match.informationUnmasked(v);
+    }
+  }
+  return whole > 0 ? 1 - seen / whole : 0;
 }
 
 /** Largest fall of chi-square by a template that stands still, over that by one that moves. */
@@ -185,10 +200,11 @@ export function measureDonor(trail: Trail, options: DonorOptions = {}): DonorLin
   const reasons: string[] = [];
   const direct = fit !== null && measured >= LEAST_MEASURED;
   const chosen = direct ? fit : back_projected?.detected ? back_projected : null;
-  if (2 * velocities.masked > count) {
+  const hidden = hiddenShare(matches);
+  if (2 * velocities.masked > count || (chosen === null && hidden > 0.5)) {
     reasons.push(
-      `masked pixels (telluric bands, sky lines, cosmic rays) hide the line in ` +
-        `${velocities.masked} of ${count} exposures`,
+      "masked pixels (telluric bands, sky lines, cosmic rays) hide " +
+        `${(100 * hidden).toFixed(0)} % of the line`,
     );
   } else if (chosen === null) {
     const gain = back_projected

@@ -16,6 +16,7 @@ import { zeroShift } from "./orbit_ephemeris.ts";
 import type { OrbitLine } from "./orbit_line.ts";
 import type { OrbitReport, VelocityRow } from "./orbit_report.ts";
 import { type PeriodSearch, requirePeriodRange } from "./period_search.ts";
+import { requirePhaseSpread } from "./phase_spread.ts";
 import { type Settled, settleEphemeris } from "./settle_ephemeris.ts";
 import { curveReport, velocityRows } from "./star_reports.ts";
 import { summariseStars } from "./star_summary.ts";
@@ -64,18 +65,21 @@ export interface OrbitMeasurement {
 
 const action = "measure orbit";
 
-function requireLines(lines: readonly OrbitLine[]): void {
+function requireLines(lines: readonly OrbitLine[], phased: boolean): void {
   if (lines.length === 0) {
     throw new InputError({ action, rule: "there must be a line", value: 0, key: "lines" });
   }
   for (const { trail } of lines) {
-    if (trail.sampling.count >= 5) continue;
-    throw new InputError({
-      action,
-      rule: `it takes at least 5 exposures (${trail.line.name})`,
-      value: trail.sampling.count,
-      remedy: "add exposures",
-    });
+    const { count, phase } = trail.sampling;
+    if (count < 5) {
+      throw new InputError({
+        action,
+        rule: `it takes at least 5 exposures (${trail.line.name})`,
+        value: count,
+        remedy: "add exposures",
+      });
+    }
+    if (phased) requirePhaseSpread(phase, `${action} of ${trail.line.name}`);
   }
 }
 
@@ -111,7 +115,7 @@ export function measureOrbit(
   lines: readonly OrbitLine[],
   options: MeasureOrbitOptions,
 ): OrbitMeasurement {
-  requireLines(lines);
+  requireLines(lines, options.period_range_d === undefined);
   const { period_range_d, inclination = null, superhump_excess = null, random } = options;
   if (period_range_d) requirePeriodRange(period_range_d);
   const settled = settleEphemeris(lines, options);

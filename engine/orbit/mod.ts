@@ -29,6 +29,7 @@ export * from "./orbit_line.ts";
 export * from "./orbit_report.ts";
 export * from "./period_search.ts";
 export * from "./phase_dispersion.ts";
+export * from "./phase_spread.ts";
 export * from "./plateau.ts";
 export * from "./profile_velocity.ts";
 export * from "./rephase.ts";

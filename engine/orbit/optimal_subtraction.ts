@@ -3,7 +3,7 @@ import { minimiseScalar } from "../numerics/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import { type CircularFit, circularVelocity } from "./circular_fit.ts";
 import type { DonorTemplate } from "./donor_template.ts";
-import { matchExposures } from "./template_match.ts";
+import { type ExposureMatch, matchExposures } from "./template_match.ts";
 
 /** What is left of a trail when the best share of a broadened template is taken out. */
 export interface TemplateSubtraction {
@@ -13,6 +13,8 @@ export interface TemplateSubtraction {
   readonly v_sin_i_kms: number;
   /** Its standard deviation, km/s: Δχ² = 1, chi-square scaled to its degrees of freedom. */
   readonly v_sin_i_error_kms: number;
+  /** v sin i if lines had no limb darkening, km/s: the truth may lie anywhere between the two. */
+  readonly v_sin_i_undarkened_kms: number;
   /** Share of the light that is the donor's, 1 less the veiling. */
   readonly share: number;
   /** Its standard deviation. */
@@ -66,6 +68,26 @@ export function orbitalSmear(
   });
 }
 
+/** Weighted sums over all exposures. */
+interface Sums {
+  readonly cross: number;
+  readonly auto: number;
+  readonly chi: number;
+  readonly samples: number;
+}
+
+function sumUp(matches: readonly ExposureMatch[], velocity: Float64Array): Sums {
+  let cross = 0, auto = 0, chi = 0, samples = 0;
+  matches.forEach((match, i) => {
+    const [c, a] = match.at(velocity[i]!);
+    cross += c;
+    auto += a;
+    chi += match.chi_square_baseline;
+    samples += match.sample_count;
+  });
+  return { cross, auto, chi, samples };
+}
+
 /**
  * Optimal subtraction (Marsh, Robinson & Wood 1994, MNRAS 266, 137): each template is broadened to a
  * trial v sin i, smeared by each exposure, put at the donor's velocity and taken out with the share
@@ -110,56 +132,49 @@ export function subtractTemplates(
     circularVelocity(orbit, phase, { exposure_orbits: sampling.phase_width[i]! })
   );
   return templates.map((template): TemplateSubtraction => {
-    const cache = new Map<number, { cross: number; auto: number; chi: number; samples: number }>();
-    const sums = (v_sin_i_kms: number) => {
-      const known = cache.get(v_sin_i_kms);
-      if (known) return known;
-      const matches = matchExposures(trail, template, {
-        v_sin_i_kms,
-        smear_kms,
-        baseline_order,
-        ...(limb_darkening === undefined ? {} : { limb_darkening }),
-      });
-      let cross = 0, auto = 0, chi = 0, samples = 0;
-      matches.forEach((match, i) => {
-        const [c, a] = match.at(velocity[i]!);
-        cross += c;
-        auto += a;
-        chi += match.chi_square_baseline;
-        samples += match.sample_count;
-      });
-      const found = { cross, auto, chi, samples };
-      cache.set(v_sin_i_kms, found);
-      return found;
+    const fitted = (darkening: number | undefined) => {
+      const cache = new Map<number, Sums>();
+      const sums = (v_sin_i_kms: number): Sums => {
+        const known = cache.get(v_sin_i_kms);
+        if (known) return known;
+        const matches = matchExposures(trail, template, {
+          v_sin_i_kms,
+          smear_kms,
+          baseline_order,
+          ...(darkening === undefined ? {} : { limb_darkening: darkening }),
+        });
+        const found = sumUp(matches, velocity);
+        cache.set(v_sin_i_kms, found);
+        return found;
+      };
+      const chiSquare = (v: number) => {
+        const { cross, auto, chi } = sums(Math.max(0, v));
+        return chi - (cross > 0 && auto > 0 ? cross * cross / auto : 0);
+      };
+      const step = v_sin_i_limit_kms / 25;
+      let coarse = 0;
+      for (let k = 1; k <= 25; k++) if (chiSquare(k * step) < chiSquare(coarse)) coarse = k * step;
+      const range = [Math.max(0, coarse - step), coarse + step] as const;
+      const { x, value } = minimiseScalar(chiSquare, range, { tolerance: 1e-3 });
+      return { v_sin_i_kms: Math.max(0, x), value, sums, chiSquare };
     };
-    const chiSquare = (v: number) => {
-      const { cross, auto, chi } = sums(Math.max(0, v));
-      return chi - (cross > 0 && auto > 0 ? cross * cross / auto : 0);
-    };
-    const step = v_sin_i_limit_kms / 25;
-    let coarse = 0;
-    for (let k = 1; k <= 25; k++) if (chiSquare(k * step) < chiSquare(coarse)) coarse = k * step;
-    const fine = minimiseScalar(
-      chiSquare,
-      [Math.max(0, coarse - step), coarse + step],
-      { tolerance: 1e-3 },
-    );
-    const v_sin_i_kms = Math.max(0, fine.x);
+    const { v_sin_i_kms, value, sums, chiSquare } = fitted(limb_darkening);
     const { cross, auto, samples } = sums(v_sin_i_kms);
     const degrees_of_freedom = samples - sampling.count * (baseline_order + 1) - 2;
-    const scale = Math.max(1, fine.value / degrees_of_freedom);
+    const scale = Math.max(1, value / degrees_of_freedom);
     const h = Math.max(5, 0.1 * v_sin_i_kms);
     const low = Math.max(0, v_sin_i_kms - h);
-    const rise = (chiSquare(v_sin_i_kms + h) - 2 * fine.value + chiSquare(low)) / (h * h);
+    const rise = (chiSquare(v_sin_i_kms + h) - 2 * value + chiSquare(low)) / (h * h);
     return {
       template: template.name,
       v_sin_i_kms,
       v_sin_i_error_kms: rise > 0 ? Math.sqrt(2 * scale / rise) : Infinity,
+      v_sin_i_undarkened_kms: limb_darkening === 0 ? v_sin_i_kms : fitted(0).v_sin_i_kms,
       share: auto > 0 ? cross / auto : 0,
       share_error: auto > 0 ? Math.sqrt(scale / auto) : Infinity,
-      chi_square: fine.value,
+      chi_square: value,
       degrees_of_freedom,
-      rotation_seen: (chiSquare(0) - fine.value) / scale >= 9,
+      rotation_seen: (chiSquare(0) - value) / scale >= 9,
     };
   }).sort((a, b) => a.chi_square - b.chi_square);
 }

@@ -30,7 +30,7 @@ export interface DonorReport extends StarReport {
   readonly k_centre_error_kms: number | null;
   /** K2 for the two ends of the K-correction's range, km/s; null when the shadow is known or none matters. */
   readonly k_centre_range_kms: readonly [low: number, high: number] | null;
-  /** v sin i, km/s; null without template stars or when rotation is not seen. */
+  /** v sin i, km/s, half-way between limb-darkened and undarkened lines; null when not seen. */
   readonly v_sin_i_kms: number | null;
   /** Its standard deviation, km/s. */
   readonly v_sin_i_error_kms: number | null;

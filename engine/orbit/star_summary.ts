@@ -2,6 +2,7 @@ import type { Warning } from "../errors.ts";
 import { type CentreOptions, correctedDonor, type DonorCentre } from "./donor_centre.ts";
 import type { DonorLight } from "./k_correction.ts";
 import type { MeasuredValue } from "./mass_solution.ts";
+import type { TemplateSubtraction } from "./optimal_subtraction.ts";
 import type { DonorReport, StarReport } from "./orbit_report.ts";
 import type { Settled } from "./settle_ephemeris.ts";
 import { smallest } from "./smallest.ts";
@@ -116,9 +117,7 @@ export function summariseStars(settled: Settled, options: CentreOptions): StarSu
     correctedDonor(line_k, light, { ...options, k_accretor_kms: k_accretor_kms?.value ?? null });
   if (line_k) warnings.push(centreWarning(centre, name), systemicWarning(accretor, orbit));
   const subtraction = line?.found.subtraction[0];
-  const v_sin_i_kms = subtraction?.rotation_seen
-    ? { value: subtraction.v_sin_i_kms, error: subtraction.v_sin_i_error_kms }
-    : null;
+  const v_sin_i_kms = subtraction?.rotation_seen ? rotationOf(subtraction) : null;
   const donor: DonorReport = {
     ...(orbit ?? { ...UNMEASURED, line: name, method: "cross-correlation" }),
     light,
@@ -138,6 +137,16 @@ export function summariseStars(settled: Settled, options: CentreOptions): StarSu
     k_donor_kms,
     v_sin_i_kms: k_donor_kms && v_sin_i_kms,
     warnings: kept(warnings),
+  };
+}
+
+/** v sin i; how much the lines are darkened at the limb is not known and counts as an even spread. */
+function rotationOf(subtraction: TemplateSubtraction): MeasuredValue {
+  const { v_sin_i_kms, v_sin_i_error_kms, v_sin_i_undarkened_kms } = subtraction;
+  const spread = (v_sin_i_kms - v_sin_i_undarkened_kms) / Math.sqrt(12);
+  return {
+    value: (v_sin_i_kms + v_sin_i_undarkened_kms) / 2,
+    error: Math.hypot(v_sin_i_error_kms, spread),
   };
 }
 

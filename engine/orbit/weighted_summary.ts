@@ -20,7 +20,6 @@ export interface DrawSummary {
  * @returns The summary.
  */
 export function summarise(values: Float64Array, weights: Float64Array): DrawSummary {
-  const order = Uint32Array.from(values, (_, k) => k).sort((a, b) => values[a]! - values[b]!);
   let total = 0, mean = 0;
   values.forEach((v, k) => {
     total += weights[k]!;
@@ -29,15 +28,7 @@ export function summarise(values: Float64Array, weights: Float64Array): DrawSumm
   mean /= total;
   let square = 0;
   values.forEach((v, k) => square += weights[k]! * (v - mean) ** 2);
-  const at = (p: number) => {
-    const goal = p * total;
-    let sum = 0;
-    for (const k of order) {
-      sum += weights[k]!;
-      if (sum >= goal) return values[k]!;
-    }
-    return values[order.at(-1)!]!;
-  };
+  const at = quantiles(values, weights, total);
   const median = at(0.5);
   return {
     median,
@@ -45,5 +36,23 @@ export function summarise(values: Float64Array, weights: Float64Array): DrawSumm
     error_high: at(0.841345) - median,
     mean,
     deviation: Math.sqrt(square / total),
+  };
+}
+
+/** Quantiles: the first value at which the summed weight reaches a share of the total. */
+function quantiles(values: Float64Array, weights: Float64Array, total: number) {
+  if (weights.every((w) => w === weights[0])) {
+    // Sorting bare numbers is many times as fast.
+    const sorted = values.slice().sort();
+    return (p: number) => sorted[Math.min(sorted.length - 1, Math.ceil(p * sorted.length) - 1)]!;
+  }
+  const order = Uint32Array.from(values.keys()).sort((a, b) => values[a]! - values[b]!);
+  return (p: number) => {
+    let sum = 0;
+    for (const k of order) {
+      sum += weights[k]!;
+      if (sum >= p * total) return values[k]!;
+    }
+    return values[order.at(-1)!]!;
   };
 }
