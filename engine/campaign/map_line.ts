@@ -45,6 +45,8 @@ export interface MappedLine {
   readonly peak: MapPeak;
   /** Compact excesses over the axisymmetric part. */
   readonly features: readonly MapFeature[];
+  /** One standard deviation of each pixel, from the replicas; null without them. */
+  readonly spread: VelocityMap | null;
   /** The map projected on the trail's display grid, R × C. */
   readonly model: Float64Array;
   /** Data less model on the display grid, standard deviations. */
@@ -133,6 +135,7 @@ export async function mapLine(
     converged: true,
     peak: mapPeak(map),
     features,
+    spread: spreadOf(replicas),
     ...gridModel(map, { trail, systemic_kms, scale: fit.scale }),
     warnings,
   };
@@ -142,4 +145,20 @@ export async function mapLine(
 function pixelsFor(trail: Trail, half_width_kms: number): number {
   const sharpest = FWHM_PER_SIGMA * Math.min(...trail.sampling.profile_sigma_kms);
   return 2 * Math.max(40, Math.ceil((2 * half_width_kms) / sharpest)) + 1;
+}
+
+/** Standard deviation of each pixel among replicas. */
+function spreadOf(replicas: readonly VelocityMap[]): VelocityMap | null {
+  const [first] = replicas;
+  if (first === undefined || replicas.length < 2) return null;
+  const intensity = first.intensity.map((_, k) => {
+    let sum = 0, square = 0;
+    for (const replica of replicas) {
+      sum += replica.intensity[k]!;
+      square += replica.intensity[k]! ** 2;
+    }
+    const n = replicas.length;
+    return Math.sqrt(Math.max(0, (square - (sum * sum) / n) / (n - 1)));
+  });
+  return { ...first, intensity };
 }

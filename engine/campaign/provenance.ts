@@ -185,16 +185,11 @@ export function withStep(
   run: Omit<RunRecord, "steps">,
   step: StepRecord,
 ): Provenance {
-  const others = withoutStep(provenance, step.command).runs;
-  const before = others.find(({ key }) => key === run.key)?.steps ?? [];
-  return {
-    schema: "provenance/1",
-    version: VERSION,
-    runs: [
-      ...others.filter(({ key }) => key !== run.key),
-      { ...run, steps: [...before, step] },
-    ],
-  };
+  const before = provenance?.runs.find(({ key }) => key === run.key)?.steps ?? [];
+  const at = before.findIndex(({ command }) => command === step.command);
+  const steps = at < 0 ? [...before, step] : before.with(at, step);
+  const others = withoutStep(provenance, step.command).runs.filter(({ key }) => key !== run.key);
+  return { schema: "provenance/1", version: VERSION, runs: [...others, { ...run, steps }] };
 }
 
 /** A provenance in which a command has no record. */

@@ -117,7 +117,11 @@ export async function doneStep(
 export function stepError(error: unknown, options: { base?: string } = {}): StepError {
   const known = error instanceof InputError || error instanceof WorkError ||
     error instanceof NotConverged;
-  const message = error instanceof Error ? error.message : String(error);
+  const message = known
+    ? error.message
+    : error instanceof Error
+    ? `${error.name}: ${error.message}`
+    : String(error);
   const { base = "" } = options;
   return {
     kind: known ? error.name as StepError["kind"] : "fault",

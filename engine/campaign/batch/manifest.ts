@@ -9,7 +9,7 @@ import { parseTomlDocument, pathKey, type TomlPlace } from "../toml_document.ts"
 export interface ManifestTarget {
   /** Its name: the file's without extension, or its folder's where the file is `target.toml`. */
   readonly name: string;
-  /** Path of the target file as it can be opened. */
+  /** Path of the target file, from the root. */
   readonly file: string;
   /** The same from the manifest. */
   readonly path: string;
@@ -58,8 +58,8 @@ export async function readManifest(file: string): Promise<Manifest> {
   }
   const targets = [...paths].map((path) => ({
     name: nameOf(path),
-    file: path,
-    path: relative(folder, path),
+    file: resolve(path),
+    path: relative(resolve(folder), resolve(path)),
   })).sort((a, b) => (a.name < b.name ? -1 : a.name > b.name ? 1 : 0));
   targets.forEach((target, i) => {
     const next = targets[i + 1];
