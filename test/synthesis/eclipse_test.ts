@@ -215,6 +215,31 @@ Deno.test("synthesize() divides by the continuum that the donor leaves", () => {
   assertAlmostEquals(moments(flux, sampling, 0).light, 500 / 0.4, 0.01);
 });
 
+Deno.test("synthesize() hides as much of the disc's continuum as lies behind the donor", () => {
+  const disc = { inner_radius_over_a: 0.02, outer_radius_over_a: 0.3 };
+  for (const [continuum_index, phase] of [[0, 0.03], [2, 0.03], [3, 0]] as const) {
+    const eclipse = { enabled: true, continuum_disc: 0.7, continuum_index };
+    const sampling = evenSampling([phase], { half_kms: 6000 });
+    const flux = synthesize({ parts: ["outflow"], disc, eclipse }, { binary: edge_on, sampling });
+    // By the slow ray test on a grid of its own, even in radius and azimuth.
+    let hidden = 0, all = 0;
+    for (let r = 0.022; r < 0.3; r += 0.004) {
+      for (let azimuth = 2; azimuth < 362; azimuth += 4) {
+        const at = {
+          x: r * Math.cos(azimuth * Math.PI / 180),
+          y: r * Math.sin(azimuth * Math.PI / 180),
+        };
+        const light = r ** (1 - continuum_index);
+        all += light;
+        const view = { mass_ratio: binary.mass_ratio, inclination_deg: 82, phase, steps: 300 };
+        if (isOcculted(at, view)) hidden += light;
+      }
+    }
+    // Cells of 4 deg and 0.004 a on the shadow's edge: two per cent.
+    assertAlmostEquals(500 / moments(flux, sampling, 0).light, 1 - 0.7 * hidden / all, 0.02);
+  }
+});
+
 Deno.test("synthesize() of an eccentric disc is the sum of its elliptical orbits", () => {
   const e = 0.3, periastron_deg = 40;
   const disc = {

@@ -268,6 +268,18 @@ Deno.test("observe() keeps sky lines and telluric features at rest at the telesc
   }
 });
 
+Deno.test("observe() lets the sky through the slit whatever the target loses", () => {
+  const sky = { brightness: 5, residual: 1 };
+  const levels = (slit_loss: number, brightness: number) =>
+    exposuresOf(NOTHING, { sky: { ...sky, brightness }, instrument: { slit_loss } }, 7)
+      .map(({ flux }) => mean(flux));
+  const [clear] = levels(0, 0);
+  const lossy = levels(1, 0).map((level) => level / clear!);
+  const both = levels(1, 5).map((level) => level / clear!);
+  // The S/N is kept by more electrons when there is sky: one sixth of them are the target's.
+  for (const [i, level] of both.entries()) assertAlmostEquals(level / 6, lossy[i]! + 5, 0.01);
+});
+
 Deno.test("observe() records every line in the arms that cover it", () => {
   const [blue] = observation.arms;
   const raw = exposuresOf({ parts: ["disc"] }, {
