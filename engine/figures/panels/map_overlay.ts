@@ -123,8 +123,9 @@ function cross(x: number, y: number, r: number): string {
 }
 
 /**
- * Draws features found in a map: an ellipse of one standard deviation where the errors are known (never
- * smaller than 2 pt), and their number, the strongest first.
+ * Draws features found in a map, the strongest first: a pointer with the feature's number, which leaves
+ * the feature itself to be seen, and the ellipse of one standard deviation where it is large enough to
+ * be drawn.
  *
  * @param features The features.
  * @param place Where velocities stand on the page.
@@ -146,16 +147,27 @@ export function drawFeatures(features: readonly MarkedFeature[], place: PlotPlac
     const x = place.x(feature.vx_kms);
     const y = place.y(feature.vy_kms);
     const axes = errorAxes(feature);
-    const rx = Math.max(2, axes.major * scale);
-    const ry = Math.max(2, axes.minor * scale);
-    const d = ellipsePath([x, y], { rx, ry, rotate_deg: -axes.angle_deg });
-    // The number stands on the side away from the middle of the map.
-    const left = feature.vx_kms < 0;
-    const at = { x: left ? x - rx - 2.5 : x + rx + 2.5, y: y + (feature.vy_kms < 0 ? 6 : -1.5) };
-    const name = label(String(i + 1), { ...at, anchor: left ? "end" : "start" });
-    return [...cased([{ d, colour: ACCENT }]), { ...name, fill: ACCENT }];
+    const [rx, ry] = [axes.major * scale, axes.minor * scale];
+    const ellipse = rx < LEAST_ELLIPSE_PT
+      ? ""
+      : ellipsePath([x, y], { rx, ry: Math.max(ry, 0.3), rotate_deg: -axes.angle_deg });
+    // The pointer stands on the side away from the middle of the map.
+    const far = Math.hypot(feature.vx_kms, feature.vy_kms) || 1;
+    const [u, v] = far === 1 ? [0.7, -0.7] : [feature.vx_kms / far, -feature.vy_kms / far];
+    const near = Math.max(rx, 5) + 1;
+    const end = { x: x + (near + 8) * u, y: y + (near + 8) * v };
+    const pointer = linePath([[x + near * u, y + near * v], [end.x, end.y]]);
+    const name = label(String(i + 1), {
+      x: end.x + 3.6 * u,
+      y: end.y + 3.6 * v + 0.33 * NOTE_PT,
+      anchor: "middle",
+    });
+    return [...cased([{ d: ellipse + pointer, colour: ACCENT }]), { ...name, fill: ACCENT }];
   });
 }
+
+/** Smaller ellipses would hide what they mark, pt. */
+const LEAST_ELLIPSE_PT = 3;
 
 /** Axes of the one-sigma ellipse, km/s, and the angle of the larger from +Vx towards +Vy. */
 function errorAxes(feature: MarkedFeature): { major: number; minor: number; angle_deg: number } {

@@ -5,10 +5,13 @@ import {
   type ColourMapName,
   colourMapNames,
   colourTable,
+  INK,
   type Lab,
   labToRgb,
+  QUIET,
   type Rgb,
   rgbToLab,
+  SERIES,
 } from "../../../engine/figures/mod.ts";
 import { deficiencies, type Deficiency, simulate } from "./simulate.ts";
 
@@ -68,10 +71,34 @@ Deno.test("colourTable() of tide and balance has a neutral middle", () => {
 });
 
 Deno.test("ACCENT stands off every colour of the default map however it is seen", () => {
-  const accent = [1, 3, 5].map((i) => parseInt(ACCENT.slice(i, i + 2), 16)) as unknown as Rgb;
+  const accent = hexRgb(ACCENT);
   for (const deficiency of [undefined, ...deficiencies]) {
     const view = (rgb: Rgb) => rgbToLab(deficiency ? simulate(rgb, deficiency as Deficiency) : rgb);
     for (const rgb of colours("ink")) assertGreater(distance(view(accent), view(rgb)), 25);
+  }
+});
+
+function hexRgb(colour: string): Rgb {
+  return [1, 3, 5].map((i) => parseInt(colour.slice(i, i + 2), 16)) as unknown as Rgb;
+}
+
+Deno.test("SERIES stand apart from each other however they are seen", () => {
+  for (const deficiency of [undefined, ...deficiencies]) {
+    const seen = SERIES.map(hexRgb).map((rgb) =>
+      rgbToLab(deficiency ? simulate(rgb, deficiency) : rgb)
+    );
+    for (let i = 0; i < seen.length; i++) {
+      for (let k = 0; k < i; k++) assertGreater(distance(seen[i]!, seen[k]!), 20);
+    }
+  }
+});
+
+Deno.test("text colours have the contrast of 4.5 that small letters need on paper", () => {
+  // Web Content Accessibility Guidelines 2.2, 1.4.3: (L1 + 0.05) / (L2 + 0.05) of relative luminance.
+  const luminance = (colour: string) => ((rgbToLab(hexRgb(colour))[0] + 16) / 116) ** 3;
+  for (const colour of [INK, QUIET, ...SERIES]) {
+    const contrast = 1.05 / (luminance(colour) + 0.05);
+    assertGreater(contrast, 4.5);
   }
 });
 

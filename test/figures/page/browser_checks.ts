@@ -7,7 +7,7 @@ import {
   assertNotEquals,
 } from "@std/assert";
 import type { Browser, Page } from "playwright-core";
-import { reportPage } from "../../../engine/figures/mod.ts";
+import { ACCENT, reportPage } from "../../../engine/figures/mod.ts";
 import { darkCentre, decodePng } from "../decode.ts";
 import { exampleContent } from "../example_content.ts";
 import { exampleReport } from "../example_report.ts";
@@ -98,7 +98,7 @@ async function pointAtVelocity(page: Page, vx: number, vy: number): Promise<void
 
 /** Points of the accent-coloured paths of a layer, path by path. */
 async function accents(page: Page, layer: string): Promise<[number, number][][]> {
-  const paths = await page.locator(`#${layer} path[stroke="#d1441f"]`).evaluateAll((found) =>
+  const paths = await page.locator(`#${layer} path[stroke="${ACCENT}"]`).evaluateAll((found) =>
     found.map((path) => path.getAttribute("d")!)
   );
   return paths.map((d) => {

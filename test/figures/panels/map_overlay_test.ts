@@ -6,6 +6,7 @@ import {
   exposureRing,
   type Item,
   mapWindow,
+  type MarkedFeature,
 } from "../../../engine/figures/mod.ts";
 
 const frame = { x: 0, y: 0, width: 234, height: 234 };
@@ -26,17 +27,38 @@ Deno.test("mapWindow() puts pixel edges, not centres, at the window's edges", ()
   assertAlmostEquals(place.y(1010), place.window.y, 1e-9);
 });
 
+/** The ellipse of a drawn feature: the part of the path before the pointer. */
+function ellipseOf(feature: MarkedFeature): Item {
+  const item = drawFeatures([feature], place)[0]!;
+  return item.kind === "path" ? { ...item, d: item.d.slice(0, item.d.indexOf("Z")) } : item;
+}
+
 Deno.test("drawFeatures() draws ellipses of one standard deviation, turned as the errors are", () => {
   const scale = place.x(1) - place.x(0);
   const base = { vx_kms: 0, vy_kms: 0, vx_error_kms: 60, vy_error_kms: 30 };
-  const upright = extent(drawFeatures([base], place)[0]);
+  const upright = extent(ellipseOf(base));
   assertAlmostEquals(upright.width / 2 / scale, 60, 0.5);
   assertAlmostEquals(upright.height / 2 / scale, 30, 0.5);
-  // Wholly correlated errors fall on a line from lower left to upper right; its width is kept at 2 pt.
-  const item = drawFeatures([{ ...base, correlation: 1 }], place)[0]!;
+  // Wholly correlated errors fall on a line from lower left to upper right.
+  const item = ellipseOf({ ...base, correlation: 1 });
   const numbers = item.kind === "path" ? item.d.match(/-?[\d.]+/g)!.map(Number) : [];
   assertGreater(numbers[0]!, place.x(0));
   assertGreater(place.y(0), numbers[1]!);
+});
+
+Deno.test("drawFeatures() leaves a feature with small errors uncovered, the pointer outside it", () => {
+  const [under] = drawFeatures(
+    [{ vx_kms: -300, vy_kms: 400, vx_error_kms: 1, vy_error_kms: 1 }],
+    place,
+  );
+  const numbers = (under as { d: string }).d.match(/-?[\d.]+/g)!.map(Number);
+  assertEquals(numbers.length, 4);
+  for (const k of [0, 2]) {
+    const away = Math.hypot(numbers[k]! - place.x(-300), numbers[k + 1]! - place.y(400));
+    assertGreater(away, 5);
+  }
+  assertGreater(place.x(-300), numbers[2]!); // up and to the left, away from the middle
+  assertGreater(place.y(400), numbers[3]!);
 });
 
 Deno.test("binaryMarks() puts the marks of the stream at tenths of the separation", () => {
