@@ -60,6 +60,7 @@ export function continuumLight(
       }
     }
   }
+  const reach = points.reduce((far, [x, y]) => Math.max(far, Math.hypot(x, y)), 0);
   const place: CloudPlace = {
     x: Float64Array.from(points, ([x]) => x),
     y: Float64Array.from(points, ([, y]) => y),
@@ -67,7 +68,7 @@ export function continuumLight(
   };
   const share = new Float64Array(points.length);
   return (phase, phase_width) => {
-    if (points.length === 0 || !occultation.mayHide(phase, phase_width)) return 1;
+    if (points.length === 0 || !occultation.mayHide(phase, phase_width, reach)) return 1;
     const { offset, weight } = smearingRule(phase_width, phase_width === 0 ? 0 : ABRUPT);
     let hidden = 0;
     for (let q = 0; q < offset.length; q++) {

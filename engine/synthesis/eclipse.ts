@@ -3,8 +3,11 @@ import type { CloudPlace } from "./point_cloud.ts";
 
 /** What the donor hides from an observer. */
 export interface Occultation {
-  /** False when the donor hides nothing inside the accretor's lobe at any time of an exposure. */
-  readonly mayHide: (phase: number, phase_width: number) => boolean;
+  /**
+   * False when the donor hides nothing within a distance of the accretor (a; L1's when left out) at
+   * any time of an exposure.
+   */
+  readonly mayHide: (phase: number, phase_width: number, reach_over_a?: number) => boolean;
   /** Sets to zero the shares of the points that are hidden at a phase. */
   readonly hide: (phase: number, place: CloudPlace, share: Float64Array) => void;
 }
@@ -31,11 +34,10 @@ export function donorOccultation(mass_ratio: number, inclination_deg: number): O
   const cosine = Math.cos(inclination_deg * Math.PI / 180);
 
   return {
-    mayHide(phase, phase_width) {
+    mayHide(phase, phase_width, reach_over_a = l1_over_a) {
       const from_conjunction = Math.abs(phase - Math.round(phase)) - phase_width / 2;
       const nearest = Math.cos(2 * Math.PI * Math.max(0, from_conjunction)) * sine;
-      // Places of the accretor's lobe are at most L1's distance from the accretor.
-      return nearest > 0 && Math.sqrt(1 - nearest * nearest) < outer + l1_over_a;
+      return nearest > 0 && Math.sqrt(1 - nearest * nearest) < outer + reach_over_a;
     },
     hide(phase, { x, y, z }, share) {
       const nx = sine * Math.cos(2 * Math.PI * phase), ny = -sine * Math.sin(2 * Math.PI * phase);

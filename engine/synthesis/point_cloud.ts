@@ -68,11 +68,15 @@ export function cloudAdder(
   let fastest = 0;
   for (let k = 0; k < count; k++) fastest = Math.max(fastest, Math.hypot(vx_kms[k]!, vy_kms[k]!));
   const share = new Float64Array(count).fill(1);
+  let reach = 0;
+  for (let k = 0; k < (place?.x.length ?? 0); k++) {
+    reach = Math.max(reach, Math.hypot(place!.x[k]!, place!.y[k]!, place!.z[k]!));
+  }
 
   return ({ phase, phase_width, sigma_kms: instrument, velocity, from, to, into }) => {
     const sigma = Math.hypot(instrument, sigma_kms);
     const eclipsed = place !== null && occultation !== null &&
-      occultation.mayHide(phase, phase_width);
+      occultation.mayHide(phase, phase_width, reach);
     const least = phase_width === 0 ? 0 : eclipsed ? ABRUPT : brightness === null ? 0 : GENTLE;
     const smear = 2 * Math.PI * phase_width * fastest / sigma;
     const { offset, weight } = smearingRule(phase_width, Math.max(smear, least));

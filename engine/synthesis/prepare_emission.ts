@@ -98,11 +98,12 @@ function discEmission(disc: CompleteModel["disc"], context: EmissionContext): Em
   const shear = thick ? shearStrength(inclinationOf(binary), disc.shear_coefficient) : 0;
   const options = { ...context, shear };
   const circular = disc.eccentricity === 0;
+  const edge = disc.outer_radius_over_a * (1 + disc.eccentricity);
   const tables = circular ? discTables(disc, options) : null;
   let byPoints: Emission["addTo"][] | undefined;
   return {
     addTo(exposure) {
-      const hidden = occultation?.mayHide(exposure.phase, exposure.phase_width) ?? false;
+      const hidden = occultation?.mayHide(exposure.phase, exposure.phase_width, edge) ?? false;
       if (tables !== null && !hidden) return tables(exposure);
       byPoints ??= discClouds(disc, options).map((cloud) => cloudAdder(cloud, occultation));
       for (const add of byPoints) add(exposure);

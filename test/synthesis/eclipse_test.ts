@@ -49,7 +49,9 @@ Deno.test("the eclipse path says when nothing can be hidden, and only then", () 
       const { l1_over_a } = lagrangePoints(q);
       for (let azimuth = 0; azimuth < 360; azimuth += 5) {
         const x = 0.9 * l1_over_a * Math.cos(azimuth), y = 0.9 * l1_over_a * Math.sin(azimuth);
-        assert(may || !hides([x, y, 0], { q, i, phase }), `${q} ${i} ${phase}`);
+        const hidden = hides([x, y, 0], { q, i, phase });
+        assert(may || !hidden, `${q} ${i} ${phase}`);
+        assert(occultation.mayHide(phase, 0, 0.9 * l1_over_a) || !hidden, `${q} ${i} ${phase}`);
       }
     }
     assertEquals(occultation.mayHide(0.5, 0.1), false);
