@@ -54,6 +54,7 @@ async function commands(): Promise<AddCommand[]> {
     import("./commands/orbit.ts").then(({ orbitCommand }) => orbitCommand),
     import("./commands/map.ts").then(({ mapCommand }) => mapCommand),
     import("./commands/synth.ts").then(({ synthCommand }) => synthCommand),
+    import("./commands/weigh.ts").then(({ weighCommand }) => weighCommand),
     import("./commands/plate.ts").then(({ plateCommand }) => plateCommand),
     import("./commands/geometry.ts").then(({ geometryCommand }) => geometryCommand),
   ]);

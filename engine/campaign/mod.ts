@@ -35,4 +35,5 @@ export * from "./steps/run_plate.ts";
 export * from "./steps/run_profile.ts";
 export * from "./steps/run_synth.ts";
 export * from "./steps/run_trail.ts";
+export * from "./steps/run_weigh.ts";
 export * from "./steps/step.ts";

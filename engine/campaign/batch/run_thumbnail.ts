@@ -1,3 +1,4 @@
+import { mappedLines } from "../line_of.ts";
 import { type OutputHead, outputHead } from "../output_head.ts";
 import type { Session } from "../session.ts";
 import { type StepOutput, type StepResult, writeStep } from "../steps/step.ts";
@@ -9,7 +10,7 @@ const WIDTH_MM = 44;
 const DPI = 150;
 
 /**
- * Draws the small picture by which a target is found on a page of many: the map of its first line.
+ * Draws the small picture by which a target is found on a page of many: the map of its first mapped line.
  *
  * @param session The target at work.
  * @param output Where to write.
@@ -21,7 +22,7 @@ export async function runThumbnail(
 ): Promise<StepResult<OutputHead>> {
   // Fonts and renderer are heavy: they load only here.
   const { drawPlate, pngBytes } = await import("../../figures/mod.ts");
-  const line = session.lines("draw the thumbnail")[0]!;
+  const line = mappedLines(session.lines("draw the thumbnail"))[0]!;
   const { trail, map, method, systemic_kms } = await session.map(line);
   const { picture } = drawPlate({ width: WIDTH_MM, rows: [{ panels: ["map"] }] }, [{
     title: "",

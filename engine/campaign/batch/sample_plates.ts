@@ -1,0 +1,85 @@
+import { join } from "@std/path";
+import type { PlateDescription, PlateSubject } from "../../figures/mod.ts";
+import type { SamplePlateSettings } from "../schema/manifest_schema.ts";
+import type { BatchJob } from "./batch_jobs.ts";
+import type { GatheredRun } from "./gather_job.ts";
+import { isMeant } from "./manifest.ts";
+import { jobTarget } from "./run_job.ts";
+import { sampleSubject } from "./sample_subject.ts";
+
+/** A file of a sample plate. */
+export interface SampleFile {
+  /** Its name. */
+  readonly name: string;
+  /** Its content. */
+  readonly data: Uint8Array | string;
+}
+
+/**
+ * Draws a plate of many targets: a row of panels for each, several targets to a row, further pages
+ * where they are too many. Only one page's maps are in memory at a time.
+ *
+ * @param plate What is shown, and how.
+ * @param options Of what.
+ * @param options.jobs The targets.
+ * @param options.runs What has become of them.
+ * @param options.folder Folder of the batch.
+ * @returns Files one page after another: figures and captions; none when no target has a map.
+ */
+export async function* samplePlates(
+  plate: SamplePlateSettings,
+  options: { jobs: readonly BatchJob[]; runs: readonly GatheredRun[]; folder: string },
+): AsyncGenerator<SampleFile> {
+  const { jobs, runs, folder } = options;
+  const shown = jobs.flatMap((job) => {
+    const run = runs.find(({ name, variant }) =>
+      name === job.name && variant === (plate.variant ?? null)
+    );
+    const has = run?.files.includes("map.json") && isMeant(job, plate.targets);
+    return has ? [{ job, run }] : [];
+  });
+  const size = plate.columns * plate.rows;
+  const pages = Math.ceil(shown.length / size);
+  for (let page = 0; page < pages; page++) {
+    const subjects: PlateSubject[] = [];
+    for (const { job, run } of shown.slice(page * size, (page + 1) * size)) {
+      const asked = job.runs.find(({ variant }) => variant === run.variant)!;
+      const target = await jobTarget(job, asked);
+      const subject = await sampleSubject(target, { folder: join(folder, run.folder), plate });
+      if (subject !== null) subjects.push(subject);
+    }
+    if (subjects.length === 0) continue;
+    yield* drawPage(plate, {
+      subjects,
+      name: pages === 1 ? plate.name : `${plate.name}-${page + 1}`,
+    });
+  }
+}
+
+async function* drawPage(
+  plate: SamplePlateSettings,
+  options: { subjects: readonly PlateSubject[]; name: string },
+): AsyncGenerator<SampleFile> {
+  const { subjects, name } = options;
+  // Fonts and renderer are heavy: they load only here.
+  const { drawPlate, pdfBytes, pngBytes, svgText } = await import("../../figures/mod.ts");
+  const rows: PlateDescription["rows"] = Array.from(
+    { length: Math.ceil(subjects.length / plate.columns) },
+    (_, row) => ({
+      panels: subjects.slice(row * plate.columns, (row + 1) * plate.columns).flatMap((_, i) =>
+        plate.panels.map((panel) => ({ panel, subject: row * plate.columns + i }))
+      ),
+    }),
+  );
+  const share = plate.shared_scale ? ["map", "trail"] as const : [];
+  const { picture, caption } = drawPlate({ width: plate.width, rows, share }, subjects);
+  for (const format of plate.formats) {
+    const data = format === "svg"
+      ? svgText(picture)
+      : format === "png"
+      ? await pngBytes(picture)
+      : await pdfBytes(picture);
+    yield { name: `${name}.${format}`, data };
+  }
+  yield { name: `${name}.txt`, data: `${caption}\n\nWritten by Millrace.\n` };
+}

@@ -1,0 +1,190 @@
+import type { EcsvDatatype, EcsvValue } from "../../files/mod.ts";
+import type { GatheredRun } from "./gather_job.ts";
+
+/** What a row of the summary is made from: one line of one treatment of one target. */
+export interface SummarySource {
+  /** The treatment. */
+  readonly run: GatheredRun;
+  /** Name of the line; null where the target names none, or could not be read. */
+  readonly line: string | null;
+  /** The JSON documents of its steps, by command. */
+  readonly documents: Readonly<Record<string, unknown>>;
+}
+
+/** One column of the summary. */
+export interface SummaryColumn {
+  /** Name, its unit at the end. */
+  readonly name: string;
+  /** Type. */
+  readonly datatype: EcsvDatatype;
+  /** Unit. */
+  readonly unit?: string;
+  /** What it holds. */
+  readonly description: string;
+  /** The value; null where there is none. */
+  readonly value: (source: SummarySource) => EcsvValue;
+}
+
+/** A part of a document by its path; undefined where it is not there. */
+function at(document: unknown, path: readonly (string | number)[]): unknown {
+  let part = document;
+  for (const key of path) {
+    if (part === null || typeof part !== "object") return undefined;
+    part = (part as Record<string | number, unknown>)[key];
+  }
+  return part;
+}
+
+/** The entry of a document's list that is about the row's line. */
+function entry(source: SummarySource, command: string, list: string): unknown {
+  const entries = at(source.documents[command], [list]);
+  return Array.isArray(entries)
+    ? entries.find((candidate) => at(candidate, ["line"]) === source.line)
+    : undefined;
+}
+
+function numberOrNull(value: unknown): number | null {
+  return typeof value === "number" && Number.isFinite(value) ? value : null;
+}
+
+function number(
+  name: string,
+  description: string,
+  value: (source: SummarySource) => unknown,
+  unit?: string,
+): SummaryColumn {
+  return {
+    name,
+    datatype: "float64",
+    ...(unit === undefined ? {} : { unit }),
+    description,
+    value: (source) => numberOrNull(value(source)),
+  };
+}
+
+function whole(
+  name: string,
+  description: string,
+  value: (source: SummarySource) => unknown,
+): SummaryColumn {
+  return { ...number(name, description, value), datatype: "int32" };
+}
+
+function word(
+  name: string,
+  description: string,
+  value: (source: SummarySource) => unknown,
+): SummaryColumn {
+  return {
+    name,
+    datatype: "string",
+    description,
+    value: (source) => {
+      const found = value(source);
+      return typeof found === "string" && found !== "" ? found : null;
+    },
+  };
+}
+
+const KMS = "km / s";
+const orbit = (...path: string[]) => (source: SummarySource) => at(source.documents.orbit, path);
+const map = (...path: (string | number)[]) => (source: SummarySource) =>
+  at(entry(source, "map", "maps"), path);
+const check = (...path: string[]) => (source: SummarySource) =>
+  at(entry(source, "check", "lines"), path);
+const weigh = (...path: string[]) => (source: SummarySource) =>
+  at(entry(source, "weigh", "lines"), path);
+
+/** The weighing's preferred parts in one word, as in "disc+spot". */
+function verdict(source: SummarySource): unknown {
+  const preferred = weigh("preferred")(source);
+  return Array.isArray(preferred) ? preferred.join("+") : preferred;
+}
+
+/** Whether the preferred hypothesis can be true at all. */
+function adequate(source: SummarySource): EcsvValue {
+  const preferred = JSON.stringify(weigh("preferred")(source));
+  const hypotheses = weigh("hypotheses")(source);
+  if (!Array.isArray(hypotheses)) return null;
+  const found = hypotheses.find((one) => JSON.stringify(at(one, ["parts"])) === preferred);
+  const value = at(found, ["adequate"]);
+  return typeof value === "boolean" ? value : null;
+}
+
+/**
+ * The columns of the summary: one row a target, treatment and line. A new step joins by columns
+ * here, or by none.
+ */
+export const summaryColumns: readonly SummaryColumn[] = [
+  word("target", "name of the target and of its folder", ({ run }) => run.name),
+  word("variant", "treatment; empty for the target's own", ({ run }) => run.variant),
+  word("line", "name of the line", ({ line }) => line),
+  word("title", "title of the target", ({ run }) => run.title),
+  word("status", "done, failed or missing", ({ run }) => run.status),
+  word("error", "the first error", ({ run }) => run.error?.message),
+  number("rest_air_angstrom", "rest wavelength in air", (source) =>
+    map("rest_air_angstrom")(source) ?? check("rest_air_angstrom")(source), "Angstrom"),
+  whole("exposures", "exposures used", check("exposures")),
+  number(
+    "signal_to_noise",
+    "median of the continuum per resolution element",
+    check("signal_to_noise", "median"),
+  ),
+  number("k_accretor_kms", "K1 as measured", orbit("accretor", "k_kms"), KMS),
+  number("k_accretor_error_kms", "its standard deviation", orbit("accretor", "k_error_kms"), KMS),
+  number("k_donor_kms", "K2 as measured", orbit("donor", "k_kms"), KMS),
+  number("k_donor_error_kms", "its standard deviation", orbit("donor", "k_error_kms"), KMS),
+  number("systemic_kms", "systemic velocity as measured", orbit("accretor", "systemic_kms"), KMS),
+  number(
+    "systemic_error_kms",
+    "its standard deviation",
+    orbit("accretor", "systemic_error_kms"),
+    KMS,
+  ),
+  number("mass_ratio", "M2/M1 as measured", orbit("mass_ratio")),
+  number("mass_ratio_error", "its standard deviation", orbit("mass_ratio_error")),
+  number("accretor_msun", "M1", orbit("masses", "accretor_msun"), "solMass"),
+  number("donor_msun", "M2", orbit("masses", "donor_msun"), "solMass"),
+  word("map_method", "inversion", map("method")),
+  number("map_systemic_kms", "systemic velocity taken out of the map", map("systemic_kms"), KMS),
+  number("map_reduced_chi_square", "chi-square over samples", map("reduced_chi_square")),
+  {
+    name: "map_converged",
+    datatype: "bool",
+    description: "whether the inversion met its goal",
+    value: (source) => {
+      const value = map("converged")(source);
+      return typeof value === "boolean" ? value : null;
+    },
+  },
+  number("peak_vx_kms", "brightest place of the map", map("peak", "vx_kms"), KMS),
+  number("peak_vy_kms", "brightest place of the map", map("peak", "vy_kms"), KMS),
+  whole("features", "compact excesses found", (source) => {
+    const features = map("features")(source);
+    return Array.isArray(features) ? features.length : null;
+  }),
+  number("feature_vx_kms", "place of the strongest", map("features", 0, "vx_kms"), KMS),
+  number("feature_vx_error_kms", "its error", map("features", 0, "vx_error_kms"), KMS),
+  number("feature_vy_kms", "place of the strongest", map("features", 0, "vy_kms"), KMS),
+  number("feature_vy_error_kms", "its error", map("features", 0, "vy_error_kms"), KMS),
+  number("feature_flux_fraction", "its share of the flux", map("features", 0, "flux_fraction")),
+  number("feature_sigma", "its significance", map("features", 0, "significance_sigma")),
+  word("feature_nearest", "structure nearest to it", map("features", 0, "nearest")),
+  word("verdict", "parts of the preferred hypothesis", verdict),
+  {
+    name: "verdict_adequate",
+    datatype: "bool",
+    description: "whether the data can come from it",
+    value: adequate,
+  },
+  number("false_alarm", "false-alarm rate as measured", weigh("false_alarm", "value")),
+  number("false_alarm_error", "its error", weigh("false_alarm", "error")),
+  word("warnings", "codes of the warnings about the line", ({ run, line }) =>
+    [
+      ...new Set(
+        run.warnings.filter((warning) =>
+          warning.line === undefined || line === null || warning.line === line
+        ).map(({ code }) => code),
+      ),
+    ].join(" ")),
+];
