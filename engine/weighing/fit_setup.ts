@@ -60,3 +60,17 @@ export interface FitSetup {
    */
   readonly fixed?: readonly string[];
 }
+
+/** The setup alone of options that may hold more: what is sent to workers must be plain data. */
+export function fitSetup(options: FitSetup): FitSetup {
+  const { binary, systemic_kms, model, errors, asymmetry, free, fixed } = options;
+  return {
+    binary,
+    ...(systemic_kms === undefined ? {} : { systemic_kms }),
+    ...(model === undefined ? {} : { model }),
+    ...(errors === undefined ? {} : { errors }),
+    ...(asymmetry === undefined ? {} : { asymmetry }),
+    ...(free === undefined ? {} : { free }),
+    ...(fixed === undefined ? {} : { fixed }),
+  };
+}

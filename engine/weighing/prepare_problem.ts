@@ -1,5 +1,5 @@
 import { fitHypothesis, type HypothesisFit, valuesOf } from "./fit_hypothesis.ts";
-import type { FitSetup } from "./fit_setup.ts";
+import { type FitSetup, fitSetup } from "./fit_setup.ts";
 import { type Hypothesis, hypothesisOf } from "./hypothesis.ts";
 import { lineOf } from "./line_of.ts";
 import { type LineScale, measureLineScale } from "./line_scale.ts";
@@ -67,7 +67,8 @@ export function prepareProblem(
   const order = { baseline_order: options.baseline_order ?? 1 };
   const hypothesis = hypothesisOf([...new Set(sets.flat())]);
   const plain = makeWhitening(data, order);
-  let problem = makeProblem(data, setup, order);
+  const own = fitSetup(setup);
+  let problem = makeProblem(data, own, order);
   let richest = fitHypothesis(problem, { hypothesis });
   let line = lineOf(problem, richest);
   let measured = measureLineScale(line, { data, whitening: plain });
@@ -79,7 +80,7 @@ export function prepareProblem(
       const there = lineOf(problem, richest, { state: moved });
       soft.push({ pattern: there.map((value, n) => value - line[n]!), sigma: shift_kms });
     }
-    problem = makeProblem(data, setup, { ...order, soft });
+    problem = makeProblem(data, own, { ...order, soft });
     richest = fitHypothesis(problem, { hypothesis, warm: valuesOf(richest) });
     line = lineOf(problem, richest);
     measured = measureLineScale(line, { data, whitening: plain });
