@@ -57,6 +57,7 @@ export async function pictureRaster(picture: Picture, options: PngOptions = {}):
   const { dpi = 300 } = options;
   const scale = dpi / 72;
   const svg = svgText(picture, {
+    embed_fonts: false, // the renderer has them
     rasterise(image) {
       const columns = Math.max(1, Math.round(image.width * scale));
       const rows = Math.max(1, Math.round(image.height * scale));
@@ -128,7 +129,7 @@ export async function outlinedSvg(
   picture: Picture,
   options: { readonly metadata?: Metadata } = {},
 ): Promise<string> {
-  const svg = svgText(picture, options);
+  const svg = svgText(picture, { ...options, embed_fonts: false });
   const resvg = await renderer(svg, 1);
   try {
     const kept = svg.match(/<title[\s\S]*?<\/metadata>/)?.[0] ?? "";

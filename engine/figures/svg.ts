@@ -1,6 +1,8 @@
 import { Buffer } from "node:buffer";
 import { resampleCells } from "./cells.ts";
-import type { ImageItem, Picture } from "./display_list.ts";
+import type { ImageItem, Item, Picture } from "./display_list.ts";
+import type { FaceName } from "./font_names.ts";
+import { fontRules } from "./font_rules.ts";
 import { facePieces, fontFace } from "./fonts.ts";
 import type { Metadata } from "./marks.ts";
 import { pngFile } from "./png_file.ts";
@@ -17,10 +19,12 @@ export interface SvgOptions {
    * viewers smooth what they should not.
    */
   readonly rasterise?: (image: ImageItem) => Uint8Array;
+  /** True to bring along the letters that are used, as web fonts. @default {true} */
+  readonly embed_fonts?: boolean;
 }
 
 /**
- * Draws a picture as SVG: text stays text, in STIX Two Text where the viewer has it.
+ * Draws a picture as SVG: text stays text, and its letters come along for viewers without the font.
  *
  * @param picture The picture.
  * @param options Metadata, ids.
@@ -37,8 +41,33 @@ export interface SvgOptions {
  * ```
  */
 export function svgText(picture: Picture, options: SvgOptions = {}): string {
-  const { rasterise = repeatCells, ...rest } = options;
-  return drawSvg(picture, { ...fontTools, ...rest, image_url: (image) => url(rasterise(image)) });
+  const { rasterise = repeatCells, embed_fonts = true, ...rest } = options;
+  const style = embed_fonts ? { style: fontRules(usedCharacters(picture.items)) } : {};
+  const image_url = (image: ImageItem) => url(rasterise(image));
+  return drawSvg(picture, { ...fontTools, ...rest, ...style, image_url });
+}
+
+/** Characters of all text, by the face that writes them. */
+function usedCharacters(items: readonly Item[]): Record<FaceName, string> {
+  const used: Record<FaceName, Set<string>> = {
+    regular: new Set(),
+    italic: new Set(),
+    fallback: new Set(),
+  };
+  const look = (item: Item): void => {
+    if (item.kind === "group") item.items.forEach(look);
+    if (item.kind !== "text") return;
+    for (const { text, face } of item.runs.flatMap(facePieces)) {
+      for (const character of text) used[face].add(character);
+    }
+  };
+  items.forEach(look);
+  const sorted = (set: Set<string>) => [...set].sort().join("");
+  return {
+    regular: sorted(used.regular),
+    italic: sorted(used.italic),
+    fallback: sorted(used.fallback),
+  };
 }
 
 const fontTools: Pick<SvgTools, "pieces" | "piece_width"> = {

@@ -86,7 +86,7 @@ ${body}
 export function drawSvgItems(items: readonly Item[], tools: SvgTools): string {
   const context: Context = { tools, prefix: tools.id_prefix ?? "m", clips: 0 };
   const body = items.map((item) => draw(item, context)).filter((text) => text !== "").join("\n");
-  const family = `'${TEXT_FAMILY}', '${FALLBACK_FAMILY}', serif`;
+  const family = `'${TEXT_FAMILY}', serif`;
   return `<g font-family="${family}" font-weight="400" fill="none">\n${body}\n</g>`;
 }
 
@@ -152,7 +152,7 @@ function drawText(item: TextItem, tools: SvgTools): string {
     if (piece.shift_pt !== shift) attributes += ` dy="${trim(piece.shift_pt - shift)}"`;
     if (piece.size_pt !== size_pt) attributes += ` font-size="${trim(piece.size_pt)}"`;
     if (piece.face === "italic") attributes += ` font-style="italic"`;
-    if (piece.face === "fallback") attributes += ` font-family="'${FALLBACK_FAMILY}'"`;
+    if (piece.face === "fallback") attributes += ` font-family="'${FALLBACK_FAMILY}', sans-serif"`;
     shift = piece.shift_pt;
     at += piece.width;
     const words = escapeMarkup(piece.text);

@@ -25,7 +25,7 @@ Deno.test("svgText() keeps text as text with true superscripts and italics", () 
 Deno.test("svgText() gives each piece a place of its own when a sign needs the fallback face", () => {
   const svg = svgText(picture({ ...label, runs: labelRuns("*M* ≤ 2 M_{☉}") }));
   assertEquals(svg.match(/<tspan x=/g)?.length, 5);
-  assertEquals(svg.match(/font-family="'DejaVu Sans'"/g)?.length, 2);
+  assertEquals(svg.match(/font-family="'DejaVu Sans', sans-serif"/g)?.length, 2);
   assert(!svg.includes("text-anchor"));
 });
 

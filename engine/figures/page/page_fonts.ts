@@ -1,7 +1,4 @@
-import { Buffer } from "node:buffer";
-import { TEXT_FAMILY } from "../font_names.ts";
-import { fontFace } from "../fonts.ts";
-import { webFont } from "./web_font.ts";
+import { fontRules } from "../font_rules.ts";
 
 /** Latin, Greek and the signs of the trade: what pages are written in. */
 function pageCharacters(): string {
@@ -27,10 +24,5 @@ function pageCharacters(): string {
  */
 export function pageFonts(): string {
   const characters = pageCharacters();
-  const rule = (face: "regular" | "italic", style: string) => {
-    const woff = Buffer.from(webFont(fontFace(face).bytes, { characters })).toString("base64");
-    return `@font-face{font-family:'${TEXT_FAMILY}';font-style:${style};font-weight:400;` +
-      `src:url(data:font/woff;base64,${woff}) format('woff')}`;
-  };
-  return `${rule("regular", "normal")}\n${rule("italic", "italic")}`;
+  return fontRules({ regular: characters, italic: characters });
 }

@@ -1,5 +1,5 @@
 import { deflateSync } from "node:zlib";
-import { readFontMetrics } from "../font_metrics.ts";
+import { readFontMetrics } from "./font_metrics.ts";
 
 /** Tables that a browser needs; kerning and ligatures are left out. */
 const KEPT = [
