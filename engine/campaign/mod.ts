@@ -37,3 +37,22 @@ export * from "./steps/run_synth.ts";
 export * from "./steps/run_trail.ts";
 export * from "./steps/run_weigh.ts";
 export * from "./steps/step.ts";
+export * from "./batch/batch_jobs.ts";
+export * from "./batch/gather_batch.ts";
+export * from "./batch/gather_job.ts";
+export * from "./batch/manifest.ts";
+export * from "./batch/run_batch.ts";
+export * from "./batch/run_job.ts";
+export * from "./batch/share_jobs.ts";
+export * from "./canonical.ts";
+export * from "./hold_folder.ts";
+export * from "./input_digests.ts";
+export * from "./provenance.ts";
+export * from "./record_step.ts";
+export * from "./step_table.ts";
+export type {
+  ManifestChange,
+  ManifestSettings,
+  ManifestVariant,
+  SamplePlateSettings,
+} from "./schema/manifest_schema.ts";

@@ -8,6 +8,7 @@ import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
 import { ephemerisOf } from "./ephemeris_of.ts";
 import { lineOf, linesOf } from "./line_of.ts";
+import { modelOf } from "./model_of.ts";
 import { pause } from "./pause.ts";
 import { needed, type Target } from "./target.ts";
 
@@ -44,6 +45,17 @@ export async function simulateExposures(
     action,
   });
   const exposures = planExposures(parseIsoDate(observation.first_utc), observation);
+  const lines = await Promise.all(
+    linesOf(target, { action }).map(async (line) => {
+      const named = lineOf(line, { target });
+      return {
+        line: named,
+        ...(line.model === undefined
+          ? {}
+          : { model: await modelOf(target, { settings: line, line: named }) }),
+      };
+    }),
+  );
   const raw = observe(model, {
     object: target.title,
     target: direction,
@@ -53,10 +65,7 @@ export async function simulateExposures(
     systemic_kms: orbit.systemic_kms === "search" ? 0 : orbit.systemic_kms,
     exposures,
     arms: observation.arms,
-    lines: linesOf(target, { action }).map((line) => ({
-      line: lineOf(line, { target }),
-      model: line.model,
-    })),
+    lines,
     variability: observation.variability,
     instrument: observation.instrument,
     sky: observation.sky,

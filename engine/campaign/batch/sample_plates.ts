@@ -35,15 +35,16 @@ export async function* samplePlates(
     const run = runs.find(({ name, variant }) =>
       name === job.name && variant === (plate.variant ?? null)
     );
-    const has = run?.files.includes("map.json") && isMeant(job, plate.targets);
-    return has ? [{ job, run }] : [];
+    const asked = job.runs.find(({ variant }) => variant === run?.variant);
+    return run?.files.includes("map.json") && asked && isMeant(job, plate.targets)
+      ? [{ job, run, asked }]
+      : [];
   });
   const size = plate.columns * plate.rows;
   const pages = Math.ceil(shown.length / size);
   for (let page = 0; page < pages; page++) {
     const subjects: PlateSubject[] = [];
-    for (const { job, run } of shown.slice(page * size, (page + 1) * size)) {
-      const asked = job.runs.find(({ variant }) => variant === run.variant)!;
+    for (const { job, run, asked } of shown.slice(page * size, (page + 1) * size)) {
       const target = await jobTarget(job, asked);
       const subject = await sampleSubject(target, { folder: join(folder, run.folder), plate });
       if (subject !== null) subjects.push(subject);

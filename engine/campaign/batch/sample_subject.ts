@@ -1,7 +1,7 @@
 import { join } from "@std/path";
 import { InputError } from "../../errors.ts";
 import type { PlateSubject } from "../../figures/mod.ts";
-import { type FitsFile, findHdu, parseFits } from "../../fits/mod.ts";
+import { findHdu, type FitsFile, parseFits } from "../../fits/mod.ts";
 import { readBytes } from "../../files/mod.ts";
 import { binaryOf } from "../binary_of.ts";
 import { hduName } from "../fits_head.ts";

@@ -122,8 +122,12 @@ export const summaryColumns: readonly SummaryColumn[] = [
   word("title", "title of the target", ({ run }) => run.title),
   word("status", "done, failed or missing", ({ run }) => run.status),
   word("error", "the first error", ({ run }) => run.error?.message),
-  number("rest_air_angstrom", "rest wavelength in air", (source) =>
-    map("rest_air_angstrom")(source) ?? check("rest_air_angstrom")(source), "Angstrom"),
+  number(
+    "rest_air_angstrom",
+    "rest wavelength in air",
+    (source) => map("rest_air_angstrom")(source) ?? check("rest_air_angstrom")(source),
+    "Angstrom",
+  ),
   whole("exposures", "exposures used", check("exposures")),
   number(
     "signal_to_noise",

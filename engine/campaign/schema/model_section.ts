@@ -4,6 +4,8 @@ import { type Model, modelParameters, type ModelSection, partNames } from "../..
 const WORDS: Readonly<Record<string, z.ZodType>> = {
   "disc.optical_depth": z.enum(["thin", "thick"]),
   "donor.light": z.enum(["irradiated", "photospheric"]),
+  // A file: the step that needs it reads it into the model.
+  "donor.template": z.string().min(1),
   "eclipse.enabled": z.boolean(),
 };
 

@@ -1,5 +1,6 @@
 import type { PanelName, Picture, PlateDescription } from "../../figures/mod.ts";
 import { InputError } from "../../errors.ts";
+import { captionText } from "../caption_text.ts";
 import { hduName } from "../fits_head.ts";
 import { mappedLines } from "../line_of.ts";
 import { type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
@@ -67,7 +68,7 @@ export async function runPlate(
       made.push([`${name}.${format}`, data]);
     }
     captions.push(drawn.caption);
-    made.push([`${name}.txt`, `${drawn.caption}\n\nWritten by Millrace.\n`]);
+    made.push([`${name}.txt`, captionText(drawn.caption)]);
   }
   const { inputs, warnings: reading } = await session.exposures();
   const mapped = await Promise.all(lines.map(session.map));

@@ -10,6 +10,7 @@ import {
 } from "../../synthesis/mod.ts";
 import { fitOfMap } from "../../tomography/mod.ts";
 import { makeGrid, type Trail, type TrailGrid } from "../../trail/mod.ts";
+import { captionText } from "../caption_text.ts";
 import { fitsHead, hduName } from "../fits_head.ts";
 import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
 import { pause } from "../pause.ts";
@@ -17,6 +18,7 @@ import { plannedTrail } from "../planned_trail.ts";
 import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
 import { simulateExposures } from "../simulate.ts";
+import { modelOf } from "../model_of.ts";
 import { needed } from "../target.ts";
 import { velocityAxisCards } from "../trail_fits.ts";
 import { mapAxisCards } from "../map_fits.ts";
@@ -92,7 +94,7 @@ export async function synthesizeLine(
     ? await session.trail(line)
     : plannedTrail(target, { line, ephemeris: await session.ephemeris() });
   await pause(session.signal);
-  const model = line.model ?? target.settings.model;
+  const model = await modelOf(target, { settings: line, line: trail.line });
   const systemic_kms = session.systemic().kms;
   const parts = synthesizeParts(model, { binary, sampling: trail.sampling, systemic_kms });
   const flux = new Float64Array(trail.flux.length);
@@ -184,19 +186,67 @@ export async function runSynth(
   const files = await writeStep([
     ["model.fits", encodeFits([fitsHead(target, { content }), ...made.flatMap(modelHdus)])],
     ["model.json", jsonText(document)],
+    ...await modelPlate(session, made),
   ], output);
   return { document, files: [...files, ...raw], warnings };
+}
+
+/** One figure: a row a line, with residuals where there are data. */
+async function modelPlate(
+  session: Session,
+  made: readonly SynthesizedLine[],
+): Promise<[name: string, data: Uint8Array | string][]> {
+  const { drawPlate, pdfBytes, pngBytes, svgText } = await import("../../figures/mod.ts");
+  const { plate } = session.target.settings;
+  const { picture, caption } = drawPlate(
+    {
+      width: plate.width,
+      rows: made.map(({ observed }, subject) => ({
+        panels: observed ? ["map", "trail", "model", "residual"] : ["map", "model"],
+        subject,
+      })),
+    },
+    made.map(({ trail, grid, map, summary }) => ({
+      title: plate.title ?? session.target.title,
+      line: trail.line,
+      systemic_kms: session.systemic().kms,
+      method: "model",
+      reduced_chi_square: summary.reduced_chi_square,
+      binary: session.binary(),
+      map: map.map,
+      trail: { grid: trail.grid, sampling: trail.sampling },
+      model: grid.flux,
+      residual: residualOf(trail, grid),
+    })),
+  );
+  const files: [string, Uint8Array | string][] = [];
+  for (const format of plate.formats) {
+    files.push([
+      `model-plate.${format}`,
+      format === "svg"
+        ? svgText(picture)
+        : format === "png"
+        ? await pngBytes(picture)
+        : await pdfBytes(picture),
+    ]);
+  }
+  return [...files, ["model-plate.txt", captionText(caption)]];
+}
+
+/** Data less model on the display grid, standard deviations. */
+function residualOf(trail: Trail, grid: TrailGrid): Float64Array {
+  return grid.flux.map((value, k) =>
+    Number.isFinite(trail.grid.error[k]!)
+      ? (trail.grid.flux[k]! - value) / trail.grid.error[k]!
+      : NaN
+  );
 }
 
 function modelHdus({ trail, grid, observed, map }: SynthesizedLine): HduSpec[] {
   const { name } = trail.line;
   const shape = [grid.columns, grid.rows];
   const cards = velocityAxisCards({ line: trail.line, grid });
-  const residual = grid.flux.map((value, k) =>
-    Number.isFinite(trail.grid.error[k]!)
-      ? (trail.grid.flux[k]! - value) / trail.grid.error[k]!
-      : NaN
-  );
+  const residual = residualOf(trail, grid);
   return [
     { kind: "image", name: hduName(name), shape, data: grid.flux, cards },
     ...(observed

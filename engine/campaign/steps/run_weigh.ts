@@ -11,6 +11,7 @@ import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output
 import { pause } from "../pause.ts";
 import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
+import { modelOf } from "../model_of.ts";
 import { needed } from "../target.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
@@ -30,10 +31,10 @@ export interface WeighDocument extends OutputHead {
  */
 export async function weighLine(session: Session, line: LineSettings): Promise<WeighedLine> {
   const { target } = session;
-  const { weigh, model } = target.settings;
+  const { weigh } = target.settings;
   const trail = await session.trail(line);
   await pause(session.signal);
-  const { parts: _parts, ...known } = line.model ?? model;
+  const { parts: _parts, ...known } = await modelOf(target, { settings: line, line: trail.line });
   return weighTrail(trail, {
     binary: needed(target, {
       value: session.binary(),
