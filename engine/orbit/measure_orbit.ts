@@ -1,6 +1,7 @@
 import type { Ephemeris } from "../binary/mod.ts";
 import { InputError, type Warning } from "../errors.ts";
 import type { RandomStream } from "../numerics/mod.ts";
+import { eccentricityReport, jointReport } from "./joint_report.ts";
 import { type MassPlanes, massPlanes } from "./mass_planes.ts";
 import { massReport } from "./mass_report.ts";
 import {
@@ -148,6 +149,8 @@ export function measureOrbit(
     zero_shift_cycles: period_search ? null : zeroShift(ephemeris, options.ephemeris),
     accretor,
     donor,
+    joint: jointReport(curves),
+    eccentricity: eccentricityReport(curves),
     curves: curves.map(curveReport),
     mass_ratio: masses?.mass_ratio?.median ?? null,
     mass_ratio_error: masses?.mass_ratio?.deviation ?? null,

@@ -37,6 +37,7 @@ export * from "./rotation_ratio.ts";
 export * from "./spectral_window.ts";
 export * from "./template_match.ts";
 export * from "./time_series.ts";
+export * from "./trail_symmetry.ts";
 export * from "./velocity_curve.ts";
 export type { DrawSummary } from "./weighted_summary.ts";
 export * from "./wing_symmetry.ts";

@@ -120,6 +120,48 @@ export interface MassReport {
   readonly mass_ratio_from: readonly string[];
 }
 
+/** Both stars fitted together: one conjunction and one period, in antiphase, each its own γ. */
+export interface JointReport {
+  /** K1, km/s. */
+  readonly k_accretor_kms: number;
+  /** Its standard deviation, km/s. */
+  readonly k_accretor_error_kms: number;
+  /** K2 of the donor's line, km/s. */
+  readonly k_donor_kms: number;
+  /** Its standard deviation, km/s. */
+  readonly k_donor_error_kms: number;
+  /** γ of the accretor's line, km/s. */
+  readonly accretor_systemic_kms: number;
+  /** γ of the donor's line, km/s. */
+  readonly donor_systemic_kms: number;
+  /** Correlation of K1 and K2. */
+  readonly k_correlation: number;
+  /** Conjunction on the reported ephemeris, cycles in (−½, ½]. */
+  readonly conjunction_phase: number;
+  /** Its standard deviation, cycles. */
+  readonly conjunction_phase_error: number;
+  /** Chi-square, errors with jitter. */
+  readonly chi_square: number;
+  /** Velocities less parameters. */
+  readonly degrees_of_freedom: number;
+}
+
+/** The test of an eccentric orbit (Lucy & Sweeney 1971). */
+export interface EccentricityReport {
+  /** Name of the line. */
+  readonly line: string;
+  /** e as fitted: not to be quoted unless significant. */
+  readonly eccentricity: number;
+  /** Its standard deviation. */
+  readonly eccentricity_error: number;
+  /** ω, degrees. */
+  readonly periastron_deg: number;
+  /** Chance that a circular orbit looks as eccentric. */
+  readonly probability_if_circular: number;
+  /** Whether that chance is below 5 %. */
+  readonly significant: boolean;
+}
+
 /** The content of `orbit.json`, but for its head. */
 export interface OrbitReport {
   /** Period, d. */
@@ -144,6 +186,10 @@ export interface OrbitReport {
   readonly accretor: StarReport | null;
   /** The donor; null when no line traces it. */
   readonly donor: DonorReport | null;
+  /** Both stars together; null unless both were measured exposure by exposure. */
+  readonly joint: JointReport | null;
+  /** Test of eccentricity on the best measured curve; null without one of 7 velocities. */
+  readonly eccentricity: EccentricityReport | null;
   /** One per line and method. */
   readonly curves: readonly CurveReport[];
   /** q = M2/M1; null when it could not be had. */

@@ -1,5 +1,4 @@
 import { InputError } from "../errors.ts";
-import { minimise } from "../numerics/mod.ts";
 import type { VelocityMap } from "../tomography/mod.ts";
 
 /** Centre of point symmetry of a velocity map's wings. */
@@ -38,35 +37,56 @@ function sampler(map: VelocityMap): (vx: number, vy: number) => number {
   };
 }
 
-/** Pairs of opposite places on half an annulus about (0, 0). */
-function halfAnnulus(inner: number, outer: number, step: number): [number, number][] {
-  const places: [number, number][] = [];
+/** One place of each pair of opposite places in an annulus about (0, 0): x, y, stride 2. */
+function halfAnnulus(inner: number, outer: number, step: number): Float64Array {
+  const places: number[] = [];
   for (let r = inner; r <= outer; r += step) {
     const around = Math.max(8, Math.round(Math.PI * r / step));
     for (let k = 0; k < around; k++) {
       const angle = Math.PI * (k + 0.5) / around;
-      places.push([r * Math.cos(angle), r * Math.sin(angle)]);
+      places.push(r * Math.cos(angle), r * Math.sin(angle));
     }
   }
-  return places;
+  return Float64Array.from(places);
 }
 
+/** Centre by Gauss–Newton steps on the differences of opposite places. */
 function centreOf(map: VelocityMap, [inner, outer]: readonly [number, number]) {
   const step = 2 * map.half_width_kms / (map.pixels - 1);
   const at = sampler(map);
   const places = halfAnnulus(inner, outer, step);
-  const pairs = (p: Float64Array) =>
-    places.map(([x, y]) => [at(p[0]! + x, p[1]! + y), at(p[0]! - x, p[1]! - y)] as const);
-  const difference = (p: Float64Array) => Float64Array.from(pairs(p), ([f, g]) => f - g);
-  const fit = minimise(difference, Float64Array.of(0, 0), {
-    lower: [-inner, -inner],
-    upper: [inner, inner],
-    differences: "central",
-    // Central differences step by 6e-6 of this: about a pixel, as interpolated maps have corners.
-    typical: [1.6e5 * step, 1.6e5 * step],
-  });
-  const total = pairs(fit.parameters).reduce((sum, [f, g]) => sum + (f + g) ** 2, 0);
-  return { centre: fit.parameters, asymmetry: total > 0 ? fit.chi_square / total : NaN };
+  let x = 0, y = 0;
+  for (let round = 0; round < 50; round++) {
+    let xx = 0, xy = 0, yy = 0, xr = 0, yr = 0;
+    for (let k = 0; k < places.length; k += 2) {
+      const px = places[k]!, py = places[k + 1]!;
+      const off = (cx: number, cy: number) => at(cx + px, cy + py) - at(cx - px, cy - py);
+      const r = off(x, y);
+      // Differences over a pixel either way: an interpolated map has corners.
+      const dx = (off(x + step, y) - off(x - step, y)) / (2 * step);
+      const dy = (off(x, y + step) - off(x, y - step)) / (2 * step);
+      xx += dx * dx;
+      xy += dx * dy;
+      yy += dy * dy;
+      xr += dx * r;
+      yr += dy * r;
+    }
+    const determinant = xx * yy - xy * xy;
+    if (!(determinant > 0)) break;
+    const move_x = (xy * yr - yy * xr) / determinant, move_y = (xy * xr - xx * yr) / determinant;
+    const length = Math.hypot(move_x, move_y);
+    const limit = Math.min(1, inner / 2 / Math.max(length, 1e-300));
+    x += limit * move_x;
+    y += limit * move_y;
+    if (length < 1e-4 * step) break;
+  }
+  let difference = 0, total = 0;
+  for (let k = 0; k < places.length; k += 2) {
+    const f = at(x + places[k]!, y + places[k + 1]!), g = at(x - places[k]!, y - places[k + 1]!);
+    difference += (f - g) ** 2;
+    total += (f + g) ** 2;
+  }
+  return { centre: [x, y] as const, asymmetry: total > 0 ? difference / total : 1 };
 }
 
 function deviation(values: readonly number[]): number | null {
@@ -114,10 +134,10 @@ export function wingSymmetry(map: VelocityMap, options: WingSymmetryOptions): Wi
   const { centre, asymmetry } = centreOf(map, wing_kms);
   const others = resampled.map((one) => centreOf(one, wing_kms).centre);
   return {
-    k_accretor_kms: 0 - centre[1]!,
-    vx_kms: centre[0]!,
-    k_accretor_error_kms: deviation(others.map((c) => c[1]!)),
-    vx_error_kms: deviation(others.map((c) => c[0]!)),
+    k_accretor_kms: 0 - centre[1],
+    vx_kms: centre[0],
+    k_accretor_error_kms: deviation(others.map((c) => c[1])),
+    vx_error_kms: deviation(others.map((c) => c[0])),
     asymmetry,
   };
 }

@@ -8,6 +8,7 @@ import {
   findPlateau,
   lightCentre,
   measureAccretor,
+  trailSymmetry,
   wingSymmetry,
 } from "@millrace/millrace/orbit";
 import type { Trail } from "@millrace/millrace/trail";
@@ -205,6 +206,15 @@ Deno.test("wingSymmetry() finds the accretor beside a spot, with errors from res
   // Wings that take in the spot are not symmetric.
   assert(wingSymmetry(map(1, 0.5), { wing_kms: [300, 1500] }).asymmetry > 5 * found.asymmetry);
   assertThrows(() => wingSymmetry(map(1, 0), { wing_kms: [900, 1900] }), InputError, "wing_kms");
+});
+
+Deno.test("trailSymmetry() of a spotted disc's map comes near K1", () => {
+  const random = randomStream(1);
+  const trail = withNoise(modelTrail(spotted(0.1), sampling, { error: 0.05 }), random);
+  const found = trailSymmetry(trail, { systemic_kms: GAMMA, wing_kms: [1000, 1600], random });
+  // Streaks and the smoothed spot: a few km/s over 20 seeds, as its documentation warns.
+  assertAlmostEquals(found.k_accretor_kms, K1, 5);
+  assert(found.k_accretor_error_kms! > 0.3 && found.k_accretor_error_kms! < 3);
 });
 
 Deno.test("measureAccretor() leaves its trail alone", () => {

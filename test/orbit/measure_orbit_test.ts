@@ -81,6 +81,12 @@ Deno.test("measureOrbit() measures both stars, q and masses of a simulated binar
   });
   const error = (masses.accretor_error_low_msun! + masses.accretor_error_high_msun!) / 2;
   assertAlmostEquals(masses.accretor_msun!, truth.accretor_msun, 2.5 * error);
+  const joint = report.joint!;
+  assertAlmostEquals(joint.k_accretor_kms, 75, 3 * joint.k_accretor_error_kms);
+  assertAlmostEquals(joint.k_donor_kms, 340, 3 * joint.k_donor_error_kms);
+  assertAlmostEquals(joint.conjunction_phase, 0, 3 * joint.conjunction_phase_error);
+  assert(Math.abs(joint.k_correlation) < 0.2);
+  assertEquals(report.eccentricity!.significant, false);
   assertEquals(report.zero_from, "donor");
   assertEquals(report.period_from, "fitted");
   assertAlmostEquals(report.zero_shift_cycles!, 0, 4 * report.zero_error_d! / report.period_d);
