@@ -67,7 +67,7 @@ async function sources(folder: string): Promise<string[]> {
 
 // A module loaded as a worker or bundled for the page is an entry of its own.
 const ownEntry = (path: string) =>
-  /(^|_)worker\.ts$/.test(path) || path.startsWith("engine/figures/page/") ||
+  /(^|_|\/)worker\.ts$/.test(path) || path.startsWith("engine/figures/page/") ||
   path.includes("/kernel/");
 
 Deno.test("rooms are entered in order and by their door", async () => {

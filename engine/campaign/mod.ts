@@ -15,7 +15,7 @@ export type { BlendSettings, LineSettings } from "./schema/lines_section.ts";
 export type { MapSettings } from "./schema/map_section.ts";
 export type { ArmSettings, ObservationSettings } from "./schema/observation_section.ts";
 export type { OrbitSettings } from "./schema/orbit_section.ts";
-export type { PlateSettings } from "./schema/plate_section.ts";
+export type { PlateRowSettings, PlateSettings } from "./schema/plate_section.ts";
 export type { SkySettings } from "./schema/sky_section.ts";
 export type { TargetSettings } from "./schema/target_schema.ts";
 export type { TrailSettings } from "./schema/trail_section.ts";
@@ -56,3 +56,4 @@ export type {
   ManifestVariant,
   SamplePlateSettings,
 } from "./schema/manifest_schema.ts";
+export * from "./redo_run.ts";
