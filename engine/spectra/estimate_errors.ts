@@ -1,5 +1,6 @@
 import { Matrix } from "ml-matrix";
-import { median, nonNegativeLeastSquares, quantile } from "../numerics/mod.ts";
+import { median, nonNegativeLeastSquares } from "../numerics/mod.ts";
+import { runningMedian } from "./running_median.ts";
 
 /** Errors estimated from the scatter of spectra. */
 export interface EstimatedErrors {
@@ -23,15 +24,26 @@ function differences(
   const difference: number[] = [];
   const level: number[] = [];
   for (let i = 0; i + 3 * stride < flux.length; i++) {
-    const at = [i, i + stride, i + 2 * stride, i + 3 * stride];
-    if (at.some((k) => quiet[k] === 0)) continue;
-    const [a, b, c, d] = at.map((k) => flux[k]!);
-    const value = a! - 3 * b! + 3 * c! - d!;
+    const [j, k, l] = [i + stride, i + 2 * stride, i + 3 * stride];
+    if (!(quiet[i]! & quiet[j]! & quiet[k]! & quiet[l]!)) continue;
+    const value = flux[i]! - 3 * flux[j]! + 3 * flux[k]! - flux[l]!;
     if (!Number.isFinite(value)) continue;
     difference.push(value);
-    level.push(0.5 * (b! + c!));
+    level.push(0.5 * (flux[j]! + flux[k]!));
   }
   return { difference, level };
+}
+
+function runningMean(flux: Float64Array, half: number): Float64Array {
+  return flux.map((_, i) => {
+    let sum = 0, count = 0;
+    for (let k = Math.max(0, i - half); k <= Math.min(flux.length - 1, i + half); k++) {
+      if (!Number.isFinite(flux[k]!)) continue;
+      sum += flux[k]!;
+      count++;
+    }
+    return sum / count;
+  });
 }
 
 // 1 where a spectrum shows no line: where the mean of seven pixels stays near the median of a hundred.
@@ -39,18 +51,12 @@ function quietPixels(flux: Float64Array): Uint8Array {
   const every = new Uint8Array(flux.length).fill(1);
   const noise = Math.sqrt(scatter(differences(flux, 1, every).difference) / SQUARES);
   if (!(noise > 0)) return every;
-  const mean = flux.map((_, i) => {
-    const near = flux.subarray(Math.max(0, i - 3), i + 4).filter((f) => Number.isFinite(f));
-    return near.reduce((sum, f) => sum + f, 0) / near.length;
-  });
+  const mean = runningMean(flux, 3);
+  const level = runningMedian(mean, mean, { half: 50 });
   const quiet = new Uint8Array(flux.length).fill(1);
   for (let i = 0; i < flux.length; i++) {
-    const wide: number[] = [];
-    for (let k = Math.max(0, i - 50); k <= Math.min(flux.length - 1, i + 50); k += 4) {
-      if (Number.isFinite(mean[k]!)) wide.push(mean[k]!);
-    }
     // Twice the noise of a mean of seven, for the correlation that resampling leaves, and twice again.
-    if (wide.length > 0 && Math.abs(mean[i]! - median(wide)) > 4 * noise / Math.sqrt(7)) {
+    if (Math.abs(mean[i]! - level[i]!) > 4 * noise / Math.sqrt(7)) {
       quiet.fill(0, Math.max(0, i - 6), i + 7);
     }
   }
@@ -78,13 +84,11 @@ function scatter(values: readonly number[]): number {
 // Variance against flux, in bins of flux so that lines, a small part of the pixels, count for little.
 function photonGrowth(difference: readonly number[], level: readonly number[]) {
   const bins = 12;
-  const edges = Array.from({ length: bins + 1 }, (_, b) => quantile(level, b / bins));
+  const order = Array.from(level.keys()).sort((a, b) => level[a]! - level[b]!);
   const rows: number[][] = [];
   const data: number[] = [];
   for (let b = 0; b < bins; b++) {
-    const members = level.map((_, i) => i).filter((i) =>
-      level[i]! >= edges[b]! && (level[i]! < edges[b + 1]! || b === bins - 1)
-    );
+    const members = order.slice(b * order.length / bins, (b + 1) * order.length / bins);
     if (members.length < 20) continue;
     const variance = scatter(members.map((i) => difference[i]!)) / SQUARES;
     if (!(variance > 0)) continue;
@@ -137,14 +141,15 @@ export function estimateErrors(fluxes: readonly Float64Array[]): EstimatedErrors
   const factor = wide.map((own) =>
     own.difference.length < 50 ? 1 : scatter(relative(own)) / SQUARES
   );
-  const error = fluxes.map((flux, k) =>
-    flux.map((f, i) => {
-      if (!Number.isFinite(f)) return Infinity;
-      // A local level: the variance must not follow each pixel's own noise.
-      const near = flux.subarray(Math.max(0, i - 3), i + 4).filter((x) => Number.isFinite(x));
-      return Math.sqrt(variance(median(near)) * factor[k]!);
-    })
-  );
+  const error = fluxes.map((flux, k) => {
+    // A local level: the variance must not follow each pixel's own noise.
+    const near = runningMedian(flux, flux, { half: 3 });
+    return flux.map((f, i) =>
+      Number.isFinite(f)
+        ? Math.sqrt(variance(Number.isNaN(near[i]!) ? f : near[i]!) * factor[k]!)
+        : Infinity
+    );
+  });
 
   // With correlations r1, r2 and none beyond: variances of the differences over 20, at strides 1 to 3.
   const [one, two, three] = apart.map((set) =>

@@ -31,6 +31,7 @@ export * from "./read_table.ts";
 export * from "./read_text.ts";
 export * from "./recorded_axis.ts";
 export * from "./recorded_exposure.ts";
+export * from "./running_median.ts";
 export * from "./settle_exposure.ts";
 export * from "./spectral_variable.ts";
 export * from "./spectrum.ts";

@@ -88,7 +88,7 @@ export function fitContinuum(strip: LineStrip, options: ContinuumOptions): Conti
   const used = new Uint8Array(flux.length);
   const window = Array.from(velocity_kms, (v) => windowOf(v, windows_kms));
   const typical = windows_kms.map((_, w) => {
-    const errors = [...error].filter((e, i) => window[i] === w && Number.isFinite(e));
+    const errors = error.filter((e, i) => window[i] === w && Number.isFinite(e));
     return errors.length === 0 ? Infinity : median(errors);
   });
   window.forEach((w, i) => used[i] = w >= 0 && Number.isFinite(error[i]!) ? 1 : 0);
@@ -101,16 +101,24 @@ export function fitContinuum(strip: LineStrip, options: ContinuumOptions): Conti
   const high = Math.max(...windows_kms.map((w) => w[1]));
   const basis = (v: number) => legendre((2 * v - low - high) / (high - low), order);
 
+  const shapes = Array.from(velocity_kms, basis);
   while (true) {
     const kept = Array.from(used.keys()).filter((i) => used[i] === 1);
     if (kept.length < order + 3) return null;
-    const rows = kept.map((i) => basis(velocity_kms[i]!));
     const sigma = Float64Array.from(kept, (i) => typical[window[i]!]!);
-    const fit = solveLeastSquares(new Matrix(rows), Float64Array.from(kept, (i) => flux[i]!), {
+    const design = new Matrix(kept.map((i) => shapes[i]!));
+    const fit = solveLeastSquares(design, Float64Array.from(kept, (i) => flux[i]!), {
       error: sigma,
     });
-    const at = (v: number) => basis(v).reduce((sum, b, k) => sum + b * fit.parameters[k]!, 0);
-    const residual = kept.map((i, n) => (flux[i]! - at(velocity_kms[i]!)) / sigma[n]!);
+    const along = (shape: readonly number[]) => {
+      let sum = 0;
+      for (let k = 0; k <= order; k++) sum += shape[k]! * fit.parameters[k]!;
+      return sum;
+    };
+    const residual = Float64Array.from(
+      kept,
+      (i, n) => (flux[i]! - along(shapes[i]!)) / sigma[n]!,
+    );
     const scatter = robustSigma(residual, 0) * Math.sqrt(kept.length / (kept.length - order - 1));
     const out = kept.filter((_, n) => Math.abs(residual[n]!) > clip * scatter);
     if (out.length > 0 && scatter > 0 && kept.length - out.length >= order + 3) {
@@ -125,8 +133,8 @@ export function fitContinuum(strip: LineStrip, options: ContinuumOptions): Conti
       }
     }
     return {
-      level: velocity_kms.map(at),
-      at_line: at(0),
+      level: velocity_kms.map((_, i) => along(shapes[i]!)),
+      at_line: along(middle),
       at_line_error: Math.sqrt(variance) * Math.max(1, scatter),
       used,
       order,

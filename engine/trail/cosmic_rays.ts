@@ -1,3 +1,4 @@
+import { runningMedian } from "../spectra/mod.ts";
 import { runningMaximum } from "./running_maximum.ts";
 
 /** One exposure as the search for cosmic rays sees it. */
@@ -8,8 +9,8 @@ export interface TrailRow {
   readonly flux: Float64Array;
   /** One standard deviation, N values; infinite where masked. */
   readonly error: Float64Array;
-  /** Phase at mid-exposure, cycles. */
-  readonly phase: number;
+  /** Orbits since the zero at mid-exposure: cycle plus phase. */
+  readonly orbit: number;
   /** Full width at half maximum of the instrumental profile, pixels. */
   readonly profile_pixels: number;
   /** Set-up: rows are compared with rows of their own set-up where there are enough. */
@@ -26,10 +27,10 @@ export interface CosmicRayOptions {
    */
   readonly threshold?: number;
   /**
-   * Rows further off in phase than this are no neighbours, cycles.
+   * Rows further off than this are no neighbours, orbits.
    * @default 0.15
    */
-  readonly reach_phase?: number;
+  readonly reach_orbits?: number;
 }
 
 /** What was found by {@linkcode findCosmicRays}. */
@@ -53,43 +54,30 @@ function apart(a: number, b: number): number {
   return Math.abs(d - Math.round(d));
 }
 
+// Exposures near in time come first: between nights an object may change. Only where fewer than two
+// are near in time do those near in phase stand in.
 function neighboursOf(rows: readonly TrailRow[], index: number, reach: number): number[] {
   const row = rows[index]!;
-  const near = Array.from(rows.keys())
-    .filter((k) => k !== index && apart(rows[k]!.phase, row.phase) <= reach)
-    .sort((a, b) => apart(rows[a]!.phase, row.phase) - apart(rows[b]!.phase, row.phase));
-  const own = near.filter((k) => rows[k]!.group === row.group);
-  return (own.length >= 2 ? own : near).slice(0, NEIGHBOURS);
-}
-
-// Median of the usable values near each pixel.
-function localMedian(
-  values: Float64Array,
-  usable: Float64Array,
-  options: { readonly half: number; readonly own: boolean },
-): Float64Array {
-  const { half, own } = options;
-  const window = new Float64Array(2 * half + 1);
-  return values.map((_, i) => {
-    let n = 0;
-    for (let k = Math.max(0, i - half); k <= Math.min(values.length - 1, i + half); k++) {
-      if ((own || k !== i) && Number.isFinite(usable[k]!)) window[n++] = values[k]!;
-    }
-    if (n < 3) return NaN;
-    const sorted = window.subarray(0, n).sort();
-    return 0.5 * (sorted[(n - 1) >> 1]! + sorted[n >> 1]!);
-  });
+  const nearest = (distance: (other: TrailRow) => number) =>
+    Array.from(rows.keys())
+      .filter((k) => k !== index && distance(rows[k]!) <= reach)
+      .sort((a, b) => distance(rows[a]!) - distance(rows[b]!));
+  const inTime = nearest((other) => Math.abs(other.orbit - row.orbit));
+  const inPhase = nearest((other) => apart(other.orbit, row.orbit));
+  const alike = (indices: readonly number[]) => indices.filter((k) => rows[k]!.group === row.group);
+  const choices = [alike(inTime), inTime, alike(inPhase), inPhase];
+  return (choices.find((choice) => choice.length >= 2) ?? inPhase).slice(0, NEIGHBOURS);
 }
 
 // The row's own level beside a pixel: over a window wider than an unresolved feature.
 function besideLevel(row: TrailRow): Float64Array {
   const half = Math.ceil(1.5 * row.profile_pixels) + 2;
-  return localMedian(row.flux, row.error, { half, own: false });
+  return runningMedian(row.flux, row.error, { half, own: false });
 }
 
 // A hit's own error holds its own photons: the typical error beside it is the fair one.
 function typicalError(row: TrailRow): Float64Array {
-  const near = localMedian(row.error, row.error, { half: 10, own: true });
+  const near = runningMedian(row.error, row.error, { half: 10 });
   return near.map((e, i) => Number.isNaN(e) ? row.error[i]! : Math.min(e, row.error[i]!));
 }
 
@@ -100,7 +88,7 @@ function envelope(row: TrailRow, neighbours: readonly TrailRow[], speed: number)
   const second = top.slice();
   const pixel = (row.velocity_kms.at(-1)! - row.velocity_kms[0]!) / row.flux.length;
   for (const other of neighbours) {
-    const drift = 2 * Math.PI * speed * apart(other.phase, row.phase) + 1.5 * pixel;
+    const drift = 2 * Math.PI * speed * apart(other.orbit, row.orbit) + 1.5 * pixel;
     const most = runningMaximum(other, row.velocity_kms, drift);
     for (let i = 0; i < top.length; i++) {
       second[i] = Math.max(second[i]!, Math.min(top[i]!, most[i]!));
@@ -113,7 +101,7 @@ function envelope(row: TrailRow, neighbours: readonly TrailRow[], speed: number)
 /**
  * Finds cosmic rays in a trail by comparing each pixel with neighbouring exposures, and with its own
  * row. A pixel is hit when it stands out of its row over an unresolved feature's width *and* above
- * what two of the four exposures nearest in phase show within the velocities that a real feature
+ * what two of the four exposures nearest in time (or, for want of those, in phase) show within the velocities that a real feature
  * could have crossed meanwhile (2π × speed × difference of phase). A narrow S-wave is in the
  * neighbours, only shifted, so it stays; it may also brighten by half from one exposure to the next. Pixels beside a hit go with it at half the threshold. Repeated until nothing is found,
  * so that hits in neighbours do not hide each other.
@@ -129,11 +117,11 @@ function envelope(row: TrailRow, neighbours: readonly TrailRow[], speed: number)
  * import { assertEquals } from "@std/assert";
  *
  * const velocity_kms = Float64Array.from({ length: 41 }, (_, i) => 50 * (i - 20));
- * const rows = [0.1, 0.12, 0.14, 0.16].map((phase, k) => ({
+ * const rows = [0.1, 0.12, 0.14, 0.16].map((orbit, k) => ({
  *   velocity_kms,
  *   flux: velocity_kms.map((_, i) => k === 1 && i === 10 ? 5 : 0),
  *   error: velocity_kms.map(() => 0.1),
- *   phase,
+ *   orbit,
  *   profile_pixels: 2,
  *   group: 0,
  * }));
@@ -145,9 +133,9 @@ export function findCosmicRays(
   rows: readonly TrailRow[],
   options: CosmicRayOptions,
 ): CosmicRays {
-  const { largest_speed_kms, threshold = 6, reach_phase = 0.15 } = options;
+  const { largest_speed_kms, threshold = 6, reach_orbits = 0.15 } = options;
   const hit = rows.map((row) => new Uint8Array(row.flux.length));
-  const neighbours = rows.map((_, i) => neighboursOf(rows, i, reach_phase));
+  const neighbours = rows.map((_, i) => neighboursOf(rows, i, reach_orbits));
   const unsearched = Array.from(rows.keys()).filter((i) => neighbours[i]!.length < 2);
   const unlike = new Set<number>();
   const clean = rows.map((row) => ({ ...row, error: row.error.slice() }));

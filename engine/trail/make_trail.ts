@@ -145,9 +145,9 @@ export function makeTrail(spectra: readonly Spectrum[], options: TrailOptions): 
   }
   const folded = plain.map(({ strip }) => foldExposure(strip.spectrum, ephemeris));
   const profile_kms = profileWidths(plain, settled);
-  const phases = folded.map((f) => f.phase);
+  const orbits = folded.map((f) => f.cycle + f.phase);
   const strips = options.cosmic_rays === false ? plain : maskCosmicRays(plain, {
-    phases,
+    orbits,
     profile_kms,
     // Gas in orbit shows in the line at up to the reach; a compact feature that moves by more than
     // half of it would leave the line.

@@ -22,7 +22,7 @@ function divided({ strip, continuum, flux, error }: NormalisedStrip) {
  * Searches normalised exposures for cosmic rays, masks them and says how many.
  *
  * @param strips Normalised exposures in order of time.
- * @param options For each strip its phase and the width of its instrumental profile; the largest
+ * @param options For each strip its orbits since the zero and the width of its instrumental profile; the largest
  * speed of real features; where to say things.
  * @returns New strips with the hits masked.
  *
@@ -32,23 +32,23 @@ function divided({ strip, continuum, flux, error }: NormalisedStrip) {
  * import { assertEquals } from "@std/assert";
  *
  * const warnings = warningsOf("H beta");
- * assertEquals(maskCosmicRays([], { phases: [], profile_kms: [], largest_speed_kms: 1000, warnings }), []);
+ * assertEquals(maskCosmicRays([], { orbits: [], profile_kms: [], largest_speed_kms: 1000, warnings }), []);
  * ```
  */
 export function maskCosmicRays(
   strips: readonly NormalisedStrip[],
   options: {
-    readonly phases: readonly number[];
+    readonly orbits: readonly number[];
     readonly profile_kms: readonly number[];
     readonly largest_speed_kms: number;
     readonly warnings: WarningList;
   },
 ): readonly NormalisedStrip[] {
-  const { phases, profile_kms, largest_speed_kms, warnings } = options;
+  const { orbits, profile_kms, largest_speed_kms, warnings } = options;
   const rows = strips.map((normalised, i) => ({
     velocity_kms: normalised.strip.velocity_kms,
     ...divided(normalised),
-    phase: phases[i]!,
+    orbit: orbits[i]!,
     profile_pixels: profile_kms[i]! / middlePixel(normalised),
     group: normalised.strip.spectrum.group,
   }));
@@ -64,12 +64,12 @@ export function maskCosmicRays(
   }
   warnings.about(
     "cosmic-rays-unsearched",
-    "not searched for cosmic rays, as fewer than two exposures lie near in phase",
+    "not searched for cosmic rays, as fewer than two exposures lie near in time or phase",
     sources(unsearched),
   );
   warnings.about(
     "exposures-unlike",
-    "not searched for cosmic rays, as they differ from their neighbours in phase too broadly (eclipse, flare, cloud?)",
+    "not searched for cosmic rays, as they differ from their neighbours too broadly (eclipse, flare, cloud?)",
     sources(unlike),
   );
   return strips.map((s, i) => ({

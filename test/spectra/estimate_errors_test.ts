@@ -75,3 +75,18 @@ Deno.test("estimateErrors() masks what is not a number and gives null without sc
   assertEquals(estimateErrors([new Float64Array(200).fill(3)]), null);
   assertEquals(estimateErrors([Float64Array.of(1, 2, 3)]), null);
 });
+
+Deno.test("estimateErrors() tells correlation over two pixels", () => {
+  const random = randomStream(6);
+  const data = Array.from({ length: 30 }, () => {
+    const raw = Float64Array.from({ length: PIXELS + 2 }, () => 500 + 10 * random.normal());
+    return Float64Array.from(
+      { length: PIXELS },
+      (_, i) => (raw[i]! + raw[i + 1]! + raw[i + 2]!) / 3,
+    );
+  });
+  // The mean of three neighbours: correlations 2/3 and 1/3; errors as above.
+  const [one, two] = estimateErrors(data)!.lag_correlation;
+  assertAlmostEquals(one, 2 / 3, 0.066);
+  assertAlmostEquals(two, 1 / 3, 0.066);
+});

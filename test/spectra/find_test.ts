@@ -242,3 +242,15 @@ Deno.test("findResolution() tells widths from powers", () => {
   assertAlmostEquals(of({}, { resolution_kms: 60 })![0]!, 1.000692, 1e-5);
   assertEquals(of({}), null);
 });
+
+Deno.test("findTime() refuses a time scale that it does not know", () => {
+  assertThrows(
+    () => findTime(facts({ "DATE-OBS": "2024-01-02T12:00:00", TIMESYS: "TCB" })),
+    InputError,
+    'Cannot read time scale as TIMESYS must be UTC, UT, TAI, TT or TDB: current value is "TCB" (key TIMESYS); state time_scale',
+  );
+  const told = findTime(facts({ "DATE-OBS": "2024-01-02T12:00:00", TIMESYS: "TCB" }), {
+    time_scale: "tdb",
+  });
+  assertEquals(told?.scale, "tdb");
+});

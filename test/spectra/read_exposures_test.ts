@@ -192,3 +192,45 @@ Deno.test("readExposures() leaves its options alone and reads in the order of th
   assertEquals(spectra.map((s) => s.group), [2, 2, 2]);
   assert(orbitalPhase(EPHEMERIS, spectra[0]!.mid).phase > 0);
 });
+
+Deno.test("readExposures() brings heliocentric wavelengths to the barycentre", async () => {
+  const raw = madeExposures({ count: 1, medium: "vacuum" });
+  const { spectra } = await read(raw, "image", { wavelength_frame: "heliocentric" });
+  const { observer_factor, heliocentric_factor } = midExposureBjd(
+    { date: raw[0]!.start, exposure_s: 240 },
+    { target: TARGET, site: SITE },
+  );
+  const ratio = spectra[0]!.wavelength_angstrom[100]! / raw[0]!.wavelength_angstrom[100]!;
+  assertAlmostEquals(ratio, observer_factor / heliocentric_factor, 1e-12);
+  // The Sun moves at up to 16 m/s about the barycentre; dilation and potentials add 4.6 m/s.
+  assert(Math.abs(ratio - 1) * 299792458 < 25 && Math.abs(ratio - 1) * 299792458 > 0.1);
+});
+
+Deno.test("readExposures() needs no site when time and wavelengths are barycentric, and takes VELOSYS either way round", async () => {
+  const raw = madeExposures({ count: 1 });
+  const [path] = await written(encodeExposures(raw, { layout: "text" }));
+  const spectrum = (await Deno.readTextFile(path!)).split("\n").filter((l) => !l.startsWith("#"))
+    .join("\n");
+  const { bjd, observer_factor } = midExposureBjd(
+    { date: raw[0]!.start, exposure_s: 240 },
+    { target: TARGET, site: SITE },
+  );
+  const of = async (facts: string) => {
+    const name = path!.replace(".txt", `-${facts.length}.txt`);
+    const time = `# BJD_TDB = ${bjd[0]}${
+      bjd[1].toFixed(9).slice(1)
+    }\n# EXPTIME = 240\n# SPECSYS = BARYCENT\n`;
+    await Deno.writeTextFile(name, `${time}${facts}${spectrum}`);
+    const { spectra, decisions } = await readExposures([name]);
+    return { factor: spectra[0]!.observer_factor, decisions };
+  };
+  assertEquals((await of("")).factor, null);
+  const rough = await of("# RA = 83.1\n# DEC = -12.4\n");
+  assert(Math.abs(rough.factor! / observer_factor - 1) * 299792.458 < 0.47);
+  const speed = (observer_factor - 1) * 299792458;
+  for (const stated of [speed, -speed]) {
+    const { factor, decisions } = await of(`# RA = 83.1\n# DEC = -12.4\n# VELOSYS = ${stated}\n`);
+    assertAlmostEquals(factor!, observer_factor, 1e-9);
+    assert(decisions.some((d) => d.from === "VELOSYS"));
+  }
+});

@@ -30,7 +30,7 @@ function scene(
     );
     const error = truth.map((f) => Math.sqrt(1 + f) / signal_to_noise);
     const flux = truth.map((f, i) => f + error[i]! * random.normal());
-    return { velocity_kms, flux, error, phase, profile_pixels: 2.4, group: 0 };
+    return { velocity_kms, flux, error, orbit: cycles, profile_pixels: 2.4, group: 0 };
   });
 }
 
@@ -84,6 +84,17 @@ Deno.test("findCosmicRays() finds hits in the continuum, in the line and on the 
 Deno.test("findCosmicRays() would eat the S-wave without its allowance for motion: the allowance matters", () => {
   const rows = scene({ seed: 1, signal_to_noise: 100, spot: 2, width: 35 });
   assertGreater(findCosmicRays(rows, { largest_speed_kms: 10 }).count, 10);
+});
+
+Deno.test("findCosmicRays() does not compare with another night, when the object may have been another", () => {
+  // An S-wave in the second night only, exposed in between the phases of the first.
+  const first = scene({ seed: 1, signal_to_noise: 60, spot: 0 });
+  const second = scene({ seed: 2, signal_to_noise: 60, spot: 2, width: 35 })
+    .map((row) => ({ ...row, orbit: row.orbit + 12.005 }));
+  assertLessOrEqual(
+    findCosmicRays([...first, ...second], { largest_speed_kms: 1250 }).count,
+    2,
+  );
 });
 
 Deno.test("findCosmicRays() leaves an exposure that differs as a whole to the observer", () => {

@@ -1,6 +1,6 @@
 import { assert, assertAlmostEquals, assertEquals, assertGreater } from "@std/assert";
-import { describeTrail, makeTrail, type TrailOptions } from "../../engine/trail/mod.ts";
-import { EPHEMERIS, H_BETA, madeSpectra, type Making } from "./made_spectra.ts";
+import { describeTrail, makeTrail, pairNoise, type TrailOptions } from "../../engine/trail/mod.ts";
+import { C_KMS, EPHEMERIS, H_BETA, madeSpectra, type Making } from "./made_spectra.ts";
 
 const EPOCH = [2460311, 0.55] as const;
 
@@ -68,4 +68,29 @@ Deno.test("describeTrail() finds repeats and mirrored pairs of noise as stated",
   assertGreater(d.pairs.repeat!.pairs, 40);
   // With a spot that moves sideways of the mirror's rule the mirror still holds: it is transparent.
   assertAlmostEquals(described({ count: 100, orbits: 2 }).pairs.mirror!.scale, 1, 0.15);
+});
+
+Deno.test("pairNoise() mirrors about the systemic velocity", () => {
+  const moved = madeSpectra({ count: 100, orbits: 2, spot: 0 }).map((s) => ({
+    ...s,
+    wavelength_angstrom: s.wavelength_angstrom.map((w) => w * (1 + 150 / C_KMS)),
+  }));
+  const trail = makeTrail(moved, {
+    line: H_BETA,
+    ephemeris: EPHEMERIS,
+    continuum_kms: [[-8000, -3000], [5800, 7800]],
+  });
+  assertAlmostEquals(pairNoise(trail, { systemic_kms: 150 }).mirror!.scale, 1, 0.1);
+  assertGreater(pairNoise(trail).mirror!.scale, 2);
+});
+
+Deno.test("describeTrail() counts correlated pixels for what they are worth", () => {
+  const trail = makeTrail(madeSpectra(), { line: H_BETA, ephemeris: EPHEMERIS });
+  const of = (correlation_length_pixels: number) =>
+    describeTrail({ ...trail, noise: { ...trail.noise, correlation_length_pixels } }, {
+      ephemeris: EPHEMERIS,
+      epoch: EPOCH,
+    })
+      .signal_to_noise.median;
+  assertAlmostEquals(of(1) / of(4), 2, 1e-9);
 });

@@ -324,3 +324,40 @@ Deno.test("makeTrail() takes exposures of different resolution and dispersion to
   assertAlmostEquals(profile_sigma_kms[23]! / profile_sigma_kms[0]!, 5, 1e-9);
   assertAlmostEquals(trail.noise.groups[1]!.measured_scale, 1, 0.15);
 });
+
+Deno.test("makeTrail() applies the noise scale to every error", () => {
+  const once = trailOf({ count: 6 }, { noise_scale: 1 });
+  const thrice = trailOf({ count: 6 }, { noise_scale: 3 });
+  once.error.forEach((e, k) => assertAlmostEquals(thrice.error[k]! / e, 3, 1e-12));
+});
+
+Deno.test("makeTrail() takes the period at the exposure for its width in phase", () => {
+  const at = (period_derivative: number) =>
+    trailOf({ count: 3, orbits: 3 }, {
+      ephemeris: { ...EPHEMERIS, period_derivative },
+      cosmic_rays: false,
+    }).sampling;
+  const orbit = at(0.02).cycle[2]! + at(0.02).phase[2]!;
+  assertAlmostEquals(at(0).phase_width[2]! / at(0.02).phase_width[2]!, 1 + 0.02 * orbit, 1e-9);
+});
+
+Deno.test("makeTrail() leaves out exposures that show less than half of the line", () => {
+  const whole = madeSpectra({ count: 4 });
+  const sliver = madeSpectra({
+    count: 4,
+    low_angstrom: 4855,
+    high_angstrom: 4870,
+    start_d: 0.05,
+    group: 1,
+  });
+  const half = madeSpectra({ count: 4, low_angstrom: 4855, start_d: 0.07, group: 2 });
+  const trail = makeTrail([...whole, ...sliver, ...half], {
+    line: H_BETA,
+    ephemeris: EPHEMERIS,
+    continuum_kms: WINDOWS,
+    cosmic_rays: false,
+  });
+  assertEquals([...new Set(trail.group)], [0, 2]);
+  assertEquals(codes(trail).includes("line-partly-covered"), true);
+  assertEquals(codes(trail).includes("continuum-one-sided"), true);
+});

@@ -47,3 +47,13 @@ Deno.test("selectExposures() suspects two reductions of one exposure", () => {
     "simultaneous-exposures",
   ]]);
 });
+
+Deno.test("selectExposures() keeps equal spectra that were taken at different times", () => {
+  const made = madeSpectra({ count: 2 });
+  const later = {
+    ...made[0]!,
+    source: "later.fits",
+    mid: [made[0]!.mid[0], made[0]!.mid[1] + 0.01] as const,
+  };
+  assertEquals(selectExposures([...made, later]).spectra.length, 3);
+});

@@ -40,3 +40,22 @@ Deno.test("measureNoise() gives null for too few samples", () => {
   assertEquals(measureNoise(rows(() => Float64Array.of(1, 2, 3), 2)), null);
   assertEquals(measureNoise([]), null);
 });
+
+Deno.test("measureNoise() does not take the fit's own correlation for one of the noise", () => {
+  // Residuals of 24 samples from a fitted straight line: they correlate by about −2/24 at lag one.
+  const random = randomStream(7);
+  const exposures = Array.from({ length: 1000 }, () => {
+    const z = Float64Array.from({ length: 24 }, () => random.normal());
+    const mean = z.reduce((a, b) => a + b, 0) / 24;
+    const x = z.map((_, i) => i - 11.5);
+    const slope = z.reduce((s, v, i) => s + v * x[i]!, 0) / x.reduce((s, v) => s + v * v, 0);
+    return {
+      velocity_kms: z.map((_, i) => 30 * i),
+      residual: z.map((v, i) => v - mean - slope * x[i]!),
+      parameters: 2,
+    };
+  });
+  const noise = measureNoise(exposures)!;
+  assertEquals(noise.lag_correlation, []);
+  assertAlmostEquals(noise.scale, 1, 4 * noise.scale_error);
+});
