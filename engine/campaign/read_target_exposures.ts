@@ -87,8 +87,15 @@ export async function readTargetExposures(
       resolving_power: settings.resolving_power,
       group,
     });
-    spectra.push(...read.spectra);
-    decisions.push(...read.decisions);
+    // Outputs name files from the target file, so that they do not depend on where one stood.
+    spectra.push(...read.spectra.map((spectrum) => ({
+      ...spectrum,
+      source: relative(target.folder, spectrum.source),
+    })));
+    decisions.push(...read.decisions.map((decision) => ({
+      ...decision,
+      source: relative(target.folder, decision.source),
+    })));
     warnings.push(...read.warnings);
     await pause(signal);
   }

@@ -19,13 +19,24 @@ export async function summaryRows(run: GatheredRun, folder: string): Promise<Sum
   for (const { command, record } of run.steps) {
     const name = `${command}.json`;
     if (record?.status !== "done" || !record.files.some(({ file }) => file === name)) continue;
-    documents[command] = JSON.parse(await Deno.readTextFile(join(folder, run.folder, name)));
+    const document = JSON.parse(await Deno.readTextFile(join(folder, run.folder, name)));
+    delete document.warnings;
+    documents[command] = document;
   }
-  const lines: (string | null)[] = run.lines.length === 0 ? [null] : [...run.lines];
-  return lines.map((line) => {
+  // A variant tells only of the lines that it has treated.
+  const lines = run.lines.filter((line) => run.variant === null || isToldOf(documents, line));
+  return (lines.length === 0 ? [null] : lines).map((line) => {
     const source: SummarySource = { run, line, documents };
     return summaryColumns.map(({ value }) => value(source));
   });
+}
+
+function isToldOf(documents: Readonly<Record<string, unknown>>, line: string): boolean {
+  return Object.values(documents).some((document) =>
+    Object.values(document as Record<string, unknown>).some((list) =>
+      Array.isArray(list) && list.some((entry) => (entry as { line?: string } | null)?.line === line)
+    )
+  );
 }
 
 /** `summary.ecsv`. */

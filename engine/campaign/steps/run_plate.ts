@@ -4,6 +4,7 @@ import { captionText } from "../caption_text.ts";
 import { hduName } from "../fits_head.ts";
 import { mappedLines } from "../line_of.ts";
 import { type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
+import { reportHtml } from "../report.ts";
 import type { LineSettings } from "../schema/lines_section.ts";
 import type { PlateSettings } from "../schema/plate_section.ts";
 import type { Session } from "../session.ts";
@@ -70,6 +71,7 @@ export async function runPlate(
     captions.push(drawn.caption);
     made.push([`${name}.txt`, captionText(drawn.caption)]);
   }
+  made.push(["report.html", await reportHtml(session)]);
   const { inputs, warnings: reading } = await session.exposures();
   const mapped = await Promise.all(lines.map(session.map));
   const warnings = uniqueWarnings([
