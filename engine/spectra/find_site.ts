@@ -45,8 +45,12 @@ export const SITE_KEYS = {
   ],
 } as const;
 
+// An angle, plain or sexagesimal; a letter behind it says which way it counts.
 function angle(fact: Fact | undefined): number | null {
-  return fact === undefined ? null : numberOf(fact.text) ?? sexagesimalOf(fact.text);
+  const letter = /^(.*?)\s*([NSEW])$/i.exec(fact?.text ?? "");
+  const text = letter?.[1] ?? fact?.text ?? "";
+  const value = numberOf(text) ?? sexagesimalOf(text);
+  return value !== null && /[SW]/i.test(letter?.[2] ?? "") ? -value : value;
 }
 
 /** A site and how it was found. */

@@ -82,7 +82,7 @@ function assumptions(decisions: readonly OneDecision[]): Warning[] {
     });
   }
   const mark = of("time marks");
-  if (mark !== undefined && !/DATE-OBS/.test(mark.from)) {
+  if (mark !== undefined && !/(DATE|MJD)[-_]OBS/.test(mark.from)) {
     warnings.push({
       code: "time-mark-assumed",
       text: `times are taken as ${mark.value} of exposure, ${mark.from}: state time_marks`,

@@ -191,6 +191,7 @@ Deno.test("findSite() reads OBSGEO first, then custom, and west only where it is
   assertEquals(of(west), site);
   assertEquals(of({ ...west, SITELONG: "70.7" })!.longitude_east_deg, 70.7);
   assertEquals(of({ ...west, SITELONG: "70.7" }, { keys: { longitude_west: "SITELONG" } }), site);
+  assertEquals(of({ SITELAT: "30:12:00 S", SITELONG: "70 42 00 W", SITEALT: "2700" }), site);
   assertEquals(of({ LATITUDE: "-30.2" }), null);
   assertEquals(of({}, { site }), site);
   // Zeros in OBSGEO are a header that was never filled in.
