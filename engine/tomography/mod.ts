@@ -4,12 +4,15 @@
  *
  * @module
  */
+export * from "./any_map.ts";
 export * from "./axisymmetric_part.ts";
 export * from "./back_projection.ts";
 export * from "./baseline.ts";
+export * from "./best_positive_map.ts";
 export * from "./blend_projector.ts";
 export * from "./blur_map.ts";
 export * from "./check_trail.ts";
+export * from "./core_miss.ts";
 export * from "./entropy_measure.ts";
 export * from "./entropy_solver.ts";
 export * from "./gather_lines.ts";
@@ -21,13 +24,17 @@ export * from "./map_peak.ts";
 export * from "./map_shape.ts";
 export * from "./maximum_entropy.ts";
 export * from "./mean_flux.ts";
+export * from "./mirror_test.ts";
+export * from "./moment_test.ts";
 export * from "./nearest_part.ts";
 export * from "./noise_replica.ts";
 export * from "./prior_image.ts";
 export * from "./profile_filter.ts";
+export * from "./profile_moments.ts";
 export * from "./projector.ts";
 export * from "./reference_projector.ts";
 export * from "./resolution.ts";
+export * from "./ring_profile.ts";
 export * from "./search_subspace.ts";
 export * from "./slant_geometry.ts";
 export * from "./slant_kernel.ts";

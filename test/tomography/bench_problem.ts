@@ -1,4 +1,4 @@
-// The problem of the benchmarks: a disc with a rim, an 8 % spot and a 3 % donor, on the geometry of
+// The problem of the benchmarks: a disc between 380 and 800 km/s, an 8 % spot and a 3 % donor, on the geometry of
 // test/bench/peers.py. Continuum 1; signal to noise is that of the continuum per resolution element
 // of two bins; the line's equivalent width is 1200 km/s and it peaks at 1.9 above the continuum.
 import { randomStream } from "@millrace/millrace/numerics";
@@ -58,7 +58,8 @@ function benchMap(
       (k % pixels) * step - half_width_kms,
       Math.floor(k / pixels) * step - half_width_kms + 60,
     );
-    disc[k] = Math.exp(-Math.max(0, v - 380) / 300) / (1 + Math.exp(-(v - 380) / 25));
+    disc[k] = Math.exp(-Math.max(0, v - 380) / 300) /
+      ((1 + Math.exp(-(v - 380) / 25)) * (1 + Math.exp((v - 800) / 25)));
     sum += disc[k]! * step * step;
   }
   const compact = gaussianMap(shape, [

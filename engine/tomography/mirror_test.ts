@@ -1,0 +1,188 @@
+import { chiSquareTail } from "../numerics/mod.ts";
+import type { TrailSamples } from "./check_trail.ts";
+import { shiftVelocities, systemFrame } from "./system_frame.ts";
+
+/** A cell of the trail that departs from what any map can make. */
+export interface WorstCell {
+  /** Phase of the middle of the cell, cycles. */
+  readonly phase: number;
+  /** Velocity of the middle of the cell, from the systemic velocity, km/s. */
+  readonly velocity_kms: number;
+  /** By how many standard deviations. */
+  readonly sigma: number;
+}
+
+/** Result of {@linkcode mirrorTest}. */
+export interface MirrorTest {
+  /** Probability of so large a chi-square if a fixed map made the data. */
+  readonly p_value: number;
+  /** Chi-square of the antisymmetric part in cells of velocity and phase. */
+  readonly chi_square: number;
+  /** Number of cells. */
+  readonly degrees_of_freedom: number;
+  /** Number of pairs of exposures half an orbit apart. */
+  readonly pairs: number;
+  /** The cell that departs most. */
+  readonly worst: WorstCell;
+}
+
+/** Options of {@linkcode mirrorTest}. */
+export interface MirrorTestOptions {
+  /** Systemic velocity γ, km/s. */
+  readonly systemic_kms: number;
+  /** Half the range of velocities that counts, km/s. */
+  readonly half_range_kms: number;
+  /** Model of a map that fits the data, laid out as they are: it takes up what phases do not match. */
+  readonly model: Float64Array;
+  /**
+   * Largest difference from half an orbit between two exposures of a pair, cycles.
+   *
+   * @default {0.03}
+   */
+  readonly tolerance?: number;
+  /**
+   * Share of chi-square that making the model left over, from simulations.
+   *
+   * @default {1}
+   */
+  readonly left?: number;
+}
+
+/** Width of a cell in σ of the profile, and in cycles. */
+const CELL_SIGMAS = 4, CELL_CYCLES = 1 / 24;
+
+/**
+ * Tests whether profiles half an orbit apart mirror one another about γ, as those of transparent gas at
+ * rest in the map do. What a map cannot make is the part of the data that is antisymmetric under
+ * (v, φ) → (−v, φ + ½); no fit of a map takes any of it up, so the model only has to bridge the
+ * mismatch in phase. Modulated emission fails here.
+ *
+ * @param trail Exposures, data, errors.
+ * @param options Systemic velocity, range, model.
+ * @returns Probability and the worst cell; null with fewer than three pairs.
+ *
+ * @example
+ * ```ts
+ * import { mirrorTest } from "@millrace/millrace/tomography";
+ * import { assert } from "@std/assert";
+ *
+ * const count = 20, bins = 61;
+ * const sampling = {
+ *   count,
+ *   phase: Float64Array.from({ length: count }, (_, i) => i / count),
+ *   cycle: new Float64Array(count),
+ *   phase_width: new Float64Array(count),
+ *   start: Uint32Array.from({ length: count + 1 }, (_, i) => i * bins),
+ *   velocity_kms: Float64Array.from({ length: count * bins }, (_, k) => 20 * (k % bins - 30)),
+ *   pixel_kms: new Float64Array(count * bins).fill(20),
+ *   profile_sigma_kms: new Float64Array(count).fill(40),
+ * };
+ * const flux = sampling.velocity_kms.map((v) => v > 100 ? 0.1 : 0); // always red: nothing mirrors it
+ * const trail = { sampling, flux, error: flux.map(() => 0.05) };
+ * const test = mirrorTest(trail, {
+ *   systemic_kms: 0,
+ *   half_range_kms: 500,
+ *   model: flux.map(() => 0),
+ * });
+ * assert(test !== null && test.p_value < 1e-6 && test.worst.velocity_kms !== 0);
+ * ```
+ */
+export function mirrorTest(trail: TrailSamples, options: MirrorTestOptions): MirrorTest | null {
+  const { systemic_kms, half_range_kms, tolerance = 0.03, left = 1 } = options;
+  const { sampling } = trail;
+  const pairs = pairsOf(sampling.phase, tolerance);
+  if (pairs.length < 3) return null;
+  const widest = sampling.profile_sigma_kms.reduce((a, b) => Math.max(a, b), 0);
+  const width = CELL_SIGMAS * widest;
+  const cells = Math.max(2, 2 * Math.ceil(half_range_kms / width));
+  const binned = binResiduals(trail, { ...options, cells, systemic_kms });
+
+  const groups = Math.round(0.5 / CELL_CYCLES);
+  const sum = new Float64Array(groups * cells), variance = new Float64Array(groups * cells);
+  for (const { first, second, phase } of pairs) {
+    const group = Math.min(groups - 1, Math.floor(phase * 2 * groups));
+    for (let c = 0; c < cells; c++) {
+      const a = first * cells + c, b = second * cells + (cells - 1 - c);
+      const together = binned.variance[a]! + binned.variance[b]!;
+      if (!(together < Infinity)) continue;
+      const at = group * cells + c;
+      sum[at] = sum[at]! + (binned.mean[a]! - binned.mean[b]!) / together;
+      variance[at] = variance[at]! + 1 / together;
+    }
+  }
+  let chi_square = 0, degrees_of_freedom = 0, worst = 0, most = 0;
+  sum.forEach((s, at) => {
+    if (variance[at] === 0) return;
+    const z = s / Math.sqrt(left * variance[at]!);
+    chi_square += z * z;
+    degrees_of_freedom++;
+    if (Math.abs(z) > Math.abs(most)) [worst, most] = [at, z];
+  });
+  if (degrees_of_freedom === 0) return null;
+  return {
+    p_value: chiSquareTail(chi_square, degrees_of_freedom),
+    chi_square,
+    degrees_of_freedom,
+    pairs: pairs.length,
+    worst: {
+      phase: (Math.floor(worst / cells) + 0.5) * 0.5 / groups,
+      velocity_kms: (worst % cells + 0.5 - 0.5 * cells) * 2 * half_range_kms / cells,
+      sigma: most,
+    },
+  };
+}
+
+interface Pair {
+  readonly first: number;
+  readonly second: number;
+  /** Phase of the first, in [0, ½). */
+  readonly phase: number;
+}
+
+/** Pairs half an orbit apart, closest first, every exposure at most once. */
+function pairsOf(phase: Float64Array, tolerance: number): Pair[] {
+  const candidates: (Pair & { readonly off: number })[] = [];
+  phase.forEach((p, first) => {
+    if (p >= 0.5) return;
+    phase.forEach((q, second) => {
+      const off = Math.abs(q - p - 0.5);
+      const wrapped = Math.min(off, 1 - off);
+      if (second !== first && wrapped <= tolerance) {
+        candidates.push({ first, second, phase: p, off: wrapped });
+      }
+    });
+  });
+  candidates.sort((a, b) => a.off - b.off || a.first - b.first || a.second - b.second);
+  const used = new Set<number>();
+  return candidates.filter(({ first, second }) => {
+    if (used.has(first) || used.has(second)) return false;
+    used.add(first).add(second);
+    return true;
+  });
+}
+
+function binResiduals(
+  trail: TrailSamples,
+  options: MirrorTestOptions & { readonly cells: number },
+): { mean: Float64Array; variance: Float64Array } {
+  const { sampling, flux, error } = trail;
+  const { cells, half_range_kms, systemic_kms, model } = options;
+  const velocity = shiftVelocities(sampling.velocity_kms, systemFrame(systemic_kms));
+  const sum = new Float64Array(sampling.count * cells);
+  const weight = new Float64Array(sampling.count * cells);
+  for (let i = 0; i < sampling.count; i++) {
+    for (let k = sampling.start[i]!; k < sampling.start[i + 1]!; k++) {
+      if (!(error[k]! < Infinity)) continue;
+      const cell = Math.floor((velocity[k]! / half_range_kms + 1) * 0.5 * cells);
+      if (cell < 0 || cell >= cells) continue;
+      const w = 1 / error[k]! ** 2;
+      const at = i * cells + cell;
+      sum[at] = sum[at]! + w * (flux[k]! - model[k]!);
+      weight[at] = weight[at]! + w;
+    }
+  }
+  return {
+    mean: sum.map((s, at) => weight[at]! > 0 ? s / weight[at]! : 0),
+    variance: weight.map((w) => w > 0 ? 1 / w : Infinity),
+  };
+}
