@@ -139,7 +139,7 @@ export interface AxesOptions extends PlotAxes {
   readonly offset_pt?: number;
   /** True to draw the whole frame, false for the left and bottom lines alone. @default {true} */
   readonly boxed?: boolean;
-  /** Distance of the y label's baseline from the axis, pt. @default {25} */
+  /** Distance of the y label's baseline from the axis, pt. @default {28} */
   readonly label_gap_pt?: number;
 }
 
@@ -161,7 +161,7 @@ export interface AxesOptions extends PlotAxes {
  * ```
  */
 export function drawAxes(frame: Box, options: AxesOptions): Item[] {
-  const { offset_pt = 0, boxed = true, label_gap_pt = 25 } = options;
+  const { offset_pt = 0, boxed = true, label_gap_pt = 28 } = options;
   const place = plotPlace(frame, options);
   const left = frame.x - offset_pt;
   const bottom = frame.y + frame.height + offset_pt;

@@ -20,7 +20,7 @@ export interface Paint {
 export interface PathItem extends Paint {
   /** Tells the kind of item. */
   readonly kind: "path";
-  /** SVG path data of absolute commands (M, L, C, Q, A, Z), in points, y downwards. */
+  /** SVG path data of absolute commands (M, L, C, Q, Z), in points, y downwards. */
   readonly d: string;
 }
 

@@ -13,6 +13,7 @@ export * from "./colour/lab.ts";
 export * from "./colour/limits.ts";
 export * from "./colour/stretch.ts";
 export * from "./display_list.ts";
+export * from "./enlarge_picture.ts";
 export * from "./font_metrics.ts";
 export * from "./font_names.ts";
 export * from "./font_rules.ts";

@@ -74,6 +74,28 @@ export function runsText(runs: readonly Run[]): string {
   return runs.map((run) => run.text).join("");
 }
 
+/**
+ * About how wide a line of text is, without looking into a font: half of its size a character. For choices
+ * such as what fits where.
+ *
+ * @param runs Its runs.
+ * @param size_pt Its size, pt.
+ * @returns Width, pt.
+ *
+ * @example
+ * ```ts
+ * import { labelRuns, roughWidth } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * assertEquals(roughWidth(labelRuns("−2000"), 8), 20);
+ * ```
+ */
+export function roughWidth(runs: readonly Run[], size_pt: number): number {
+  return runs.reduce((sum, run) => {
+    return sum + 0.5 * [...run.text].length * runStyle(run, size_pt).size_pt;
+  }, 0);
+}
+
 /** Scripts are this part of the text's size. */
 const SCRIPT_SCALE = 0.7;
 /** No letter is set smaller than this, pt: the least that journals print. */

@@ -1,6 +1,6 @@
 import { axisTicks } from "../axes.ts";
 import { type Box, boxPath, type Item, linePath } from "../display_list.ts";
-import { labelRuns } from "../runs.ts";
+import { labelRuns, roughWidth } from "../runs.ts";
 import { HAIRLINE_PT, INK, NOTE_PT, QUIET } from "../style.ts";
 import { COLOUR_COUNT, colourTable } from "./colour_map.ts";
 import type { ColourScale } from "./colour_scale.ts";
@@ -10,7 +10,7 @@ import { stretched } from "./stretch.ts";
 export interface ColourBarOptions {
   /** Place of the bar itself, pt; its labels stand above it. */
   readonly box: Box;
-  /** Unit or quantity in the markup of {@linkcode labelRuns}, written at the right end. */
+  /** Unit or quantity in the markup of {@linkcode labelRuns}, written at the right end where it fits. */
   readonly unit?: string;
   /** Values are divided by this before they are written. @default {1} */
   readonly divide_by?: number;
@@ -49,6 +49,8 @@ export function colourBar(scale: ColourScale, options: ColourBarOptions): Item[]
     ticks: ticks.map((value) => value / divide_by),
     format: writeValue,
   });
+  const written = [...labels.map(({ text }) => text), unit ?? ""].join("  ");
+  const unitFits = unit !== undefined && roughWidth(labelRuns(written), NOTE_PT) < box.width;
   labels.forEach(({ text }, i) => {
     const part = stretched(ticks[i]!, scale);
     const x = box.x + part * box.width;
@@ -56,7 +58,7 @@ export function colourBar(scale: ColourScale, options: ColourBarOptions): Item[]
       const d = linePath([[x, box.y], [x, box.y + box.height]]);
       items.push({ kind: "path", d, stroke: QUIET, stroke_pt: HAIRLINE_PT });
     }
-    const last = i === labels.length - 1 && unit !== undefined;
+    const last = i === labels.length - 1 && unitFits;
     items.push({
       kind: "text",
       x,

@@ -57,7 +57,9 @@ export function exposureRing(
   return [
     { kind: "path", d: ticks, stroke: INK, stroke_pt: 0.6 },
     { kind: "path", d: arcs, stroke: QUIET, stroke_pt: 0.6 },
-    ...[0, 0.25, 0.5, 0.75].map((phase) => phaseLabel(phase, at(phase, GAP_PT + TICK_PT + 2))),
+    ...[0, 0.25, 0.5, 0.75].map((phase) =>
+      phaseLabel(phase, { at: at(phase, GAP_PT + TICK_PT + 2), small: window.width < 100 })
+    ),
   ];
 }
 
@@ -69,9 +71,13 @@ export interface RingOptions {
   readonly shape?: WindowShape;
 }
 
-function phaseLabel(phase: number, [x, y]: readonly [number, number]): Item {
+function phaseLabel(
+  phase: number,
+  options: { readonly at: readonly [number, number]; readonly small: boolean },
+): Item {
+  const { at: [x, y], small } = options;
   const style = { kind: "text", size_pt: NOTE_PT, fill: QUIET } as const;
-  const runs = labelRuns(phase === 0.25 ? "*φ* = 0.25" : String(phase));
+  const runs = labelRuns(phase === 0.25 && !small ? "*φ* = 0.25" : String(phase));
   switch (phase) {
     case 0:
       return { ...style, x: x + 1, y: y + 2.4, anchor: "end", runs };

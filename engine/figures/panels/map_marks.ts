@@ -1,5 +1,6 @@
 import { ellipsePath, type Item, linePath } from "../display_list.ts";
 import type { PlotPlace } from "../axes.ts";
+import type { MapWindow } from "./map_window.ts";
 import { labelRuns } from "../runs.ts";
 import { INK, NOTE_PT, PAPER, QUIET } from "../style.ts";
 import type { VelocityCurve } from "./binary_marks.ts";
@@ -80,8 +81,8 @@ export interface DiscRim {
 export function discRims(
   rims: readonly DiscRim[],
   options: {
-    /** Where velocities stand on the page. */
-    readonly place: PlotPlace;
+    /** Where the map stands on the page. */
+    readonly place: MapWindow;
     /** Velocity of the accretor, km/s. */
     readonly accretor: readonly [vx_kms: number, vy_kms: number];
   },
@@ -92,11 +93,12 @@ export function discRims(
   const d = rims.map((rim) => ellipsePath(centre, { rx: rim.speed_kms * scale })).join("");
   const words = rims.flatMap((rim): Item[] => {
     if (rim.name === undefined) return [];
-    // Lower right, inside the circle: the stream keeps to the left.
+    // Lower right: the stream keeps to the left. A large circle has its name inside.
     const r = rim.speed_kms * scale * Math.SQRT1_2;
-    const at = { x: centre[0] + r - 3, y: centre[1] + r };
+    const large = rim.speed_kms * scale > 0.55 * place.window.width / 2;
+    const at = { x: centre[0] + r + (large ? -3 : 3), y: centre[1] + r + (large ? 0 : 4) };
     const style = { kind: "text", size_pt: NOTE_PT, fill: QUIET, halo: PAPER } as const;
-    return [{ ...style, ...at, anchor: "end", runs: labelRuns(rim.name) }];
+    return [{ ...style, ...at, anchor: large ? "end" : "start", runs: labelRuns(rim.name) }];
   });
   return [
     { kind: "path", d, stroke: PAPER, stroke_pt: 1.4, stroke_opacity: 0.7 },

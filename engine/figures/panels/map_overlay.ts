@@ -52,6 +52,7 @@ function label(
  *
  * @param marks Where the parts stand.
  * @param place Where velocities stand on the page.
+ * @param options Whether they are named.
  * @returns Items, to be clipped to the map's window.
  *
  * @example
@@ -66,7 +67,15 @@ function label(
  * assert(texts.some((run) => run.text === "stream"));
  * ```
  */
-export function drawBinaryMarks(marks: BinaryMarks, place: PlotPlace): Item[] {
+export function drawBinaryMarks(
+  marks: BinaryMarks,
+  place: PlotPlace,
+  options: {
+    /** False to leave out the names. @default {true} */
+    readonly named?: boolean;
+  } = {},
+): Item[] {
+  const { named = true } = options;
   const path = (curve: VelocityCurve, closed = false) =>
     linePath(curve.map(([vx, vy]) => [place.x(vx), place.y(vy)] as const), closed);
   let ticks = "";
@@ -85,7 +94,7 @@ export function drawBinaryMarks(marks: BinaryMarks, place: PlotPlace): Item[] {
       { d: plus(place.x(marks.accretor[0]), place.y(marks.accretor[1]), 3), width: 0.8 },
       { d: cross(place.x(0), place.y(0), 1.8), width: 0.6 },
     ]),
-    ...nameMarks(marks, place),
+    ...(named ? nameMarks(marks, place) : []),
   ];
 }
 

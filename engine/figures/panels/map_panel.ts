@@ -28,6 +28,8 @@ export interface MapPanelOptions {
   readonly overlay?: readonly Item[];
   /** False to leave out the label and values of the Vy axis. @default {true} */
   readonly y_labels?: boolean;
+  /** True to name the parts of the binary. @default {true} */
+  readonly named?: boolean;
   /** Name of the group. @default {"map"} */
   readonly name?: string;
 }
@@ -51,7 +53,7 @@ export interface MapPanelOptions {
  */
 export function mapPanel(map: VelocityMap, options: MapPanelOptions): Group {
   const { frame, scale, shape = "round", sampling, marks = null, features = [] } = options;
-  const { overlay = [], y_labels = true, name = "map" } = options;
+  const { overlay = [], y_labels = true, named = true, name = "map" } = options;
   const place = mapWindow(map, frame);
   const { window, reach_kms } = place;
   const centre = [window.x + window.width / 2, window.y + window.height / 2] as const;
@@ -62,13 +64,16 @@ export function mapPanel(map: VelocityMap, options: MapPanelOptions): Group {
   const inside: Item[] = [
     paintGrid(grid, { box: window, scale }),
     ...overlay,
-    ...(marks === null ? [] : drawBinaryMarks(marks, place)),
+    ...(marks === null ? [] : drawBinaryMarks(marks, place, { named })),
     ...drawFeatures(features, place),
   ];
   const range = [-reach_kms, reach_kms] as const;
+  const ticks = Math.max(2, Math.min(5, Math.round(window.width / 45)));
   const axes = drawAxes(window, {
-    x: { range, label: `*V*_{x} (${KMS_LABEL})` },
-    y: y_labels ? { range, label: `*V*_{y} (${KMS_LABEL})` } : { range, format: null },
+    x: { range, ticks, label: `*V*_{x} (${KMS_LABEL})` },
+    y: y_labels
+      ? { range, ticks, label: `*V*_{y} (${KMS_LABEL})` }
+      : { range, ticks, format: null },
     offset_pt: RING_PT,
     boxed: false,
   });

@@ -24,6 +24,8 @@ export interface TrailPanelOptions {
   readonly cycles?: number;
   /** True to name the velocity axis. @default {true} */
   readonly x_label?: boolean;
+  /** Width that the name may take, pt: it is shorter where there is little. @default {the frame's width} */
+  readonly x_room_pt?: number;
   /** False to leave out the phases: a neighbour shows them. @default {true} */
   readonly y_labels?: boolean;
   /** Systemic velocity, marked at the top; null for no mark. @default {null} */
@@ -64,7 +66,11 @@ export function trailPanel(grid: DisplayGrid, options: TrailPanelOptions): Group
   const { x_label = true, y_labels = true, name = "trail" } = options;
   const range = velocityRange(grid);
   const axes = {
-    x: velocityAxis(range, { length_pt: frame.width, named: x_label }),
+    x: velocityAxis(range, {
+      length_pt: frame.width,
+      room_pt: options.x_room_pt ?? frame.width,
+      named: x_label,
+    }),
     y: {
       range: [0, cycles] as const,
       ticks: Array.from({ length: 2 * cycles + 1 }, (_, i) => i / 2),
@@ -104,7 +110,7 @@ function velocityRange(grid: DisplayGrid): [low: number, high: number] {
 /** A velocity axis; a short one counts in thousands, so that its values fit. */
 function velocityAxis(
   range: readonly [number, number],
-  options: { length_pt: number; named: boolean },
+  options: { length_pt: number; room_pt: number; named: boolean },
 ): Axis {
   const thousands = options.length_pt < 110 && range[1] - range[0] > 1500;
   const unit = thousands ? `10^{3} ${KMS_LABEL}` : KMS_LABEL;
@@ -112,7 +118,7 @@ function velocityAxis(
     range,
     ticks: Math.max(3, Math.round(options.length_pt / (thousands ? 18 : 30))),
     ...(thousands ? { format: (value) => String(value / 1000).replace("-", "−") } : {}),
-    ...(options.named ? { label: `velocity (${unit})` } : {}),
+    ...(options.named ? { label: `${options.room_pt < 90 ? "*V*" : "velocity"} (${unit})` } : {}),
   };
 }
 

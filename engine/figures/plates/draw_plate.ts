@@ -1,6 +1,7 @@
 import { InputError } from "../../errors.ts";
 import { colourBar } from "../colour/colour_bar.ts";
 import type { Item, Picture } from "../display_list.ts";
+import { enlargePicture } from "../enlarge_picture.ts";
 import { plainRuns } from "../runs.ts";
 import { INK, LABEL_PT } from "../style.ts";
 import type { PanelKind, PanelScale } from "./panel_kind.ts";
@@ -96,16 +97,15 @@ export function drawPlate(
     `${letter === "" ? "" : `${letter} `}${kind.tell(subject, scale).trim()}`
   ).join(" ");
   const { title, line } = subjects[0]!;
-  return {
-    picture: {
-      width,
-      height: layout.height,
-      items,
-      title: [title, line.name].filter((text) => text !== "").join(", "),
-      description: caption,
-    },
-    caption,
+  const picture = {
+    width,
+    height: layout.height,
+    items,
+    title: [title, line.name].filter((text) => text !== "").join(", "),
+    description: caption,
   };
+  const { enlarge = 1 } = description;
+  return { picture: enlarge === 1 ? picture : enlargePicture(picture, enlarge), caption };
 }
 
 /** Scales of a plate, each found once. */
@@ -138,6 +138,8 @@ function drawRow(row: readonly Piece[], description: PlateDescription): Item[] {
       frame: box.frame,
       first: box.first,
       names_axis: i === from + Math.floor((count - 1) / 2),
+      axis_room_pt: row[from + count - 1]!.box.frame.x + row[from + count - 1]!.box.frame.width -
+        row[from]!.box.frame.x,
       style: description,
       ...(scale ? { scale } : {}),
     };

@@ -76,8 +76,12 @@ function drawMap(map: VelocityMap, subject: PlateSubject, drawing: MapDrawing): 
   const { binary, features, trail, rims = [] } = subject;
   const place = mapWindow(map, frame);
   const accretor = [0, centreOf(subject).vy_kms] as const;
+  // Names stand once among neighbours, and not where they would hide a small map.
+  const named = first && place.window.width > 100;
+  const unnamed = rims.map(({ speed_kms }) => ({ speed_kms }));
   const panel = mapPanel(map, {
     frame,
+    named,
     scale: scale!,
     name,
     y_labels: first,
@@ -85,7 +89,10 @@ function drawMap(map: VelocityMap, subject: PlateSubject, drawing: MapDrawing): 
     ...(trail ? { sampling: trail.sampling } : {}),
     marks: binary && binaryMarks(binary),
     ...(marked && features ? { features } : {}),
-    overlay: [...(rims.length > 0 ? discRims(rims, { place, accretor }) : []), ...overlay],
+    overlay: [
+      ...(rims.length > 0 ? discRims(named ? rims : unnamed, { place, accretor }) : []),
+      ...overlay,
+    ],
   });
   return { ...panel, items: [...panel.items, ...mapHeading(subject, frame)] };
 }

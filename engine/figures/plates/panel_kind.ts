@@ -22,6 +22,8 @@ export interface PanelDrawing {
   readonly first: boolean;
   /** True when this panel names the horizontal axis for its neighbours. */
   readonly names_axis: boolean;
+  /** Width that the name of the horizontal axis may take, pt. */
+  readonly axis_room_pt: number;
   /** The plate's style. */
   readonly style: PlateStyle;
 }

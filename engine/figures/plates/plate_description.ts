@@ -55,6 +55,8 @@ export interface PlateDescription extends PlateStyle {
   readonly each_subject?: boolean;
   /** True to letter the panels (a), (b), … @default {false} */
   readonly letters?: boolean;
+  /** How many times as large letters and lines are, within the same width: for slides. @default {1} */
+  readonly enlarge?: number;
 }
 
 /** A row with everything chosen. */
@@ -74,11 +76,11 @@ const standardRows = {
 } as const satisfies Record<string, readonly PlateRow[]>;
 
 /**
- * Width of a plate on the page.
+ * Width in which a plate is laid out: that of the page, over the enlargement.
  *
  * @param description The plate.
  * @returns Its width, pt.
- * @throws {InputError} When it is not from 40 to 1200 mm.
+ * @throws {InputError} When it is not from 40 to 1200 mm, or the enlargement not from 0.5 to 10.
  *
  * @example
  * ```ts
@@ -100,7 +102,12 @@ export function plateWidth(description: PlateDescription): number {
       key: "plate.width",
     });
   }
-  return mm * POINTS_PER_MM;
+  const { enlarge = 1 } = description;
+  if (!(enlarge >= 0.5 && enlarge <= 10)) {
+    const rule = "the enlargement must be from 0.5 to 10";
+    throw new InputError({ action: "lay out plate", rule, value: enlarge, key: "plate.enlarge" });
+  }
+  return mm * POINTS_PER_MM / enlarge;
 }
 
 /**

@@ -41,6 +41,7 @@ const LEFT = 36; // values and label of a vertical axis
 const BELOW = 27; // values and label of a horizontal axis
 const RIGHT = 8; // half of the last value of a horizontal axis
 const GAP = 9; // between panels that share an axis, and between rows
+const LEAST_WIDTH_PT = 60;
 /** Distance of a colour bar's top above its frame, pt. */
 export const BAR_RISE_PT = 8;
 /** Height of a colour bar, pt. */
@@ -93,7 +94,10 @@ function layRow(row: LaidRow, options: { top: number; width: number }) {
   if (squares > 0) {
     const share = free * 3 / weights;
     const side = squares === panels.length ? free / squares : Math.min(share, 200);
-    height = Math.min(height ?? side, side);
+    // What is not square keeps a width that can be read.
+    const others = panels.length - squares;
+    const most = (free - others * LEAST_WIDTH_PT) / squares;
+    height = Math.max(LEAST_WIDTH_PT, Math.min(height ?? side, side, most));
   }
   height ??= Math.max(...panels.map(({ kind }) => kind.height_pt));
   const rest = free - squares * height;

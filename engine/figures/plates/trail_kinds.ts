@@ -48,6 +48,7 @@ function drawTrail(
     scale: drawing.scale!,
     y_labels: drawing.first,
     x_label: drawing.names_axis,
+    x_room_pt: drawing.axis_room_pt,
     systemic_kms: subject.systemic_kms,
     ...options,
   });

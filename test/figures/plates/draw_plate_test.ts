@@ -164,6 +164,11 @@ const wrong: [string, PlateDescription, string][] = [
     "the subject of a panel must be from 0 to 0: current value is 3",
   ],
   ["the width is nothing", { width: 0 }, "40 to 1200 mm: current value is 0 mm (key plate.width)"],
+  [
+    "the enlargement is nothing",
+    { enlarge: 0 },
+    "the enlargement must be from 0.5 to 10: current value is 0",
+  ],
   ["the width is no number", { width: NaN }, "40 to 1200 mm"],
 ];
 
@@ -172,6 +177,16 @@ for (const [when, description, message] of wrong) {
     assertThrows(() => drawPlate(description, [subject]), InputError, message);
   });
 }
+
+Deno.test("drawPlate() keeps its width and shape of page when it is enlarged for a slide", () => {
+  const description = { width: 254, rows: [{ panels: ["map", "trail"] as const }] };
+  const plain = drawPlate({ ...description, width: 127 }, [subject]).picture;
+  const slide = drawPlate({ ...description, enlarge: 2 }, [subject]).picture;
+  assertEquals(slide.width, 2 * plain.width);
+  assertEquals(slide.height, 2 * plain.height);
+  const sizes = (picture: Picture) => texts(picture.items).map((text) => text.size_pt);
+  assertEquals(sizes(slide), sizes(plain).map((size) => 2 * size));
+});
 
 Deno.test("drawPlate() asks for a line when there is none", () => {
   assertThrows(() => drawPlate({}, []), InputError, "there must be at least one line to show");
