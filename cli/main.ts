@@ -56,6 +56,8 @@ async function commands(): Promise<AddCommand[]> {
     import("./commands/synth.ts").then(({ synthCommand }) => synthCommand),
     import("./commands/weigh.ts").then(({ weighCommand }) => weighCommand),
     import("./commands/plate.ts").then(({ plateCommand }) => plateCommand),
+    import("./commands/batch.ts").then(({ batchCommand }) => batchCommand),
+    import("./commands/redo.ts").then(({ redoCommand }) => redoCommand),
     import("./commands/geometry.ts").then(({ geometryCommand }) => geometryCommand),
   ]);
   return modules as unknown as AddCommand[];

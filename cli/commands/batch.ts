@@ -8,8 +8,8 @@ import {
   gatherBatch,
   type JobOutcome,
   type Manifest,
-  type Part,
   parsePart,
+  type Part,
   readManifest,
   runBatch,
 } from "../../engine/campaign/mod.ts";
@@ -17,7 +17,8 @@ import { InputError, WorkError } from "../../engine/errors.ts";
 import { utcNow } from "../clock.ts";
 import { commandWith, type CommonOptions } from "../common_options.ts";
 import { type CommandContext, type CommandResult, runCommand } from "../run_command.ts";
-import { durationText, tableLines } from "../terminal/table.ts";
+import { durationText } from "../terminal/duration.ts";
+import { tableLines } from "../terminal/table.ts";
 
 type BatchCall = CommonOptions & { part?: string; gather?: true };
 
@@ -82,13 +83,16 @@ function newsTeller({ console }: CommandContext): (news: BatchNews) => void {
   return ({ outcome, done, total, done_fraction }) => {
     const passed = (performance.now() - started) / 1000;
     const left = (passed / done_fraction) * (1 - done_fraction);
-    const count = `${done} of ${total} targets`;
+    // A guess from the first twentieth would mislead.
+    const count = `${done} of ${total} targets${
+      done === total || done_fraction < 0.05 ? "" : `, ${durationText(left)} left`
+    }`;
     if (!console.onTerminal) {
-      console.err(`${count}, ${durationText(left)} left: ${outcomeText(outcome)}`);
+      console.err(`${count}: ${outcomeText(outcome)}`);
       return;
     }
     if (firstError(outcome) !== null) console.err(outcomeText(outcome));
-    console.status(done === total ? "" : `${count}, ${durationText(left)} left`);
+    console.status(done === total ? "" : count);
   };
 }
 

@@ -6,6 +6,8 @@ export interface Console {
   err(line: string): void;
   /** Shows how far a computation has come, on a terminal only; an empty text clears it. */
   status(line: string): void;
+  /** Whether news goes to a terminal, where one line can change. */
+  readonly onTerminal: boolean;
   /** Whether standard output may be coloured. */
   readonly coloured: boolean;
   /** Width of the terminal in characters, 100 when there is none. */
@@ -53,6 +55,7 @@ export function openConsole(options: { quiet?: boolean } = {}): Console {
       write(Deno.stderr, line);
       shown = true;
     },
+    onTerminal,
     coloured: Deno.stdout.isTerminal() && !Deno.noColor,
     width: terminalWidth(),
   };

@@ -54,6 +54,7 @@ export type {
   ManifestChange,
   ManifestSettings,
   ManifestVariant,
+  SamplePanel,
   SamplePlateSettings,
 } from "./schema/manifest_schema.ts";
 export * from "./redo_run.ts";

@@ -3,11 +3,13 @@ import type { TargetSettings } from "./schema/target_schema.ts";
 import type { Session } from "./session.ts";
 import { runCheck } from "./steps/run_check.ts";
 import { runMap } from "./steps/run_map.ts";
+import { runOrbit } from "./steps/run_orbit.ts";
 import { runPlate } from "./steps/run_plate.ts";
 import { runProfile } from "./steps/run_profile.ts";
 import { runSynth } from "./steps/run_synth.ts";
 import { runThumbnail } from "./batch/run_thumbnail.ts";
 import { runTrail } from "./steps/run_trail.ts";
+import { runWeigh } from "./steps/run_weigh.ts";
 import type { StepOutput, StepResult } from "./steps/step.ts";
 
 /** A step of a command, as `batch` and `redo` run it. */
@@ -28,6 +30,9 @@ function mapCost({ map }: TargetSettings): number {
   return one * (1 + REPLICA * map.resamples);
 }
 
+/** A trial of two hypotheses, in units of reading the exposures. */
+const TRIAL = 4;
+
 /**
  * The steps by command, in the order in which one target's are run. A new command joins `batch`,
  * `redo` and the manifest by its entry here.
@@ -36,8 +41,10 @@ export const stepTable = {
   check: { run: runCheck, cost: () => 1 },
   profile: { run: runProfile, cost: () => 1 },
   trail: { run: runTrail, cost: () => 1 },
+  orbit: { run: runOrbit, cost: () => 5 },
   map: { run: runMap, cost: mapCost },
   synth: { run: runSynth, cost: () => 1 },
+  weigh: { run: runWeigh, cost: ({ weigh }) => 20 + TRIAL * weigh.trials },
   plate: { run: runPlate, cost: () => 3 },
   thumbnail: { run: runThumbnail, cost: () => 0.5 },
 } as const satisfies Record<string, StepEntry>;

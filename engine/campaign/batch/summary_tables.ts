@@ -34,7 +34,8 @@ export async function summaryRows(run: GatheredRun, folder: string): Promise<Sum
 function isToldOf(documents: Readonly<Record<string, unknown>>, line: string): boolean {
   return Object.values(documents).some((document) =>
     Object.values(document as Record<string, unknown>).some((list) =>
-      Array.isArray(list) && list.some((entry) => (entry as { line?: string } | null)?.line === line)
+      Array.isArray(list) &&
+      list.some((entry) => (entry as { line?: string } | null)?.line === line)
     )
   );
 }

@@ -2,8 +2,16 @@ import { z } from "zod";
 import { commandNames, type StepName } from "../step_table.ts";
 import { count, text } from "./common.ts";
 
-/** Panels that a sample plate can show: what is in the targets' FITS files. */
-export const samplePanels = ["map", "asymmetric", "trail", "model", "residual"] as const;
+/** A panel that a sample plate can show: what is in the targets' FITS files. */
+export type SamplePanel = "map" | "asymmetric" | "trail" | "model" | "residual";
+
+const samplePanels: [SamplePanel, ...SamplePanel[]] = [
+  "map",
+  "asymmetric",
+  "trail",
+  "model",
+  "residual",
+];
 
 /** Overrides for some of a manifest's targets. */
 export interface ManifestChange {
@@ -36,7 +44,7 @@ export interface SamplePlateSettings {
   /** Name of the line; the first line of each target when absent. */
   readonly line?: string;
   /** Panels of each target, side by side. */
-  readonly panels: readonly (typeof samplePanels)[number][];
+  readonly panels: readonly SamplePanel[];
   /** Targets in a row. */
   readonly columns: number;
   /** Rows on a page; further targets go to further pages. */
