@@ -12,8 +12,8 @@ export interface RingKernelOptions {
   readonly weight: readonly number[];
 }
 
-/** Cells per σ of the sharpest profile, and circles that stand for a ring. */
-const CELLS_PER_SIGMA = 8, CIRCLES = 4;
+/** Nodes per σ of the sharpest profile, and circles that stand for a ring. */
+const NODES_PER_SIGMA = 4, CIRCLES = 4;
 
 /**
  * Profiles of rings about the origin of the map, seen from all sides: mean over each bin of speed |v|
@@ -38,49 +38,62 @@ const CELLS_PER_SIGMA = 8, CIRCLES = 4;
  * ```
  */
 export function ringKernels(options: RingKernelOptions): Float64Array {
-  const { rings_kms, edges_kms, sigma_kms, weight } = options;
+  const { rings_kms, edges_kms, sigma_kms } = options;
   const bins = edges_kms.length - 1, rings = rings_kms.length - 1;
-  const cell = sigma_kms.reduce((a, b) => Math.min(a, b), Infinity) / CELLS_PER_SIGMA;
-  const seen = blurredBins(options, cell);
-  const cells = seen.length / bins;
+  const step = sigma_kms.reduce((a, b) => Math.min(a, b), Infinity) / NODES_PER_SIGMA;
+  const nodes = Math.ceil(rings_kms[rings]! / step) + 1;
+  const seen = blurredBins(options, { step, nodes });
   const kernels = new Float64Array(rings * bins);
-  const inside = new Float64Array(cells + 1);
+  const flux = new Float64Array(nodes);
   for (let r = 0; r < rings; r++) {
-    inside.fill(0);
+    flux.fill(0);
     for (let c = 0; c < CIRCLES; c++) {
       const share = (c + 0.5) / CIRCLES;
       const radius = rings_kms[r]! + share * (rings_kms[r + 1]! - rings_kms[r]!);
-      for (let k = 0; k <= cells; k++) {
-        inside[k] = inside[k]! + 2 / Math.PI * Math.asin(Math.min(1, k * cell / radius)) / CIRCLES;
+      // Second differences of the density's second integral share it between nodes linearly.
+      for (let k = 0; k < nodes; k++) {
+        const v = k * step;
+        const here = secondIntegral(v, radius), after = secondIntegral(v + step, radius);
+        const bend = k === 0 ? after - here : after - 2 * here + secondIntegral(v - step, radius);
+        flux[k] = flux[k]! + bend / (step * CIRCLES);
       }
     }
     for (let b = 0; b < bins; b++) {
       let sum = 0;
-      for (let k = 0; k < cells; k++) sum += seen[b * cells + k]! * (inside[k + 1]! - inside[k]!);
+      for (let k = 0; k < nodes; k++) sum += seen[b * nodes + k]! * flux[k]!;
       kernels[r * bins + b] = sum;
     }
   }
   return kernels;
 }
 
-/** Mean density in bin b of flux that leaves cell k of |v|, half of it at either sign; bins × cells. */
-function blurredBins(options: RingKernelOptions, cell: number): Float64Array {
-  const { rings_kms, edges_kms, sigma_kms, weight } = options;
+/** Second integral of the density of |v| = R |sin θ|, 2/(π √(R² − v²)). */
+function secondIntegral(v: number, radius: number): number {
+  return v >= radius
+    ? v
+    : 2 / Math.PI * (v * Math.asin(v / radius) + Math.sqrt(radius * radius - v * v));
+}
+
+/** Mean density in bin b of unit flux at node k of |v|, half of it at either sign; bins × nodes. */
+function blurredBins(
+  options: RingKernelOptions,
+  { step, nodes }: { readonly step: number; readonly nodes: number },
+): Float64Array {
+  const { edges_kms, sigma_kms, weight } = options;
   const bins = edges_kms.length - 1;
-  const cells = Math.ceil(rings_kms[rings_kms.length - 1]! / cell);
-  const out = new Float64Array(bins * cells);
+  const out = new Float64Array(bins * nodes);
   for (let b = 0; b < bins; b++) {
     const low = edges_kms[b]!, high = edges_kms[b + 1]!;
-    for (let k = 0; k < cells; k++) {
-      const v = (k + 0.5) * cell;
+    for (let k = 0; k < nodes; k++) {
+      const v = k * step;
       const share = sigma_kms.reduce((sum, sigma, s) => {
-        // Flux is spread evenly within its cell: the cell's own variance adds.
-        const width = Math.sqrt(2 * sigma * sigma + cell * cell / 6);
+        // Sharing between nodes widens by a sixth of a step squared.
+        const width = Math.sqrt(2 * sigma * sigma - step * step / 3);
         const near = erf((high - v) / width) - erf((low - v) / width);
         const far = erf((high + v) / width) - erf((low + v) / width);
         return sum + weight[s]! * 0.25 * (near + far);
       }, 0);
-      out[b * cells + k] = share / (high - low);
+      out[b * nodes + k] = share / (high - low);
     }
   }
   return out;
