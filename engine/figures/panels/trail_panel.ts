@@ -79,7 +79,8 @@ export function trailPanel(grid: DisplayGrid, options: TrailPanelOptions): Group
     },
   };
   const place = plotPlace(frame, axes);
-  const items: Item[] = [paintGrid(foldedGrid(grid, { values, cycles }), { box: frame, scale })];
+  const image = paintGrid(foldedGrid(grid, { values, cycles }), { box: frame, scale });
+  const items: Item[] = [];
   for (const { velocity_kms, colour = ACCENT } of curves) {
     const steps = 120 * cycles;
     const d = linePath(Array.from({ length: steps + 1 }, (_, i) => {
@@ -94,7 +95,9 @@ export function trailPanel(grid: DisplayGrid, options: TrailPanelOptions): Group
     kind: "group",
     name,
     items: [
-      { kind: "group", clip: boxPath(frame), items },
+      image,
+      // Clipping costs the renderer a layer: only where something may leave the frame.
+      ...(items.length > 0 ? [{ kind: "group", clip: boxPath(frame), items } as const] : []),
       ...drawAxes(frame, axes),
       ...marks,
     ],
