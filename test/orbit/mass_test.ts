@@ -188,6 +188,33 @@ Deno.test("solveMasses() draws the same from the same seed and refuses nonsense 
   broken({ inclination: { range_deg: [80, 60] } }, "inclination_range_deg");
 });
 
+Deno.test("solveMasses() agrees with two published systems", () => {
+  // From memory, digits not checked in print, so to 3 per cent.
+  // Z Cha (Wade & Horne 1988; Wood et al. 1986): P 0.0745 d, K2 430 km/s, q 0.1495, i 81.78 deg;
+  // M1 0.84, M2 0.125.
+  const random = randomStream(1);
+  const z_cha = solveMasses({
+    period_d: { value: 0.0744993, error: 0 },
+    k_accretor_kms: { value: 0.1495 * 430, error: 0.5 },
+    k_donor_kms: { value: 430, error: 1 },
+    inclination: { deg: { value: 81.78, error: 0.1 } },
+  }, { random });
+  assertAlmostEquals(z_cha.accretor_msun!.median / 0.84, 1, 0.03);
+  assertAlmostEquals(z_cha.donor_msun!.median / 0.125, 1, 0.03);
+  // V404 Cyg (Casares & Charles 1994): P 6.4714 d, K2 208.4, v sin i 38.8 km/s: q near 0.06 (their
+  // 0.060 used Paczyński's radius, 8 per cent from the exact one), f 6.08, and 12 for i 56 deg.
+  const v404 = solveMasses({
+    period_d: { value: 6.4714, error: 0 },
+    k_accretor_kms: null,
+    k_donor_kms: { value: 208.4, error: 0.6 },
+    v_sin_i_kms: { value: 38.8, error: 1.1 },
+    inclination: { deg: { value: 56, error: 1 } },
+  }, { random });
+  assertAlmostEquals(v404.accretor_mass_function_msun!.median / 6.08, 1, 0.01);
+  assertAlmostEquals(v404.mass_ratio!.median, 0.06, 0.008);
+  assertAlmostEquals(v404.accretor_msun!.median / 12, 1, 0.05);
+});
+
 Deno.test("massPlanes() draws curves on which the mass function holds", () => {
   const input = {
     period_d: { value: 0.25, error: 0 },
