@@ -1,4 +1,4 @@
-import { measuredText } from "./measured_text.ts";
+import { measuredText } from "../measured_text.ts";
 
 /** What a referee asks of a velocity map, as far as it is known; absent means not done. */
 export interface RefereeFacts {

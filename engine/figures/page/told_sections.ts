@@ -1,6 +1,6 @@
 import { escapeMarkup } from "../svg_draw.ts";
 import { labelHtml } from "./label_html.ts";
-import { measuredText } from "./measured_text.ts";
+import { measuredText } from "../measured_text.ts";
 import type { ChecklistRow } from "./referee_checklist.ts";
 import type { ReportContent, ResultRow } from "./report_page.ts";
 

@@ -10,6 +10,7 @@ import type { MapCentre } from "../panels/map_profile.ts";
 import { mapWindow } from "../panels/map_window.ts";
 import { KMS_LABEL } from "../panels/trail_panel.ts";
 import type { Group, Item } from "../display_list.ts";
+import { measuredText } from "../measured_text.ts";
 import { mapHeading } from "./map_heading.ts";
 import {
   captionNumber,
@@ -134,11 +135,10 @@ function tellMarks(subject: PlateSubject): string {
         `K2 = ${captionNumber(binary.k_donor_kms)} km/s.`,
     );
   }
-  features.forEach(({ vx_kms, vy_kms, vx_error_kms: ex, vy_error_kms: ey }, i) => {
-    const error = (value?: number | null) => value ? ` ± ${captionNumber(value)}` : "";
+  features.forEach(({ vx_kms, vy_kms, vx_error_kms = null, vy_error_kms = null }, i) => {
     told.push(
-      `Feature ${i + 1}: Vx = ${captionNumber(vx_kms)}${error(ex)}, Vy = ${captionNumber(vy_kms)}` +
-        `${error(ey)} km/s.`,
+      `Feature ${i + 1}: Vx = ${measuredText(vx_kms, vx_error_kms)} km/s, ` +
+        `Vy = ${measuredText(vy_kms, vy_error_kms)} km/s.`,
     );
   });
   if (contour_parts.length > 0) {
