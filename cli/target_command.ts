@@ -20,14 +20,15 @@ export interface TargetContext extends CommandContext {
  */
 export async function openTarget(
   file: string,
-  options: { call: CommonOptions; context: CommandContext },
+  options: { call: CommonOptions; context: CommandContext; force?: boolean },
 ): Promise<TargetContext> {
-  const { call, context } = options;
+  const { call, context, force } = options;
   const target = await readTarget(file, { set: call.set, seed: call.seed });
   return {
     ...context,
     session: openSession(target, {
       workers: call.workers,
+      force,
       progress: context.progress,
       signal: context.signal,
     }),

@@ -1,15 +1,32 @@
 import { type MapDocument, runMap } from "../../engine/campaign/mod.ts";
-import { targetCommand } from "../target_command.ts";
+import { commandWith } from "../common_options.ts";
+import { runCommand } from "../run_command.ts";
+import { openTarget } from "../target_command.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 
-/** `millrace map`: the velocity map. */
-export const mapCommand = targetCommand("map", {
-  summary: "the velocity map",
-  run: async ({ session, output }) => {
-    const result = await runMap(session, output);
-    return { ...result, lines: mapLines(result.document) };
-  },
-});
+/**
+ * `millrace map`: the velocity map.
+ *
+ * @param finish Takes the exit status.
+ * @returns The command.
+ */
+export const mapCommand = (finish: (status: number) => void) =>
+  commandWith("map", "the velocity map")
+    .argument("<target>", "target file")
+    .option("--force", "make the map in spite of a large gap in phase")
+    .action(async (file, options) => {
+      finish(
+        await runCommand(options, async (context) => {
+          const { session, output } = await openTarget(file, {
+            call: options,
+            context,
+            force: options.force,
+          });
+          const result = await runMap(session, output);
+          return { ...result, lines: mapLines(result.document) };
+        }),
+      );
+    });
 
 /**
  * The maps as a table: one row a line, then its features.

@@ -2,21 +2,20 @@ import type { Binary, Ephemeris } from "../binary/mod.ts";
 import type { Warning } from "../errors.ts";
 import { median, randomStream } from "../numerics/mod.ts";
 import {
-  backProject,
-  fitOfMap,
-  makeProjector,
   type MapFeature,
   mapFeatures,
   type MapPeak,
   mapPeak,
-  noiseReplica,
   partFinder,
   type VelocityMap,
 } from "../tomography/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { gridModel } from "./grid_model.ts";
+import { invertTrail } from "./invert.ts";
 import { pause } from "./pause.ts";
+import { priorOf } from "./prior_of.ts";
+import type { Target } from "./target.ts";
 import type { MapSettings } from "./schema/map_section.ts";
 
 const FWHM_PER_SIGMA = Math.sqrt(8 * Math.LN2);
@@ -41,6 +40,8 @@ export interface MappedLine {
   readonly iterations: number;
   /** Whether the iteration met its goal. */
   readonly converged: boolean;
+  /** How far the gradients of entropy and misfit are from parallel; null for other inversions. */
+  readonly misalignment: number | null;
   /** Brightest place. */
   readonly peak: MapPeak;
   /** Compact excesses over the axisymmetric part. */
@@ -60,11 +61,11 @@ export interface MappedLine {
  *
  * @param trail The line's trail.
  * @param options How.
- * @param options.settings `[map]`.
+ * @param options.target The target: `[map]` and the seed.
  * @param options.systemic_kms Systemic velocity, km/s.
  * @param options.binary Where the parts of the binary are; null when not known.
  * @param options.ephemeris The ephemeris, for what its zero marks.
- * @param options.seed Seed of the replicas.
+ * @param options.force Whether to go on in spite of a large gap in phase. @default false
  * @param options.stream First stream of the replicas, so that lines do not share their chance. @default 0
  * @param options.progress Told of each replica.
  * @param options.signal Aborts the work.
@@ -73,71 +74,74 @@ export interface MappedLine {
 export async function mapLine(
   trail: Trail,
   options: {
-    settings: MapSettings;
+    target: Target;
     systemic_kms: number;
     binary: Binary | null;
     ephemeris: Ephemeris;
-    seed: number;
+    force?: boolean;
     stream?: number;
     progress?: Progress;
     signal?: AbortSignal;
   },
 ): Promise<MappedLine> {
-  const { settings, systemic_kms, binary, ephemeris, seed, stream = 0, progress, signal } = options;
-  const shape = {
-    pixels: settings.pixels ?? pixelsFor(trail, settings.half_width_kms),
-    half_width_kms: settings.half_width_kms,
+  const { target, systemic_kms, binary, ephemeris, stream = 0, progress, signal } = options;
+  const settings = target.settings.map;
+  const line = trail.line.name;
+  const pixels = settings.pixels ?? pixelsFor(trail, settings.half_width_kms);
+  const resolution_kms = FWHM_PER_SIGMA * median(trail.sampling.profile_sigma_kms);
+  const centre = { vx_kms: 0, vy_kms: binary === null ? 0 : -binary.k_accretor_kms };
+  const inverted = await invertTrail(trail, {
+    settings,
+    pixels,
     systemic_kms,
-  };
-  const map = backProject(trail, shape);
-  await pause(signal);
-  const projection = makeProjector(trail.sampling, shape).forward(map.intensity);
-  const fit = fitOfMap(trail, { model: projection, scale: "fitted" });
+    prior: await priorOf(target, { line, resolution_kms, centre_kms: centre.vy_kms, pixels }),
+    force: options.force ?? false,
+    progress,
+    signal,
+  });
+  const { map } = inverted;
   const replicas: VelocityMap[] = [];
   for (let k = 0; k < settings.resamples; k++) {
-    const samples = noiseReplica(trail.grid, randomStream(seed, stream + k));
-    replicas.push(backProject({ ...trail, grid: { ...trail.grid, ...samples } }, shape));
-    progress?.(k + 1, settings.resamples, `${trail.line.name}: replicas of the map`);
+    replicas.push(inverted.replica(randomStream(target.settings.seed, stream + k)));
+    progress?.(k + 1, settings.resamples, `${line}: replicas of the map`);
     await pause(signal);
   }
   const named = binary !== null && ephemeris.zero_marks !== "emission-crossing";
-  const warnings: Warning[] = [];
-  if (ephemeris.zero_marks === "emission-crossing") {
-    warnings.push({
-      code: "map-rotated",
-      line: trail.line.name,
-      text:
-        "the zero of phase is not the donor's conjunction: the map is rotated by an unknown angle and no structure is named",
-    });
-  }
-  if (settings.resamples < 2) {
-    warnings.push({
-      code: "features-without-errors",
-      line: trail.line.name,
-      text: "map.resamples is below 2: places and significance of features have no errors",
-    });
-  }
   const features = mapFeatures(map, {
-    resolution_kms: FWHM_PER_SIGMA * median(trail.sampling.profile_sigma_kms),
-    centre: { vx_kms: 0, vy_kms: binary === null ? 0 : -binary.k_accretor_kms },
+    resolution_kms,
+    centre,
     replicas,
     find_part: named ? partFinder(binary) : null,
   });
   return {
     trail,
     map,
-    method: "back-projection",
+    method: settings.method,
     systemic_kms,
-    scale: fit.scale,
-    reduced_chi_square: fit.reduced_chi_square,
-    sample_count: fit.sample_count,
-    iterations: 1,
-    converged: true,
+    scale: inverted.scale,
+    reduced_chi_square: inverted.reduced_chi_square,
+    sample_count: inverted.sample_count,
+    iterations: inverted.iterations,
+    converged: inverted.converged,
+    misalignment: inverted.misalignment,
     peak: mapPeak(map),
     features,
     spread: spreadOf(replicas),
-    ...gridModel(map, { trail, systemic_kms, scale: fit.scale }),
-    warnings,
+    ...gridModel(map, { trail, systemic_kms, scale: inverted.scale }),
+    warnings: [
+      ...inverted.warnings,
+      ...(ephemeris.zero_marks !== "emission-crossing" ? [] : [{
+        code: "map-rotated",
+        line,
+        text:
+          "the zero of phase is not the donor's conjunction: the map is rotated by an unknown angle and no structure is named",
+      }]),
+      ...(settings.resamples >= 2 ? [] : [{
+        code: "features-without-errors",
+        line,
+        text: "map.resamples is below 2: places and significance of features have no errors",
+      }]),
+    ],
   };
 }
 

@@ -167,6 +167,7 @@ async function refereeFacts(session: Session, mapped: MappedLine) {
   const { orbit, trail: settings } = target.settings;
   const { trail } = mapped;
   const ephemeris = await session.ephemeris();
+  const systemic = await session.systemic();
   const { spectra } = await session.exposures();
   const resolution_kms = FWHM_OVER_SIGMA * median(trail.sampling.profile_sigma_kms);
   const widest = Math.max(...trail.sampling.phase_width);
@@ -189,19 +190,13 @@ async function refereeFacts(session: Session, mapped: MappedLine) {
       source: "target file",
       phase_error: phaseError(ephemeris, spectra[0]!.mid),
     },
-    ...(typeof orbit.systemic_kms === "number"
-      ? {
-        systemic: {
-          kms: orbit.systemic_kms,
-          error_kms: orbit.systemic_error_kms ?? null,
-          source: "target file",
-        },
-      }
-      : {}),
+    ...(systemic.source === "not given" ? {} : {
+      systemic: { kms: systemic.kms, error_kms: systemic.error_kms, source: systemic.source },
+    }),
     rest: { air_angstrom: trail.line.air_angstrom, source: trail.line.source },
-    ...(strongest === undefined || orbit.systemic_error_kms === undefined
+    ...(strongest === undefined || systemic.error_kms === null
       ? {}
-      : { systemic_shift: systemicShift(mapped, orbit.systemic_error_kms, centre) }),
+      : { systemic_shift: systemicShift(mapped, systemic.error_kms, centre) }),
     normalisation: settings.continuum === "divide"
       ? "divided by each exposure's continuum"
       : "scaled to one continuum",

@@ -1,17 +1,17 @@
 import type { Binary, Ephemeris } from "../binary/mod.ts";
-import { InputError, type Warning } from "../errors.ts";
 import type { OrbitMeasurement } from "../orbit/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
 import { ephemerisOf } from "./ephemeris_of.ts";
-import { linesOf } from "./line_of.ts";
+import { linesOf, mappedLines } from "./line_of.ts";
 import { mapLine, type MappedLine } from "./map_line.ts";
 import { pause } from "./pause.ts";
 import { readTargetExposures, type TargetExposures } from "./read_target_exposures.ts";
 import type { LineSettings } from "./schema/lines_section.ts";
 import type { Target } from "./target.ts";
 import { measureTargetOrbit } from "./steps/run_orbit.ts";
+import { systemicOf, type SystemicVelocity } from "./systemic_of.ts";
 import { trailOf } from "./trail_of.ts";
 
 /**
@@ -35,7 +35,7 @@ export interface Session {
   /** The lines, at least one. */
   readonly lines: (action: string) => readonly LineSettings[];
   /** Systemic velocity, km/s, with the warning where it had to be assumed. */
-  readonly systemic: () => { readonly kms: number; readonly warnings: readonly Warning[] };
+  readonly systemic: () => Promise<SystemicVelocity>;
   /** Number of workers to use. */
   readonly workers: number;
   /** Told how far the work has come. */
@@ -50,15 +50,16 @@ export interface Session {
  * @param target The target.
  * @param options How to work.
  * @param options.workers Number of workers. @default 1
+ * @param options.force Whether maps are made in spite of a large gap in phase. @default false
  * @param options.progress Told how far the work has come.
  * @param options.signal Aborts the work.
  * @returns The session.
  */
 export function openSession(
   target: Target,
-  options: { workers?: number; progress?: Progress; signal?: AbortSignal } = {},
+  options: { workers?: number; force?: boolean; progress?: Progress; signal?: AbortSignal } = {},
 ): Session {
-  const { workers = 1, progress, signal } = options;
+  const { workers = 1, force = false, progress, signal } = options;
   const exposures = once(() => readTargetExposures(target, { progress, signal }));
   const ephemeris = once(() => {
     const { sky } = target.settings;
@@ -68,21 +69,23 @@ export function openSession(
     return Promise.resolve(ephemerisOf(target, { direction }));
   });
   const binary = () => binaryOf(target);
-  const systemic = () => systemicOf(target);
   const trail = perLine(async (line) => {
     const [{ spectra }, folded] = [await exposures(), await ephemeris()];
     await pause(signal);
     return trailOf(spectra, { target, line, ephemeris: folded });
   });
+  const systemic = once(() =>
+    systemicOf(target, async () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))
+  );
   const map = perLine(async (line) => {
     const made = await trail(line);
     await pause(signal);
     return mapLine(made, {
-      settings: target.settings.map,
-      systemic_kms: systemic().kms,
+      target,
+      systemic_kms: (await systemic()).kms,
       binary: binary(),
       ephemeris: await ephemeris(),
-      seed: target.settings.seed,
+      force,
       stream: 1000 * target.settings.lines.indexOf(line),
       progress,
       signal,
@@ -103,27 +106,6 @@ export function openSession(
     signal,
   };
   return session;
-}
-
-function systemicOf(target: Target): { kms: number; warnings: Warning[] } {
-  const { systemic_kms } = target.settings.orbit;
-  if (systemic_kms === "search") {
-    throw new InputError({
-      action: "take out the systemic velocity",
-      rule: 'orbit.systemic_kms must be a number: "search" is not offered yet',
-      value: systemic_kms,
-      file: target.file,
-      line: target.places.get("orbit.systemic_kms")?.line,
-    });
-  }
-  if (systemic_kms !== undefined) return { kms: systemic_kms, warnings: [] };
-  return {
-    kms: 0,
-    warnings: [{
-      code: "systemic-velocity-missing",
-      text: "orbit.systemic_kms is not given: 0 km/s is taken, and a wrong one blurs the map",
-    }],
-  };
 }
 
 function once<T>(make: () => Promise<T>): () => Promise<T> {

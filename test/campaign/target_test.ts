@@ -56,7 +56,7 @@ const WRONG: readonly (readonly [name: string, text: string, message: string])[]
   [
     "an unknown word",
     GOOD + '\n[map]\nmethod = "entrpy"\n',
-    'Cannot read target file as method must be one of "back-projection", "entropy", "total-variation": current value is "entrpy" (star.toml:15:1, key map.method); the nearest is "entropy"',
+    'Cannot read target file as method must be one of "back-projection", "entropy": current value is "entrpy" (star.toml:15:1, key map.method); the nearest is "entropy"',
   ],
   [
     "an even number of pixels",

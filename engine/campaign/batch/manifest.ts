@@ -115,7 +115,9 @@ export function parseManifest(
   const { value, places } = parseTomlDocument(text, { file, action });
   const checked = manifestSchema.safeParse(value, { reportInput: false });
   if (checked.success) return { settings: checked.data, places };
-  throw ruleError(checked.error.issues[0]!, {
+  // A key that is not known tells more than the one that is missing because of it.
+  const { issues } = checked.error;
+  throw ruleError(issues.find(({ code }) => code === "unrecognized_keys") ?? issues[0]!, {
     value,
     schema: manifestSchema,
     action,

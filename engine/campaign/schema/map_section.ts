@@ -4,7 +4,7 @@ import { nonNegative, positive, text } from "./common.ts";
 /** `[map]`: the velocity map and how it is made. */
 export interface MapSettings {
   /** Inversion. */
-  readonly method: "back-projection" | "entropy" | "total-variation";
+  readonly method: "back-projection" | "entropy";
   /** Velocity of the outermost pixel's centre, km/s. */
   readonly half_width_kms: number;
   /** Pixels along each side, odd; chosen from the resolution when absent. */
@@ -19,7 +19,7 @@ export interface MapSettings {
 
 /** Schema of MapSettings. */
 export const mapSection: z.ZodType<MapSettings> = z.strictObject({
-  method: z.enum(["back-projection", "entropy", "total-variation"]).default("back-projection"),
+  method: z.enum(["back-projection", "entropy"]).default("back-projection"),
   half_width_kms: positive.default(2000),
   pixels: positive.int().refine((n) => n % 2 === 1, {
     error: "must be odd, so that one pixel is at (0, 0)",

@@ -94,20 +94,21 @@ export async function runCheck(
   const { target } = session;
   const { spectra, decisions, inputs, warnings: reading } = await session.exposures();
   const ephemeris = await session.ephemeris();
-  const warnings: Warning[] = [...reading, ...session.systemic().warnings];
+  const warnings: Warning[] = [...reading, ...(await session.systemic()).warnings];
   const lines: LineCheck[] = [];
   for (const line of session.lines("check the exposures")) {
     const trail = await session.trail(line);
     const description = describeTrail(trail, {
       ephemeris,
       epoch: spectra[0]!.mid,
-      systemic_kms: session.systemic().kms,
+      systemic_kms: (await session.systemic()).kms,
     });
     const contents = contentsOf(trail, {
       session,
       line,
       half_width_kms: description.velocity_kms,
       observer_factor: spectra[0]!.observer_factor ?? 1,
+      systemic_kms: (await session.systemic()).kms,
     });
     warnings.push(...trail.warnings, ...description.warnings, ...contentWarnings(trail, contents));
     const {
@@ -143,9 +144,10 @@ function contentsOf(
     line: LineSettings;
     half_width_kms: number;
     observer_factor: number;
+    systemic_kms: number;
   },
 ): WindowContent[] {
-  const { session, line, half_width_kms, observer_factor } = options;
+  const { session, line, half_width_kms, observer_factor, systemic_kms } = options;
   const { reach_kms } = line;
   const { trail: settings } = session.target.settings;
   const masked = observedMasks(settings);
@@ -160,7 +162,7 @@ function contentsOf(
       )
     ),
     observer_factor,
-    systemic_kms: session.systemic().kms,
+    systemic_kms,
   });
 }
 

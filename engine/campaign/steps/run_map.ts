@@ -37,6 +37,8 @@ export interface MapSummary {
   readonly iterations: number;
   /** Whether the iteration met its goal. */
   readonly converged: boolean;
+  /** How far the gradients of entropy and misfit are from parallel; null for other inversions. */
+  readonly misalignment: number | null;
   /** Factor applied to the stated errors. */
   readonly noise_scale: number;
   /** Brightest place. */
@@ -63,7 +65,7 @@ export async function runMap(
   const { inputs, warnings: reading } = await session.exposures();
   const warnings = uniqueWarnings([
     ...reading,
-    ...session.systemic().warnings,
+    ...(await session.systemic()).warnings,
     ...maps.flatMap((mapped) => [...mapped.trail.warnings, ...mapped.warnings]),
   ]);
   const document: MapDocument = {
@@ -91,6 +93,7 @@ function summary(mapped: MappedLine): MapSummary {
     scale: mapped.scale,
     iterations: mapped.iterations,
     converged: mapped.converged,
+    misalignment: mapped.misalignment,
     noise_scale: trail.noise_scale,
     peak: mapped.peak,
     features: mapped.features,

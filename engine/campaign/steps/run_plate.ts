@@ -76,7 +76,7 @@ export async function runPlate(
   const mapped = await Promise.all(lines.map(session.map));
   const warnings = uniqueWarnings([
     ...reading,
-    ...session.systemic().warnings,
+    ...(await session.systemic()).warnings,
     ...mapped.flatMap((one) => [...one.trail.warnings, ...one.warnings]),
   ]);
   const files = await writeStep(made, output);

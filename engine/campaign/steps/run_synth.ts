@@ -95,7 +95,7 @@ export async function synthesizeLine(
     : plannedTrail(target, { line, ephemeris: await session.ephemeris() });
   await pause(session.signal);
   const model = await modelOf(target, { settings: line, line: trail.line });
-  const systemic_kms = session.systemic().kms;
+  const systemic_kms = (await session.systemic()).kms;
   const parts = synthesizeParts(model, { binary, sampling: trail.sampling, systemic_kms });
   const flux = new Float64Array(trail.flux.length);
   for (const part of parts.values()) part.forEach((value, k) => flux[k]! += value);
@@ -173,7 +173,7 @@ export async function runSynth(
   });
   const warnings = uniqueWarnings([
     ...read.warnings,
-    ...session.systemic().warnings,
+    ...(await session.systemic()).warnings,
     ...made.flatMap((line) => line.warnings),
   ]);
   const document: ModelDocument = {
@@ -198,6 +198,7 @@ async function modelPlate(
 ): Promise<[name: string, data: Uint8Array | string][]> {
   const { drawPlate, pdfBytes, pngBytes, svgText } = await import("../../figures/mod.ts");
   const { plate } = session.target.settings;
+  const systemic_kms = (await session.systemic()).kms;
   const { picture, caption } = drawPlate(
     {
       width: plate.width,
@@ -209,7 +210,7 @@ async function modelPlate(
     made.map(({ trail, grid, map, summary }) => ({
       title: plate.title ?? session.target.title,
       line: trail.line,
-      systemic_kms: session.systemic().kms,
+      systemic_kms,
       method: "model",
       reduced_chi_square: summary.reduced_chi_square,
       binary: session.binary(),

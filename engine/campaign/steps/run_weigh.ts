@@ -41,7 +41,7 @@ export async function weighLine(session: Session, line: LineSettings): Promise<W
       key: "binary (any numbers that fix K1 and K2)",
       action: "weigh hypotheses",
     }),
-    systemic_kms: session.systemic().kms,
+    systemic_kms: (await session.systemic()).kms,
     model: known,
     errors: await geometryErrors(session),
     sets: weigh.sets,
@@ -88,7 +88,7 @@ export async function runWeigh(
   const { inputs, warnings: reading } = await session.exposures();
   const warnings = uniqueWarnings([
     ...reading,
-    ...session.systemic().warnings,
+    ...(await session.systemic()).warnings,
     ...weighed.flatMap((line) => line.warnings),
   ]);
   const document: WeighDocument = {
