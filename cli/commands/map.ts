@@ -41,6 +41,7 @@ export function mapLines(document: MapDocument): string[] {
       plainNumber(map.reduced_chi_square, 3)
     }, ` +
     `peak at (${plainNumber(map.peak.vx_kms, 0)}, ${plainNumber(map.peak.vy_kms, 0)}) km/s`,
+    anyMapLine(map),
     ...(map.features.length === 0
       ? ["    no compact excess over the axisymmetric part"]
       : tableLines([
@@ -61,4 +62,18 @@ export function mapLines(document: MapDocument): string[] {
         align: ["right", "right", "right", "right", "right", "left"],
       })),
   ]);
+}
+
+function anyMapLine({ any_map }: MapDocument["maps"][number]): string {
+  const p = (name: string, value: number | null) =>
+    `${name} ${value === null ? "not tested" : `p = ${value.toPrecision(2)}`}`;
+  const { systemic_kms, systemic_error_kms } = any_map;
+  const parity = systemic_kms === null
+    ? ""
+    : `; γ by parity ${withError(systemic_kms, systemic_error_kms)} km/s`;
+  return `    can any map fit? ${p("moments", any_map.moments_p)}, ${
+    p("mirror", any_map.mirror_p)
+  }, ${p("core", any_map.core_p)}; best positive map χ²/N = ${
+    plainNumber(any_map.best_reduced_chi_square, 3)
+  }${parity}`;
 }

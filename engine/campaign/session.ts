@@ -1,5 +1,6 @@
 import type { Binary, Ephemeris } from "../binary/mod.ts";
 import type { OrbitMeasurement } from "../orbit/mod.ts";
+import { type AnyMap, canAnyMapFit } from "../tomography/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
@@ -13,6 +14,9 @@ import type { Target } from "./target.ts";
 import { measureTargetOrbit } from "./steps/run_orbit.ts";
 import { systemicOf, type SystemicVelocity } from "./systemic_of.ts";
 import { trailOf } from "./trail_of.ts";
+
+/** Simulations of the test of a line's core: its probability is then good to a fortieth. */
+const SIMULATIONS = 40;
 
 /**
  * One target at work: what several commands need is made once, when it is first asked for.
@@ -30,6 +34,8 @@ export interface Session {
   readonly trail: (line: LineSettings) => Promise<Trail>;
   /** The map of a line. */
   readonly map: (line: LineSettings) => Promise<MappedLine>;
+  /** Whether any map can have made a line's trail. */
+  readonly anyMap: (line: LineSettings) => Promise<AnyMap>;
   /** The orbit as measured. */
   readonly orbit: () => Promise<OrbitMeasurement>;
   /** The lines, at least one. */
@@ -91,6 +97,23 @@ export function openSession(
       signal,
     });
   });
+  const anyMap = perLine(async (line) => {
+    const made = await trail(line);
+    const { kms } = await systemic();
+    await pause(signal);
+    const { half_width_kms } = target.settings.map;
+    const found = canAnyMapFit(made, {
+      pixels: 3,
+      half_width_kms,
+      systemic_kms: kms,
+      seed: target.settings.seed,
+      simulations: SIMULATIONS,
+      continuum_error: made.continuum_error,
+      force,
+    });
+    const warnings = found.warnings.map((warning) => ({ ...warning, line: line.name }));
+    return { ...found, warnings };
+  });
   const session: Session = {
     target,
     exposures,
@@ -98,6 +121,7 @@ export function openSession(
     binary,
     trail,
     map,
+    anyMap,
     orbit: once(() => measureTargetOrbit(session)),
     lines: (action) => linesOf(target, { action }),
     systemic,

@@ -1,5 +1,5 @@
 import { uniqueWarnings } from "../output_head.ts";
-import type { MapFeature, MapPeak } from "../../tomography/mod.ts";
+import type { AnyMap, MapFeature, MapPeak } from "../../tomography/mod.ts";
 import { jsonText, type OutputHead, outputHead } from "../output_head.ts";
 import { mappedLines } from "../line_of.ts";
 import { mapFits } from "../map_fits.ts";
@@ -45,6 +45,21 @@ export interface MapSummary {
   readonly peak: MapPeak;
   /** Compact excesses over the part that is axisymmetric about the accretor. */
   readonly features: readonly MapFeature[];
+  /** Whether any map can fit: probabilities of the tests, null where the data do not allow one. */
+  readonly any_map: {
+    /** Moments of the profiles against trigonometric polynomials. */
+    readonly moments_p: number | null;
+    /** Profiles half an orbit apart. */
+    readonly mirror_p: number | null;
+    /** The middle of the line against positive maps. */
+    readonly core_p: number | null;
+    /** Reduced chi-square of the best positive map. */
+    readonly best_reduced_chi_square: number;
+    /** γ by the parity of the moments, km/s. */
+    readonly systemic_kms: number | null;
+    /** Its standard deviation, km/s. */
+    readonly systemic_error_kms: number | null;
+  };
 }
 
 /**
@@ -59,18 +74,21 @@ export async function runMap(
   output: StepOutput,
 ): Promise<StepResult<MapDocument>> {
   const maps: MappedLine[] = [];
+  const tests: AnyMap[] = [];
   for (const line of mappedLines(session.lines("make the velocity map"))) {
+    tests.push(await session.anyMap(line));
     maps.push(await session.map(line));
   }
   const { inputs, warnings: reading } = await session.exposures();
   const warnings = uniqueWarnings([
     ...reading,
     ...(await session.systemic()).warnings,
+    ...tests.flatMap((test) => test.warnings),
     ...maps.flatMap((mapped) => [...mapped.trail.warnings, ...mapped.warnings]),
   ]);
   const document: MapDocument = {
     ...outputHead(session.target, { schema: "map/1", inputs, warnings }),
-    maps: maps.map(summary),
+    maps: maps.map((mapped, i) => summary(mapped, tests[i]!)),
   };
   const files = await writeStep([
     ["map.fits", mapFits(session.target, { maps })],
@@ -79,7 +97,7 @@ export async function runMap(
   return { document, files, warnings };
 }
 
-function summary(mapped: MappedLine): MapSummary {
+function summary(mapped: MappedLine, any: AnyMap): MapSummary {
   const { trail, map } = mapped;
   return {
     line: trail.line.name,
@@ -97,5 +115,13 @@ function summary(mapped: MappedLine): MapSummary {
     noise_scale: trail.noise_scale,
     peak: mapped.peak,
     features: mapped.features,
+    any_map: {
+      moments_p: any.moments?.p_value ?? null,
+      mirror_p: any.mirror?.p_value ?? null,
+      core_p: any.core?.p_value ?? null,
+      best_reduced_chi_square: any.best_reduced_chi_square,
+      systemic_kms: any.systemic?.systemic_kms ?? null,
+      systemic_error_kms: any.systemic?.error_kms ?? null,
+    },
   };
 }
