@@ -1,5 +1,6 @@
 import { runningMedian } from "../spectra/mod.ts";
 import { runningMaximum } from "./running_maximum.ts";
+import { sharpness } from "./sharpness.ts";
 
 /** One exposure as the search for cosmic rays sees it. */
 export interface TrailRow {
@@ -81,6 +82,35 @@ function typicalError(row: TrailRow): Float64Array {
   return near.map((e, i) => Number.isNaN(e) ? row.error[i]! : Math.min(e, row.error[i]!));
 }
 
+// A hit fills a pixel, or two; three where the spectrum was resampled.
+const RUNS = [1, 2, 3] as const;
+
+// Pixels in runs that are sharper than the instrument draws, and sharper than anything in the neighbours:
+// if the resolution is better than stated, they show it too.
+function tooSharp(
+  row: TrailRow,
+  near: readonly TrailRow[],
+  options: { readonly level: Float64Array; readonly speed: number; readonly threshold: number },
+): number[] {
+  const { level, speed, threshold } = options;
+  return RUNS.flatMap((pixels) => {
+    const own = sharpness(row, { pixels, error: level });
+    if (!own.excess.some((e, i) => e > threshold * own.sigma[i]!)) return [];
+    const theirs = near.map((other): TrailRow => ({
+      ...other,
+      flux: sharpness(other, { pixels, error: other.error }).excess,
+    }));
+    const top = envelope(row, theirs, speed);
+    return [...own.excess.keys()].flatMap((i) => {
+      const excess = own.excess[i]! - GROWTH * Math.max(0, top[i]!);
+      if (!(excess > threshold * own.sigma[i]!)) return [];
+      const beside = Math.max(row.flux[i - 1]!, row.flux[i + pixels]!);
+      return Array.from({ length: pixels }, (_, k) => i + k)
+        .filter((k) => row.flux[k]! - beside > threshold / 2 * level[k]!);
+    });
+  });
+}
+
 // The highest flux that a neighbour shows within reach of motion. With three neighbours or more the
 // second highest of them: one may be hit itself, while a real feature is in two.
 function envelope(row: TrailRow, neighbours: readonly TrailRow[], speed: number): Float64Array {
@@ -103,8 +133,11 @@ function envelope(row: TrailRow, neighbours: readonly TrailRow[], speed: number)
  * row. A pixel is hit when it stands out of its row over an unresolved feature's width *and* above
  * what two of the four exposures nearest in time (or, for want of those, in phase) show within the velocities that a real feature
  * could have crossed meanwhile (2π × speed × difference of phase). A narrow S-wave is in the
- * neighbours, only shifted, so it stays; it may also brighten by half from one exposure to the next. Pixels beside a hit go with it at half the threshold. Repeated until nothing is found,
- * so that hits in neighbours do not hide each other.
+ * neighbours, only shifted, so it stays; it may also brighten by half from one exposure to the next.
+ * On the flanks of the line, where that allows much, a run of one to three pixels is hit as well when
+ * it is sharper than the instrument draws anything ({@linkcode sharpness}) and sharper than all that
+ * the neighbours show. Pixels beside a hit go with it at half the threshold. Repeated until nothing
+ * is found, so that hits in neighbours do not hide each other.
  *
  * @param rows Normalised exposures, at least three for anything to be found.
  * @param options Speed, threshold, reach in phase.
@@ -146,7 +179,8 @@ export function findCosmicRays(
     const found = clean.map((row, index) => {
       if (neighbours[index]!.length < 2 || unlike.has(index)) return [];
       if (!changed.has(index) && !neighbours[index]!.some((k) => changed.has(k))) return [];
-      const top = envelope(row, neighbours[index]!.map((k) => clean[k]!), largest_speed_kms);
+      const near = neighbours[index]!.map((k) => clean[k]!);
+      const top = envelope(row, near, largest_speed_kms);
       const base = besideLevel(row);
       const sigma = level[index]!;
       const excess = row.flux.map((f, i) => {
@@ -156,6 +190,8 @@ export function findCosmicRays(
       });
       const core = Array.from(excess.keys()).filter((i) => excess[i]! > threshold);
       const all = new Set(core);
+      const sharp = { level: sigma, speed: largest_speed_kms, threshold };
+      for (const i of tooSharp(row, near, sharp)) all.add(i);
       for (const i of core) {
         for (const k of [i - 1, i + 1]) if (excess[k]! > threshold / 2) all.add(k);
       }

@@ -36,6 +36,7 @@ export * from "./require_trail_options.ts";
 export * from "./running_maximum.ts";
 export * from "./sampling.ts";
 export * from "./select_exposures.ts";
+export * from "./sharpness.ts";
 export * from "./side_tables.ts";
 export * from "./sky_line_zero.ts";
 export * from "./telluric_zero.ts";
