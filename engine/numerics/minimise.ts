@@ -137,7 +137,7 @@ export function minimise(
       if (ratio <= 0.25) {
         const slope = step.reduce((sum, p, j) => sum + p * gradient[j]!, 0) / chiSquare;
         const fraction = actual >= 0 ? 0.5 : 0.5 * slope / (slope + 0.5 * actual);
-        radius = (fraction > 0.1 ? fraction : 0.1) * Math.min(radius, 10 * length);
+        radius = (fraction > 0.1 ? Math.min(0.5, fraction) : 0.1) * Math.min(radius, 10 * length);
       } else if (!cut || ratio >= 0.75) {
         radius = 2 * length;
       }

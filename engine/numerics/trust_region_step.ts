@@ -55,9 +55,10 @@ function freeStep(matrix: Matrix, target: Float64Array, radius: number) {
 }
 
 /**
- * Step that minimises the model within ‖scale·p‖ ≤ radius and the bounds. Parameters that the step
- * would carry over a bound are set on it and the others solved again; those on a bound that the
- * gradient presses against it stay there.
+ * Step that minimises the model within ‖scale·p‖ ≤ radius and the bounds. The parameter that the step
+ * would carry over its bound first is set on it and the others solved again, and so on: one at a
+ * time, so that each solution still lowers the model. Those on a bound that the gradient presses
+ * against it stay there.
  */
 export function trustRegionStep(
   model: ReducedModel,
@@ -82,15 +83,14 @@ export function trustRegionStep(
     const solved = freeStep(columns, target, radius);
     cut = solved.cut;
     free.forEach((j, i) => step[j] = solved.step[i]! / scale[j]!);
-    const over = free.filter((j) =>
-      at[j]! + step[j]! < bounds.lower[j]! || at[j]! + step[j]! > bounds.upper[j]!
-    );
+    const boundOf = (j: number) => (step[j]! < 0 ? bounds.lower[j]! : bounds.upper[j]!) - at[j]!;
+    const over = free.filter((j) => Math.abs(step[j]!) > Math.abs(boundOf(j)));
     if (over.length === 0) break;
-    for (const j of over) {
-      step[j] = (step[j]! < 0 ? bounds.lower[j]! : bounds.upper[j]!) - at[j]!;
-      for (let i = 0; i < k; i++) target[i]! += model.triangle.get(i, j) * step[j]!;
-    }
-    free = free.filter((j) => !over.includes(j));
+    const share = (j: number) => boundOf(j) / step[j]!;
+    const first = over.reduce((a, b) => share(b) < share(a) ? b : a);
+    step[first] = boundOf(first);
+    for (let i = 0; i < k; i++) target[i]! += model.triangle.get(i, first) * step[first]!;
+    free = free.filter((j) => j !== first);
   }
   return { step, cut };
 }

@@ -258,3 +258,19 @@ Deno.test("minimise() names the rule when the start is wrong", () => {
   assertThrows(() => minimise(() => of(NaN), of(1)), InputError, "finite residuals at their start");
   assertThrows(() => minimise(f, of()), InputError, "there must be parameters");
 });
+
+Deno.test("minimise() ends when a step would cross several bounds and setting all of them would climb", () => {
+  // The free minimum is at (50, −50), far along a valley that both bounds cut off.
+  let calls = 0;
+  const fit = minimise(
+    ([x, y]) => {
+      assert(++calls < 1000);
+      return Float64Array.of(x! + y!, 0.01 * y! + 0.5);
+    },
+    Float64Array.of(1, 0.5),
+    { lower: [0, -0.1], upper: [10, 1] },
+  );
+  assert(fit.converged);
+  assertAlmostEquals(fit.parameters[1]!, -0.1, 1e-12);
+  assertAlmostEquals(fit.parameters[0]!, 0.1, 1e-6);
+});
