@@ -1,6 +1,3 @@
-import { Matrix } from "ml-matrix";
-import { nonNegativeLeastSquares } from "../numerics/mod.ts";
-
 /** Columns of a linear problem and what is to be explained, by their products alone. */
 export interface Products {
   /** Number of columns, m. */
@@ -90,10 +87,14 @@ export function solveUpper(lower: Float64Array, right: ArrayLike<number>): Float
   return x;
 }
 
+/** Slope below which a dark part is dark for a reason, relative to its own. */
+const FLAT = 1e-9;
+
 /**
  * Amplitudes that fit best when some may have either sign and the others must not be negative. The
  * first kind is eliminated (variable projection: Golub & Pereyra 1973, SIAM J. Numer. Anal. 10,
- * 413), the second solved by active sets.
+ * 413). Of the others there are as many as a hypothesis has parts, so every choice of dark ones is
+ * tried until one meets the conditions of the minimum (Karush, Kuhn & Tucker): no iteration can cycle.
  *
  * @param products Columns of either sign first.
  * @param signed Number of columns of either sign.
@@ -101,28 +102,32 @@ export function solveUpper(lower: Float64Array, right: ArrayLike<number>): Float
  */
 export function solveBrightnesses(products: Products, signed: number): Float64Array {
   const { size, gram, target } = products;
-  const lower = cholesky(gram, size);
-  const reduced = solveLower(lower, target);
   const positive = size - signed;
-  const amplitudes = new Float64Array(size);
-  // The lower right block of Lᵀ is the design of the positive ones once the signed are eliminated.
-  let plain = solveUpper(lower, reduced);
-  if (plain.subarray(signed).some((value) => value < 0)) {
-    const design = Matrix.zeros(positive, positive);
-    for (let i = 0; i < positive; i++) {
-      for (let j = i; j < positive; j++) design.set(i, j, lower[(signed + j) * size + signed + i]!);
+  let best = new Float64Array(size);
+  let least = Infinity;
+  for (let dark = 0; dark < 1 << positive; dark++) {
+    const lit = Array.from({ length: size }, (_, j) => j)
+      .filter((j) => j < signed || (dark & 1 << (j - signed)) === 0);
+    const inner = Float64Array.from(
+      { length: lit.length * lit.length },
+      (_, k) => gram[lit[Math.floor(k / lit.length)]! * size + lit[k % lit.length]!]!,
+    );
+    const lower = cholesky(inner, lit.length);
+    const found = solveUpper(lower, solveLower(lower, lit.map((j) => target[j]!)));
+    if (lit.some((j, i) => j >= signed && found[i]! < 0)) continue;
+    const all = new Float64Array(size);
+    lit.forEach((j, i) => all[j] = found[i]!);
+    // Half the square of the residual, less that of the data; and how it falls as dark parts light up.
+    let value = 0, optimal = true;
+    for (let i = 0; i < size; i++) {
+      let product = 0;
+      for (let j = 0; j < size; j++) product += gram[i * size + j]! * all[j]!;
+      value += all[i]! * (0.5 * product - target[i]!);
+      const slope = target[i]! - product;
+      if (all[i] === 0 && i >= signed && slope > FLAT * Math.abs(target[i]!)) optimal = false;
     }
-    const found = nonNegativeLeastSquares(design, reduced.subarray(signed));
-    amplitudes.set(found, signed);
-    const rest = reduced.slice();
-    for (let i = 0; i < signed; i++) {
-      for (let j = 0; j < positive; j++) rest[i]! -= lower[(signed + j) * size + i]! * found[j]!;
-    }
-    rest.fill(0, signed);
-    plain = solveUpper(lower, rest);
-    amplitudes.set(plain.subarray(0, signed));
-    return amplitudes;
+    if (optimal) return all;
+    if (value < least) [least, best] = [value, all];
   }
-  amplitudes.set(plain);
-  return amplitudes;
+  return best;
 }

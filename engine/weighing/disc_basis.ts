@@ -1,6 +1,6 @@
 import { type Binary, keplerianSpeed } from "../binary/mod.ts";
 import { type CompleteModel, type Model, synthesizeParts } from "../synthesis/mod.ts";
-import { shiftVelocities, systemFrame } from "../tomography/mod.ts";
+import { panelled, shiftVelocities, systemFrame } from "../tomography/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
 import { blurHarmonic, discHarmonics } from "./disc_harmonics.ts";
 
@@ -16,8 +16,8 @@ export interface TemplateContext {
   readonly asymmetry: 0 | 1 | 2;
 }
 
-/** Grid points to a standard deviation: cubic interpolation is then good to 3e-4 of a Gaussian's peak. */
-const BINS_PER_SIGMA = 4;
+/** Grid points to a standard deviation: cubic interpolation is then good to 5e-5 of a Gaussian's peak, and a disc to 1e-3 of its own. */
+const BINS_PER_SIGMA = 6;
 /** Widths of instrumental profiles that differ by less than this are taken as one. */
 const SAME_SIGMA = 2e-3;
 
@@ -82,11 +82,9 @@ export function thinDiscBasis(
     inner_over_outer: disc.inner_radius_over_a / disc.outer_radius_over_a,
     emissivity_index: disc.emissivity_index,
   };
-  // The accretor's motion within an exposure blurs by a box, here by its variance.
-  const sigmas = sampling.profile_sigma_kms.map((sigma, i) => {
-    const smear = 2 * Math.PI * k1 * phase_width[i]! * Math.cos(2 * Math.PI * phase[i]!);
-    return Math.hypot(sigma * frame.factor, disc.turbulence_kms, smear / Math.sqrt(12));
-  });
+  const sigmas = sampling.profile_sigma_kms.map((sigma) =>
+    Math.hypot(sigma * frame.factor, disc.turbulence_kms)
+  );
   let fastest = 0;
   for (let n = 0; n < velocity.length; n++) fastest = Math.max(fastest, Math.abs(velocity[n]!));
   const finest = sigmas.reduce((a, b) => Math.min(a, b));
@@ -119,36 +117,44 @@ export function thinDiscBasis(
 
   const trails = Array.from({ length: 1 + 2 * asymmetry }, () => new Float64Array(velocity.length));
   for (let i = 0; i < count; i++) {
-    const angle = 2 * Math.PI * phase[i]!;
-    const from = start[i]!, to = start[i + 1]!;
+    const { offset, weight } = instants(phase_width[i]!);
     const table = tablesOf(sigmas[i]!);
-    const half = 2 * Math.PI * phase_width[i]! / 2;
-    const exposure = { velocity, from, to, centre: -k1 * Math.sin(angle), step_kms };
-    lookUp(table.even0, exposure, [[trails[0]!, 1]]);
-    if (table.odd1 !== null) {
-      const kept = sinc(half);
-      lookUp(table.odd1, exposure, [
-        [trails[1]!, kept * Math.sin(angle)],
-        [trails[2]!, kept * Math.cos(angle)],
-      ]);
-    }
-    if (table.even2 !== null) {
-      const kept = sinc(2 * half);
-      lookUp(table.even2, exposure, [
-        [trails[3]!, kept * Math.cos(2 * angle)],
-        [trails[4]!, -kept * Math.sin(2 * angle)],
-      ]);
+    for (let q = 0; q < offset.length; q++) {
+      const angle = 2 * Math.PI * (phase[i]! + offset[q]!);
+      const share = weight[q]!;
+      const exposure = {
+        velocity,
+        from: start[i]!,
+        to: start[i + 1]!,
+        centre: -k1 * Math.sin(angle),
+        step_kms,
+      };
+      addLookUp(table.even0, exposure, [[trails[0]!, share]]);
+      if (table.odd1 !== null) {
+        addLookUp(table.odd1, exposure, [
+          [trails[1]!, share * Math.sin(angle)],
+          [trails[2]!, share * Math.cos(angle)],
+        ]);
+      }
+      if (table.even2 !== null) {
+        addLookUp(table.even2, exposure, [
+          [trails[3]!, share * Math.cos(2 * angle)],
+          [trails[4]!, -share * Math.sin(2 * angle)],
+        ]);
+      }
     }
   }
   return trails;
 }
 
-function sinc(x: number): number {
-  return x === 0 ? 1 : Math.sin(x) / x;
+/** One instant for an exposure during which patterns hardly turn, several for a longer one. */
+function instants(phase_width: number): { offset: Float64Array; weight: Float64Array } {
+  const order = phase_width < 0.004 ? 1 : phase_width < 0.1 ? 2 : 4;
+  return panelled(phase_width, { panels: 1, order });
 }
 
-/** Writes a table's cubic interpolation, times a factor, into each target. */
-function lookUp(
+/** Adds a table's cubic interpolation, times a factor, to each target. */
+function addLookUp(
   table: { readonly half: number; readonly values: Float64Array },
   { velocity, from, to, centre, step_kms }: {
     readonly velocity: Float64Array;
@@ -164,6 +170,7 @@ function lookUp(
   const offset = half - centre * perStep;
   const last = 2 * half - 2;
   const [first, firstFactor] = targets[0]!;
+  const [second, secondFactor] = targets[1] ?? [first, 0];
   for (let n = from; n < to; n++) {
     const x = velocity[n]! * perStep + offset;
     const k = Math.floor(x);
@@ -171,13 +178,9 @@ function lookUp(
     const t = x - k, s = 1 - t;
     const outer = t * s / 6;
     const inner = (1 + t) * (1 + s) / 2;
-    first[n] = inner * (s * values[k]! + t * values[k + 1]!) -
+    const value = inner * (s * values[k]! + t * values[k + 1]!) -
       outer * ((1 + s) * values[k - 1]! + (1 + t) * values[k + 2]!);
+    first[n]! += firstFactor * value;
+    second[n]! += secondFactor * value;
   }
-  const second = targets[1];
-  if (second !== undefined) {
-    const [into, factor] = second;
-    for (let n = from; n < to; n++) into[n] = factor * first[n]!;
-  }
-  if (firstFactor !== 1) { for (let n = from; n < to; n++) first[n]! *= firstFactor; }
 }
