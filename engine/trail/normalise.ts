@@ -23,8 +23,8 @@ export interface NormaliseOptions {
    * @default "divide"
    */
   readonly continuum?: "divide" | "scale";
-  /** Brightness by which to scale. */
-  readonly photometry?: Photometry;
+  /** Brightness by which to scale: for all, or for each group of exposures (null for none). */
+  readonly photometry?: Photometry | readonly (Photometry | null)[];
 }
 
 /** What {@linkcode normalise} made. */
@@ -52,11 +52,49 @@ function over(
   return { strip, continuum, flux, error };
 }
 
+interface Pair {
+  readonly strip: LineStrip;
+  readonly continuum: Continuum;
+}
+
+// Divides by one level for all.
+function scaled(pairs: readonly Pair[]): NormalisedStrip[] {
+  const level = median(pairs.map(({ continuum }) => continuum.at_line));
+  return pairs.map(({ strip, continuum }) => over(strip, continuum, () => level));
+}
+
+// Brings each continuum to what the light curve says, then divides by one level.
+function calibrated(pairs: readonly Pair[], photometry: Photometry): NormalisedStrip[] {
+  const kept = pairs.flatMap((pair) => {
+    const brightness = brightnessDuring(photometry, pair.strip.spectrum);
+    if (brightness === null || !(brightness > 0)) return [];
+    const relative = photometry.of === "target" ? brightness : pair.continuum.at_line / brightness;
+    return [{ ...pair, relative }];
+  });
+  if (kept.length === 0) {
+    throw new InputError({
+      action: "scale exposures by photometry",
+      rule: "the light curve must reach at least one exposure with a positive flux",
+      value: `${photometry.time.length} points`,
+      remedy: "check that its times are BJD(TDB)",
+    });
+  }
+  const level = median(kept.map(({ relative }) => relative));
+  return kept.map(({ strip, continuum, relative }) =>
+    over(strip, continuum, (i) => continuum.level[i]! * level / relative)
+  );
+}
+
+function isOne(photometry: Photometry | readonly unknown[]): photometry is Photometry {
+  return !Array.isArray(photometry);
+}
+
 /**
  * Normalises exposures: to flux minus one. Dividing makes every exposure's continuum one, so slit
  * losses vanish, and with them real changes of brightness: the line rises where the continuum sets.
  * Scaling divides all by one level, so that calibrated line flux keeps its changes; photometry of
- * the target, or of a companion on the slit, gives the calibration that the slit spoilt.
+ * the target, or of a companion on the slit, gives the calibration that the slit spoilt. Each light
+ * curve has a level of its own, as does what goes without.
  *
  * @param pairs Strips with their continua.
  * @param options How, and the photometry.
@@ -87,9 +125,11 @@ export function normalise(
   pairs: readonly { readonly strip: LineStrip; readonly continuum: Continuum }[],
   options: NormaliseOptions = {},
 ): Normalised {
-  const { continuum: how = "divide", photometry } = options;
+  const { continuum: how = "divide", photometry = [] } = options;
+  const curveOf = ({ strip }: Pair) =>
+    isOne(photometry) ? photometry : photometry[strip.spectrum.group] ?? null;
   if (how === "divide") {
-    if (photometry !== undefined) {
+    if (isOne(photometry) || photometry.some((curve) => curve !== null)) {
       throw new InputError({
         action: "normalise",
         rule: 'photometry scales exposures only where continuum is "scale"',
@@ -104,35 +144,15 @@ export function normalise(
       unscaled: [],
     };
   }
-  if (photometry === undefined) {
-    const level = median(pairs.map(({ continuum }) => continuum.at_line));
-    return {
-      strips: pairs.map(({ strip, continuum }) => over(strip, continuum, () => level)),
-      unscaled: [],
-    };
-  }
-  const bright = pairs.map((pair) => ({
-    ...pair,
-    brightness: brightnessDuring(photometry, pair.strip.spectrum),
-  }));
-  const kept = bright.filter((b) => b.brightness !== null && b.brightness > 0);
-  if (kept.length === 0) {
-    throw new InputError({
-      action: "scale exposures by photometry",
-      rule: "the light curve must reach at least one exposure with a positive flux",
-      value: `${photometry.time.length} points`,
-      remedy: "check that its times are BJD(TDB)",
-    });
-  }
-  // The continuum as the calibration has it, relative to its median.
-  const relative = kept.map((b) =>
-    photometry.of === "target" ? b.brightness! : b.continuum.at_line / b.brightness!
+  const parts = Map.groupBy(pairs, curveOf);
+  const made = [...parts].flatMap(([curve, members]) =>
+    curve === null ? scaled(members) : calibrated(members, curve)
   );
-  const level = median(relative);
+  // As they came: in order of time.
+  const byStrip = new Map(made.map((normalised) => [normalised.strip, normalised]));
   return {
-    strips: kept.map(({ strip, continuum }, k) =>
-      over(strip, continuum, (i) => continuum.level[i]! * level / relative[k]!)
-    ),
-    unscaled: bright.filter((b) => !kept.includes(b)).map((b) => b.strip.spectrum.source),
+    strips: pairs.flatMap(({ strip }) => byStrip.get(strip) ?? []),
+    unscaled: pairs.filter(({ strip }) => !byStrip.has(strip))
+      .map(({ strip }) => strip.spectrum.source),
   };
 }

@@ -45,7 +45,10 @@ export function normaliseExposures(
   const { line, reach_kms, continuum_kms, continuum_order: order = 1, warnings } = options;
   const edges = [-reach_kms, reach_kms, ...continuum_kms.flat()];
   const range = { low_kms: Math.min(...edges), high_kms: Math.max(...edges) };
-  const divided = options.continuum !== "scale" || options.photometry !== undefined;
+  const { continuum: how, photometry } = options;
+  const divided = (group: number) =>
+    how !== "scale" ||
+    (Array.isArray(photometry) ? photometry[group] ?? undefined : photometry) !== undefined;
 
   const unfitted: string[] = [];
   const faint: string[] = [];
@@ -57,7 +60,9 @@ export function normaliseExposures(
       unfitted.push(spectrum.source);
       return [];
     }
-    if (divided && !(continuum.at_line > FAINTEST_CONTINUUM * continuum.at_line_error)) {
+    if (
+      divided(spectrum.group) && !(continuum.at_line > FAINTEST_CONTINUUM * continuum.at_line_error)
+    ) {
       faint.push(spectrum.source);
       return [];
     }

@@ -24,6 +24,8 @@ export interface SkyLineOptions {
 }
 
 const C = SPEED_OF_LIGHT_KMS.value;
+/** Width of a fitted line over that of the instrument beyond which it is none of the sky. */
+const WIDEST = 1.6;
 
 // Fits a Gaussian on a sloping background; position and error in km/s about the line.
 function fitOne(
@@ -67,7 +69,9 @@ function fitOne(
       upper: Float64Array.of(10, half / width, 5, 10, 10),
     },
   );
-  const [amplitude, centre] = fit.parameters;
+  const [amplitude, centre, sigma] = fit.parameters;
+  // Sky lines are as sharp as the instrument draws them; what is broader belongs to the target.
+  if (spectrum.resolution_angstrom !== null && sigma! > WIDEST) return null;
   const amplitudeError = Math.sqrt(fit.covariance.get(0, 0));
   const centreError = Math.sqrt(fit.covariance.get(1, 1));
   if (!fit.converged || !(amplitude! > faintest * amplitudeError)) return null;

@@ -68,6 +68,10 @@ export interface TrailOptions {
    * not say or the line has its own.
    */
   readonly resolution_kms?: number;
-  /** Brightness by which the exposures are scaled; needs `continuum: "scale"`. */
-  readonly photometry?: Photometry;
+  /**
+   * Brightness by which the exposures are scaled; needs `continuum: "scale"`. One light curve for
+   * all, or one for each group of exposures (null for none). Groups that share a light curve share
+   * its level.
+   */
+  readonly photometry?: Photometry | readonly (Photometry | null)[];
 }

@@ -1,5 +1,6 @@
+import { Matrix } from "ml-matrix";
 import { SPEED_OF_LIGHT_KMS } from "../constants.ts";
-import { median, robustSigma } from "../numerics/mod.ts";
+import { median, robustSigma, solveLeastSquares } from "../numerics/mod.ts";
 import type { Spectrum } from "../spectra/mod.ts";
 
 /** Shift of one exposure's wavelengths in the observer's frame. */
@@ -29,8 +30,8 @@ export interface ZeroReport {
 }
 
 /**
- * Tells how the zeros of wavelength scatter and drift with the orbital phase: a drift over a night
- * of one orbit looks like orbital motion.
+ * Tells how the zeros of wavelength scatter and drift with the orbital phase, by a fit of constant,
+ * cosine and sine: a drift over a night of one orbit looks like orbital motion.
  *
  * @param shifts The shifts.
  * @param phase Phase of each exposure, cycles.
@@ -60,19 +61,25 @@ export function reportZeros(
   );
   if (known.length < 5) return null;
   const values = known.map((s) => s.shift_kms);
-  const mean = values.reduce((a, b) => a + b, 0) / values.length;
-  let [c, s] = [0, 0];
-  for (const k of known) {
-    c += (k.shift_kms - mean) * Math.cos(2 * Math.PI * k.phase);
-    s += (k.shift_kms - mean) * Math.sin(2 * Math.PI * k.phase);
-  }
-  const scatter_kms = robustSigma(values);
-  const error = Math.sqrt(known.reduce((sum, k) => sum + k.error_kms ** 2, 0) / known.length);
+  const angles = known.map((k) => 2 * Math.PI * k.phase);
+  const design = new Matrix(angles.map((a) => [1, Math.cos(a), Math.sin(a)]));
+  const fit = solveLeastSquares(design, values);
+  const [, c, s] = fit.parameters;
+  // What the sinusoid leaves counts as noise where it is more than the errors say.
+  const left = fit.chi_square / Math.max(1, known.length - 3);
+  const stated = known.reduce((sum, k) => sum + k.error_kms ** 2, 0) / known.length;
+  const variance = Math.max(left, Number.isFinite(stated) ? stated : 0);
+  const of = (i: number, k: number) => fit.covariance.get(i, k);
+  const amplitude = Math.hypot(c!, s!);
+  const along = amplitude === 0 ? [1, 0] as const : [c! / amplitude, s! / amplitude] as const;
   return {
     median_kms: median(values),
-    scatter_kms,
-    orbital_kms: 2 * Math.hypot(c, s) / known.length,
-    orbital_error_kms: Math.SQRT2 * error / Math.sqrt(known.length),
+    scatter_kms: robustSigma(values),
+    orbital_kms: amplitude,
+    orbital_error_kms: Math.sqrt(
+      variance * (along[0] ** 2 * of(1, 1) + 2 * along[0] * along[1] * of(1, 2) +
+        along[1] ** 2 * of(2, 2)),
+    ),
     measured: known.length,
   };
 }

@@ -124,6 +124,54 @@ Deno.test("makeTrail() scales each exposure to photometry of the target", () => 
   }
 });
 
+Deno.test("makeTrail() takes a light curve for each group: shared ones share their level, others have their own", () => {
+  const nights = [0, 1, 2].map((group) =>
+    madeSpectra({
+      signal_to_noise: 300,
+      count: 8,
+      orbits: 1,
+      group,
+      start_d: group,
+      slit_losses: false,
+    })
+  );
+  const spectra = nights.flat();
+  const curve = (flux: (night: number) => number) => ({
+    time: spectra.map((s) => s.mid),
+    flux: Float64Array.from(spectra, (s) => flux(s.group)),
+    of: "target" as const,
+  });
+  // The second night is twice as bright as the first by their common photometry; the third has none.
+  const shared = curve((night) => night === 1 ? 2 : 1);
+  const trail = makeTrail(spectra, {
+    line: H_BETA,
+    ephemeris: EPHEMERIS,
+    continuum_kms: WINDOWS,
+    continuum: "scale",
+    cosmic_rays: false,
+    photometry: [shared, shared, null],
+  });
+  assertEquals([...trail.group], spectra.map((s) => s.group));
+  // Mid-line of the first exposure of each night, all at phase 0.
+  const middle = [0, 8, 16].map((row) =>
+    trail.grid.flux[row * trail.grid.columns + (trail.grid.columns >> 1)]!
+  );
+  assertAlmostEquals(middle[1]! / middle[0]!, 2, 0.05);
+  const alone = makeTrail(nights[2]!, {
+    line: H_BETA,
+    ephemeris: EPHEMERIS,
+    continuum_kms: WINDOWS,
+    continuum: "scale",
+    cosmic_rays: false,
+  });
+  assertAlmostEquals(middle[2]!, alone.grid.flux[alone.grid.columns >> 1]!, 0.02);
+  assertThrows(
+    () => makeTrail(spectra, { line: H_BETA, ephemeris: EPHEMERIS, photometry: [null, shared] }),
+    InputError,
+    'photometry scales exposures only where continuum is "scale": current value is "divide" (key trail.continuum)',
+  );
+});
+
 Deno.test("makeTrail() masks what is not a number and never gives it weight", () => {
   const spectra = madeSpectra({ count: 8 }).map((s, k) => ({
     ...s,

@@ -91,3 +91,28 @@ Deno.test("measureSkyLines() says so when the observer's frame is not known or l
   const faint = measureSkyLines(spectra, { lines_angstrom: [5700] });
   assertEquals(faint[0]!.features, 0);
 });
+
+Deno.test("reportZeros() takes a drift apart from the sinusoid when phases are uneven", () => {
+  // Three quarters of an orbit only: a plain projection would mix the constant into the amplitude.
+  const phase = Array.from({ length: 30 }, (_, k) => 0.75 * k / 30);
+  const shifts = phase.map((p) => ({
+    source: "",
+    shift_kms: 40 + 6 * Math.cos(2 * Math.PI * (p - 0.1)),
+    error_kms: NaN,
+    features: 1,
+  }));
+  const report = reportZeros(shifts, phase)!;
+  assertAlmostEquals(report.orbital_kms, 6, 1e-9);
+  assertAlmostEquals(report.orbital_error_kms, 0, 1e-9);
+});
+
+Deno.test("measureSkyLines() takes no broad line of the target for one of the sky", () => {
+  const spectra = night(() => 0, { noise: 0.1 }).map((s) => ({
+    ...s,
+    flux: s.flux.map((_, i) => {
+      const w = s.wavelength_angstrom[i]! / s.observer_factor!;
+      return 300 + 2000 * Math.exp(-0.5 * ((w - 5700) / 3.5) ** 2);
+    }),
+  }));
+  assertEquals(measureSkyLines(spectra, { lines_angstrom: [5700] })[0]!.features, 0);
+});
