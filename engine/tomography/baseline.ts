@@ -71,15 +71,19 @@ export function freeBaselines(
     return values;
   };
   const scratch = new Float64Array(operator.sample_count);
+  const projected = (inner: LinearOperator): LinearOperator => ({
+    image_size: operator.image_size,
+    sample_count: operator.sample_count,
+    forward: (image, into) => take(inner.forward(image, into), false),
+    adjoint: (data, into) => {
+      scratch.set(data);
+      return inner.adjoint(take(scratch, true), into);
+    },
+  });
   return {
     operator: {
-      image_size: operator.image_size,
-      sample_count: operator.sample_count,
-      forward: (image, into) => take(operator.forward(image, into), false),
-      adjoint: (data, into) => {
-        scratch.set(data);
-        return operator.adjoint(take(scratch, true), into);
-      },
+      ...projected(operator),
+      sparing: (weight) => projected(operator.sparing?.(weight) ?? operator),
     },
     samples: { flux: take(masked(samples), false), error: samples.error },
     without: (values) => take(values.slice(), false),

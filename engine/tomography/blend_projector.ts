@@ -1,5 +1,6 @@
 import type { Sampling } from "../trail/mod.ts";
 import { InputError } from "../errors.ts";
+import type { LinearOperator } from "./linear_operator.ts";
 import { makeProjector, type Projector, type ProjectorOptions } from "./projector.ts";
 
 /** A member of a blend. */
@@ -68,24 +69,32 @@ export function blendProjector(
     };
   });
   if (others.length === 0) return main;
-  const samples = new Float64Array(main.sample_count);
-  const image = new Float64Array(main.image_size);
+  const combined = (first: LinearOperator, rest: readonly LinearOperator[]): LinearOperator => {
+    const samples = new Float64Array(main.sample_count);
+    const image = new Float64Array(main.image_size);
+    return {
+      image_size: main.image_size,
+      sample_count: main.sample_count,
+      forward(map, into = new Float64Array(main.sample_count)) {
+        first.forward(map, into);
+        rest.forEach((member, i) =>
+          addScaled(into, member.forward(map, samples), others[i]!.ratio)
+        );
+        return into;
+      },
+      adjoint(data, into = new Float64Array(main.image_size)) {
+        first.adjoint(data, into);
+        rest.forEach((member, i) => addScaled(into, member.adjoint(data, image), others[i]!.ratio));
+        return into;
+      },
+    };
+  };
+  const projectors = others.map((member) => member.projector);
   return {
     ...main,
-    forward(map, into = new Float64Array(main.sample_count)) {
-      main.forward(map, into);
-      for (const { ratio, projector } of others) {
-        addScaled(into, projector.forward(map, samples), ratio);
-      }
-      return into;
-    },
-    adjoint(data, into = new Float64Array(main.image_size)) {
-      main.adjoint(data, into);
-      for (const { ratio, projector } of others) {
-        addScaled(into, projector.adjoint(data, image), ratio);
-      }
-      return into;
-    },
+    ...combined(main, projectors),
+    sparing: (weight) =>
+      combined(main.sparing?.(weight) ?? main, projectors.map((p) => p.sparing?.(weight) ?? p)),
   };
 }
 

@@ -3,7 +3,7 @@ import { type EntropyMeasure, POSITIVE_ENTROPY } from "./entropy_measure.ts";
 import type { LinearOperator } from "./linear_operator.ts";
 import type { Samples } from "./map_fit.ts";
 import { subspaceStep } from "./search_subspace.ts";
-import { combine, dotProduct, weightedGram } from "./vector_algebra.ts";
+import { type VectorMachine, vectorMachine } from "./vector_machine.ts";
 
 /** A maximum-entropy problem. */
 export interface EntropyProblem {
@@ -59,9 +59,15 @@ export interface EntropyOptions {
   /**
    * Number of past steps kept as search directions.
    *
-   * @default {9}
+   * @default {12}
    */
   readonly memory?: number;
+  /**
+   * Whether to do the arithmetic in TypeScript even where WebAssembly has SIMD: the same bits.
+   *
+   * @default {false}
+   */
+  readonly plain?: boolean;
 }
 
 /** Where a solution stands. */
@@ -95,7 +101,7 @@ export interface EntropyState {
 const TRUST = 0.3;
 
 /** A pixel falls to no less than this share of itself in one step. */
-const LEAST_SHRINK = 0.1;
+const LEAST_SHRINK = 0.4;
 
 /** Chi-square counts as being at its goal within this share of it. */
 const NEAR = 1e-3;
@@ -141,48 +147,52 @@ export function* entropySteps(
   problem: EntropyProblem,
   options: EntropyOptions = {},
 ): Generator<EntropyState, void, void> {
-  const { operator, samples, measure = POSITIVE_ENTROPY } = problem;
-  const { reduced_chi_square: goal = 1, multiplier: fixed = null, memory = 9 } = options;
+  const { samples, measure = POSITIVE_ENTROPY } = problem;
+  const { reduced_chi_square: goal = 1, multiplier: fixed = null, memory = 12 } = options;
   const { chi_square_tolerance = 1e-3, misalignment: aligned = 0.01 } = options;
   const { max_iterations = 200 } = options;
-  const size = operator.image_size, count = operator.sample_count;
-  const weight = samples.error.map((e) => 1 / (e * e));
-  const used = weight.reduce((n, w) => w > 0 ? n + 1 : n, 0);
+  const size = problem.operator.image_size, count = problem.operator.sample_count;
+  const machine = vectorMachine(8 * ((memory + 8) * (size + 4) + (memory + 7) * (count + 4)), {
+    plain: options.plain === true,
+  });
+  const weight = machine.vector(count), flux = machine.vector(count);
+  let used = 0;
+  for (let k = 0; k < count; k++) {
+    const e = samples.error[k]!;
+    if (!(e < Infinity)) continue;
+    weight[k] = 1 / (e * e);
+    flux[k] = samples.flux[k]!;
+    used++;
+  }
   const target = goal * used;
+  const operator = problem.operator.sparing?.(weight) ?? problem.operator;
 
   let calls = 0;
-  const forward = (image: Float64Array, into?: Float64Array) => {
+  const forward = (from: Float64Array, into: Float64Array) => {
     calls++;
-    return operator.forward(image, into);
+    operator.forward(from, into);
   };
-  let image = problem.start.slice();
-  let model = forward(image).slice();
-  const gradient = new Float64Array(size), metric = new Float64Array(size);
-  const pull = new Float64Array(size), residual = new Float64Array(count);
+  const image = machine.vector(size), metric = machine.vector(size), slope = machine.vector(size);
+  const pull = machine.vector(size), inverse = machine.vector(size);
+  const model = machine.vector(count), residual = machine.vector(count);
+  const spare = Array.from({ length: memory + 2 }, () => ({
+    step: machine.vector(size),
+    seen: machine.vector(count),
+  }));
+  const gradients = { metric, slope, pull };
+  image.set(problem.start);
+  forward(image, model);
   const directions: Direction[] = [];
   const history: number[] = [];
   let alpha = fixed, stalled = 0;
 
   for (let iterations = 0;; iterations++) {
     const prior = problem.prior(image);
-    const entropy = measure.evaluate(image, prior, { gradient, metric });
-    let chi_square = 0;
-    for (let k = 0; k < count; k++) {
-      const w = weight[k]!;
-      const r = w > 0 ? model[k]! - samples.flux[k]! : 0;
-      residual[k] = 2 * w * r;
-      chi_square += w * r * r;
-    }
+    const entropy = measure.evaluate(image, prior, { gradient: slope, metric });
+    const chi_square = machine.residuals({ model, flux, weight, residual });
     calls++;
     operator.adjoint(residual, pull);
-    let ss = 0, cc = 0, sc = 0, total = 0;
-    for (let i = 0; i < size; i++) {
-      const g = metric[i]!, s = gradient[i]!, c = pull[i]!;
-      ss += g * s * s;
-      cc += g * c * c;
-      sc += g * s * c;
-      total += g;
-    }
+    const [ss, cc, sc, total] = machine.norms(gradients);
     const multiplier = ss > 0 ? Math.sqrt(cc / ss) : 0;
     const misalignment = ss > 0 && cc > 0 ? 1 - sc / Math.sqrt(ss * cc) : cc > 0 ? 1 : 0;
     const reached = fixed === null
@@ -191,7 +201,8 @@ export function* entropySteps(
     const converged = reached && misalignment <= aligned;
     const reduced_chi_square = chi_square / used;
     const state: EntropyState = {
-      ...{ image, model, prior, reduced_chi_square, misalignment, entropy, multiplier },
+      ...{ image: image.slice(), model: model.slice(), prior },
+      ...{ reduced_chi_square, misalignment, entropy, multiplier },
       ...{ iterations, operator_calls: calls, converged },
     };
     yield state;
@@ -202,24 +213,19 @@ export function* entropySteps(
     // At the goal the new direction must not move chi-square, or every step would be undone.
     const near = fixed === null && Math.abs(chi_square / target - 1) < NEAR;
     if (near && sc > 0) alpha = cc / sc;
-    const fresh = new Float64Array(size);
-    let length = 0;
-    for (let i = 0; i < size; i++) {
-      const g = (alpha ?? 0) * gradient[i]! - pull[i]!;
-      fresh[i] = metric[i]! * g;
-      length += metric[i]! * g * g;
-    }
-    scale(fresh, 1 / Math.sqrt(length > 0 ? length : 1));
-    directions.unshift({ step: fresh, seen: forward(fresh).slice(), curvature: [] });
-    measureCurvature(directions, weight);
+    const fresh = spare.pop()!;
+    const length = machine.direction({ ...gradients, step: fresh.step }, alpha ?? 0);
+    machine.scale(fresh.step, 1 / Math.sqrt(length > 0 ? length : 1));
+    forward(fresh.step, fresh.seen);
+    remember(directions, { fresh, machine, weight });
 
-    const inverse = metric.map((g) => 1 / g);
+    machine.invert(metric, inverse);
     const steps = directions.map((d) => d.step);
     const chosen = subspaceStep({
-      metric: weightedGram(steps, inverse),
+      metric: machine.gram(steps, inverse),
       curvature: curvatureMatrix(directions),
-      entropy_slope: Float64Array.from(steps, (step) => dotProduct(step, gradient)),
-      chi_slope: Float64Array.from(steps, (step) => dotProduct(step, pull)),
+      entropy_slope: machine.dots(slope, steps),
+      chi_slope: machine.dots(pull, steps),
       chi_square,
     }, { target: fixed === null ? target : null, multiplier: fixed, longest: TRUST * total });
     if (fixed === null) {
@@ -229,43 +235,27 @@ export function* entropySteps(
       stalled = !near && missing > 0 && gain < STALLED_GAIN * missing ? stalled + 1 : 0;
       history.push(chi_square);
       const before = history[history.length - 1 - PATIENCE];
-      const slow = !near && missing > 0 && before !== undefined && iterations > 2 * PATIENCE &&
+      const slow = missing > 3 * NEAR * target && before !== undefined &&
+        iterations > 2 * PATIENCE &&
         chi_square > (1 - LEAST_LOSS) * before;
       if (slow || stalled >= STALLED_STEPS) throw outOfReach(state, goal);
     }
 
-    const step = combine(steps, chosen.coefficients);
-    const seen = combine(directions.map((d) => d.seen), chosen.coefficients);
-    const next = new Float64Array(size);
-    let cut = false;
-    for (let i = 0; i < size; i++) {
-      const f = image[i]! + step[i]!;
-      const least = LEAST_SHRINK * image[i]!;
-      next[i] = measure.positive && f < least ? least : f;
-      if (next[i] !== f) {
-        step[i] = next[i]! - image[i]!;
-        cut = true;
-      }
-    }
-    if (cut) {
-      const after = forward(next).slice();
-      for (let k = 0; k < count; k++) seen[k] = after[k]! - model[k]!;
-      model = after;
-    } else {
-      model = model.map((m, k) => m + seen[k]!);
-    }
-    image = next;
-    let square = 0;
-    for (let i = 0; i < size; i++) square += step[i]! * step[i]! * inverse[i]!;
-    directions.shift();
+    const taken = spare.pop()!;
+    machine.combine(steps, chosen.coefficients, taken.step);
+    machine.combine(directions.map((d) => d.seen), chosen.coefficients, taken.seen);
+    spare.push(directions.shift()!);
+    const held = machine.advance(image, taken.step, measure.positive ? LEAST_SHRINK : -1);
+    if (held > 0) forward(taken.step, taken.seen);
+    machine.add(model, taken.seen);
+    const [square = 0] = machine.weightedDots(taken.step, inverse, [taken.step]);
     if (square > 0) {
       const unit = 1 / Math.sqrt(square);
-      scale(step, unit);
-      scale(seen, unit);
-      directions.unshift({ step, seen, curvature: [] });
-      if (directions.length > memory) directions.pop();
-      measureCurvature(directions, weight);
-    }
+      machine.scale(taken.step, unit);
+      machine.scale(taken.seen, unit);
+      if (directions.length === memory) spare.push(directions.pop()!);
+      remember(directions, { fresh: taken, machine, weight });
+    } else spare.push(taken);
   }
 }
 
@@ -307,15 +297,21 @@ interface Direction {
   /** In the samples. */
   readonly seen: Float64Array;
   /** Second derivatives of chi-square with itself and the directions after it. */
-  curvature: number[];
+  readonly curvature: Float64Array;
 }
 
-/** Fills the second derivatives of the first direction with all. */
-function measureCurvature(directions: readonly Direction[], weight: Float64Array): void {
-  const [first] = directions;
-  if (first === undefined) return;
-  const weighted = first.seen.map((a, k) => 2 * weight[k]! * a);
-  first.curvature = directions.map((d) => dotProduct(weighted, d.seen));
+/** Puts a direction before the others, with the second derivatives of chi-square it takes part in. */
+function remember(
+  directions: Direction[],
+  { fresh, machine, weight }: {
+    readonly fresh: Pick<Direction, "step" | "seen">;
+    readonly machine: VectorMachine;
+    readonly weight: Float64Array;
+  },
+): void {
+  const all = [fresh.seen, ...directions.map((d) => d.seen)];
+  const curvature = machine.weightedDots(fresh.seen, weight, all).map((c) => 2 * c);
+  directions.unshift({ step: fresh.step, seen: fresh.seen, curvature });
 }
 
 function curvatureMatrix(directions: readonly Direction[]): Float64Array {
@@ -327,10 +323,6 @@ function curvatureMatrix(directions: readonly Direction[]): Float64Array {
     }
   });
   return matrix;
-}
-
-function scale(vector: Float64Array, factor: number): void {
-  for (let i = 0; i < vector.length; i++) vector[i] = vector[i]! * factor;
 }
 
 function unfinished(state: EntropyState, goal: number): NotConverged<EntropyState> {

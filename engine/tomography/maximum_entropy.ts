@@ -136,8 +136,8 @@ const START_FLOOR = 0.05;
  * const shape = { pixels: 21, half_width_kms: 400, systemic_kms: 0 };
  * const truth = new Float64Array(441);
  * truth[15 * 21 + 6] = 1;
- * const flux = makeProjector(sampling, shape).forward(truth).map((f, k) => f + 0.01 * Math.cos(k * k));
- * const trail = { sampling, flux, error: flux.map(() => 0.007) };
+ * const flux = makeProjector(sampling, shape).forward(truth).map((f, k) => f + 0.14 * Math.cos(k * k));
+ * const trail = { sampling, flux, error: flux.map(() => 0.1) };
  * let last;
  * const options = { ...shape, reduced_chi_square: 1.1 };
  * for (const state of maximumEntropySteps(trail, options)) last = state;
@@ -175,7 +175,7 @@ export function* maximumEntropySteps(
   const steps = entropySteps({
     operator,
     samples,
-    prior: (image) => priorImage(prior, { ...shape, image, level }),
+    prior: priorImage(prior, { ...shape, level }),
     start: start.map((f) => Math.max(f / shares, floor)),
   }, options);
 

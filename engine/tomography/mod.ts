@@ -43,6 +43,6 @@ export * from "./slant_projector.ts";
 export * from "./smearing.ts";
 export * from "./system_frame.ts";
 export * from "./uniform_profiles.ts";
-export * from "./vector_algebra.ts";
+export * from "./vector_machine.ts";
 export * from "./velocity_map.ts";
 export * from "./wiener_gain.ts";

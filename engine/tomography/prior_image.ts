@@ -1,5 +1,5 @@
 import { axisymmetricPart, type MapPlace } from "./axisymmetric_part.ts";
-import { blurMap } from "./blur_map.ts";
+import { mapBlur } from "./blur_map.ts";
 import type { MapShape } from "./map_shape.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
@@ -21,46 +21,59 @@ export type PriorImage =
 /** Share of the level that a default image never falls below, so that its logarithm exists. */
 const FLOOR = 1e-6;
 
+/** Options of {@linkcode priorImage}. */
+export interface PriorImageOptions extends MapShape {
+  /** Level of the uniform image, and of the floor of the others. */
+  readonly level: number;
+}
+
 /**
- * The default image that belongs to a current image.
+ * Prepares the default image that belongs to a current image.
  *
  * @param prior Kind of default image.
- * @param options Map's shape, current image, and the level: of the uniform image, and of the floor.
- * @returns Default image, pixels² positive values.
+ * @param options Map's shape and the level.
+ * @returns A function from the current image to its default image, pixels² positive values.
  *
  * @example
  * ```ts
  * import { priorImage } from "@millrace/millrace/tomography";
  * import { assertEquals } from "@std/assert";
  *
- * const image = new Float64Array(9).fill(4);
- * const options = { pixels: 3, half_width_kms: 10, image, level: 2 };
- * assertEquals(priorImage({ kind: "uniform" }, options), new Float64Array(9).fill(2));
+ * const prior = priorImage({ kind: "uniform" }, { pixels: 3, half_width_kms: 10, level: 2 });
+ * assertEquals(prior(new Float64Array(9).fill(4)), new Float64Array(9).fill(2));
  * ```
  */
 export function priorImage(
   prior: PriorImage,
-  options: MapShape & { readonly image: Float64Array; readonly level: number },
-): Float64Array {
-  const { image, level, pixels, half_width_kms } = options;
+  options: PriorImageOptions,
+): (image: Float64Array) => Float64Array {
+  const { level, pixels, half_width_kms } = options;
   const floor = FLOOR * level;
-  const round = (centre: MapPlace) =>
-    axisymmetricPart({ pixels, half_width_kms, intensity: image }, { centre, statistic: "mean" })
+  const raised = (values: Float64Array) => values.map((f) => Math.max(f, floor));
+  const rings = (centre: MapPlace, intensity: Float64Array) =>
+    axisymmetricPart({ pixels, half_width_kms, intensity }, { centre, statistic: "mean" })
       .intensity;
   switch (prior.kind) {
-    case "uniform":
-      return new Float64Array(image.length).fill(level);
-    case "blurred":
-      return blurMap(image, { ...options, fwhm_kms: prior.fwhm_kms })
-        .map((f) => Math.max(f, floor));
-    case "axisymmetric":
-      return round(prior.centre).map((f) => Math.max(f, floor));
-    case "mixed": {
-      const rings = round(prior.centre);
-      return blurMap(image, { ...options, fwhm_kms: prior.fwhm_kms })
-        .map((f, k) => Math.sqrt(Math.max(f, floor) * Math.max(rings[k]!, floor)));
+    case "uniform": {
+      const image = new Float64Array(pixels * pixels).fill(level);
+      return () => image;
     }
-    case "image":
-      return prior.map.intensity.map((f) => Math.max(f, floor));
+    case "blurred": {
+      const blur = mapBlur({ ...options, fwhm_kms: prior.fwhm_kms });
+      return (image) => raised(blur(image));
+    }
+    case "axisymmetric":
+      return (image) => raised(rings(prior.centre, image));
+    case "mixed": {
+      const blur = mapBlur({ ...options, fwhm_kms: prior.fwhm_kms });
+      return (image) => {
+        const round = raised(rings(prior.centre, image));
+        return raised(blur(image)).map((f, k) => Math.sqrt(f * round[k]!));
+      };
+    }
+    case "image": {
+      const image = raised(prior.map.intensity);
+      return () => image;
+    }
   }
 }

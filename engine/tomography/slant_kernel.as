@@ -18,6 +18,7 @@ class Plan {
   strand_length: i32;
   instants: i32;
   axis: usize; // i32 × instants
+  wanted: usize; // i32 × instants: zero where an instant is to be passed over
   u0: usize; // f64 × instants
   du: usize; // f64 × instants
   tap_start: usize; // i32 × (instants + 1)
@@ -307,6 +308,7 @@ function gatherFour<T>(plan: Plan, lines: usize): void {
 
 function forward<T>(plan: Plan): void {
   for (let t = 0; t < plan.instants; t++) {
+    if (i32At(plan.wanted, t) == 0) continue;
     deposit<T>(plan, t);
     blur(plan, t);
   }
@@ -318,7 +320,7 @@ function adjoint<T>(plan: Plan): void {
     const lines = axis == 1 ? plan.columns : plan.rows;
     let filled = 0;
     for (let t = 0; t < plan.instants; t++) {
-      if (i32At(plan.axis, t) != axis) continue;
+      if (i32At(plan.axis, t) != axis || i32At(plan.wanted, t) == 0) continue;
       placeLines(plan, t, filled);
       spread<T>(plan, t, filled);
       filled++;

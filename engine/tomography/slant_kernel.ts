@@ -1,7 +1,8 @@
 import type { Sampling } from "../trail/mod.ts";
+import type { LinearOperator } from "./linear_operator.ts";
 import type { Projector, ProjectorOptions, ProjectorPrecision } from "./projector.ts";
 import { SLANT_KERNEL_BYTES } from "./slant_kernel_bytes.ts";
-import { type SlantPlan, slantPlan } from "./slant_plan.ts";
+import { type SlantPlan, slantPlan, wantedInstants } from "./slant_plan.ts";
 
 /** Zeros on either side of a map line, and lines or instants per pass: as in slant_kernel.as. */
 const PAD = 16, GROUP = 4;
@@ -77,26 +78,26 @@ export function kernelProjector(sampling: Sampling, options: ProjectorOptions): 
   const { pixels, half_width_kms, systemic_kms, precision = "double" } = options;
   const sample_count = sampling.velocity_kms.length;
   const plan = slantPlan(sampling, options);
-  const { memory, header, data, rows, columns, stride } = layOut(plan, { sample_count, precision });
+  const { memory, header, data, wanted, rows, columns, stride } = layOut(plan, {
+    sample_count,
+    precision,
+  });
   const instance = new WebAssembly.Instance(module, { env: { memory } });
   const run = instance.exports as unknown as KernelExports;
   const [down, up] = precision === "double"
     ? [run.forward64, run.adjoint64]
     : [run.forward32, run.adjoint32];
-  return {
-    pixels,
-    half_width_kms,
-    systemic_kms,
-    sampling,
+  const all = new Int32Array(plan.instants).fill(1);
+  const wanting = (flags: Int32Array): LinearOperator => ({
     image_size: pixels * pixels,
     sample_count,
-    code: "kernel",
     forward(map, into = new Float64Array(sample_count)) {
       for (let r = 0; r < pixels; r++) {
         rows.set(map.subarray(r * pixels, (r + 1) * pixels), r * stride + PAD);
       }
       turn(map, columns, { pixels, stride });
       data.fill(0);
+      wanted.set(flags);
       down(header);
       into.set(data);
       return into;
@@ -105,6 +106,7 @@ export function kernelProjector(sampling: Sampling, options: ProjectorOptions): 
       data.set(samples);
       rows.fill(0);
       columns.fill(0);
+      wanted.set(flags);
       up(header);
       join(rows, columns, { into, pixels, stride });
       // The forward direction counts on zeros around the lines.
@@ -112,6 +114,15 @@ export function kernelProjector(sampling: Sampling, options: ProjectorOptions): 
       columns.fill(0);
       return into;
     },
+  });
+  return {
+    ...wanting(all),
+    sparing: (weight) => wanting(wantedInstants(plan, { sampling, weight })),
+    pixels,
+    half_width_kms,
+    systemic_kms,
+    sampling,
+    code: "kernel",
   };
 }
 
@@ -122,6 +133,7 @@ interface Layout {
   /** Address of the kernel's Plan. */
   readonly header: number;
   readonly data: Float64Array;
+  readonly wanted: Int32Array;
   readonly rows: Lines;
   readonly columns: Lines;
   /** From line to line, values. */
@@ -136,7 +148,7 @@ function layOut(
   const { pixels, over, strand_length, instants } = plan;
   const bytes = options.precision === "double" ? 8 : 4;
   const stride = 4 * Math.ceil((pixels + 2 * PAD) / 4);
-  const FIELDS = 25, SLACK = 64;
+  const FIELDS = 26, SLACK = 64;
   let top = 4 * FIELDS;
   const reserve = (size: number) => {
     const at = 16 * Math.ceil(top / 16);
@@ -147,6 +159,7 @@ function layOut(
   const doubles = [plan.u0, plan.du, plan.taps, plan.scale, plan.ratio] as const;
   const [axis, tap_start, entry_start, sample, first] = integers.map((a) => reserve(a.byteLength));
   const [u0, du, taps, scale, ratio] = doubles.map((a) => reserve(a.byteLength));
+  const wanted = reserve(4 * instants);
   const data = reserve(8 * options.sample_count);
   const rows = reserve(bytes * pixels * stride), columns = reserve(bytes * pixels * stride);
   const strands = bytes * GROUP * over * strand_length;
@@ -164,7 +177,19 @@ function layOut(
     over,
     strand_length,
     instants,
-    ...[axis, u0, du, tap_start, taps, entry_start, sample, first, scale, ratio] as number[],
+    ...[
+      axis,
+      wanted,
+      u0,
+      du,
+      tap_start,
+      taps,
+      entry_start,
+      sample,
+      first,
+      scale,
+      ratio,
+    ] as number[],
     ...[data, rows + inner, columns + inner, sum, part, whole, strand, at, offset, order],
   ]);
   integers.forEach((a, i) =>
@@ -181,6 +206,7 @@ function layOut(
     memory,
     header: 0,
     data: new Float64Array(buffer, data, options.sample_count),
+    wanted: new Int32Array(buffer, wanted, instants),
     rows: lines(rows),
     columns: lines(columns),
     stride,

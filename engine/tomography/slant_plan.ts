@@ -36,6 +36,8 @@ export interface SlantPlan {
   readonly over: number;
   /** Length of each strand. */
   readonly strand_length: number;
+  /** Exposure that each instant belongs to, T values. */
+  readonly exposure: Int32Array;
   /** Line direction, T values: 0 rows (Vx runs along a line), 1 columns (Vy runs). */
   readonly axis: Int32Array;
   /** Grid position of pixel 0 of line 0, T values. */
@@ -145,6 +147,7 @@ export function slantPlan(sampling: Sampling, options: ProjectorOptions): SlantP
     instants,
     over,
     strand_length: Math.ceil((Math.ceil(top) + 2 * margin + 4) / over),
+    exposure: Int32Array.from(moments, (m) => m.exposure),
     axis,
     u0,
     du,
@@ -191,4 +194,41 @@ function instantsOf(sampling: Sampling, half_width_kms: number): Instant[] {
     });
   }
   return instants;
+}
+
+/**
+ * Tells which instants matter when samples have these weights.
+ *
+ * @param plan The plan.
+ * @param options Sampling and weights of its samples.
+ * @returns One value per instant: 0 where all weights of its exposure are zero, 1 elsewhere.
+ *
+ * @example
+ * ```ts
+ * import { slantPlan, wantedInstants } from "@millrace/millrace/tomography";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const sampling = {
+ *   count: 2,
+ *   phase: Float64Array.of(0.25, 0.5),
+ *   cycle: Float64Array.of(0, 0),
+ *   phase_width: Float64Array.of(0, 0),
+ *   start: Uint32Array.of(0, 1, 2),
+ *   velocity_kms: Float64Array.of(0, 0),
+ *   pixel_kms: Float64Array.of(20, 20),
+ *   profile_sigma_kms: Float64Array.of(40, 40),
+ * };
+ * const plan = slantPlan(sampling, { pixels: 41, half_width_kms: 400, systemic_kms: 0 });
+ * assertEquals([...wantedInstants(plan, { sampling, weight: Float64Array.of(0, 3) })], [0, 1]);
+ * ```
+ */
+export function wantedInstants(
+  plan: SlantPlan,
+  options: { readonly sampling: Sampling; readonly weight: Float64Array },
+): Int32Array {
+  const { sampling: { start }, weight } = options;
+  return plan.exposure.map((i) => {
+    for (let k = start[i]!; k < start[i + 1]!; k++) if (weight[k]! > 0) return 1;
+    return 0;
+  });
 }

@@ -1,6 +1,7 @@
 import type { Sampling } from "../trail/mod.ts";
+import type { LinearOperator } from "./linear_operator.ts";
 import type { Projector, ProjectorOptions } from "./projector.ts";
-import { type SlantPlan, slantPlan } from "./slant_plan.ts";
+import { type SlantPlan, slantPlan, wantedInstants } from "./slant_plan.ts";
 
 /**
  * The projector along slanted lines in plain TypeScript: see {@linkcode SlantPlan} for the idea.
@@ -35,18 +36,14 @@ export function slantProjector(sampling: Sampling, options: ProjectorOptions): P
   const grid = makeGrid(plan);
   const sample_count = sampling.velocity_kms.length;
   const turned = new Float64Array(pixels * pixels);
-  return {
-    pixels,
-    half_width_kms,
-    systemic_kms,
-    sampling,
+  const wanting = (flags: Int32Array): LinearOperator => ({
     image_size: pixels * pixels,
     sample_count,
-    code: "plain",
     forward(map, into = new Float64Array(sample_count)) {
       into.fill(0);
       transpose(map, turned, pixels);
       for (let t = 0; t < plan.instants; t++) {
+        if (flags[t] === 0) continue;
         deposit(plan.axis[t] === 1 ? turned : map, plan, t, grid);
         blur(plan, t, grid.whole, into);
       }
@@ -56,12 +53,22 @@ export function slantProjector(sampling: Sampling, options: ProjectorOptions): P
       into.fill(0);
       turned.fill(0);
       for (let t = 0; t < plan.instants; t++) {
+        if (flags[t] === 0) continue;
         spread(plan, t, data, grid);
         gather(plan.axis[t] === 1 ? turned : into, plan, t, grid);
       }
       addTransposed(turned, into, pixels);
       return into;
     },
+  });
+  return {
+    ...wanting(new Int32Array(plan.instants).fill(1)),
+    sparing: (weight) => wanting(wantedInstants(plan, { sampling, weight })),
+    pixels,
+    half_width_kms,
+    systemic_kms,
+    sampling,
+    code: "plain",
   };
 }
 

@@ -1,13 +1,21 @@
-// Builds the WebAssembly kernel of the tomography room: `deno task wasm`.
+// Builds the WebAssembly kernels of the tomography room: `deno task wasm`.
 import asc from "assemblyscript/asc";
 
 const FOLDER = new URL("../../engine/tomography/", import.meta.url);
-const SOURCE = new URL("slant_kernel.as", FOLDER);
-export const GENERATED: URL = new URL("slant_kernel_bytes.ts", FOLDER);
 
-/** Compiles the kernel and returns the text of the module that holds it. */
-export async function buildKernel(): Promise<string> {
-  const source = await Deno.readTextFile(SOURCE);
+/** Name of a kernel: its source is `<name>_kernel.as`, its module `<name>_kernel_bytes.ts`. */
+export type KernelName = "slant" | "vector";
+
+export const KERNELS: readonly KernelName[] = ["slant", "vector"];
+
+/** The module that holds a kernel's bytes. */
+export function generatedModule(name: KernelName): URL {
+  return new URL(`${name}_kernel_bytes.ts`, FOLDER);
+}
+
+/** Compiles a kernel and returns the text of the module that holds it. */
+export async function buildKernel(name: KernelName): Promise<string> {
+  const source = await Deno.readTextFile(new URL(`${name}_kernel.as`, FOLDER));
   let bytes: Uint8Array | undefined;
   const messages: string[] = [];
   const { error } = await asc.main(
@@ -24,8 +32,8 @@ export async function buildKernel(): Promise<string> {
       "kernel.wasm",
     ],
     {
-      readFile: (name) => name === "kernel.ts" ? source : null,
-      writeFile: (_name, contents) => {
+      readFile: (file) => file === "kernel.ts" ? source : null,
+      writeFile: (_file, contents) => {
         if (contents instanceof Uint8Array) bytes = contents;
       },
       listFiles: () => [],
@@ -39,13 +47,17 @@ export async function buildKernel(): Promise<string> {
   const lines = btoa(String.fromCharCode(...bytes)).match(/.{1,90}/g) ?? [];
   return [
     "/**",
-    " * The slanted projection in WebAssembly, base64. Generated from slant_kernel.as by `deno task wasm`.",
+    ` * WebAssembly in base64, generated from ${name}_kernel.as by \`deno task wasm\`.`,
     " */",
-    `export const SLANT_KERNEL_BYTES = [`,
+    `export const ${name.toUpperCase()}_KERNEL_BYTES = [`,
     ...lines.map((line) => `  "${line}",`),
     `].join("");`,
     "",
   ].join("\n");
 }
 
-if (import.meta.main) await Deno.writeTextFile(GENERATED, await buildKernel());
+if (import.meta.main) {
+  for (const name of KERNELS) {
+    await Deno.writeTextFile(generatedModule(name), await buildKernel(name));
+  }
+}

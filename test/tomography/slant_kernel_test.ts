@@ -1,12 +1,7 @@
 import { assertEquals, assertLess } from "@std/assert";
 import { randomStream } from "@millrace/millrace/numerics";
 import { kernelAvailable, makeProjector } from "@millrace/millrace/tomography";
-import { buildKernel, GENERATED } from "./build_kernel.ts";
 import { benchSampling, ragged } from "./samplings.ts";
-
-Deno.test("slant_kernel_bytes.ts holds the bytes that its source gives", async () => {
-  assertEquals(await Deno.readTextFile(GENERATED), await buildKernel());
-});
 
 function problems() {
   const random = randomStream(11);
