@@ -21,6 +21,7 @@ export * from "./find_time.ts";
 export * from "./fits_axis.ts";
 export * from "./flux_image.ts";
 export * from "./number_text.ts";
+export * from "./pointing.ts";
 export * from "./raw_exposure.ts";
 export * from "./read_exposures.ts";
 export * from "./read_image.ts";

@@ -1,10 +1,12 @@
 import { InputError, type Warning } from "../errors.ts";
 import { readBytes, readText } from "../files/mod.ts";
 import { parseFits } from "../fits/mod.ts";
+import type { Direction } from "../sky/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { addUpDecisions, type Decision, type OneDecision } from "./decision.ts";
 import { estimateErrors } from "./estimate_errors.ts";
 import { fluxHdu } from "./flux_image.ts";
+import { pointedElsewhere } from "./pointing.ts";
 import { readImage } from "./read_image.ts";
 import type { ReadExposuresOptions, SpectraLayout } from "./read_options.ts";
 import { isStack, readStack } from "./read_stack.ts";
@@ -19,6 +21,8 @@ import type { Spectrum } from "./spectrum.ts";
 export interface ExposuresRead {
   /** One spectrum an exposure, in the order of the files. */
   readonly spectra: readonly Spectrum[];
+  /** Where the target is, as the options or the first file that knows says; null when none does. */
+  readonly target: Direction | null;
   /** What was decided, from which key. */
   readonly decisions: readonly Decision[];
   /** What a user should know. */
@@ -191,9 +195,14 @@ export async function readExposures(
       }`,
     });
   }
+  const elsewhere = pointedElsewhere(
+    settled.map(({ spectrum, target }) => ({ source: spectrum.source, target })),
+  );
+  if (elsewhere !== null) warnings.set(elsewhere.code, elsewhere);
   const { spectra, decision } = withErrors(settled, group);
   return {
     spectra,
+    target: settled.find((exposure) => exposure.target !== null)?.target ?? null,
     decisions: [...addUpDecisions(decided), ...(decision === null ? [] : [decision])],
     warnings: [...warnings.values()],
   };

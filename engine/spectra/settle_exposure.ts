@@ -1,5 +1,5 @@
 import { InputError, type Warning } from "../errors.ts";
-import { airToVacuum } from "../sky/mod.ts";
+import { airToVacuum, type Direction } from "../sky/mod.ts";
 import { inOrder } from "./check_axis.ts";
 import type { OneDecision } from "./decision.ts";
 import { EXPOSURE_KEYS, findDuration } from "./find_duration.ts";
@@ -15,6 +15,8 @@ import type { Spectrum } from "./spectrum.ts";
 export interface SettledExposure {
   /** The spectrum; `error` is empty when the file gave none. */
   readonly spectrum: Spectrum;
+  /** Where the target is; null when it is not known. */
+  readonly target: Direction | null;
   /** What was decided, from which key. */
   readonly decisions: readonly OneDecision[];
   /** What a user should know. */
@@ -211,6 +213,7 @@ export function settleExposure(
       observer_factor,
       resolution_angstrom: resolution?.resolution_angstrom ?? null,
     },
+    target: sight.target,
     decisions,
     warnings: [...assumptions(decisions), ...(moment?.warnings ?? [])],
   };

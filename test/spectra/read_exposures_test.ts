@@ -234,3 +234,20 @@ Deno.test("readExposures() needs no site when time and wavelengths are barycentr
     assert(decisions.some((d) => d.from === "VELOSYS"));
   }
 });
+
+Deno.test("readExposures() tells where the target is, and which exposures point elsewhere", async () => {
+  const raw = madeExposures({ count: 5 });
+  const all = await read(raw, "image");
+  assertAlmostEquals(all.target!.ra_deg, TARGET.ra_deg, 1e-9);
+  assertEquals(all.warnings, []);
+  const mixed = raw.map((exposure, k) => k === 3 ? { ...exposure, ra_deg: 84.2 } : exposure);
+  const { warnings } = await read(mixed, "image");
+  assertEquals(warnings.map((w) => w.code), ["pointed-elsewhere"]);
+  // 1.1 deg of right ascension at declination −12.4.
+  assert(
+    /^1 of 5 exposures point elsewhere than the others \(.*exposure-004\.fits by 1\.07 deg\)/.test(
+      warnings[0]!.text,
+    ),
+    warnings[0]!.text,
+  );
+});
