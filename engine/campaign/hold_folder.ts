@@ -2,7 +2,7 @@ import { join } from "@std/path";
 import { makeFolder, withLock } from "../files/mod.ts";
 
 /** Lock file of an output folder. */
-const LOCK = ".millrace.lock";
+export const FOLDER_LOCK = ".millrace.lock";
 /** What a killed process leaves of a file that it was writing. */
 const UNFINISHED = /^\.millrace-\d+-\d+\.part$/;
 
@@ -24,7 +24,7 @@ export async function holdFolder<T>(
   options: { owner?: string } = {},
 ): Promise<T> {
   await makeFolder(folder);
-  return withLock(join(folder, LOCK), async () => {
+  return withLock(join(folder, FOLDER_LOCK), async () => {
     for await (const { name, isFile } of Deno.readDir(folder)) {
       if (isFile && UNFINISHED.test(name)) await Deno.remove(join(folder, name));
     }

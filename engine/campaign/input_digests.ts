@@ -51,7 +51,7 @@ export async function inputDigests(
   const digests: InputDigest[] = [];
   for (const { path } of await namedFiles(target)) {
     digests.push({
-      file: relative(target.folder, resolve(target.folder, path)),
+      file: relative(resolve(target.folder), resolve(path)),
       sha256: sha256(await readBytes(path, { decompress: false })),
     });
     await pause(options.signal);

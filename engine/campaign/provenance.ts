@@ -57,6 +57,8 @@ export interface RunIdentity {
   readonly set: readonly string[];
   /** Seed, overrides included. */
   readonly seed: number;
+  /** Whether maps were made in spite of a large gap in phase. */
+  readonly force: boolean;
   /** SHA-256 of the settings, overrides included. */
   readonly settings_digest: string;
   /** Files read, relative to the target file. */
@@ -105,16 +107,23 @@ export function thisRuntime(): Runtime {
  * What a target's outputs depend on.
  *
  * @param target The target.
- * @param inputs Digests of its files.
+ * @param options What is not in the target itself.
+ * @param options.inputs Digests of its files.
+ * @param options.force Whether maps are made in spite of a large gap in phase. @default false
  * @returns The identity.
  */
-export function runIdentity(target: Target, inputs: readonly InputDigest[]): RunIdentity {
+export function runIdentity(
+  target: Target,
+  options: { inputs: readonly InputDigest[]; force?: boolean },
+): RunIdentity {
+  const { inputs, force = false } = options;
   return {
     version: VERSION,
     target_name: target.name,
     target_text: target.text,
     set: target.overrides,
     seed: target.settings.seed,
+    force,
     settings_digest: target.settings_digest,
     inputs,
   };
@@ -122,10 +131,7 @@ export function runIdentity(target: Target, inputs: readonly InputDigest[]): Run
 
 /** Digest of an identity: equal where outputs are equal. */
 export function identityKey(identity: RunIdentity): string {
-  const { version, target_name, target_text, set, seed, settings_digest, inputs } = identity;
-  return sha256(
-    canonicalJson({ version, target_name, target_text, set, seed, settings_digest, inputs }),
-  );
+  return sha256(canonicalJson(identity));
 }
 
 /**

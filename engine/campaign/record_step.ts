@@ -26,9 +26,9 @@ export type Clock = () => string;
 /** The record of a run, as far as it is known before any of its steps. */
 export function openRecord(
   target: Target,
-  options: { inputs: readonly InputDigest[]; folder: string },
+  options: { inputs: readonly InputDigest[]; folder: string; force?: boolean },
 ): Omit<RunRecord, "steps"> {
-  const identity = runIdentity(target, options.inputs);
+  const identity = runIdentity(target, options);
   return {
     key: identityKey(identity),
     ...identity,
@@ -58,6 +58,7 @@ async function writtenFiles(folder: string, paths: readonly string[]): Promise<W
  * @param work.run Does it, and writes into the folder.
  * @param options Where, and the time.
  * @param options.output Where the step writes.
+ * @param options.force Whether maps are made in spite of a large gap in phase. @default false
  * @param options.now The clock; times are null without one.
  * @param options.signal Aborts the work.
  * @returns What the step gives, `provenance.json` among its files.
@@ -66,12 +67,12 @@ async function writtenFiles(folder: string, paths: readonly string[]): Promise<W
 export function recordStep<T>(
   target: Target,
   work: { command: string; run: () => Promise<StepResult<T>> },
-  options: { output: StepOutput; now?: Clock; signal?: AbortSignal },
+  options: { output: StepOutput; force?: boolean; now?: Clock; signal?: AbortSignal },
 ): Promise<StepResult<T>> {
-  const { output: { folder }, now, signal } = options;
+  const { output: { folder }, force, now, signal } = options;
   return holdFolder(folder, async () => {
     const inputs = await inputDigests(target, { signal });
-    const record = openRecord(target, { inputs, folder });
+    const record = openRecord(target, { inputs, folder, force });
     const started = now?.() ?? null;
     const result = await work.run();
     const step = await doneStep(work.command, { result, folder, started, now });

@@ -61,7 +61,7 @@ export async function redoRun(
   if (differences.some(({ kind, text }) => kind === "input" && text === MISSING)) {
     return { commands: [], same, differences };
   }
-  const session = openSession(target, { workers, progress, signal });
+  const session = openSession(target, { workers, force: run.force, progress, signal });
   for (const step of steps) {
     signal?.throwIfAborted();
     try {

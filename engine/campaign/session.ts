@@ -57,15 +57,23 @@ export interface Session {
  * @param options How to work.
  * @param options.workers Number of workers. @default 1
  * @param options.force Whether maps are made in spite of a large gap in phase. @default false
+ * @param options.keep Gives a costly result that was kept under a name, or makes and keeps it.
+ * @default Makes it
  * @param options.progress Told how far the work has come.
  * @param options.signal Aborts the work.
  * @returns The session.
  */
 export function openSession(
   target: Target,
-  options: { workers?: number; force?: boolean; progress?: Progress; signal?: AbortSignal } = {},
+  options: {
+    workers?: number;
+    force?: boolean;
+    keep?: <T>(name: string, make: () => Promise<T>) => Promise<T>;
+    progress?: Progress;
+    signal?: AbortSignal;
+  } = {},
 ): Session {
-  const { workers = 1, force = false, progress, signal } = options;
+  const { workers = 1, force = false, keep = (_name, make) => make(), progress, signal } = options;
   const exposures = once(() => readTargetExposures(target, { progress, signal }));
   const ephemeris = once(() => {
     const { sky } = target.settings;
@@ -83,7 +91,8 @@ export function openSession(
   const systemic = once(() =>
     systemicOf(target, async () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))
   );
-  const map = perLine(async (line) => {
+  const map = perLine((line) => keep(`map of ${line.name}`, () => makeMap(line)));
+  const makeMap = async (line: LineSettings) => {
     const made = await trail(line);
     await pause(signal);
     return mapLine(made, {
@@ -96,8 +105,9 @@ export function openSession(
       progress,
       signal,
     });
-  });
-  const anyMap = perLine(async (line) => {
+  };
+  const anyMap = perLine((line) => keep(`tests of ${line.name}`, () => testLine(line)));
+  const testLine = async (line: LineSettings) => {
     const made = await trail(line);
     const { kms } = await systemic();
     await pause(signal);
@@ -113,7 +123,7 @@ export function openSession(
     });
     const warnings = found.warnings.map((warning) => ({ ...warning, line: line.name }));
     return { ...found, warnings };
-  });
+  };
   const session: Session = {
     target,
     exposures,
@@ -122,7 +132,7 @@ export function openSession(
     trail,
     map,
     anyMap,
-    orbit: once(() => measureTargetOrbit(session)),
+    orbit: once(() => keep("orbit", () => measureTargetOrbit(session))),
     lines: (action) => linesOf(target, { action }),
     systemic,
     workers,

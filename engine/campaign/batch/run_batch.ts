@@ -1,6 +1,6 @@
 import { join } from "@std/path";
 import { type Progress, runTasks } from "../../workers/mod.ts";
-import { holdFolder } from "../hold_folder.ts";
+import { FOLDER_LOCK, holdFolder } from "../hold_folder.ts";
 import type { Clock } from "../record_step.ts";
 import { type BatchJob, batchJobs, expectedCost } from "./batch_jobs.ts";
 import { type BatchCost, type BatchResult, gatherBatch } from "./gather_batch.ts";
@@ -138,13 +138,23 @@ async function runJobs(
 /** Removes what workers that were ended at once have left: locks and half-written files. */
 async function clearFolders(jobs: readonly BatchJob[], folder: string): Promise<void> {
   for (const { runs } of jobs) {
-    for (const run of runs) {
-      try {
-        const path = join(folder, run.folder);
-        if ((await Deno.stat(path)).isDirectory) await holdFolder(path, () => Promise.resolve());
-      } catch {
-        // A folder that is not there, or that another run holds: nothing of ours to be removed.
-      }
+    for (const run of runs) await clearFolder(join(folder, run.folder));
+  }
+}
+
+/** A worker that was ended holds its lock for a moment more; another process may hold it for long. */
+async function clearFolder(folder: string): Promise<void> {
+  for (let attempt = 0; attempt < 50; attempt++) {
+    try {
+      await Deno.stat(join(folder, FOLDER_LOCK));
+    } catch {
+      return;
+    }
+    try {
+      await holdFolder(folder, () => Promise.resolve());
+      return;
+    } catch {
+      await new Promise((resolve) => setTimeout(resolve, 20));
     }
   }
 }

@@ -17,6 +17,7 @@ import { type Clock, doneStep, filesIntact, openRecord, stepError } from "../rec
 import { openSession, type Session } from "../session.ts";
 import { type StepName, stepTable } from "../step_table.ts";
 import { readTarget, type Target } from "../target.ts";
+import { keepResults } from "./keep_results.ts";
 import { removeRecorded } from "./remove_recorded.ts";
 import type { BatchJob, JobRun } from "./batch_jobs.ts";
 
@@ -118,7 +119,8 @@ async function runSteps(
 ): Promise<RunOutcome> {
   const { run, folder, signal, progress } = options;
   const record = openRecord(target, { inputs: await inputDigests(target, { signal }), folder });
-  const session = openSession(target, { signal, progress });
+  const keeper = keepResults(folder, record.key);
+  const session = openSession(target, { keep: keeper.keep, signal, progress });
   const steps: StepOutcome[] = [];
   let provenance = await readProvenance(folder);
   let first: StepError | null = null;
@@ -141,6 +143,7 @@ async function runSteps(
     first ??= step.error;
     steps.push({ command, status: step.status === "done" ? "made" : "failed" });
   }
+  await keeper.clear();
   return { variant: run.variant, steps, error: first };
 }
 

@@ -1,0 +1,101 @@
+import { join } from "@std/path";
+import { randomStream } from "@millrace/millrace/numerics";
+import { LAUNCH } from "../cli/run_millrace.ts";
+import { assertNothingWrong, assertSameOutputs } from "./batch_fixture.ts";
+
+/** What came of killing a batch again and again. */
+export interface KillReport {
+  /** Runs that were killed at work. */
+  readonly kills: number;
+  /** Runs that came to their end before they were killed; the next one began from nothing. */
+  readonly ended: number;
+  /** Kills after which some step was kept and some was not yet made. */
+  readonly in_the_middle: number;
+}
+
+function start(manifest: string, out: string): Deno.ChildProcess {
+  return new Deno.Command(Deno.execPath(), {
+    args: [...LAUNCH, "batch", manifest, "--out", out, "--workers", "2", "--quiet"],
+    stdin: "null",
+    stdout: "null",
+    stderr: "piped",
+    env: { NO_COLOR: "1" },
+  }).spawn();
+}
+
+async function toItsEnd(child: Deno.ChildProcess): Promise<void> {
+  const { code, stderr } = await child.output();
+  if (code !== 0) throw new Error(new TextDecoder().decode(stderr));
+}
+
+async function stepCount(out: string): Promise<number> {
+  let steps = 0;
+  try {
+    for await (const { name } of Deno.readDir(out)) {
+      const text = await Deno.readTextFile(join(out, name, "provenance.json")).catch(() => null);
+      if (text === null) continue;
+      const { runs } = JSON.parse(text) as { runs: { steps: unknown[] }[] };
+      for (const run of runs) steps += run.steps.length;
+    }
+  } catch (error) {
+    if (!(error instanceof Deno.errors.NotFound)) throw error;
+  }
+  return steps;
+}
+
+/**
+ * Runs a batch, kills it with SIGKILL at a random moment, and again, and looks after every kill that
+ * nothing wrong is there; whenever a run comes to its end, its outputs must be those of the
+ * undisturbed one, and the next begins from nothing.
+ *
+ * @param manifest The manifest.
+ * @param options How often, and where.
+ * @returns What happened.
+ */
+export async function killBatch(
+  manifest: string,
+  options: { folder: string; kills: number; seed: number; onKill?: (count: number) => void },
+): Promise<KillReport> {
+  const { folder, kills, seed, onKill } = options;
+  const [reference, out] = [join(folder, "undisturbed"), join(folder, "killed")];
+  const began = performance.now();
+  await toItsEnd(start(manifest, reference));
+  const whole_ms = performance.now() - began;
+  const total = await stepCount(reference);
+  const random = randomStream(seed);
+  const report = { kills: 0, ended: 0, in_the_middle: 0 };
+  while (report.kills < kills) {
+    const child = start(manifest, out);
+    const output = child.output();
+    const delay = (0.1 + 0.9 * random.uniform()) * whole_ms;
+    let timer: ReturnType<typeof setTimeout> | undefined;
+    const late = await Promise.race([
+      output.then(({ code, stderr }) => {
+        if (code !== 0) throw new Error(new TextDecoder().decode(stderr));
+        return false;
+      }),
+      new Promise<boolean>((resolve) => timer = setTimeout(() => resolve(true), delay)),
+    ]);
+    clearTimeout(timer);
+    if (late) {
+      child.kill("SIGKILL");
+      const { signal } = await output;
+      if (signal === "SIGKILL") {
+        report.kills++;
+        const steps = await stepCount(out);
+        if (steps > 0 && steps < total) report.in_the_middle++;
+        await assertNothingWrong(out, reference).catch((error) => {
+          if (!(error instanceof Deno.errors.NotFound)) throw error;
+        });
+        onKill?.(report.kills);
+        continue;
+      }
+    }
+    report.ended++;
+    await assertSameOutputs(out, reference);
+    await Deno.remove(out, { recursive: true });
+  }
+  await toItsEnd(start(manifest, out));
+  await assertSameOutputs(out, reference);
+  return report;
+}
