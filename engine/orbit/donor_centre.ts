@@ -1,5 +1,5 @@
 import { type DonorLight, kCorrection, kCorrectionRange } from "./k_correction.ts";
-import type { InclinationKnowledge, MeasuredValue } from "./mass_solution.ts";
+import type { InclinationKnowledge, MeasuredValue } from "./mass_input.ts";
 
 /** What is known for the K-correction. */
 export interface CentreOptions {

@@ -1,5 +1,6 @@
 import { massFunction } from "../binary/mod.ts";
-import type { MassDraws, MassInput, MassSolution } from "./mass_solution.ts";
+import type { MassInput } from "./mass_input.ts";
+import type { MassDraws, MassSolution } from "./mass_solution.ts";
 
 /** A curve of a plane, with what is constant along it. */
 export interface PlaneCurve {

@@ -1,55 +1,10 @@
-import {
-  eclipseWidth,
-  inclinationFromEclipse,
-  keplerMasses,
-  lobeRadius,
-  massFunction,
-} from "../binary/mod.ts";
+import { keplerMasses, lobeRadius, massFunction } from "../binary/mod.ts";
 import { InputError } from "../errors.ts";
 import { normalTail, type RandomStream } from "../numerics/mod.ts";
+import { type MassInput, type MeasuredValue, requireMassInput } from "./mass_input.ts";
+import { eclipseTable, tabulated } from "./mass_tables.ts";
 import { massRatioFromSuperhumps, rotationRatio } from "./rotation_ratio.ts";
 import { type DrawSummary, summarise } from "./weighted_summary.ts";
-
-/** A number with its standard deviation. */
-export interface MeasuredValue {
-  /** The value. */
-  readonly value: number;
-  /** One standard deviation. */
-  readonly error: number;
-}
-
-/** What is known of the inclination. */
-export type InclinationKnowledge =
-  | {
-    /** Inclination, degrees, with a normal error. */
-    readonly deg: MeasuredValue;
-  }
-  | {
-    /** Inclinations that are possible, degrees; orbits are drawn evenly over directions. */
-    readonly range_deg: readonly [low: number, high: number];
-  }
-  | {
-    /** Full width of the eclipse of the accretor's centre, cycles. */
-    readonly eclipse_width_cycles: MeasuredValue;
-  };
-
-/** What the masses are derived from. */
-export interface MassInput {
-  /** Period, d. */
-  readonly period_d: MeasuredValue;
-  /** K1, km/s; null when not measured. */
-  readonly k_accretor_kms: MeasuredValue | null;
-  /** K2 of the donor's centre of mass, km/s; null when not measured. */
-  readonly k_donor_kms: MeasuredValue | null;
-  /** v sin i of the donor, km/s; it gives q, or joins K1. @default {null} */
-  readonly v_sin_i_kms?: MeasuredValue | null;
-  /** Superhump period excess; it gives q, or joins the others. @default {null} */
-  readonly superhump_excess?: MeasuredValue | null;
-  /** Inclination; null when nothing is known. @default {null} */
-  readonly inclination?: InclinationKnowledge | null;
-  /** Eccentricity. @default {0} */
-  readonly eccentricity?: number;
-}
 
 /** Options of {@linkcode solveMasses}. */
 export interface MassOptions {
@@ -110,94 +65,6 @@ const action = "derive masses";
 /** Relative scatter of the superhump relation: common practice, no source. */
 const SUPERHUMP_SCATTER = 0.1;
 
-function requireMeasured(input: MassInput): void {
-  const { period_d, k_accretor_kms, k_donor_kms, v_sin_i_kms, superhump_excess } = input;
-  const numbers = { period_d, k_accretor_kms, k_donor_kms, v_sin_i_kms, superhump_excess };
-  for (const [key, measured] of Object.entries(numbers)) {
-    if (!measured) continue;
-    const { value: middle, error } = measured;
-    if (middle > 0 && error >= 0 && Number.isFinite(middle) && Number.isFinite(error)) continue;
-    throw new InputError({
-      action,
-      rule: `${key} must be positive with an error that is not negative`,
-      value: [middle, error],
-      key,
-    });
-  }
-  const { inclination } = input;
-  if (inclination && "range_deg" in inclination) {
-    const [low, high] = inclination.range_deg;
-    if (low > 0 && high > low && high <= 90) return;
-    throw new InputError({
-      action,
-      rule: "the range of inclinations must rise within (0, 90] deg",
-      value: inclination.range_deg,
-      unit: "deg",
-      key: "inclination_range_deg",
-    });
-  }
-  if (inclination && "deg" in inclination) {
-    const { value, error } = inclination.deg;
-    if (value > 0 && value <= 90 && error >= 0) return;
-    throw new InputError({
-      action,
-      rule: "inclination must be above 0 and at most 90 deg",
-      value,
-      unit: "deg",
-      key: "inclination_deg",
-    });
-  }
-}
-
-/** A slow function of ln q through a table: linear in the logarithms. */
-function tabulated(f: (q: number) => number, low: number, high: number, nodes: number) {
-  const from = Math.log(low), step = (Math.log(high) - from) / (nodes - 1);
-  const values = Array.from({ length: nodes }, (_, k) => Math.log(f(Math.exp(from + k * step))));
-  return {
-    value(q: number): number {
-      const place = Math.min(nodes - 1.000001, Math.max(0, (Math.log(q) - from) / step));
-      const k = Math.floor(place);
-      return Math.exp(values[k]! + (place - k) * (values[k + 1]! - values[k]!));
-    },
-    /** The q at which a rising function has a value; NaN outside. */
-    inverse(value: number): number {
-      const wanted = Math.log(value);
-      if (!(wanted >= values[0]! && wanted <= values[nodes - 1]!)) return NaN;
-      let k = 0;
-      while (k < nodes - 2 && values[k + 1]! < wanted) k++;
-      return Math.exp(from + step * (k + (wanted - values[k]!) / (values[k + 1]! - values[k]!)));
-    },
-  };
-}
-
-/** Inclination for an eclipse width, by a table about the likely values. */
-function eclipseTable(qs: readonly [number, number], width: MeasuredValue) {
-  const rows = 9, columns = 9;
-  const [low, high] = [
-    Math.max(1e-4, width.value - 4 * width.error),
-    width.value + 4 * width.error,
-  ];
-  const q_of = (r: number) => qs[0] * (qs[1] / qs[0]) ** (r / (rows - 1));
-  const w_of = (c: number) => low + (high - low) * c / (columns - 1);
-  const table = Array.from({ length: rows }, (_, r) => {
-    const widest = eclipseWidth(q_of(r), 90);
-    return Array.from(
-      { length: columns },
-      (_, c) => w_of(c) <= widest ? inclinationFromEclipse(q_of(r), w_of(c)) : NaN,
-    );
-  });
-  return (q: number, w: number): number => {
-    const r = Math.log(q / qs[0]) / Math.log(qs[1] / qs[0]) * (rows - 1);
-    const c = high > low ? (w - low) / (high - low) * (columns - 1) : 0;
-    if (!(r >= 0 && r <= rows - 1 && c >= 0 && c <= columns - 1)) return NaN;
-    const i = Math.min(rows - 2, Math.floor(r)), j = Math.min(columns - 2, Math.floor(c));
-    const s = r - i, t = c - j;
-    const upper = (1 - t) * table[i]![j]! + t * table[i]![j + 1]!;
-    const lower = (1 - t) * table[i + 1]![j]! + t * table[i + 1]![j + 1]!;
-    return (1 - s) * upper + s * lower;
-  };
-}
-
 /**
  * Masses from velocities by drawing every measured number from its normal distribution: medians with
  * asymmetric errors, for the masses are far from linear in K and sin i.
@@ -232,7 +99,7 @@ export function solveMasses(input: MassInput, options: MassOptions): MassSolutio
   const { random, draws: count = 20000, keep = 2000 } = options;
   const { period_d, k_accretor_kms: k1, k_donor_kms: k2, v_sin_i_kms = null } = input;
   const { superhump_excess = null, inclination = null, eccentricity = 0 } = input;
-  requireMeasured(input);
+  requireMassInput(input);
   const from: ("velocities" | "rotation" | "superhumps")[] = [];
   if (k1 && k2) from.push("velocities");
   if (v_sin_i_kms && k2) from.push("rotation");

@@ -4,13 +4,8 @@ import type { RandomStream } from "../numerics/mod.ts";
 import { eccentricityReport, jointReport } from "./joint_report.ts";
 import { type MassPlanes, massPlanes } from "./mass_planes.ts";
 import { massReport } from "./mass_report.ts";
-import {
-  type InclinationKnowledge,
-  type MassInput,
-  type MassSolution,
-  type MeasuredValue,
-  solveMasses,
-} from "./mass_solution.ts";
+import type { InclinationKnowledge, MassInput, MeasuredValue } from "./mass_input.ts";
+import { type MassSolution, solveMasses } from "./mass_solution.ts";
 import type { AccretorLine, FittedCurve } from "./measure_accretor.ts";
 import type { DonorLine } from "./measure_donor.ts";
 import { zeroShift } from "./orbit_ephemeris.ts";
@@ -78,6 +73,16 @@ function requireLines(lines: readonly OrbitLine[], phased: boolean): void {
         rule: `it takes at least 5 exposures (${trail.line.name})`,
         value: count,
         remedy: "add exposures",
+      });
+    }
+    const unknown = trail.sampling.profile_sigma_kms.find((sigma) => !(sigma > 0));
+    if (unknown !== undefined) {
+      throw new InputError({
+        action,
+        rule: `the resolution of every exposure must be known (${trail.line.name})`,
+        value: unknown,
+        unit: "km/s",
+        key: "resolution_angstrom",
       });
     }
     if (phased) requirePhaseSpread(phase, `${action} of ${trail.line.name}`);

@@ -18,6 +18,7 @@ export * from "./light_centre.ts";
 export * from "./line_profile.ts";
 export * from "./k_correction.ts";
 export * from "./lomb_scargle.ts";
+export * from "./mass_input.ts";
 export * from "./mass_planes.ts";
 export * from "./mass_solution.ts";
 export * from "./optimal_subtraction.ts";

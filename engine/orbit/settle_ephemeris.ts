@@ -4,7 +4,7 @@ import { donorOptions } from "./donor_options.ts";
 import { findPeriod } from "./line_period.ts";
 import { type AccretorLine, measureAccretor } from "./measure_accretor.ts";
 import { type DonorLine, measureDonor } from "./measure_donor.ts";
-import type { InclinationKnowledge } from "./mass_solution.ts";
+import type { InclinationKnowledge } from "./mass_input.ts";
 import { ephemerisOf, fittedIsBetter } from "./orbit_ephemeris.ts";
 import { fitOrbit } from "./orbit_fit.ts";
 import type { OrbitLine } from "./orbit_line.ts";

@@ -1,7 +1,7 @@
 import type { Warning } from "../errors.ts";
 import { type CentreOptions, correctedDonor, type DonorCentre } from "./donor_centre.ts";
 import type { DonorLight } from "./k_correction.ts";
-import type { MeasuredValue } from "./mass_solution.ts";
+import type { MeasuredValue } from "./mass_input.ts";
 import type { TemplateSubtraction } from "./optimal_subtraction.ts";
 import type { DonorReport, StarReport } from "./orbit_report.ts";
 import type { Settled } from "./settle_ephemeris.ts";

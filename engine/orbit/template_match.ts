@@ -165,7 +165,8 @@ export function matchExposures(
   const { baseline_order = 1, smear_kms, v_sin_i_kms = 0, limb_darkening = 0.5 } = options;
   const { sampling } = trail;
   const last = template.first_kms + template.step_kms * (template.flux.length - 1);
-  const [low, high] = [sampling.velocity_kms[0]!, sampling.velocity_kms[sampling.start[1]! - 1]!];
+  const low = sampling.velocity_kms.reduce((a, v) => Math.min(a, v), Infinity);
+  const high = sampling.velocity_kms.reduce((a, v) => Math.max(a, v), -Infinity);
   if (!(last > low && template.first_kms < high) || template.flux.every((f) => f === 0)) {
     throw new InputError({
       action: `compare ${trail.line.name} with template ${template.name}`,

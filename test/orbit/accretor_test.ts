@@ -114,6 +114,7 @@ Deno.test("findPlateau() refuses a wide fast spot and shows the range of K inste
   const { plateau, curves } = measureAccretor(trail);
   assertEquals(plateau.accepted, false);
   assert(plateau.reasons.length > 0 && plateau.k_range_kms![1] > plateau.k_range_kms![0]);
+  assert(plateau.reasons.join().includes("still change with separation"), plateau.reasons.join());
   assertEquals(curves.map(({ curve }) => curve.method), [
     "double-gaussian",
     "bisector",

@@ -156,6 +156,28 @@ Deno.test("measureDonor() gives no number when a telluric line stands on the dou
   }
 });
 
+Deno.test("measureDonor() gives no number when the same line also stands still", () => {
+  const noisy = withNoise(bright, randomStream(4));
+  const still = donorTrail(sampling, { error: 0.05, k_kms: 0, systemic_kms: 20, depth: 0.12 });
+  const both = { ...noisy, flux: noisy.flux.map((f, n) => f + still.flux[n]!) };
+  const found = measureDonor(both, { ...options, sign: "absorption" });
+  assertEquals(found.orbit, null);
+  assert(found.reasons.join().includes("stands still"), found.reasons.join());
+});
+
+Deno.test("donorVelocities() counts exposures in which masked pixels hide a bright line", () => {
+  const strong = donorTrail(sampling, { error: 0.02, depth: 0.5 });
+  const centres = [GAMMA, GAMMA + 423];
+  // All but the far wings of both lines where the star passes γ.
+  const hidden = masked(strong, (v) => centres.some((at) => Math.abs(v - at) < 75));
+  const found = donorVelocities(hidden, matchExposures(hidden, template));
+  assert(found.masked >= 4, `${found.masked}`);
+  found.curve.velocity_kms.forEach((v, i) => {
+    const truth = GAMMA + K2 * Math.sin(2 * Math.PI * sampling.phase[i]!);
+    if (Math.abs(truth - GAMMA) < 10) assertEquals(v, NaN);
+  });
+});
+
 Deno.test("measureDonor() says that noise is all there is", () => {
   const nothing = withNoise(donorTrail(sampling, { error: 0.3, depth: 0 }), randomStream(3));
   const found = measureDonor(nothing, options);

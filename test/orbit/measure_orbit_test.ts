@@ -89,6 +89,8 @@ Deno.test("measureOrbit() measures both stars, q and masses of a simulated binar
   assertEquals(report.eccentricity!.significant, false);
   assertEquals(report.zero_from, "donor");
   assertEquals(report.period_from, "fitted");
+  // Two and a half orbits know the period ten times less well than the ephemeris: a prior.
+  assert(report.period_error_d! <= ephemeris.period_error_d);
   assertAlmostEquals(report.zero_shift_cycles!, 0, 4 * report.zero_error_d! / report.period_d);
   assertEquals(codes(found), []);
   const methods = report.curves.map(({ line, method }) => `${line} ${method}`);
@@ -200,6 +202,7 @@ Deno.test("measureOrbit() corrects irradiated emission and shows both ends of an
   assertAlmostEquals(donor!.k_kms!, 340 * shape, 3.5 * donor!.k_error_kms!);
   const [low, high] = donor!.k_centre_range_kms!;
   assert(low < 340 && high > 340 && low > donor!.k_kms!);
+  assert(donor!.k_centre_error_kms! > (high - low) / Math.sqrt(12));
   assert(codes(ranged).includes("k-correction-range"));
   const known = measureOrbit(lines, { ephemeris, random: randomStream(1), disc_shadow_deg: 4 });
   const centre = known.report.donor!;
@@ -290,6 +293,12 @@ Deno.test("measureOrbit() refuses no line, few exposures, one phase, and an empt
     () => measureOrbit([{ trail: once, traces: "donor" }], { ephemeris, random }),
     InputError,
     "phases must spread over the orbit",
+  );
+  const blurred = { ...sodium, sampling: { ...red, profile_sigma_kms: new Float64Array(60) } };
+  assertThrows(
+    () => measureOrbit([{ trail: blurred, traces: "donor" }], { ephemeris, random }),
+    InputError,
+    "resolution of every exposure must be known",
   );
   const error = assertThrows(
     () => measureOrbit(noisyLines(1), { ephemeris, random, period_range_d: [0.2, 0.1] }),
