@@ -3,6 +3,12 @@ import { InputError } from "../errors.ts";
 import { heliocentricToBjd, type SplitDate } from "../sky/mod.ts";
 import { needed, type Target } from "./target.ts";
 
+/** Whether the zero of phase of a target file is heliocentric, so that the direction is needed. */
+export function hasHeliocentricZero(target: Target): boolean {
+  const { zero_bjd_tdb, zero_hjd_utc, zero_hjd_tt } = target.settings.orbit;
+  return zero_bjd_tdb === undefined && (zero_hjd_utc ?? zero_hjd_tt) !== undefined;
+}
+
 /**
  * The ephemeris of a target file, its zero brought to BJD(TDB).
  *
@@ -26,14 +32,14 @@ export function ephemerisOf(
   });
   const date: SplitDate = [Math.floor(written), written - Math.floor(written)];
   let zero = date;
-  if (orbit.zero_bjd_tdb === undefined) {
+  if (hasHeliocentricZero(target)) {
     if (options.direction === null) {
       throw new InputError({
         action: "bring the heliocentric zero of phase to BJD(TDB)",
         rule: "the direction of the target must be known",
         file: target.file,
         key: "sky.ra_deg",
-        remedy: "give sky.ra_deg and sky.dec_deg",
+        remedy: "give sky.ra_deg and sky.dec_deg, or exposures whose headers do",
       });
     }
     zero = heliocentricToBjd(date, {

@@ -61,7 +61,7 @@ export async function inputDigests(
 
 /** Words that stand where a file name may. */
 const WORDS: Readonly<Record<string, readonly string[]>> = {
-  wavelength_zero_kms: ["none", "sky-lines"],
+  wavelength_zero_kms: ["none", "sky-lines", "telluric"],
   photometry: ["none"],
   template: ["none"],
   prior_image: ["uniform", "blurred", "axisymmetric"],

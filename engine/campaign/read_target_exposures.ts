@@ -1,17 +1,27 @@
 import { join, relative } from "@std/path";
 import { InputError, type Warning } from "../errors.ts";
 import { expandGlob, readBytes, sha256 } from "../files/mod.ts";
+import type { Direction } from "../sky/mod.ts";
 import { type Decision, readExposures, type Spectrum } from "../spectra/mod.ts";
+import type { Photometry } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
+import { groupPhotometry } from "./group_photometry.ts";
 import type { InputDigest } from "./output_head.ts";
 import { pause } from "./pause.ts";
 import type { Target } from "./target.ts";
+import { type GroupZero, zeroedGroup } from "./wavelength_zeros.ts";
 
 /** All exposures of a target. */
 export interface TargetExposures {
   /** Spectra, in order of groups and files. */
   readonly spectra: readonly Spectrum[];
-  /** What each "auto" decided. */
+  /** Where the target is, as `[sky]` or the headers say; null when nothing does. */
+  readonly direction: Direction | null;
+  /** Zeros of wavelength that were corrected, one entry a group that asks for it. */
+  readonly zeros: readonly GroupZero[];
+  /** Light curves that scale the exposures, one entry a group; null where it has none. */
+  readonly photometry: readonly (Photometry | null)[];
+  /** What each "auto" decided, and what was corrected. */
   readonly decisions: readonly Decision[];
   /** What a user should know. */
   readonly warnings: readonly Warning[];
@@ -48,6 +58,8 @@ export async function readTargetExposures(
   const decisions: Decision[] = [];
   const warnings: Warning[] = [];
   const inputs = new Map<string, InputDigest>();
+  const zeros: GroupZero[] = [];
+  let direction: Direction | null = null;
   for (const [group, settings] of exposures.entries()) {
     const paths: string[] = [];
     for (const [index, pattern] of settings.files.entries()) {
@@ -88,16 +100,28 @@ export async function readTargetExposures(
       group,
     });
     // Outputs name files from the target file, so that they do not depend on where one stood.
-    spectra.push(...read.spectra.map((spectrum) => ({
-      ...spectrum,
-      source: relative(target.folder, spectrum.source),
-    })));
-    decisions.push(...read.decisions.map((decision) => ({
-      ...decision,
-      source: relative(target.folder, decision.source),
-    })));
-    warnings.push(...read.warnings);
+    const named = <T extends { readonly source: string }>(one: T): T => ({
+      ...one,
+      source: relative(target.folder, one.source),
+    });
+    const zeroed = await zeroedGroup(read.spectra.map(named), { target, group });
+    spectra.push(...zeroed.spectra);
+    decisions.push(...read.decisions.map(named), ...zeroed.decisions);
+    warnings.push(...read.warnings, ...zeroed.warnings);
+    if (zeroed.zero !== null) zeros.push(zeroed.zero);
+    for (const input of zeroed.inputs) inputs.set(input.file, input);
+    direction ??= read.target;
     await pause(signal);
   }
-  return { spectra, decisions, warnings, inputs: [...inputs.values()] };
+  const light = await groupPhotometry(target, { spectra });
+  for (const input of light.inputs) inputs.set(input.file, input);
+  return {
+    spectra,
+    direction,
+    zeros,
+    photometry: light.curves,
+    decisions: [...decisions, ...light.decisions],
+    warnings: [...warnings, ...light.warnings],
+    inputs: [...inputs.values()],
+  };
 }

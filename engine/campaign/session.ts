@@ -4,7 +4,7 @@ import { type AnyMap, canAnyMapFit } from "../tomography/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
-import { ephemerisOf } from "./ephemeris_of.ts";
+import { ephemerisOf, hasHeliocentricZero } from "./ephemeris_of.ts";
 import { linesOf, mappedLines } from "./line_of.ts";
 import { mapLine, type MappedLine } from "./map_line.ts";
 import { pause } from "./pause.ts";
@@ -75,18 +75,17 @@ export function openSession(
 ): Session {
   const { workers = 1, force = false, keep = (_name, make) => make(), progress, signal } = options;
   const exposures = once(() => readTargetExposures(target, { progress, signal }));
-  const ephemeris = once(() => {
-    const { sky } = target.settings;
-    const direction = sky.ra_deg !== undefined && sky.dec_deg !== undefined
-      ? { ra_deg: sky.ra_deg, dec_deg: sky.dec_deg }
-      : null;
-    return Promise.resolve(ephemerisOf(target, { direction }));
-  });
+  const ephemeris = once(async () => ephemerisOf(target, { direction: await directionOf() }));
+  const directionOf = async () => {
+    const { sky: { ra_deg, dec_deg }, exposures: groups } = target.settings;
+    if (ra_deg !== undefined && dec_deg !== undefined) return { ra_deg, dec_deg };
+    return groups.length > 0 && hasHeliocentricZero(target) ? (await exposures()).direction : null;
+  };
   const binary = () => binaryOf(target);
   const trail = perLine(async (line) => {
-    const [{ spectra }, folded] = [await exposures(), await ephemeris()];
+    const [{ spectra, photometry }, folded] = [await exposures(), await ephemeris()];
     await pause(signal);
-    return trailOf(spectra, { target, line, ephemeris: folded });
+    return trailOf(spectra, { target, line, ephemeris: folded, photometry });
   });
   const systemic = once(() =>
     systemicOf(target, async () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))

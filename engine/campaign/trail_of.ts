@@ -1,6 +1,6 @@
 import type { Ephemeris } from "../binary/mod.ts";
 import type { Spectrum } from "../spectra/mod.ts";
-import { makeTrail, type Trail } from "../trail/mod.ts";
+import { makeTrail, type Photometry, type Trail } from "../trail/mod.ts";
 import { SPEED_OF_LIGHT_KMS } from "../constants.ts";
 import { lineOf } from "./line_of.ts";
 import { observedMasks } from "./observed_masks.ts";
@@ -15,14 +15,20 @@ import type { Target } from "./target.ts";
  * @param options.target The target.
  * @param options.line The table.
  * @param options.ephemeris The ephemeris.
+ * @param options.photometry Light curves that scale the exposures, one a group. @default none
  * @returns The trail.
  * @throws {InputError} When nothing covers the line.
  */
 export function trailOf(
   spectra: readonly Spectrum[],
-  options: { target: Target; line: LineSettings; ephemeris: Ephemeris },
+  options: {
+    target: Target;
+    line: LineSettings;
+    ephemeris: Ephemeris;
+    photometry?: readonly (Photometry | null)[];
+  },
 ): Trail {
-  const { target, line: settings, ephemeris } = options;
+  const { target, line: settings, ephemeris, photometry = [] } = options;
   const { trail } = target.settings;
   const line = lineOf(settings, { target });
   return makeTrail(spectra, {
@@ -37,6 +43,7 @@ export function trailOf(
     cosmic_rays: trail.cosmic_rays,
     masks: observedMasks(trail),
     noise_scale: trail.noise_scale,
+    photometry,
     resolution_kms: lineResolution(settings, line.vacuum_angstrom),
   });
 }

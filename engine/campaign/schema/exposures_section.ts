@@ -25,7 +25,7 @@ export interface ExposuresSettings {
   readonly resolution_kms?: number;
   /** Wavelength over full width at half maximum. */
   readonly resolving_power?: number;
-  /** "none", "sky-lines", or a CSV of shifts. */
+  /** "none", "sky-lines", "telluric", or a CSV of shifts. */
   readonly wavelength_zero_kms: string;
   /** "none", or a CSV of times and fluxes that scales each exposure. */
   readonly photometry: string;
