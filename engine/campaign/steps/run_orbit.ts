@@ -7,15 +7,19 @@ import {
   type OrbitReport,
   type VelocityRow,
 } from "../../orbit/mod.ts";
+import type { PanelName } from "../../figures/mod.ts";
 import { airToVacuum } from "../../sky/mod.ts";
 import { FWHM_OVER_SIGMA } from "../../trail/mod.ts";
+import { figureFiles } from "../figure_files.ts";
 import { inclinationOf } from "../inclination_of.ts";
 import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
 import { pause } from "../pause.ts";
 import { readTemplates } from "../read_template.ts";
 import { refinedTarget } from "../refined_target.ts";
+import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
 import { VERSION } from "../version.ts";
+import { orbitSubject } from "../subject/orbit_subject.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
 /** Stream of chance of `orbit`, not that of any other step. */
@@ -94,6 +98,7 @@ export async function runOrbit(
   const files = await writeStep([
     ["orbit.json", jsonText(document)],
     ["velocities.ecsv", formatEcsv(velocityTable(measurement.velocities, target.title))],
+    ...await orbitPlate(session, measurement),
   ], output);
   const refined = options.refine
     ? await writeStep(
@@ -102,6 +107,44 @@ export async function runOrbit(
     )
     : [];
   return { document, files: [...files, ...refined], warnings, measurement };
+}
+
+/** Velocity curves and the diagrams behind them; masses where they were measured. */
+async function orbitPlate(
+  session: Session,
+  measurement: OrbitMeasurement,
+): Promise<[name: string, data: Uint8Array | string][]> {
+  const { plate } = session.target.settings;
+  const [line] = session.lines("draw the orbit") as [LineSettings];
+  const trail = await session.trail(line);
+  const subject = orbitSubject(measurement, { line: trail.line.name });
+  const rows: PanelName[][] = [
+    [
+      ...(subject.velocities === undefined ? [] : ["velocity-curve" as const]),
+      ...(subject.diagnostic === undefined ? [] : ["diagnostic" as const]),
+      ...(subject.light_centre === undefined ? [] : ["light-centre" as const]),
+    ],
+    [
+      ...(subject.periodogram === undefined ? [] : ["periodogram" as const]),
+      ...(subject.mass_plane === undefined ? [] : ["mass-plane" as const]),
+      ...(subject.inclination_plane === undefined ? [] : ["inclination-plane" as const]),
+    ],
+  ];
+  const shown = rows.filter((row) => row.length > 0);
+  if (shown.length === 0) return [];
+  const { drawPlate } = await import("../../figures/mod.ts");
+  const drawn = drawPlate(
+    { width: plate.width, letters: true, rows: shown.map((panels) => ({ panels })) },
+    [{
+      title: plate.title ?? session.target.title,
+      line: trail.line,
+      systemic_kms: (await session.systemic()).kms,
+      method: "",
+      binary: session.binary(),
+      ...subject,
+    }],
+  );
+  return figureFiles(drawn, { name: "orbit-plate", plate });
 }
 
 function velocityTable(rows: readonly VelocityRow[], title: string): EcsvTable {

@@ -10,7 +10,7 @@ import {
 } from "../../synthesis/mod.ts";
 import { fitOfMap } from "../../tomography/mod.ts";
 import { makeGrid, type Trail, type TrailGrid } from "../../trail/mod.ts";
-import { captionText } from "../caption_text.ts";
+import { figureFiles } from "../figure_files.ts";
 import { fitsHead, hduName } from "../fits_head.ts";
 import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
 import { pause } from "../pause.ts";
@@ -196,14 +196,19 @@ async function modelPlate(
   session: Session,
   made: readonly SynthesizedLine[],
 ): Promise<[name: string, data: Uint8Array | string][]> {
-  const { drawPlate, pdfBytes, pngBytes, svgText } = await import("../../figures/mod.ts");
+  const { drawPlate } = await import("../../figures/mod.ts");
   const { plate } = session.target.settings;
   const systemic_kms = (await session.systemic()).kms;
-  const { picture, caption } = drawPlate(
+  const drawn = drawPlate(
     {
       width: plate.width,
-      rows: made.map(({ observed }, subject) => ({
-        panels: observed ? ["map", "trail", "model", "residual"] : ["map", "model"],
+      rows: made.map(({ observed, map }, subject) => ({
+        panels: [
+          ...(map.parts.length > 0 ? ["map"] as const : []),
+          ...(observed ? ["trail"] as const : []),
+          { panel: "model" as const, name: "model" },
+          ...(observed ? ["residual"] as const : []),
+        ],
         subject,
       })),
     },
@@ -220,18 +225,7 @@ async function modelPlate(
       residual: residualOf(trail, grid),
     })),
   );
-  const files: [string, Uint8Array | string][] = [];
-  for (const format of plate.formats) {
-    files.push([
-      `model-plate.${format}`,
-      format === "svg"
-        ? svgText(picture)
-        : format === "png"
-        ? await pngBytes(picture)
-        : await pdfBytes(picture),
-    ]);
-  }
-  return [...files, ["model-plate.txt", captionText(caption)]];
+  return figureFiles(drawn, { name: "model-plate", plate });
 }
 
 /** Data less model on the display grid, standard deviations. */
