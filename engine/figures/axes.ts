@@ -169,8 +169,8 @@ export function drawAxes(frame: Box, options: AxesOptions): Item[] {
   const items: Item[] = [];
   const text = (item: Omit<TextItem, "kind" | "runs">, label: string) =>
     items.push({ kind: "text", fill: INK, ...item, runs: labelRuns(label) });
-  const xTicks = axisTicks(options.x);
-  const yTicks = axisTicks(options.y);
+  const xTicks = spacedTicks(options.x, { length_pt: frame.width, room: beside });
+  const yTicks = spacedTicks(options.y, { length_pt: frame.height, room: stacked });
   for (const { value, text: label } of xTicks) {
     const x = place.x(value);
     d += linePath([[x, bottom], [x, bottom + TICK_LENGTH]]);
@@ -205,6 +205,37 @@ export function drawAxes(frame: Box, options: AxesOptions): Item[] {
   }
   return items;
 }
+
+/**
+ * Ticks whose values keep clear of one another, fewer than asked for where they must be.
+ *
+ * @param axis The axis.
+ * @param options Its length on the page, and the room that two neighbouring values need.
+ */
+function spacedTicks(
+  axis: Axis,
+  options: { readonly length_pt: number; readonly room: (a: string, b: string) => number },
+): Tick[] {
+  const { range: [from, to], ticks = 5 } = axis;
+  let made = axisTicks(axis);
+  if (typeof ticks !== "number") return made;
+  const clear = () =>
+    made.every(({ value, text }, i) => {
+      const next = made[i + 1];
+      if (next === undefined) return true;
+      const distance = Math.abs((next.value - value) / (to - from)) * options.length_pt;
+      return distance >= options.room(text, next.text);
+    });
+  for (let count = ticks - 1; count >= 1 && !clear(); count--) {
+    made = axisTicks({ ...axis, ticks: count });
+  }
+  return made;
+}
+
+/** Room between the middles of two values side by side: digits are half as wide as they are high. */
+const beside = (a: string, b: string) => 0.5 * TICK_PT * ((a.length + b.length) / 2 + 1);
+/** The same for values one above the other. */
+const stacked = () => 1.1 * TICK_PT;
 
 function lineBetween(points: readonly [x: number, y: number][]): string {
   const first = points[0];

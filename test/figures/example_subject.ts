@@ -122,6 +122,7 @@ export function exampleSubject(): PlateSubject {
       best: 27,
       best_error: 8,
       label: "*χ*^{2}/*N*",
+      statistic: "χ² over the number of samples",
     },
     mass_plane: {
       curves: [{

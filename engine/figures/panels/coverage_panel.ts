@@ -1,4 +1,5 @@
 import type { Group } from "../display_list.ts";
+import { lineLabel } from "../line_label.ts";
 import type { PlotLayer } from "../plot_layer.ts";
 import { INK } from "../style.ts";
 import { type PanelPlace, plotPanel } from "./plot_panel.ts";
@@ -59,7 +60,7 @@ export function coveragePanel(rows: readonly CoverageRow[], options: PanelPlace)
     y: {
       range: [-0.6, rows.length - 0.4],
       ticks: rows.map((_, i) => rows.length - 1 - i),
-      format: (level) => rows[rows.length - 1 - level]?.name ?? "",
+      format: (level) => lineLabel(rows[rows.length - 1 - level]?.name ?? ""),
     },
   });
 }

@@ -59,6 +59,7 @@ export function diagnosticPanel(diagram: DiagnosticDiagram, options: PanelPlace)
   ];
   const gap = 5;
   const height = (frame.height - 3 * gap) / 4;
+  const ticks = Math.max(2, Math.round(frame.width / 38));
   return {
     kind: "group",
     name,
@@ -79,8 +80,8 @@ export function diagnosticPanel(diagram: DiagnosticDiagram, options: PanelPlace)
         frame: { ...frame, y: frame.y + i * (height + gap), height },
         name: `${name}-${i + 1}`,
         x: last
-          ? { label: `separation (${KMS_LABEL})`, ticks: 4, ...range(options.x_range) }
-          : { ticks: 4, format: null, ...range(options.x_range) },
+          ? { label: `separation (${KMS_LABEL})`, ticks, ...range(options.x_range) }
+          : { ticks, format: null, ...range(options.x_range) },
         y: { label, ticks: 3 },
       });
     }),

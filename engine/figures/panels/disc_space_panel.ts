@@ -2,7 +2,9 @@ import { ballisticStream, type Binary, donorMassFraction, lobeOutline } from "..
 import type { Group } from "../display_list.ts";
 import { type ColourScale, type Grid, paintGrid } from "../colour/colour_scale.ts";
 import { type PlotLayer } from "../plot_layer.ts";
-import { ACCENT, INK } from "../style.ts";
+import { textWidth } from "../fonts.ts";
+import { labelRuns } from "../runs.ts";
+import { ACCENT, INK, LABEL_PT } from "../style.ts";
 import { type PanelPlace, plotPanel } from "./plot_panel.ts";
 
 /** The orbital plane as it is drawn: unit the separation, origin at the centre of mass. */
@@ -76,7 +78,7 @@ export function discSpacePanel(disc: DiscInSpace, options: PanelPlace): Group {
   const panel = plotPanel(layers, {
     frame,
     name,
-    x: { range: x_range, label: "*x*/*a* from the centre of mass", ticks: [-0.5, 0, 0.5, 1] },
+    x: { range: x_range, label: xLabel(frame.width), ticks: [-0.5, 0, 0.5, 1] },
     y: { range: [-half, half], label: "*y*/*a*", ticks: [-0.5, 0, 0.5] },
   });
   if (!image) return panel;
@@ -89,4 +91,10 @@ export function discSpacePanel(disc: DiscInSpace, options: PanelPlace): Group {
     height: side,
   };
   return { ...panel, items: [paintGrid(image.grid, { box, scale: image.scale }), ...panel.items] };
+}
+
+/** The longest label that the frame has room for. */
+function xLabel(width_pt: number): string {
+  const full = "*x*/*a* from the centre of mass";
+  return textWidth(labelRuns(full), LABEL_PT) <= width_pt ? full : "*x*/*a*";
 }

@@ -1,11 +1,11 @@
-import type { Group } from "../display_list.ts";
+import type { Box, Group } from "../display_list.ts";
 import type { LineLayer, PlotLayer, PointsLayer } from "../plot_layer.ts";
-import { SERIES } from "../style.ts";
-import { type PanelPlace, plotPanel } from "./plot_panel.ts";
+import { NOTE_PT, SERIES } from "../style.ts";
+import { layerRange, type PanelPlace, plotPanel } from "./plot_panel.ts";
 
 /** A quantity measured along the orbit: equivalent width, V/R, continuum, velocity. */
 export interface PhaseCurve {
-  /** Name of the series (markup of `labelRuns`), written beside it where there are several. */
+  /** Name of the series (markup of `labelRuns`), written above the points where there are several. */
   readonly name?: string;
   /** Orbital phases in [0, 1), N values. */
   readonly phase: ArrayLike<number>;
@@ -50,11 +50,14 @@ export function phaseCurvePanel(
 ): Group {
   const { frame, label, cycles = 2, hide_phase = false, name = "phase-curve", y_range } = options;
   const layers = curves.flatMap((curve, i): PlotLayer[] => {
-    const colour = SERIES[i % SERIES.length]!;
-    const line: LineLayer[] = curve.model ? [modelLine(curve.model, { cycles, colour })] : [];
-    return [...line, repeated(curve, { cycles, colour, named: curves.length > 1, order: i })];
+    const style = { cycles, colour: SERIES[i % SERIES.length]!, order: i };
+    const line: LineLayer[] = curve.model ? [modelLine(curve.model, style)] : [];
+    return [...line, repeated(curve, style)];
   });
-  return plotPanel(layers, {
+  const range = y_range ?? layerRange(layers, "y");
+  const named = curves.length > 1 ? curves.filter((curve) => curve.name !== undefined) : [];
+  const above = nameBand(named, { range, frame, cycles, curves });
+  return plotPanel([...layers, ...above.layers], {
     frame,
     name,
     x: {
@@ -67,14 +70,55 @@ export function phaseCurvePanel(
     y: {
       label,
       ticks: Math.max(3, Math.round(frame.height / 22)),
-      ...(y_range ? { range: y_range } : {}),
+      range: above.range,
     },
   });
 }
 
+/** Height of a line of names above the points, pt. */
+const LINE_PT = 1.3 * NOTE_PT;
+
+/** Names in a band of their own above the points, each behind a mark of its series. */
+function nameBand(
+  named: readonly PhaseCurve[],
+  options: {
+    readonly range: readonly [number, number];
+    readonly frame: Box;
+    readonly cycles: number;
+    readonly curves: readonly PhaseCurve[];
+  },
+): { readonly range: readonly [number, number]; readonly layers: readonly PlotLayer[] } {
+  const { range: [low, high], frame, cycles, curves } = options;
+  const band = named.length === 0 ? 0 : LINE_PT * named.length + 2;
+  if (band === 0 || band > 0.5 * frame.height) return { range: [low, high], layers: [] };
+  const top = low + (high - low) * frame.height / (frame.height - band);
+  const x_unit = cycles / frame.width;
+  const y_unit = (top - low) / frame.height;
+  const layers = named.flatMap((curve, i): PlotLayer[] => {
+    const order = curves.indexOf(curve);
+    const y = top - (LINE_PT * (i + 0.5) + 1) * y_unit;
+    const colour = SERIES[order % SERIES.length]!;
+    const shape = SHAPES[order % SHAPES.length]!;
+    return [
+      { kind: "points", x: [6 * x_unit], y: [y], colour, shape },
+      {
+        kind: "note",
+        x: 10 * x_unit,
+        y: y - 0.34 * NOTE_PT * y_unit,
+        text: curve.name!,
+        colour,
+      },
+    ];
+  });
+  return { range: [low, top], layers };
+}
+
+const SHAPES = ["dot", "open", "diamond", "square"] as const;
+
 interface SeriesStyle {
   readonly cycles: number;
   readonly colour: string;
+  readonly order: number;
 }
 
 /** A model as a curve over all cycles. */
@@ -84,11 +128,8 @@ function modelLine(model: (phase: number) => number, style: SeriesStyle): LineLa
 }
 
 /** Points of a series, shown again in each cycle. */
-function repeated(
-  curve: PhaseCurve,
-  style: SeriesStyle & { readonly named: boolean; readonly order: number },
-): PointsLayer {
-  const { cycles, colour, named, order } = style;
+function repeated(curve: PhaseCurve, style: SeriesStyle): PointsLayer {
+  const { cycles, colour, order } = style;
   const again = (values: ArrayLike<number>, step: number) =>
     Array.from({ length: cycles }, (_, cycle) => Array.from(values, (v) => v + cycle * step))
       .flat();
@@ -98,7 +139,6 @@ function repeated(
     y: again(curve.value, 0),
     ...(curve.error ? { y_error: again(curve.error, 0) } : {}),
     colour,
-    shape: (["dot", "open", "diamond", "square"] as const)[order % 4]!,
-    ...(named && curve.name !== undefined ? { name: curve.name } : {}),
+    shape: SHAPES[order % SHAPES.length]!,
   };
 }

@@ -1,10 +1,11 @@
 import { type ColourScale, paintGrid } from "../colour/colour_scale.ts";
-import type { Group } from "../display_list.ts";
-import type { PlotLayer } from "../plot_layer.ts";
+import type { Box, Group } from "../display_list.ts";
+import type { NoteLayer, PlotLayer } from "../plot_layer.ts";
 import { plotPlace } from "../axes.ts";
 import { textWidth } from "../fonts.ts";
 import { labelRuns } from "../runs.ts";
 import { ACCENT, INK, NOTE_PT } from "../style.ts";
+import { curveNames } from "./curve_names.ts";
 import { layerRange, type PanelPlace, plotPanel } from "./plot_panel.ts";
 
 /** What is known about two quantities at once. */
@@ -55,7 +56,8 @@ export interface PlanePanelOptions extends PanelPlace {
  * samples, the adopted pair.
  *
  * @param plane The constraints.
- * @param options Place, labels; both ranges should be stated where there are areas or curves without end.
+ * @param options Place, labels. Without ranges the axes reach the adopted pair itself, or six of its errors, to
+ * either side.
  * @returns The panel.
  *
  * @example
@@ -74,10 +76,9 @@ export function planePanel(plane: Plane, options: PlanePanelOptions): Group {
   const areas = excluded.map(({ x, y }): PlotLayer => {
     return { kind: "line", x, y, closed: true, fill: INK, width_pt: 0.4 };
   });
-  for (const { x, y, low, high, name } of curves) {
+  for (const { x, y, low, high } of curves) {
     if (low && high) layers.push({ kind: "band", x, low, high });
     layers.push({ kind: "line", x, y });
-    layers.push({ kind: "note", x: x.at(-1)!, y: y.at(-1)!, text: name, anchor: "end" });
   }
   if (adopted) {
     const { x, y, x_error = 0, y_error = 0 } = adopted;
@@ -92,11 +93,19 @@ export function planePanel(plane: Plane, options: PlanePanelOptions): Group {
     });
   }
   const cloud: PlotLayer[] = samples ? [{ kind: "points", ...samples, radius_pt: 0 }] : [];
-  const xs = x_range ?? rangeOf([...areas, ...layers, ...cloud], "x");
-  const ys = y_range ?? rangeOf([...areas, ...layers, ...cloud], "y");
+  const all = [...areas, ...layers, ...cloud];
+  const around = adopted && {
+    x: about(adopted.x, adopted.x_error),
+    y: about(adopted.y, adopted.y_error),
+  };
+  const xs = x_range ?? around?.x ?? layerRange(all, "x");
+  const ys = y_range ?? around?.y ?? layerRange(all, "y");
   const unit_pt = frame.width / (xs[1] - xs[0]);
-  const names = excluded.map((area) => areaName(area, unit_pt));
-  const panel = plotPanel([...areas, ...layers, ...names], {
+  const names = excluded.map((area) => areaName(area, unit_pt))
+    .filter(({ x, y }) => x > xs[0] && x < xs[1] && y > ys[0] && y < ys[1]);
+  const free = adopted ? [boxAround(adopted, { frame, x_range: xs, y_range: ys })] : [];
+  const along = curveNames(curves, { frame, x_range: xs, y_range: ys, free });
+  const panel = plotPanel([...areas, ...layers, ...names, ...along], {
     frame,
     name,
     x: { range: xs, label: x_label, ticks: Math.max(3, Math.round(frame.width / 36)) },
@@ -107,12 +116,30 @@ export function planePanel(plane: Plane, options: PlanePanelOptions): Group {
   return { ...panel, items: [density, ...panel.items] };
 }
 
-function rangeOf(layers: readonly PlotLayer[], direction: "x" | "y"): [number, number] {
-  return layerRange(layers.filter((layer) => layer.kind !== "note"), direction);
+/** A value itself or six of its errors to either side, whichever is more, above zero. */
+function about(value: number, error = 0): [number, number] {
+  const reach = Math.max(Math.abs(value), 6 * error) || 1;
+  return [Math.max(0, value - reach), value + reach];
+}
+
+/** The adopted pair with its errors, pt. */
+function boxAround(
+  pair: NonNullable<Plane["adopted"]>,
+  options: Pick<PlanePanelOptions, "frame"> & {
+    readonly x_range: readonly [number, number];
+    readonly y_range: readonly [number, number];
+  },
+): Box {
+  const { x, y, x_error = 0, y_error = 0 } = pair;
+  const axes = { x: { range: options.x_range }, y: { range: options.y_range } };
+  const place = plotPlace(options.frame, axes);
+  const [left, right] = [place.x(x - x_error) - 3, place.x(x + x_error) + 3];
+  const [top, bottom] = [place.y(y + y_error) - 3, place.y(y - y_error) + 3];
+  return { x: left, y: top, width: right - left, height: bottom - top };
 }
 
 /** The name of an area in its middle, upright where the area is too narrow for it. */
-function areaName(area: PlaneCurve, unit_pt: number): PlotLayer {
+function areaName(area: PlaneCurve, unit_pt: number): NoteLayer {
   const [left, right] = [Math.min(...area.x), Math.max(...area.x)];
   const y = (Math.min(...area.y) + Math.max(...area.y)) / 2;
   const upright = (right - left) * unit_pt < textWidth(labelRuns(area.name), NOTE_PT) + 4;
@@ -190,8 +217,14 @@ export function massPlanePanel(plane: Plane, options: PanelPlace): Group {
 export function inclinationPlanePanel(plane: Plane, options: PanelPlace): Group {
   return planePanel(plane, {
     name: "inclination-plane",
+    ...(plane.adopted ? { y_range: tilts(plane.adopted) } : {}),
     x_label: "mass ratio *q*",
     y_label: "inclination (°)",
     ...options,
   });
+}
+
+/** Inclinations about the adopted one, as far as 90°. */
+function tilts({ y, y_error = 0 }: NonNullable<Plane["adopted"]>): [number, number] {
+  return [Math.max(0, Math.min(y / 2, y - 6 * y_error)), 90];
 }

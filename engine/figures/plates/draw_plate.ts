@@ -6,7 +6,7 @@ import { plainRuns } from "../runs.ts";
 import { INK, LABEL_PT } from "../style.ts";
 import type { PanelKind, PanelScale } from "./panel_kind.ts";
 import { panelKinds } from "./panel_kinds.ts";
-import { type PlateDescription, plateRows, plateWidth } from "./plate_description.ts";
+import { checkPlate, type PlateDescription, plateRows, plateWidth } from "./plate_description.ts";
 import { BAR_PT, BAR_RISE_PT, NAME_RISE_PT, type PanelBox, plateLayout } from "./plate_layout.ts";
 import type { PlateSubject } from "./plate_subject.ts";
 
@@ -22,7 +22,7 @@ export interface Plate {
 interface Piece {
   readonly kind: PanelKind;
   readonly subject: PlateSubject;
-  readonly index: number;
+  readonly key: string;
   readonly box: PanelBox;
   readonly scale: PanelScale | undefined;
   readonly letter: string;
@@ -61,6 +61,7 @@ export function drawPlate(
   if (subjects.length === 0) {
     throw new InputError({ action: "draw plate", rule: "there must be at least one line to show" });
   }
+  checkPlate(description, subjects.length);
   const width = plateWidth(description);
   const rows = plateRows(description, subjects.length);
   const { letters = false } = description;
@@ -81,15 +82,15 @@ export function drawPlate(
     row.panels.map((entry, i): Piece => {
       const kind = panelKinds[entry.panel];
       const subject = subjects[entry.subject]!;
-      return {
+      return withKey(entry.key, () => ({
         kind,
         subject,
-        index: entry.subject,
+        key: entry.key,
         box: layout.rows[r]![i]!,
         scale: scales.of(kind, entry.subject),
         letter: letters ? `(${letterAt(count++)})` : "",
         name: entry.name ?? kind.name(subject),
-      };
+      }));
     })
   );
   const items = pieces.flatMap((row) => drawRow(row, description));
@@ -106,6 +107,15 @@ export function drawPlate(
   };
   const { enlarge = 1 } = description;
   return { picture: enlarge === 1 ? picture : enlargePicture(picture, enlarge), caption };
+}
+
+/** Says of which panel of the description an error is. */
+function withKey<T>(key: string, make: () => T): T {
+  try {
+    return make();
+  } catch (error) {
+    throw error instanceof InputError ? error.at({ key }) : error;
+  }
 }
 
 /** Scales of a plate, each found once. */
@@ -143,7 +153,8 @@ function drawRow(row: readonly Piece[], description: PlateDescription): Item[] {
       style: description,
       ...(scale ? { scale } : {}),
     };
-    return [kind.draw(subject, drawing), ...nameItems(piece), ...barItems(row, i)];
+    const drawn = withKey(piece.key, () => kind.draw(subject, drawing));
+    return [drawn, ...nameItems(piece), ...barItems(row, i)];
   });
 }
 

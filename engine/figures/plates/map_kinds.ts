@@ -1,10 +1,10 @@
 import type { VelocityMap } from "../../tomography/mod.ts";
 import { tidyExponent } from "../colour/colour_bar.ts";
 import { robustLimits } from "../colour/limits.ts";
-import { binaryMarks } from "../panels/binary_marks.ts";
+import { binaryMarks, type VelocityCurve } from "../panels/binary_marks.ts";
 import { mapContours } from "../panels/map_contours.ts";
 import { asymmetricMap, significanceMap } from "../panels/map_family.ts";
-import { discRims, resolutionEllipses } from "../panels/map_marks.ts";
+import { discRims, resolutionEllipses, uncertainBand } from "../panels/map_marks.ts";
 import { mapPanel } from "../panels/map_panel.ts";
 import type { MapCentre } from "../panels/map_profile.ts";
 import { mapWindow } from "../panels/map_window.ts";
@@ -37,11 +37,18 @@ export type MapPanelName = Extract<
   | "detection-limit"
 >;
 
-const madeBy = "millrace map";
+const remedies: Partial<Record<keyof PlateSubject, string>> = {
+  spread: "set map.resamples to 2 or more",
+  detection_limit: "let [binary] fix K1 and K2",
+};
 const intensityUnit = `(${KMS_LABEL})^{−1}`;
 
 function need<K extends keyof PlateSubject>(subject: PlateSubject, field: K, panel: MapPanelName) {
-  return requireField(subject, { field, panel, made_by: madeBy });
+  return requireField(subject, {
+    field,
+    panel,
+    remedy: remedies[field] ?? "millrace map makes it",
+  });
 }
 
 function powered(scale: Omit<PanelScale, "unit" | "divide_by">, unit: string): PanelScale {
@@ -66,6 +73,8 @@ function centreOf(subject: PlateSubject): MapCentre {
   return { vx_kms: 0, vy_kms: subject.binary ? -subject.binary.k_accretor_kms : 0 };
 }
 
+type StreamEnds = [VelocityCurve, VelocityCurve];
+
 interface MapDrawing extends PanelDrawing {
   readonly marked?: boolean;
   readonly name: MapPanelName;
@@ -74,8 +83,9 @@ interface MapDrawing extends PanelDrawing {
 
 function drawMap(map: VelocityMap, subject: PlateSubject, drawing: MapDrawing): Group {
   const { frame, scale, style, first, marked = true, name, overlay = [] } = drawing;
-  const { binary, features, trail, rims = [] } = subject;
+  const { binary, binary_range, features, trail, rims = [] } = subject;
   const place = mapWindow(map, frame);
+  const streams = binary_range?.map((end) => binaryMarks(end).stream) as StreamEnds | undefined;
   const accretor = [0, centreOf(subject).vy_kms] as const;
   // Names stand once among neighbours, and not where they would hide a small map.
   const named = first && place.window.width > 100;
@@ -91,6 +101,7 @@ function drawMap(map: VelocityMap, subject: PlateSubject, drawing: MapDrawing): 
     marks: binary && binaryMarks(binary),
     ...(marked && features ? { features } : {}),
     overlay: [
+      ...(streams ? uncertainBand(streams, place) : []),
       ...(rims.length > 0 ? discRims(named ? rims : unnamed, { place, accretor }) : []),
       ...overlay,
     ],
@@ -119,7 +130,7 @@ function tellMap(subject: PlateSubject): string {
 }
 
 function tellMarks(subject: PlateSubject): string {
-  const { binary, features = [], contour_parts = [], rims = [], trail } = subject;
+  const { binary, binary_range, features = [], contour_parts = [], rims = [], trail } = subject;
   const told: string[] = [];
   if (trail) {
     told.push(
@@ -134,6 +145,10 @@ function tellMarks(subject: PlateSubject): string {
         `${captionNumber(binary.mass_ratio)}, K1 = ${captionNumber(binary.k_accretor_kms)} km/s, ` +
         `K2 = ${captionNumber(binary.k_donor_kms)} km/s.`,
     );
+  }
+  if (binary_range) {
+    const [low, high] = binary_range.map((end) => captionNumber(end.mass_ratio));
+    told.push(`Band: streams from q = ${low} to ${high}.`);
   }
   features.forEach(({ vx_kms, vy_kms, vx_error_kms = null, vy_error_kms = null }, i) => {
     told.push(
@@ -150,7 +165,7 @@ function tellMarks(subject: PlateSubject): string {
   return told.join(" ");
 }
 
-const frameShape = { square: true, weight: 3, height_pt: 200, axis: "map" } as const;
+const frameShape = { aspect: 1, weight: 3, height_pt: 200, axis: "map" } as const;
 
 /** Which of the two halves a panel shows. */
 function halfKind(panel: "half-one" | "half-two"): PanelKind {

@@ -30,8 +30,8 @@ export interface PanelDrawing {
 
 /** A kind of panel: how it is laid out, coloured, drawn and told in a caption. */
 export interface PanelKind {
-  /** Square panels are as high as wide; the others fill what is left. */
-  readonly square: boolean;
+  /** Width over height of a panel that keeps its shape; the others fill what is left. */
+  readonly aspect?: number;
   /** Part of a row's width that it takes beside others. */
   readonly weight: number;
   /** Height of its frame when nothing else sets it, pt. */
@@ -54,7 +54,7 @@ export interface PanelKind {
  * A field of a subject that a panel cannot do without.
  *
  * @param subject The subject.
- * @param options Field, panel, and the command that makes it.
+ * @param options Field, panel, and what to do where it is missing.
  * @returns The field's value.
  * @throws {InputError} When it is missing, with what to do.
  *
@@ -68,9 +68,9 @@ export interface PanelKind {
  *   systemic_kms: 0, method: "", binary: null,
  * };
  * assertThrows(
- *   () => requireField(subject, { field: "map", panel: "map", made_by: "millrace map" }),
+ *   () => requireField(subject, { field: "spread", panel: "spread", remedy: "resample the map" }),
  *   Error,
- *   'Cannot draw panel "map" as it needs map of H beta; run "millrace map" first',
+ *   'Cannot draw panel "spread" as it needs spread of H beta; resample the map',
  * );
  * ```
  */
@@ -81,8 +81,8 @@ export function requireField<K extends keyof PlateSubject>(
     readonly field: K;
     /** The panel that needs it. */
     readonly panel: string;
-    /** The command that makes it. */
-    readonly made_by: string;
+    /** The key or command that makes it. */
+    readonly remedy: string;
   },
 ): NonNullable<PlateSubject[K]> {
   const value = subject[options.field];
@@ -90,7 +90,7 @@ export function requireField<K extends keyof PlateSubject>(
   throw new InputError({
     action: `draw panel "${options.panel}"`,
     rule: `it needs ${options.field.replaceAll("_", " ")} of ${subject.line.name}`,
-    remedy: `run "${options.made_by}" first`,
+    remedy: options.remedy,
   });
 }
 

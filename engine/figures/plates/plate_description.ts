@@ -1,8 +1,9 @@
 import { InputError } from "../../errors.ts";
-import type { ColourMapName } from "../colour/colour_map.ts";
+import { type ColourMapName, colourMapNames } from "../colour/colour_map.ts";
 import type { StretchName } from "../colour/stretch.ts";
 import { POINTS_PER_MM } from "../display_list.ts";
 import type { WindowShape } from "../panels/map_window.ts";
+import { checkName } from "./known_name.ts";
 import { type PanelName, panelNames } from "./panel_names.ts";
 
 /** Colours, limits and shapes of a plate. */
@@ -61,8 +62,8 @@ export interface PlateDescription extends PlateStyle {
 
 /** A row with everything chosen. */
 export interface FullRow {
-  /** The panels with their subjects. */
-  readonly panels: readonly (PanelEntry & { readonly subject: number })[];
+  /** The panels with their subjects, and with the keys under which they were described. */
+  readonly panels: readonly (PanelEntry & { readonly subject: number; readonly key: string })[];
   /** Height of the frames, mm; chosen by the layout when absent. */
   readonly height_mm?: number;
 }
@@ -140,9 +141,10 @@ export function plateRows(description: PlateDescription, subjects: number): Full
         throw new InputError({ action: "lay out plate", rule, key: `plate.rows[${i}]` });
       }
       const subject = description.each_subject ? turn : row.subject ?? 0;
-      const panels = row.panels.map((entry) => {
-        const full = { subject, ...(typeof entry === "string" ? { panel: entry } : entry) };
-        checkEntry(full, { subjects, key: `plate.rows[${i}]` });
+      const panels = row.panels.map((entry, k) => {
+        const key = `plate.rows[${i}].panels[${k}]`;
+        const full = { subject, ...(typeof entry === "string" ? { panel: entry } : entry), key };
+        checkEntry(full, subjects);
         return full;
       });
       return { ...row, panels };
@@ -150,24 +152,43 @@ export function plateRows(description: PlateDescription, subjects: number): Full
 }
 
 function checkEntry(
-  entry: PanelEntry & { readonly subject: number },
-  options: { readonly subjects: number; readonly key: string },
+  entry: PanelEntry & { readonly subject: number; readonly key: string },
+  subjects: number,
 ): void {
-  const { subjects, key } = options;
-  if (!panelNames.includes(entry.panel)) {
-    throw new InputError({
-      action: "lay out plate",
-      rule: `a panel must be one of ${panelNames.join(", ")}`,
-      value: entry.panel,
-      key,
-    });
-  }
-  if (!(entry.subject >= 0 && entry.subject < subjects)) {
+  const { panel, subject, key } = entry;
+  checkName(panel, { what: "a panel", known: panelNames, key });
+  if (!(subject >= 0 && subject < subjects)) {
     throw new InputError({
       action: "lay out plate",
       rule: `the subject of a panel must be from 0 to ${subjects - 1}`,
-      value: entry.subject,
+      value: subject,
       key,
     });
+  }
+}
+
+/**
+ * Refuses a plate that cannot be drawn whatever the data are: its width, the names of its panels and
+ * colours.
+ *
+ * @param description The plate.
+ * @param subjects How many subjects there are.
+ * @throws {InputError} With the key that is wrong, and the nearest known name.
+ *
+ * @example
+ * ```ts
+ * import { type ColourMapName, checkPlate } from "@millrace/millrace/figures";
+ * import { assertThrows } from "@std/assert";
+ *
+ * const colour_map = "virdis" as ColourMapName;
+ * assertThrows(() => checkPlate({ colour_map }, 1), Error, 'the nearest is "viridis"');
+ * ```
+ */
+export function checkPlate(description: PlateDescription, subjects: number): void {
+  plateRows(description, subjects);
+  for (const key of ["colour_map", "signed_colour_map"] as const) {
+    const name = description[key];
+    if (name === undefined) continue;
+    checkName(name, { what: "a colour map", known: colourMapNames, key: `plate.${key}` });
   }
 }

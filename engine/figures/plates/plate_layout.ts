@@ -50,8 +50,8 @@ export const BAR_PT = 4;
 export const NAME_RISE_PT = 18.5;
 
 /**
- * Lays out a plate. Within a row all frames have one height: that of the square panels, which take
- * their part of the width by weight, or the greatest that a panel asks for.
+ * Lays out a plate. Within a row all frames have one height: that of the panels that keep their
+ * shape, which take their part of the width by weight, or the greatest that a panel asks for.
  *
  * @param rows The rows.
  * @param width Width of the plate, pt.
@@ -89,23 +89,31 @@ function layRow(row: LaidRow, options: { top: number; width: number }) {
   const margins = first.map((isFirst, i) => !isFirst ? GAP : LEFT + (i === 0 ? 0 : GAP));
   const free = width - RIGHT - margins.reduce((sum, margin) => sum + margin, 0);
   const weights = panels.reduce((sum, { kind }) => sum + kind.weight, 0);
-  const squares = panels.filter(({ kind }) => kind.square).length;
+  const shaped = panels.filter(({ kind }) => kind.aspect !== undefined);
+  const aspects = shaped.reduce((sum, { kind }) => sum + kind.aspect!, 0);
   let height = row.height_mm === undefined ? undefined : row.height_mm * POINTS_PER_MM;
-  if (squares > 0) {
+  if (shaped.length > 0) {
     const share = free * 3 / weights;
-    const side = squares === panels.length ? free / squares : Math.min(share, 200);
-    // What is not square keeps a width that can be read.
-    const others = panels.length - squares;
-    const most = (free - others * LEAST_WIDTH_PT) / squares;
+    const side = shaped.length === panels.length
+      ? Math.min(free / aspects, tallest(panels))
+      : Math.min(share, 200);
+    // What keeps no shape keeps a width that can be read.
+    const others = panels.length - shaped.length;
+    const most = (free - others * LEAST_WIDTH_PT) / aspects;
     height = Math.max(LEAST_WIDTH_PT, Math.min(height ?? side, side, most));
   }
   height ??= Math.max(...panels.map(({ kind }) => kind.height_pt));
-  const rest = free - squares * height;
-  const restWeights = panels.reduce((sum, { kind }) => sum + (kind.square ? 0 : kind.weight), 0);
+  const rest = free - aspects * height;
+  const restWeights = panels.reduce(
+    (sum, { kind }) => sum + (kind.aspect === undefined ? kind.weight : 0),
+    0,
+  );
   let x = 0;
   const boxes = panels.map(({ kind }, i): PanelBox => {
     x += margins[i]!;
-    const wide = kind.square ? height! : rest * kind.weight / restWeights;
+    const wide = kind.aspect === undefined
+      ? rest * kind.weight / restWeights
+      : height! * kind.aspect;
     const frame = { x, y: top, width: wide, height: height! };
     x += wide;
     const from = first.lastIndexOf(true, i);
@@ -114,6 +122,12 @@ function layRow(row: LaidRow, options: { top: number; width: number }) {
     return { frame, first: first[i]!, group: { from, count } };
   });
   return { boxes, height };
+}
+
+/** Squares may fill the page; a wide panel alone would be larger than it is worth. */
+function tallest(panels: readonly LaidPanel[]): number {
+  const square = panels.some(({ kind }) => kind.aspect === 1);
+  return square ? Infinity : Math.max(...panels.map(({ kind }) => kind.height_pt));
 }
 
 function sharesAxis(left: LaidPanel | undefined, panel: LaidPanel): boolean {

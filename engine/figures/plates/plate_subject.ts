@@ -15,6 +15,9 @@ import type { Scan } from "../panels/scan_panel.ts";
 import type { MeanSpectrum } from "../panels/spectrum_panel.ts";
 import type { FittedCurve } from "../panels/velocity_curve_panel.ts";
 
+/** What marks on a map need to know of a binary. */
+export type MarkedBinary = Pick<Binary, "mass_ratio" | "k_accretor_kms" | "k_donor_kms">;
+
 /**
  * All that plates may show of one object in one line. Each panel needs a few of the fields and says
  * which one is missing.
@@ -31,7 +34,9 @@ export interface PlateSubject {
   /** χ² per degree of freedom of the map; null when not computed. @default {null} */
   readonly reduced_chi_square?: number | null;
   /** The binary; null when it is not known. */
-  readonly binary: Pick<Binary, "mass_ratio" | "k_accretor_kms" | "k_donor_kms"> | null;
+  readonly binary: MarkedBinary | null;
+  /** Binaries a standard deviation to either side: the area between their streams is shaded. */
+  readonly binary_range?: readonly [MarkedBinary, MarkedBinary];
   /** The velocity map. */
   readonly map?: VelocityMap;
   /** The trail: its display grid and the sampling of the orbit. */
@@ -89,6 +94,8 @@ export interface PlateSubject {
   readonly systemic_scan?: Scan & {
     /** What was computed (markup of `labelRuns`). */
     readonly label: string;
+    /** The same in words for the caption, as in "χ² of the back-projected map". */
+    readonly statistic: string;
   };
   /** Plane of the two masses. */
   readonly mass_plane?: Plane;

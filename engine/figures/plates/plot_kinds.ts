@@ -22,24 +22,24 @@ export type PlotPanelName = Exclude<PanelName, MapPanelName | TrailPanelName>;
 interface PlotKind<K extends keyof PlateSubject> {
   readonly panel: PlotPanelName;
   readonly field: K;
-  readonly made_by: string;
+  readonly remedy: string;
   readonly draw: (
     value: NonNullable<PlateSubject[K]>,
     place: PanelPlace,
     subject: PlateSubject,
   ) => Group;
   readonly tell: (value: NonNullable<PlateSubject[K]>, subject: PlateSubject) => string;
-  readonly square?: boolean;
+  readonly aspect?: number;
   readonly weight?: number;
   readonly height_pt?: number;
 }
 
 /** A kind of panel that draws one field of the subject as a line plot. */
 function plotKind<K extends keyof PlateSubject>(kind: PlotKind<K>): PanelKind {
-  const { square = false, weight = 2, height_pt = 100 } = kind;
+  const { aspect, weight = 2, height_pt = 100 } = kind;
   const field = (subject: PlateSubject) => requireField(subject, kind);
   return {
-    square,
+    ...(aspect === undefined ? {} : { aspect }),
     weight,
     height_pt,
     name: () => "",
@@ -73,7 +73,7 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   "radial-profile": plotKind({
     panel: "radial-profile",
     field: "map",
-    made_by: "millrace map",
+    remedy: "millrace map makes it",
     draw: (map, place, subject) => radialProfilePanel(map, { ...place, centre: centreOf(subject) }),
     tell: (_, subject) =>
       `Mean of the map against speed about (0, ${captionNumber(centreOf(subject).vy_kms)}) km/s; ` +
@@ -82,7 +82,7 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   "azimuth-profile": plotKind({
     panel: "azimuth-profile",
     field: "map",
-    made_by: "millrace map",
+    remedy: "millrace map makes it",
     draw: (map, place, subject) =>
       azimuthProfilePanel(map, { ...place, centre: centreOf(subject) }),
     tell: (_, subject) =>
@@ -94,7 +94,7 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   spectrum: plotKind({
     panel: "spectrum",
     field: "spectrum",
-    made_by: "millrace profile",
+    remedy: "millrace profile makes it",
     weight: 3,
     height_pt: 110,
     draw: (spectrum, place) => spectrumPanel(spectrum, { ...place, lines: spectrum.lines ?? [] }),
@@ -103,28 +103,28 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   "equivalent-width": plotKind({
     panel: "equivalent-width",
     field: "equivalent_width",
-    made_by: "millrace profile",
+    remedy: "millrace profile makes it",
     draw: (curves, place) => phaseCurvePanel(curves, { ...place, label: "equivalent width (Å)" }),
     tell: () => "Equivalent width against phase, one standard deviation.",
   }),
   "violet-red": plotKind({
     panel: "violet-red",
     field: "violet_red",
-    made_by: "millrace profile",
+    remedy: "millrace profile makes it",
     draw: (curves, place) => phaseCurvePanel(curves, { ...place, label: "*V*/*R*" }),
     tell: () => "Ratio of the violet to the red peak against phase, one standard deviation.",
   }),
   continuum: plotKind({
     panel: "continuum",
     field: "continuum",
-    made_by: "millrace profile",
+    remedy: "millrace profile makes it",
     draw: (curves, place) => phaseCurvePanel(curves, { ...place, label: "continuum" }),
     tell: () => "Continuum at the line against phase, one standard deviation.",
   }),
   "velocity-curve": plotKind({
     panel: "velocity-curve",
     field: "velocities",
-    made_by: "millrace orbit",
+    remedy: "millrace orbit says why no curve was fitted",
     height_pt: 140,
     draw: (curves, place) => velocityCurvePanel(curves, place),
     tell: (curves) =>
@@ -139,7 +139,7 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   diagnostic: plotKind({
     panel: "diagnostic",
     field: "diagnostic",
-    made_by: "millrace orbit",
+    remedy: "millrace orbit says why the wings were not measured",
     height_pt: 190,
     draw: diagnosticPanel,
     tell: ({ chosen_kms = null }) =>
@@ -149,8 +149,8 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   "light-centre": plotKind({
     panel: "light-centre",
     field: "light_centre",
-    made_by: "millrace orbit",
-    square: true,
+    remedy: "millrace orbit says why the wings were not measured",
+    aspect: 1,
     draw: lightCentrePanel,
     tell: ({ line }) =>
       "Light-centre diagram of the wings" +
@@ -162,39 +162,40 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   periodogram: plotKind({
     panel: "periodogram",
     field: "periodogram",
-    made_by: "millrace orbit",
+    remedy: "give orbit.period_range_d in place of orbit.period_d",
     draw: periodogramPanel,
     tell: (scan) => `Periodogram.${tellBest(scan, "cycles per day")}`,
   }),
   "systemic-scan": plotKind({
     panel: "systemic-scan",
     field: "systemic_scan",
-    made_by: "millrace map",
+    remedy: "exposures must cover the orbit, and half of map.half_width_kms on either side of γ",
     draw: (scan, place) => systemicScanPanel(scan, { ...place, y_label: scan.label }),
-    tell: (scan) => `Misfit of maps made with each systemic velocity.${tellBest(scan, "km/s")}`,
+    tell: (scan) => `${scan.statistic} against the systemic velocity.${tellBest(scan, "km/s")}`,
   }),
   "mass-plane": plotKind({
     panel: "mass-plane",
     field: "mass_plane",
-    made_by: "millrace orbit",
-    square: true,
+    remedy: "K2 must be measured: see millrace orbit",
+    aspect: 1,
     draw: massPlanePanel,
     tell: (plane) => `Constraints on the two masses (solar).${tellPlane(plane)}`,
   }),
   "inclination-plane": plotKind({
     panel: "inclination-plane",
     field: "inclination_plane",
-    made_by: "millrace orbit",
-    square: true,
+    remedy: "K2 must be measured: see millrace orbit",
+    aspect: 1,
     draw: inclinationPlanePanel,
     tell: (plane) => `Constraints on mass ratio and inclination (degrees).${tellPlane(plane)}`,
   }),
   "disc-in-space": plotKind({
     panel: "disc-in-space",
     field: "binary",
-    made_by: "millrace orbit",
+    remedy: "let [binary] fix K1 and K2",
     weight: 3,
-    height_pt: 120,
+    aspect: 1.5,
+    height_pt: 150,
     draw: (binary, place, subject) => discSpacePanel(subject.disc ?? { binary }, place),
     tell: (binary, subject) =>
       `The binary from above its orbit for q = ${
@@ -210,7 +211,7 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   coverage: plotKind({
     panel: "coverage",
     field: "coverage",
-    made_by: "millrace trail",
+    remedy: "millrace trail makes it",
     height_pt: 46,
     draw: coveragePanel,
     tell: (rows) =>

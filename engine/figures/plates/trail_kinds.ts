@@ -25,8 +25,8 @@ function need<K extends "trail" | "model" | "residual">(
   field: K,
   panel: TrailPanelName,
 ) {
-  const made_by = field === "trail" ? "millrace trail" : "millrace map";
-  return requireField(subject, { field, panel, made_by });
+  const remedy = `millrace ${field === "trail" ? "trail" : "map"} makes it`;
+  return requireField(subject, { field, panel, remedy });
 }
 
 function fluxScale(subjects: readonly PlateSubject[], style: PlateStyle): PanelScale {
@@ -54,7 +54,7 @@ function drawTrail(
   });
 }
 
-const shape = { square: false, weight: 1, height_pt: 150, axis: "phase" } as const;
+const shape = { weight: 1, height_pt: 150, axis: "phase" } as const;
 
 /** The panels of velocity against phase. */
 export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
@@ -97,7 +97,6 @@ export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
     tell: (_, scale) => `Data less model in standard deviations; ${tellScale(scale)}.`,
   },
   "stacked-profiles": {
-    square: false,
     weight: 1.4,
     height_pt: 180,
     name: () => "",

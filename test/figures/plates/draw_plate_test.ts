@@ -1,6 +1,7 @@
 import { assert, assertEquals, assertStringIncludes, assertThrows } from "@std/assert";
 import { InputError } from "../../../engine/errors.ts";
 import {
+  type ColourMapName,
   drawPlate,
   type Group,
   type Item,
@@ -62,27 +63,34 @@ for (const panel of panelNames) {
   });
 }
 
-const fields: Partial<Record<PanelName, keyof PlateSubject>> = {
-  map: "map",
-  trail: "trail",
-  model: "model",
-  residual: "residual",
-  "half-one": "halves",
-  "detection-limit": "detection_limit",
-  spectrum: "spectrum",
-  "velocity-curve": "velocities",
-  periodogram: "periodogram",
-  "mass-plane": "mass_plane",
-  coverage: "coverage",
+const fields: Partial<Record<PanelName, [field: keyof PlateSubject, remedy: string]>> = {
+  map: ["map", "millrace map makes it"],
+  trail: ["trail", "millrace trail makes it"],
+  model: ["model", "millrace map makes it"],
+  residual: ["residual", "millrace map makes it"],
+  "half-one": ["halves", "millrace map makes it"],
+  spread: ["spread", "set map.resamples to 2 or more"],
+  significance: ["spread", "set map.resamples to 2 or more"],
+  "detection-limit": ["detection_limit", "let [binary] fix K1 and K2"],
+  spectrum: ["spectrum", "millrace profile makes it"],
+  "velocity-curve": ["velocities", "millrace orbit says why"],
+  periodogram: ["periodogram", "give orbit.period_range_d"],
+  "systemic-scan": ["systemic_scan", "exposures must cover the orbit"],
+  "mass-plane": ["mass_plane", "K2 must be measured"],
+  "disc-in-space": ["binary", "let [binary] fix K1 and K2"],
+  coverage: ["coverage", "millrace trail makes it"],
 };
 
-for (const [panel, field] of Object.entries(fields) as [PanelName, keyof PlateSubject][]) {
-  Deno.test(`drawPlate() says what panel ${panel} lacks and which command makes it`, () => {
+for (const [panel, [field, remedy]] of Object.entries(fields)) {
+  Deno.test(`drawPlate() says what panel ${panel} lacks, where, and what makes it`, () => {
     const bare = { ...subject, [field]: undefined };
+    const rows = [{ panels: ["stacked-profiles" as const] }, { panels: [panel as PanelName] }];
     const error = assertThrows(
-      () => drawPlate({ rows: [{ panels: [panel] }] }, [bare]),
+      () => drawPlate({ rows: field === "trail" ? rows.slice(1) : rows }, [bare]),
       InputError,
-      `it needs ${field.replaceAll("_", " ")} of H beta; run "millrace `,
+      `it needs ${field.replaceAll("_", " ")} of H beta (key plate.rows[${
+        field === "trail" ? 0 : 1
+      }].panels[0]); ${remedy}`,
     );
     assertStringIncludes(error.message, 'Cannot draw panel "');
   });
@@ -151,7 +159,7 @@ const wrong: [string, PlateDescription, string][] = [
     "significance, resolution, detection-limit, radial-profile, azimuth-profile, stacked-profiles, " +
     "spectrum, equivalent-width, violet-red, continuum, velocity-curve, diagnostic, light-centre, " +
     "periodogram, systemic-scan, mass-plane, inclination-plane, disc-in-space, coverage: current " +
-    'value is "mapp" (key plate.rows[0])',
+    'value is "mapp" (key plate.rows[0].panels[0]); the nearest is "map"',
   ],
   [
     "a row is empty",
@@ -170,6 +178,16 @@ const wrong: [string, PlateDescription, string][] = [
     "the enlargement must be from 0.5 to 10: current value is 0",
   ],
   ["the width is no number", { width: NaN }, "40 to 1200 mm"],
+  [
+    "the colour map is not known",
+    { colour_map: "virdis" as ColourMapName },
+    'magma: current value is "virdis" (key plate.colour_map); the nearest is "viridis"',
+  ],
+  [
+    "the colour map of signed panels is not known",
+    { signed_colour_map: "balanced" as ColourMapName },
+    '(key plate.signed_colour_map); the nearest is "balance"',
+  ],
 ];
 
 for (const [when, description, message] of wrong) {
