@@ -1,6 +1,7 @@
 import { normalQuantile, normalTail } from "../numerics/mod.ts";
-import { axisymmetricPart, type MapPlace } from "./axisymmetric_part.ts";
-import { blurMap } from "./blur_map.ts";
+import type { MapPlace } from "./axisymmetric_part.ts";
+import { mapExcess } from "./map_excess.ts";
+import type { FollowedFeature, MapSpread } from "./map_replicas.ts";
 import { mapStep } from "./map_shape.ts";
 import type { BinaryPart, PartFinder } from "./nearest_part.ts";
 import type { VelocityMap } from "./velocity_map.ts";
@@ -20,6 +21,11 @@ export interface MapFeature extends MapPlace {
   readonly significance_sigma: number | null;
   /** The nearest part of the binary; null when the zero of phase is not the donor's. */
   readonly nearest: BinaryPart | null;
+  /**
+   * Whether it lies at speeds about the accretor that no Keplerian disc within the rim has; null when
+   * the rim's speed was not given.
+   */
+  readonly forbidden_to_disc: boolean | null;
 }
 
 /** Options of {@linkcode mapFeatures}. */
@@ -33,17 +39,36 @@ export interface MapFeaturesOptions {
    */
   readonly centre?: MapPlace;
   /**
-   * Maps of the same shape made from resampled data.
+   * The scatter of the map and of its features, from {@linkcode resampleMaps} with the peaks of
+   * {@linkcode featurePeaks} and the same centre and resolution.
    *
-   * @default {[]}
+   * @default {null}
    */
-  readonly replicas?: readonly VelocityMap[];
+  readonly spread?: MapSpread | null;
+  /**
+   * Error of the systemic velocity, km/s: it moves every feature along with the whole data.
+   *
+   * @default {0}
+   */
+  readonly systemic_error_kms?: number;
+  /**
+   * Error of the zero of phase, cycles: it turns the map.
+   *
+   * @default {0}
+   */
+  readonly phase_error?: number;
   /**
    * Names places; from {@linkcode partFinder}. Null when the zero of phase is not the donor's.
    *
    * @default {null}
    */
   readonly find_part?: PartFinder | null;
+  /**
+   * Keplerian speed at the disc's rim, km/s.
+   *
+   * @default {null}
+   */
+  readonly rim_speed_kms?: number | null;
   /**
    * Least significance, standard deviations.
    *
@@ -58,14 +83,50 @@ export interface MapFeaturesOptions {
   readonly limit?: number;
 }
 
+/** Peaks below this share of the highest are not looked at. */
+const LEAST_PEAK = 0.05;
+
+/** Most peaks that are looked at, highest first. */
+const MOST_PEAKS = 40;
+
 /**
- * Finds compact excesses over the part of a map that is axisymmetric about the accretor: peaks of the
- * excess smoothed to the resolution. The place is the centroid of what stands above half the
- * peak; the flux is twice what lies in there, which is exact for a Gaussian. Errors are the scatter
- * of the same measurement on replicas. Significance counts the resolution elements searched.
+ * Pixels that may be the peaks of features: where the excess over the axisymmetric part, smoothed to
+ * the resolution, is higher than around.
  *
  * @param map The map.
- * @param options Resolution, centre, replicas.
+ * @param options Resolution and centre.
+ * @returns Pixels, highest first, no more than 40.
+ *
+ * @example
+ * ```ts
+ * import { featurePeaks } from "@millrace/millrace/tomography";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const intensity = new Float64Array(441);
+ * intensity[6 * 21 + 9] = 1;
+ * const map = { pixels: 21, half_width_kms: 100, intensity };
+ * assertEquals(featurePeaks(map, { resolution_kms: 20 }), [6 * 21 + 9]);
+ * ```
+ */
+export function featurePeaks(
+  map: VelocityMap,
+  options: Pick<MapFeaturesOptions, "resolution_kms" | "centre">,
+): number[] {
+  const { resolution_kms, centre = { vx_kms: 0, vy_kms: 0 } } = options;
+  const excess = mapExcess(map, { centre, resolution_kms });
+  return excess.peaks(LEAST_PEAK)
+    .sort((a, b) => excess.values[b]! - excess.values[a]! || a - b)
+    .slice(0, MOST_PEAKS);
+}
+
+/**
+ * Finds compact excesses over the part of a map that is axisymmetric about the accretor: peaks of the
+ * excess smoothed to the resolution. The place is the centroid of what stands above half the peak; the
+ * flux is twice what lies in there, which is exact for a Gaussian. Errors are the scatter of the same
+ * measurement on replicas, and of γ and phase zero. Significance counts the resolution elements searched.
+ *
+ * @param map The map.
+ * @param options Resolution, centre, scatter.
  * @returns Features, most significant first (highest first without replicas).
  *
  * @example
@@ -84,151 +145,55 @@ export interface MapFeaturesOptions {
  * ```
  */
 export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapFeature[] {
-  const { resolution_kms, replicas = [], find_part = null, least_sigma = 3, limit = 8 } = options;
-  const { centre = { vx_kms: 0, vy_kms: 0 } } = options;
-  const excess = (m: VelocityMap): Float64Array => {
-    const round = axisymmetricPart(m, { centre }).intensity;
-    return blurMap(m.intensity.map((f, k) => f - round[k]!), { ...m, fwhm_kms: resolution_kms });
-  };
-  const here = excess(map);
-  const scattered = replicas.map(excess);
-  const total = map.intensity.reduce((a, b) => a + b, 0);
+  const { resolution_kms, spread = null, find_part = null, least_sigma = 3, limit = 8 } = options;
+  const { centre = { vx_kms: 0, vy_kms: 0 }, rim_speed_kms = null } = options;
+  const excess = mapExcess(map, { centre, resolution_kms });
   const area = (map.pixels * mapStep(map)) ** 2;
   const places = Math.max(1, area / (Math.PI * (0.5 * resolution_kms) ** 2));
-
-  const features: (MapFeature & { readonly height: number })[] = [];
-  for (const peak of peaks(here, map.pixels)) {
-    // The corners lie beyond the velocities on which every profile was seen.
-    if (!(speedAt(peak, map) < map.half_width_kms)) continue;
-    const found = blobAt(here, peak, map);
-    if (found === null) continue;
-    let spread: Spread | null = null;
-    if (scattered.length > 1) {
-      const again = scattered.map((e) =>
-        blobAt(e, climb(e, peak, { map, reach_kms: resolution_kms }), map)
-      );
-      spread = spreadOf(again.filter((b) => b !== null), scattered.map((e) => e[peak]!));
-    }
-    const significance = spread && globalSigma(here[peak]! / spread.height, places);
-    if (significance !== null && !(significance >= least_sigma)) continue;
-    const reach = Math.max(resolution_kms, 2 * Math.max(spread?.vx ?? 0, spread?.vy ?? 0));
+  const features: (MapFeature & { readonly rank: number })[] = [];
+  featurePeaks(map, options).forEach((peak, f) => {
+    const blob = excess.blobAt(peak);
+    if (blob === null) return;
+    const followed = spread?.features[f];
+    const errors = followed === undefined ? null : placeErrors(followed, { ...options, blob });
+    const significance = followed === undefined
+      ? null
+      : globalSigma(excess.values[peak]! / deviation(followed.height), places);
+    if (significance !== null && !(significance >= least_sigma)) return;
+    const reach = Math.max(resolution_kms, 2 * Math.max(errors?.vx ?? 0, errors?.vy ?? 0));
+    const speed = Math.hypot(blob.vx_kms - centre.vx_kms, blob.vy_kms - centre.vy_kms);
     features.push({
-      vx_kms: found.vx,
-      vy_kms: found.vy,
-      vx_error_kms: spread && spread.vx,
-      vy_error_kms: spread && spread.vy,
-      flux_fraction: total > 0 ? found.sum / total : 0,
+      ...blob,
+      vx_error_kms: errors && errors.vx,
+      vy_error_kms: errors && errors.vy,
       significance_sigma: significance,
-      nearest: find_part && find_part({ vx_kms: found.vx, vy_kms: found.vy }, reach),
-      height: significance ?? here[peak]!,
+      nearest: find_part && find_part(blob, reach),
+      forbidden_to_disc: rim_speed_kms === null ? null : speed + reach < rim_speed_kms,
+      rank: significance ?? excess.values[peak]!,
     });
-  }
-  return features.sort((a, b) => b.height - a.height).slice(0, limit)
-    .map(({ height: _height, ...feature }) => feature);
+  });
+  return features.sort((a, b) => b.rank - a.rank).slice(0, limit)
+    .map(({ rank: _rank, ...feature }) => feature);
 }
 
-/** Peaks above a twentieth of the highest, within the map. */
-function peaks(values: Float64Array, pixels: number): number[] {
-  const floor = 0.05 * values.reduce((a, b) => Math.max(a, b), 0);
-  const found: number[] = [];
-  for (let row = 1; row < pixels - 1; row++) {
-    for (let column = 1; column < pixels - 1; column++) {
-      const k = row * pixels + column;
-      if (values[k]! > floor && uphill(values, k, pixels) === k) found.push(k);
-    }
-  }
-  return found;
-}
-
-function speedAt(k: number, map: VelocityMap): number {
-  const column = k % map.pixels, row = (k - column) / map.pixels;
-  const middle = (map.pixels - 1) / 2;
-  return Math.hypot(column - middle, row - middle) * mapStep(map);
-}
-
-function uphill(values: Float64Array, k: number, pixels: number): number {
-  let best = k;
-  for (const j of [-pixels - 1, -pixels, -pixels + 1, -1, 1, pixels - 1, pixels, pixels + 1]) {
-    const value = values[k + j];
-    if (value !== undefined && value > values[best]!) best = k + j;
-  }
-  return best;
-}
-
-/** The peak that lies uphill of a pixel, as far as the reach. */
-function climb(
-  values: Float64Array,
-  from: number,
-  { map, reach_kms }: { readonly map: VelocityMap; readonly reach_kms: number },
-): number {
-  const steps = Math.ceil(reach_kms / mapStep(map));
-  let k = from;
-  for (let i = 0; i < steps; i++) {
-    const next = uphill(values, k, map.pixels);
-    if (next === k) break;
-    k = next;
-  }
-  return k;
-}
-
-interface Blob {
-  readonly vx: number;
-  readonly vy: number;
-  readonly sum: number;
-}
-
-/** Centroid above half the peak, and twice the sum in there. */
-function blobAt(values: Float64Array, peak: number, map: VelocityMap): Blob | null {
-  const { pixels, half_width_kms } = map;
-  const step = mapStep(map);
-  const half = 0.5 * values[peak]!;
-  if (!(half > 0)) return null;
-  const seen = new Set<number>([peak]);
-  const queue = [peak];
-  let weight = 0, x = 0, y = 0, sum = 0;
-  for (let k = queue.pop(); k !== undefined; k = queue.pop()) {
-    const column = k % pixels, row = (k - column) / pixels;
-    const w = values[k]! - half;
-    weight += w;
-    x += w * column;
-    y += w * row;
-    sum += values[k]!;
-    const around = [
-      column > 0 ? k - 1 : -1,
-      column < pixels - 1 ? k + 1 : -1,
-      row > 0 ? k - pixels : -1,
-      row < pixels - 1 ? k + pixels : -1,
-    ];
-    for (const j of around) {
-      if (j < 0 || seen.has(j) || !(values[j]! > half)) continue;
-      seen.add(j);
-      queue.push(j);
-    }
-  }
+/** Scatter among replicas, with γ and phase zero in quadrature. */
+function placeErrors(
+  followed: FollowedFeature,
+  { blob, systemic_error_kms = 0, phase_error = 0 }: MapFeaturesOptions & {
+    readonly blob: MapPlace;
+  },
+): { vx: number; vy: number } {
+  const turn = 2 * Math.PI * phase_error;
   return {
-    vx: x / weight * step - half_width_kms,
-    vy: y / weight * step - half_width_kms,
-    sum: 2 * sum,
+    vx: Math.hypot(deviation(followed.vx_kms), turn * blob.vy_kms, systemic_error_kms),
+    vy: Math.hypot(deviation(followed.vy_kms), turn * blob.vx_kms, systemic_error_kms),
   };
 }
 
-interface Spread {
-  readonly vx: number;
-  readonly vy: number;
-  readonly height: number;
-}
-
-function spreadOf(blobs: readonly Blob[], heights: readonly number[]): Spread {
-  return {
-    vx: deviation(blobs.map((b) => b.vx)),
-    vy: deviation(blobs.map((b) => b.vy)),
-    height: deviation(heights),
-  };
-}
-
-function deviation(values: readonly number[]): number {
-  const mean = values.reduce((a, b) => a + b, 0) / values.length;
-  return Math.sqrt(values.reduce((sum, v) => sum + (v - mean) ** 2, 0) / (values.length - 1));
+function deviation(values: Float64Array): number {
+  const kept = values.filter((v) => Number.isFinite(v));
+  const mean = kept.reduce((a, b) => a + b, 0) / kept.length;
+  return Math.sqrt(kept.reduce((sum, v) => sum + (v - mean) ** 2, 0) / (kept.length - 1));
 }
 
 /** Significance after looking in many places; far in the tail by its asymptotic form. */

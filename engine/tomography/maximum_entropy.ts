@@ -11,7 +11,7 @@ import type { Samples } from "./map_fit.ts";
 import { type MapShape, mapStep } from "./map_shape.ts";
 import { meanFlux } from "./mean_flux.ts";
 import { type PriorImage, priorImage } from "./prior_image.ts";
-import type { ProjectorMethod, ProjectorPrecision } from "./projector.ts";
+import type { Projector, ProjectorMethod, ProjectorPrecision } from "./projector.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
 /** Options of {@linkcode maximumEntropy}. */
@@ -72,6 +72,12 @@ export interface MaximumEntropyOptions extends MapShape, EntropyOptions {
    * @default {"double"}
    */
   readonly precision?: ProjectorPrecision;
+  /**
+   * A projector made before by {@linkcode blendProjector} for this sampling and these options.
+   *
+   * @default {made here}
+   */
+  readonly projector?: Projector;
 }
 
 /** A maximum-entropy map, or where it stands on its way. */
@@ -156,10 +162,8 @@ export function* maximumEntropySteps(
   const flux = trail.flux.map((f, k) => error[k] === Infinity ? 0 : sign * f);
   const shape = { pixels, half_width_kms };
 
-  let operator: LinearOperator = blendProjector(sampling, {
-    ...options,
-    members: blends,
-  });
+  let operator: LinearOperator = options.projector ??
+    blendProjector(sampling, { ...options, members: blends });
   let samples: Samples = { flux, error };
   if (free_baselines) {
     ({ operator, samples } = freeBaselines(operator, { sampling, samples }));
