@@ -23,6 +23,13 @@ export interface BackProjectionOptions {
    */
   readonly wiener?: boolean;
   /**
+   * The trail, on the same grid and with the same errors, whose noise decides which frequencies are
+   * held back: what a filter made for one trail does to another.
+   *
+   * @default The trail itself
+   */
+  readonly filter_of?: { readonly grid: ProfileGrid };
+  /**
    * Full width at half maximum of a Gaussian that the map is smoothed by, km/s.
    *
    * @default {0}
@@ -111,8 +118,11 @@ export function backProject(
 
   const profiles: ProfileRows = { rows: grid.rows, columns: grid.columns, step_kms, flux };
   const noise = variance.map((v) => v * grid.columns);
+  const judged = options.filter_of === undefined
+    ? profiles
+    : { ...profiles, flux: uniformProfiles(options.filter_of.grid).flux };
   const hold = wiener
-    ? wienerGain(profiles, { weight, noise, diameter_kms: 2 * half_width_kms })
+    ? wienerGain(judged, { weight, noise, diameter_kms: 2 * half_width_kms })
     : () => 1;
   const roll = Math.PI * roll_off_fwhm_kms / Math.sqrt(8 * Math.LN2);
   const filtered = filterProfiles(profiles, {

@@ -20,6 +20,7 @@ export * from "./gather_lines.ts";
 export * from "./half_orbit.ts";
 export * from "./invert_trail.ts";
 export * from "./linear_operator.ts";
+export * from "./local_resolution.ts";
 export * from "./map_excess.ts";
 export * from "./map_features.ts";
 export * from "./map_fit.ts";
