@@ -4,8 +4,8 @@ import { makeSample } from "../../examples/sample/make_sample.ts";
 
 /** What makes the sample's stars small: few exposures, one arm, one line, a coarse map. */
 const SMALL_STARS = [
-  "observation.count=16",
-  "observation.arms=[{name='blue', first_angstrom=4700.0, step_angstrom=1.2, pixels=260, resolution_angstrom=3.0}]",
+  "observation.count=12",
+  "observation.arms=[{name='blue', first_angstrom=4700.0, step_angstrom=2.4, pixels=130, resolution_angstrom=6.0}]",
 ];
 const SMALL_SETTINGS = [
   `lines=[{name="H beta", continuum_kms=[[-6000, -3200], [5800, 7800]]}]`,
