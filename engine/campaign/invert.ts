@@ -1,13 +1,12 @@
 import { NotConverged, type Warning } from "../errors.ts";
-import type { RandomStream } from "../numerics/mod.ts";
 import {
   backProject,
   type EntropyMap,
   fitOfMap,
+  type InversionRecipe,
   makeProjector,
   type MaximumEntropyOptions,
   maximumEntropySteps,
-  noiseReplica,
   type PriorImage,
   type VelocityMap,
 } from "../tomography/mod.ts";
@@ -36,8 +35,8 @@ export interface Inverted {
   readonly absorption: boolean;
   /** What a user should know. */
   readonly warnings: readonly Warning[];
-  /** The map of data with noise of the stated errors put on once more. */
-  readonly replica: (random: RandomStream) => VelocityMap;
+  /** How maps of resampled data are made: with the multiplier of this one held, where it has one. */
+  readonly recipe: InversionRecipe;
 }
 
 /** Options of {@linkcode invertTrail}. */
@@ -63,7 +62,7 @@ export interface InvertOptions {
  *
  * @param trail The trail.
  * @param options How.
- * @returns The map, its fit, and how to make maps of resampled data.
+ * @returns The map, its fit, and the recipe for maps of resampled data.
  */
 export function invertTrail(trail: Trail, options: InvertOptions): Promise<Inverted> {
   return options.settings.method === "entropy"
@@ -88,11 +87,7 @@ async function byBackProjection(trail: Trail, options: InvertOptions): Promise<I
     misalignment: null,
     absorption: false,
     warnings: [],
-    replica: (random) =>
-      backProject(
-        { ...trail, grid: { ...trail.grid, ...noiseReplica(trail.grid, random) } },
-        shape,
-      ),
+    recipe: { inversion: "back-projection", ...shape, force: options.force },
   };
 }
 
@@ -134,24 +129,13 @@ async function byEntropy(trail: Trail, options: InvertOptions): Promise<Inverted
     misalignment: found.misalignment,
     absorption,
     warnings,
-    replica: (random) => replicaByEntropy(trail, { asked, found, random }),
+    // A fixed χ² would fit the noise of a replica, which has twice as much.
+    recipe: {
+      inversion: "entropy",
+      ...asked,
+      multiplier: found.multiplier,
+      start: found.map,
+      level: found.level,
+    },
   };
-}
-
-/** The multiplier is held: a fixed χ² would fit the noise of a replica, which has twice as much. */
-function replicaByEntropy(
-  trail: Trail,
-  options: { asked: MaximumEntropyOptions; found: EntropyMap; random: RandomStream },
-): VelocityMap {
-  const { asked, found, random } = options;
-  const noisy = { ...trail, ...noiseReplica(trail, random) };
-  try {
-    let last: EntropyMap | undefined;
-    const held = { ...asked, multiplier: found.multiplier, start: found.map, level: found.level };
-    for (last of maximumEntropySteps(noisy, held));
-    return last!.map;
-  } catch (error) {
-    if (!(error instanceof NotConverged)) throw error;
-    return (error.partial as EntropyMap).map;
-  }
 }

@@ -1,20 +1,23 @@
-import type { Binary, Ephemeris } from "../binary/mod.ts";
+import { type Binary, type Ephemeris, keplerianSpeed, phaseError } from "../binary/mod.ts";
 import type { Warning } from "../errors.ts";
-import { median, randomStream } from "../numerics/mod.ts";
+import { median } from "../numerics/mod.ts";
 import {
+  featurePeaks,
   type MapFeature,
   mapFeatures,
   type MapPeak,
   mapPeak,
   partFinder,
+  resampleMaps,
   type VelocityMap,
 } from "../tomography/mod.ts";
+import type { SplitDate } from "../sky/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { gridModel } from "./grid_model.ts";
 import { invertTrail } from "./invert.ts";
-import { pause } from "./pause.ts";
 import { priorOf } from "./prior_of.ts";
+import type { SystemicVelocity } from "./systemic_of.ts";
 import type { Target } from "./target.ts";
 import type { MapSettings } from "./schema/map_section.ts";
 
@@ -62,11 +65,13 @@ export interface MappedLine {
  * @param trail The line's trail.
  * @param options How.
  * @param options.target The target: `[map]` and the seed.
- * @param options.systemic_kms Systemic velocity, km/s.
+ * @param options.systemic Systemic velocity with its error.
  * @param options.binary Where the parts of the binary are; null when not known.
  * @param options.ephemeris The ephemeris, for what its zero marks.
+ * @param options.epoch Any instant within the data: where the error of the phase is told.
+ * @param options.workers Number of workers for the replicas. @default 1
  * @param options.force Whether to go on in spite of a large gap in phase. @default false
- * @param options.stream First stream of the replicas, so that lines do not share their chance. @default 0
+ * @param options.stream Added to the seed, so that lines do not share their chance. @default 0
  * @param options.progress Told of each replica.
  * @param options.signal Aborts the work.
  * @returns The map with its fit and features.
@@ -75,16 +80,19 @@ export async function mapLine(
   trail: Trail,
   options: {
     target: Target;
-    systemic_kms: number;
+    systemic: SystemicVelocity;
     binary: Binary | null;
     ephemeris: Ephemeris;
+    epoch: SplitDate;
+    workers?: number;
     force?: boolean;
     stream?: number;
     progress?: Progress;
     signal?: AbortSignal;
   },
 ): Promise<MappedLine> {
-  const { target, systemic_kms, binary, ephemeris, stream = 0, progress, signal } = options;
+  const { target, systemic, binary, ephemeris, stream = 0, progress, signal } = options;
+  const systemic_kms = systemic.kms;
   const settings = target.settings.map;
   const line = trail.line.name;
   const pixels = settings.pixels ?? pixelsFor(trail, settings.half_width_kms);
@@ -100,18 +108,30 @@ export async function mapLine(
     signal,
   });
   const { map } = inverted;
-  const replicas: VelocityMap[] = [];
-  for (let k = 0; k < settings.resamples; k++) {
-    replicas.push(inverted.replica(randomStream(target.settings.seed, stream + k)));
-    progress?.(k + 1, settings.resamples, `${line}: replicas of the map`);
-    await pause(signal);
-  }
+  const spread = settings.resamples < 2 ? null : await resampleMaps(trail, {
+    recipe: inverted.recipe,
+    count: settings.resamples,
+    seed: target.settings.seed + stream,
+    kind: settings.resampling,
+    peaks: featurePeaks(map, { resolution_kms, centre }),
+    centre,
+    resolution_kms,
+    workers: options.workers,
+    progress,
+    signal,
+  });
   const named = binary !== null && ephemeris.zero_marks !== "emission-crossing";
+  const { disc } = target.settings.model;
   const features = mapFeatures(map, {
     resolution_kms,
     centre,
-    replicas,
+    spread,
+    systemic_error_kms: systemic.error_kms ?? 0,
+    phase_error: phaseError(ephemeris, options.epoch),
     find_part: named ? partFinder(binary) : null,
+    rim_speed_kms: binary === null || disc?.outer_radius_over_a === undefined
+      ? null
+      : keplerianSpeed(disc.outer_radius_over_a, binary),
   });
   return {
     trail,
@@ -126,7 +146,7 @@ export async function mapLine(
     misalignment: inverted.misalignment,
     peak: mapPeak(map),
     features,
-    spread: spreadOf(replicas),
+    spread: spread?.deviation ?? null,
     ...gridModel(map, { trail, systemic_kms, scale: inverted.scale }),
     warnings: [
       ...inverted.warnings,
@@ -149,20 +169,4 @@ export async function mapLine(
 function pixelsFor(trail: Trail, half_width_kms: number): number {
   const sharpest = FWHM_PER_SIGMA * Math.min(...trail.sampling.profile_sigma_kms);
   return 2 * Math.max(40, Math.ceil((2 * half_width_kms) / sharpest)) + 1;
-}
-
-/** Standard deviation of each pixel among replicas. */
-function spreadOf(replicas: readonly VelocityMap[]): VelocityMap | null {
-  const [first] = replicas;
-  if (first === undefined || replicas.length < 2) return null;
-  const intensity = first.intensity.map((_, k) => {
-    let sum = 0, square = 0;
-    for (const replica of replicas) {
-      sum += replica.intensity[k]!;
-      square += replica.intensity[k]! ** 2;
-    }
-    const n = replicas.length;
-    return Math.sqrt(Math.max(0, (square - (sum * sum) / n) / (n - 1)));
-  });
-  return { ...first, intensity };
 }

@@ -96,7 +96,9 @@ export function openSession(
     await pause(signal);
     return mapLine(made, {
       target,
-      systemic_kms: (await systemic()).kms,
+      systemic: await systemic(),
+      epoch: (await exposures()).spectra[0]!.mid,
+      workers,
       binary: binary(),
       ephemeris: await ephemeris(),
       force,

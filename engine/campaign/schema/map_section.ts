@@ -15,6 +15,8 @@ export interface MapSettings {
   readonly reduced_chi_square: number;
   /** Number of resamples for the errors. */
   readonly resamples: number;
+  /** "noise" of the stated errors put on once more, or a "bootstrap" of blocks of exposures. */
+  readonly resampling: "noise" | "bootstrap";
 }
 
 /** Schema of MapSettings. */
@@ -28,4 +30,5 @@ export const mapSection: z.ZodType<MapSettings> = z.strictObject({
   prior_image: text.default("blurred"),
   reduced_chi_square: positive.default(1),
   resamples: nonNegative.int().default(50),
+  resampling: z.enum(["noise", "bootstrap"]).default("noise"),
 });
