@@ -1,4 +1,4 @@
-import { type Item, linePath, type TextItem } from "./display_list.ts";
+import { boxPath, type Item, linePath, type TextItem } from "./display_list.ts";
 import type { PlotPlace } from "./axes.ts";
 import { labelRuns, plainRuns } from "./runs.ts";
 import { CURVE_PT, HAIRLINE_PT, INK, NOTE_PT, PAPER, QUIET } from "./style.ts";
@@ -99,6 +99,8 @@ export interface NoteLayer {
   readonly rotate_deg?: number;
   /** Colour. @default {INK} */
   readonly colour?: string;
+  /** Width of bare paper under the word, for a word in the middle of a curve, pt. @default {0} */
+  readonly paper_pt?: number;
 }
 
 /** A part of a plot. */
@@ -133,7 +135,7 @@ export function drawLayer(layer: PlotLayer, place: LayerPlace): Item[] {
     case "rule":
       return drawRule(layer, place);
     case "note":
-      return [drawNote(layer, place)];
+      return drawNote(layer, place);
   }
 }
 
@@ -260,17 +262,22 @@ function drawRule(layer: RuleLayer, place: LayerPlace): Item[] {
   return items;
 }
 
-function drawNote(layer: NoteLayer, place: LayerPlace): Item {
-  const { text, plain, anchor = "start", rotate_deg = 0, colour = INK } = layer;
-  return {
+function drawNote(layer: NoteLayer, place: LayerPlace): Item[] {
+  const { text, plain, anchor = "start", rotate_deg = 0, colour = INK, paper_pt = 0 } = layer;
+  const [x, y] = [place.x(layer.x), place.y(layer.y)];
+  const under = { x: x - paper_pt / 2, y: y - 0.84 * NOTE_PT, width: paper_pt, height: NOTE_PT };
+  const paper: Item[] = paper_pt === 0
+    ? []
+    : [{ kind: "path", d: boxPath(under), fill: PAPER, fill_opacity: 0.85 }];
+  return [...paper, {
     kind: "text",
-    x: place.x(layer.x),
-    y: place.y(layer.y),
+    x,
+    y,
     size_pt: NOTE_PT,
     fill: colour,
     halo: PAPER,
     anchor,
     rotate_deg,
     runs: plain ? plainRuns(text) : labelRuns(text),
-  };
+  }];
 }

@@ -173,6 +173,53 @@ export function systemicByParity(
   };
 }
 
+/**
+ * How well the parity of the moments holds about each of several systemic velocities: the curve of
+ * which {@linkcode systemicByParity} finds the minimum.
+ *
+ * @param trail Exposures, data, errors.
+ * @param options A guess of γ in the middle of the range, and the velocities to try.
+ * @returns χ² of the moments over their degrees of freedom, one value per velocity.
+ * @throws {InputError} When too few exposures cover the range.
+ *
+ * @example
+ * ```ts
+ * import { parityScan } from "@millrace/millrace/tomography";
+ * import { assert } from "@std/assert";
+ *
+ * const count = 20, bins = 101;
+ * const sampling = {
+ *   count,
+ *   phase: Float64Array.from({ length: count }, (_, i) => i / count),
+ *   cycle: new Float64Array(count),
+ *   phase_width: new Float64Array(count),
+ *   start: Uint32Array.from({ length: count + 1 }, (_, i) => i * bins),
+ *   velocity_kms: Float64Array.from({ length: count * bins }, (_, k) => 20 * (k % bins - 50)),
+ *   pixel_kms: new Float64Array(count * bins).fill(20),
+ *   profile_sigma_kms: new Float64Array(count).fill(40),
+ * };
+ * const flux = sampling.velocity_kms.map((v) => Math.exp(-0.5 * ((v - 35) / 100) ** 2));
+ * const trail = { sampling, flux, error: flux.map(() => 0.05) };
+ * const options = { systemic_kms: 0, half_range_kms: 700, velocities_kms: [15, 35, 55] };
+ * const [low = 0, at = 0, high = 0] = parityScan(trail, options);
+ * assert(at < low && at < high);
+ * ```
+ */
+export function parityScan(
+  trail: TrailSamples,
+  options: ProfileMomentsOptions & { readonly velocities_kms: ArrayLike<number> },
+): Float64Array {
+  const { systemic_kms, half_range_kms, velocities_kms } = options;
+  const moments = measuredMoments(trail, options);
+  const size = moments[0]!.moment.length;
+  const freedom = Math.max(1, moments.length * size - size * (size + 1) / 2 - 1);
+  return Float64Array.from(velocities_kms, (gamma) => {
+    const offset = (gamma - systemic_kms) / half_range_kms;
+    return fitMoments(moments.map((m) => aboutAnother(m, offset)), trail.sampling).chi_square /
+      freedom;
+  });
+}
+
 /** The moments about a place further up by an offset, in units of the half-range. */
 function aboutAnother(moments: ProfileMoments, offset: number): ProfileMoments {
   const size = moments.moment.length;

@@ -71,7 +71,13 @@ export function exampleSubject(): PlateSubject {
       { vx_kms: -1000, vy_kms: -1000, major_kms: 320, minor_kms: 150, angle_deg: 30 },
       { vx_kms: 900, vy_kms: 900, major_kms: 260, minor_kms: 240, angle_deg: -20 },
     ],
-    detection_limit: scaled(map, (value) => 12 + 400 * value),
+    detection_limit: {
+      ...scaled(map, (value) => 12 + 400 * value),
+      sigma_kms: 60,
+      found_part: 0.95,
+      false_alarm: 0.01,
+      trials: 200,
+    },
     spectrum: {
       wavelength_angstrom,
       flux: wavelength_angstrom.map((at, i) =>

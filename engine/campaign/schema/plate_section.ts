@@ -15,8 +15,12 @@ export interface PlateSettings {
   readonly each_line: boolean;
   /** Whether panels are lettered (a), (b), … */
   readonly letters: boolean;
+  /** How many times as large letters and lines are within the same width: for slides. */
+  readonly enlarge?: number;
   /** Colours of maps and trails. */
   readonly colour_map?: string;
+  /** Colours of signed panels: residual, asymmetric part, significance. */
+  readonly signed_colour_map?: string;
   /** Stretch of maps and trails. */
   readonly stretch?: "linear" | "square-root" | "asinh";
   /** Limits of maps. */
@@ -29,22 +33,41 @@ export interface PlateSettings {
   readonly shape?: "round" | "square";
   /** Scales that all lines have in common. */
   readonly share: readonly ("map" | "trail")[];
+  /** Levels of contours on the map, as parts of its peak. */
+  readonly contours: readonly number[];
+  /** Radii of rims of the disc that are drawn on the map as circles of Keplerian speed, a. */
+  readonly rims_over_a: readonly number[];
   /** Resolution of PNG files, dots per inch. */
   readonly png_dpi?: number;
 }
 
 /** A row of panels. */
 export interface PlateRowSettings {
-  /** Names of the panels from left to right. */
-  readonly panels: readonly string[];
+  /** The panels from left to right: names, or tables. */
+  readonly panels: readonly (string | PlatePanelSettings)[];
   /** Height of their frames, mm. */
   readonly height_mm?: number;
   /** Name of the line shown; the first one when absent. */
   readonly line?: string;
 }
 
+/** A panel of a row. */
+export interface PlatePanelSettings {
+  /** What is drawn. */
+  readonly panel: string;
+  /** Name of the line shown; the row's when absent. */
+  readonly line?: string;
+  /** Name above the panel in place of the usual one. */
+  readonly name?: string;
+}
+
+const panel = z.union([
+  text,
+  z.strictObject({ panel: text, line: text.optional(), name: text.optional() }),
+], { error: "must be a panel's name, or a table with panel, line, name" });
+
 const row = z.strictObject({
-  panels: z.array(text).min(1),
+  panels: z.array(panel).min(1),
   height_mm: positive.optional(),
   line: text.optional(),
 });
@@ -59,12 +82,16 @@ export const plateSection: z.ZodType<PlateSettings> = z.strictObject({
   rows: z.array(row).min(1).optional(),
   each_line: z.boolean().default(false),
   letters: z.boolean().default(false),
+  enlarge: z.number().gte(0.5).lte(10).optional(),
   colour_map: text.optional(),
+  signed_colour_map: text.optional(),
   stretch: z.enum(["linear", "square-root", "asinh"]).optional(),
   map_limits: range.optional(),
   trail_limits: range.optional(),
   residual_limit_sigma: positive.optional(),
   shape: z.enum(["round", "square"]).optional(),
   share: z.array(z.enum(["map", "trail"])).default([]),
+  contours: z.array(positive.lt(1)).default([]),
+  rims_over_a: z.array(positive.lte(1)).default([]),
   png_dpi: nonNegative.gte(50).lte(1200).optional(),
 });

@@ -1,14 +1,15 @@
-import type { PanelName, Picture, PlateDescription } from "../../figures/mod.ts";
 import { InputError } from "../../errors.ts";
-import { captionText } from "../caption_text.ts";
-import { hduName } from "../fits_head.ts";
+import type { PlateSubject } from "../../figures/mod.ts";
+import { figureFiles } from "../figure_files.ts";
 import { mappedLines } from "../line_of.ts";
 import { type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
+import { type PlateFigure, plateFigures } from "../plate_figures.ts";
 import { reportHtml } from "../report.ts";
 import type { LineSettings } from "../schema/lines_section.ts";
-import type { PlateSettings } from "../schema/plate_section.ts";
 import type { Session } from "../session.ts";
+import { type LineLimit, lineLimit } from "../subject/limit_subject.ts";
 import { plateSubject } from "../subject/plate_subject.ts";
+import type { Target } from "../target.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
 /** What `plate --json` prints. */
@@ -19,8 +20,6 @@ export interface PlateDocument extends OutputHead {
   readonly captions: readonly string[];
 }
 
-const STANDARD: readonly PanelName[] = ["map", "trail", "model", "residual"];
-
 /**
  * Draws the plate that `[plate]` describes: one figure of its rows, or where it has none a standard
  * one for each line (map, trail, map projected again, residual). The first is named `plate`, further
@@ -29,55 +28,46 @@ const STANDARD: readonly PanelName[] = ["map", "trail", "model", "residual"];
  * @param session The target at work.
  * @param output Where to write.
  * @returns Document, files, warnings.
- * @throws {InputError} When a panel is not known or lacks its data.
+ * @throws {InputError} When a panel is not known or lacks its data, with its place in the file.
  */
 export async function runPlate(
   session: Session,
   output: StepOutput,
 ): Promise<StepResult<PlateDocument>> {
   // Fonts and renderer are heavy: they load only here.
-  const { drawPlate, pdfBytes, pngBytes, svgText } = await import("../../figures/mod.ts");
+  const { checkPlate, drawPlate } = await import("../../figures/mod.ts");
   const { target } = session;
   const { plate } = target.settings;
-  const lines = mappedLines(session.lines("draw the plate"));
-  const figures = plate.rows === undefined
-    ? lines.map((line) => ({ lines: [line], panels: STANDARD }))
-    : [{
-      lines,
-      panels: plate.rows.flatMap(({ panels }) => panels) as PanelName[],
-    }];
+  const lines = session.lines("draw the plate");
+  // A word that is wrong is told before hours of work, not after.
+  const figures = inFile(target, () => plateFigures(plate, lines));
+  for (const { description, lines: shown } of figures) {
+    inFile(target, () => checkPlate(description, shown.length));
+  }
+  const limits = new Map<LineSettings, LineLimit>();
+  const limit = async (line: LineSettings) => {
+    const { half_width_kms } = target.settings.map;
+    const known = limits.get(line) ?? await lineLimit(session, line, { half_width_kms });
+    limits.set(line, known);
+    return known;
+  };
   const made: [name: string, data: Uint8Array | string][] = [];
   const captions: string[] = [];
-  for (const [index, { lines: shown, panels }] of figures.entries()) {
-    const subjects = [];
-    for (const line of shown) subjects.push(await plateSubject(session, { line, panels }));
-    let drawn: { readonly picture: Picture; readonly caption: string };
-    try {
-      drawn = drawPlate(descriptionOf(plate, shown), subjects);
-    } catch (error) {
-      if (!(error instanceof InputError)) throw error;
-      const place = target.places.get(error.key ?? "") ?? target.places.get("plate");
-      throw error.at({ file: target.file, line: place?.line });
+  for (const { name, lines: shown, panels, description } of figures) {
+    const subjects: PlateSubject[] = [];
+    for (const [i, line] of shown.entries()) {
+      subjects.push(await plateSubject(session, { line, panels: panels[i]!, limit }));
     }
-    const name = index === 0 ? "plate" : `plate-${fileName(shown[0]!)}`;
-    for (const format of plate.formats) {
-      const data = format === "svg"
-        ? svgText(drawn.picture)
-        : format === "png"
-        ? await pngBytes(drawn.picture, plate.png_dpi === undefined ? {} : { dpi: plate.png_dpi })
-        : await pdfBytes(drawn.picture);
-      made.push([`${name}.${format}`, data]);
-    }
+    const drawn = inFile(target, () => drawPlate(description, subjects));
     captions.push(drawn.caption);
-    made.push([`${name}.txt`, captionText(drawn.caption)]);
+    made.push(...await figureFiles(drawn, { name, plate }));
   }
-  made.push(["report.html", await reportHtml(session)]);
+  made.push(["report.html", await reportHtml(session, { limits })]);
   const { inputs, warnings: reading } = await session.exposures();
-  const mapped = await Promise.all(lines.map(session.map));
   const warnings = uniqueWarnings([
     ...reading,
     ...(await session.systemic()).warnings,
-    ...mapped.flatMap((one) => [...one.trail.warnings, ...one.warnings]),
+    ...await lineWarnings(session, figures),
   ]);
   const files = await writeStep(made, output);
   return {
@@ -91,35 +81,32 @@ export async function runPlate(
   };
 }
 
-function descriptionOf(plate: PlateSettings, lines: readonly LineSettings[]): PlateDescription {
-  const { formats: _formats, title: _title, png_dpi: _dpi, rows, each_line, ...style } = plate;
-  return {
-    ...style,
-    each_subject: each_line,
-    ...(rows === undefined ? {} : {
-      rows: rows.map(({ line, ...row }, i) => ({
-        ...row,
-        panels: row.panels as PanelName[],
-        ...(line === undefined ? {} : { subject: subjectOf(line, { lines, row: i }) }),
-      })),
-    }),
-  } as PlateDescription;
+/** Says where in the target file an error is. */
+function inFile<T>(target: Target, make: () => T): T {
+  try {
+    return make();
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    throw error.at({ file: target.file, ...placeOf(target, error.key ?? "plate") });
+  }
 }
 
-function subjectOf(
-  name: string,
-  options: { lines: readonly LineSettings[]; row: number },
-): number {
-  const index = options.lines.findIndex((line) => line.name === name);
-  if (index >= 0) return index;
-  throw new InputError({
-    action: "draw the plate",
-    rule: `a row's line must be one of ${options.lines.map((line) => line.name).join(", ")}`,
-    value: name,
-    key: `plate.rows[${options.row}].line`,
-  });
+/** Place of a key, or of the nearest table that it stands in. */
+function placeOf(target: Target, key: string): { line: number } | undefined {
+  for (let part = key; part !== ""; part = part.replace(/(\.|\[)?[^.[]*$/, "")) {
+    const place = target.places.get(part);
+    if (place !== undefined) return { line: place.line };
+  }
+  return undefined;
 }
 
-function fileName(line: LineSettings): string {
-  return hduName(line.name).toLowerCase().replace(/[^a-z0-9]+/g, "-");
+/** Warnings of the lines that the page and the figures show. */
+async function lineWarnings(session: Session, figures: readonly PlateFigure[]) {
+  const all = session.lines("draw the plate");
+  const mapped = await Promise.all(mappedLines(all).map(session.map));
+  const trails = await Promise.all(figures.flatMap(({ lines }) => lines).map(session.trail));
+  return [
+    ...mapped.flatMap((one) => [...one.trail.warnings, ...one.warnings]),
+    ...trails.flatMap((trail) => trail.warnings),
+  ];
 }

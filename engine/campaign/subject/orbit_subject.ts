@@ -1,11 +1,19 @@
-import type { FittedCurve, Plane, PlateSubject, Scan } from "../../figures/mod.ts";
+import type { FittedCurve, Plane, PlaneCurve, PlateSubject, Scan } from "../../figures/mod.ts";
 import { wrapPhase } from "../../numerics/mod.ts";
-import type { OrbitMeasurement } from "../../orbit/mod.ts";
+import { measuredOnly, type OrbitMeasurement, searchPeriod } from "../../orbit/mod.ts";
 
-/** What plates show of an orbit; a part that was not measured is left out. */
+/**
+ * What plates show of an orbit; a part that was not measured is left out.
+ *
+ * @param measurement The orbit.
+ * @param options Of what.
+ * @param options.line Name of the line whose wings are shown.
+ * @param options.periodogram Whether a periodogram about a given period is wanted. @default false
+ * @returns Fields of a plate's subject.
+ */
 export function orbitSubject(
   measurement: OrbitMeasurement,
-  options: { line: string },
+  options: { line: string; periodogram?: boolean },
 ): Pick<
   PlateSubject,
   | "velocities"
@@ -21,9 +29,7 @@ export function orbitSubject(
   return {
     ...(velocities.length === 0 ? {} : { velocities }),
     ...(own === undefined ? {} : diagrams(own)),
-    ...(measurement.period_search === null
-      ? {}
-      : { periodogram: periodogram(measurement.period_search) }),
+    ...periodogramSubject(measurement, { wanted: options.periodogram ?? false }),
     ...planes(measurement),
   };
 }
@@ -38,8 +44,11 @@ function fittedCurves(measurement: OrbitMeasurement): FittedCurve[] {
       value: curve.velocity_kms,
       error: curve.error_kms,
       systemic_kms: fit!.systemic_kms,
+      systemic_error_kms: fit!.systemic_error_kms,
       k_kms: fit!.k_kms,
+      k_error_kms: fit!.k_error_kms,
       crossing_phase: fit!.crossing_phase,
+      crossing_error: fit!.crossing_phase_error,
     }));
 }
 
@@ -72,12 +81,28 @@ function diagrams(
   };
 }
 
-function periodogram(search: NonNullable<OrbitMeasurement["period_search"]>): Scan {
-  const [best] = search.candidates;
+/** The search that was made, or where the period was given, one from a third to three times of it. */
+function periodogramSubject(
+  measurement: OrbitMeasurement,
+  options: { wanted: boolean },
+): Pick<PlateSubject, "periodogram"> {
+  if (measurement.period_search !== null) return { periodogram: scanOf(measurement.period_search) };
+  const { period_d } = measurement.ephemeris;
+  const best = measurement.curves.find(({ measured }) => measured) ?? measurement.curves[0];
+  if (!options.wanted || best === undefined) return {};
+  const { orbits, velocity_kms, error_kms } = measuredOnly(best.curve);
+  const search = searchPeriod(
+    { time: orbits.map((x) => x * period_d), value: velocity_kms, error: error_kms },
+    { period_range_d: [period_d / 3, 3 * period_d], oversampling: 40 },
+  );
+  return { periodogram: { ...scanOf(search), reference: 1 / period_d } };
+}
+
+function scanOf(search: NonNullable<OrbitMeasurement["period_search"]>): Scan {
   return {
     x: search.frequency_per_d,
     y: search.power,
-    best: best?.frequency_per_d ?? null,
+    best: search.candidates[0]?.frequency_per_d ?? null,
   };
 }
 
@@ -86,12 +111,12 @@ function planes(
 ): Pick<PlateSubject, "mass_plane" | "inclination_plane"> {
   const { planes: made, report } = measurement;
   if (made === null) return {};
-  const curves = (list: typeof made.masses) =>
-    list.map(({ label, x, y }) => ({ name: label, x: Array.from(x), y: Array.from(y) }));
+  const { draws } = made;
   const { masses, mass_ratio, mass_ratio_error } = report;
   const half = (low: number | null, high: number | null) => ((low ?? 0) + (high ?? 0)) / 2;
   const masses_plane: Plane = {
-    curves: curves(made.masses),
+    curves: planeCurves(made.masses),
+    ...(draws === null ? {} : { samples: { x: draws.accretor_msun, y: draws.donor_msun } }),
     ...(masses.accretor_msun === null || masses.donor_msun === null ? {} : {
       adopted: {
         x: masses.accretor_msun,
@@ -104,7 +129,8 @@ function planes(
   return {
     mass_plane: masses_plane,
     inclination_plane: {
-      curves: curves(made.inclinations),
+      curves: planeCurves(made.inclinations),
+      ...(draws === null ? {} : { samples: { x: draws.mass_ratio, y: draws.inclination_deg } }),
       ...(mass_ratio === null || masses.inclination_deg === null ? {} : {
         adopted: {
           x: mass_ratio,
@@ -115,4 +141,20 @@ function planes(
       }),
     },
   };
+}
+
+/** Curves with names in print; q with its error as one band. */
+function planeCurves(
+  list: NonNullable<OrbitMeasurement["planes"]>["masses"],
+): PlaneCurve[] {
+  const labelled = (label: string) => list.find((curve) => curve.label === label);
+  const [low, high] = [labelled("q − σ"), labelled("q + σ")];
+  return list.filter((curve) => curve !== low && curve !== high).map(({ label, x, y }) => ({
+    name: label.replace(/^[iq]/, "*$&*").replace(/^M1 /, "*M*_{1} = "),
+    x: Array.from(x),
+    y: Array.from(y),
+    ...(label === "q" && low !== undefined && high !== undefined
+      ? { low: low.y, high: high.y }
+      : {}),
+  }));
 }

@@ -1,9 +1,13 @@
 import type { PanelName, PlateSubject } from "../../figures/mod.ts";
 import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
-import { halvesSubject, mapSubject } from "./map_subject.ts";
+import { limitMap, type LineLimit } from "./limit_subject.ts";
+import { halvesSubject, mapSubject, resolutionSubject } from "./map_subject.ts";
+import { nightsOf } from "./nights.ts";
 import { orbitSubject } from "./orbit_subject.ts";
+import { overlaySubject } from "./overlay_subject.ts";
 import { phaseCurves, spectrumSubject } from "./profile_subject.ts";
+import { scanSubject } from "./scan_subject.ts";
 
 const ORBIT: readonly PanelName[] = [
   "velocity-curve",
@@ -15,6 +19,14 @@ const ORBIT: readonly PanelName[] = [
 ];
 const CURVES: readonly PanelName[] = ["equivalent-width", "violet-red", "continuum"];
 const HALVES: readonly PanelName[] = ["half-one", "half-two"];
+const WITHOUT_MAP: readonly PanelName[] = [
+  ...ORBIT,
+  ...CURVES,
+  "trail",
+  "spectrum",
+  "coverage",
+  "disc-in-space",
+];
 
 /**
  * All that the named panels show of one line: only what they need is computed.
@@ -23,31 +35,74 @@ const HALVES: readonly PanelName[] = ["half-one", "half-two"];
  * @param options What is shown.
  * @param options.line The line.
  * @param options.panels The panels.
+ * @param options.limit Makes the detection limit.
  * @returns The subject of a plate.
  */
 export async function plateSubject(
   session: Session,
-  options: { line: LineSettings; panels: readonly PanelName[] },
+  options: {
+    line: LineSettings;
+    panels: readonly PanelName[];
+    limit: (line: LineSettings) => Promise<LineLimit>;
+  },
 ): Promise<PlateSubject> {
   const { line, panels } = options;
   const { target } = session;
   const wants = (names: readonly PanelName[]) => panels.some((name) => names.includes(name));
-  const mapped = await session.map(line);
-  const { trail } = mapped;
-  return {
+  const binary = session.binary();
+  const trail = await session.trail(line);
+  const subject: PlateSubject = {
     title: target.settings.plate.title ?? target.title,
     line: trail.line,
-    systemic_kms: mapped.systemic_kms,
-    method: mapped.method,
-    binary: session.binary(),
+    systemic_kms: (await session.systemic()).kms,
+    method: target.settings.map.method,
+    binary,
     trail,
-    ...mapSubject(mapped),
-    ...(wants(HALVES) ? { halves: halvesSubject(mapped) } : {}),
+    ...overlaySubject(target.settings, binary),
     ...(wants(CURVES) ? phaseCurves(trail, { seed: target.settings.seed }) : {}),
     ...(wants(["spectrum"])
       ? { spectrum: spectrumSubject((await session.exposures()).spectra, { trail }) }
       : {}),
-    ...(wants(["coverage"]) ? { coverage: [{ name: trail.line.name, ...trail.sampling }] } : {}),
-    ...(wants(ORBIT) ? orbitSubject(await session.orbit(), { line: trail.line.name }) : {}),
+    ...(wants(["coverage"]) ? await coverageSubject(session, line) : {}),
+    ...(wants(ORBIT)
+      ? orbitSubject(await session.orbit(), {
+        line: trail.line.name,
+        periodogram: wants(["periodogram"]),
+      })
+      : {}),
+  };
+  if (panels.every((panel) => WITHOUT_MAP.includes(panel))) return subject;
+  const mapped = await session.map(line);
+  const { period_d } = await session.ephemeris();
+  return {
+    ...subject,
+    ...mapSubject(mapped),
+    ...(wants(HALVES) ? { halves: halvesSubject(mapped, { period_d }) } : {}),
+    ...(wants(["systemic-scan"]) ? scanSubject(mapped) : {}),
+    ...(wants(["resolution"]) ? resolutionSubject(mapped) : {}),
+    ...(wants(["detection-limit"]) && binary !== null
+      ? { detection_limit: limitMap(await options.limit(line), mapped.map) }
+      : {}),
+  };
+}
+
+/** The phases that each night covered. */
+async function coverageSubject(
+  session: Session,
+  line: LineSettings,
+): Promise<Pick<PlateSubject, "coverage">> {
+  const { sampling } = await session.trail(line);
+  const { period_d } = await session.ephemeris();
+  const nights = nightsOf(sampling, { period_d });
+  const last = Math.max(...nights);
+  return {
+    coverage: Array.from({ length: last + 1 }, (_, night) => {
+      const own = (_: number, i: number) => nights[i] === night;
+      return {
+        name: `night ${night + 1}`,
+        phase: sampling.phase.filter(own),
+        phase_width: sampling.phase_width.filter(own),
+      };
+    }),
   };
 }

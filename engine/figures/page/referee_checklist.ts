@@ -29,7 +29,11 @@ export interface RefereeFacts {
   };
   /** Maps made at γ − σ and γ + σ: how far the strongest feature moves. */
   readonly systemic_shift?: {
-    /** Largest move, km/s. */
+    /** By how much γ was moved to either side, km/s. */
+    readonly sigma_kms: number;
+    /** Where that comes from. */
+    readonly source: string;
+    /** Largest move, km/s; infinite when the feature is lost. */
     readonly moves_kms: number;
     /** What it is compared with: the feature's error, km/s. */
     readonly error_kms: number | null;
@@ -147,7 +151,14 @@ export function refereeChecklist(facts: RefereeFacts): ChecklistRow[] {
       "Does the map hold at γ ± σ?",
       systemic_shift
         ? settled(
-          `The strongest feature moves by ${measuredText(systemic_shift.moves_kms, null)} km/s` +
+          `At γ ± ${
+            measuredText(systemic_shift.sigma_kms, null)
+          } km/s (${systemic_shift.source}) ` +
+            (systemic_shift.moves_kms < Infinity
+              ? `the strongest feature moves by ${
+                measuredText(systemic_shift.moves_kms, null)
+              } km/s`
+              : "the strongest feature is lost") +
             (systemic_shift.error_kms === null
               ? "."
               : `; its own error is ${measuredText(systemic_shift.error_kms, null)} km/s.`),
@@ -201,7 +212,7 @@ export function refereeChecklist(facts: RefereeFacts): ChecklistRow[] {
       "Was K of the donor corrected for irradiation?",
       facts.k_correction
         ? settled(`${upper(facts.k_correction)}.`)
-        : notDone("no K-correction applied"),
+        : notDone("no velocity of the donor measured"),
     ),
     row(
       "Is there an upper limit where nothing is seen?",
@@ -212,7 +223,7 @@ export function refereeChecklist(facts: RefereeFacts): ChecklistRow[] {
               Number((100 * facts.upper_limit.confidence).toFixed(2))
             } %.`,
         )
-        : notDone("no detection limit computed"),
+        : notDone("put the panel detection-limit on the plate, or run weigh"),
     ),
   ];
 }

@@ -75,6 +75,7 @@ export function curveNames(
         text: curve.name,
         anchor: "middle",
         colour: INK,
+        paper_pt: width + 2,
       }];
     }
     return [];

@@ -14,6 +14,8 @@ export interface Scan {
   readonly best?: number | null;
   /** Its standard deviation; null when not known. @default {null} */
   readonly best_error?: number | null;
+  /** A value from elsewhere, to compare with the best one; null for none. @default {null} */
+  readonly reference?: number | null;
   /** Levels of the statistic with their names (markup of `labelRuns`), such as false-alarm levels. @default {[]} */
   readonly levels?: readonly { readonly y: number; readonly name: string }[];
 }
@@ -27,7 +29,7 @@ export interface ScanOptions extends PanelPlace {
 }
 
 /**
- * Draws a statistic against a parameter, with the best value, its error as a band, and levels.
+ * Draws a statistic against a parameter, with the best value, its error as a band, a value to compare with, and levels.
  *
  * @param scan The values.
  * @param options Place and labels.
@@ -45,7 +47,7 @@ export interface ScanOptions extends PanelPlace {
  */
 export function scanPanel(scan: Scan, options: ScanOptions): Group {
   const { frame, name = "scan", x_label, y_label, x_range, y_range } = options;
-  const { best = null, best_error = null, levels = [] } = scan;
+  const { best = null, best_error = null, reference = null, levels = [] } = scan;
   const layers: PlotLayer[] = [{ kind: "line", x: scan.x, y: scan.y, colour: INK, width_pt: 0.7 }];
   for (const level of levels) layers.push({ kind: "rule", y: level.y, name: level.name });
   const range = y_range ?? layerRange(layers, "y");
@@ -55,6 +57,7 @@ export function scanPanel(scan: Scan, options: ScanOptions): Group {
     const [low, high] = range.map((end) => [end, end]) as [number[], number[]];
     under.push({ kind: "band", x, low, high, colour: ACCENT });
   }
+  if (reference !== null) under.push({ kind: "rule", x: reference, colour: INK, dash_pt: [1, 2] });
   if (best !== null) under.push({ kind: "rule", x: best, colour: ACCENT, dash_pt: [] });
   return plotPanel([...under, ...layers], {
     frame,

@@ -1,4 +1,5 @@
 import type { Group } from "../display_list.ts";
+import { lineLabel } from "../line_label.ts";
 import { type PhaseCurve, phaseCurvePanel } from "./phase_curve_panel.ts";
 import type { PanelPlace } from "./plot_panel.ts";
 import { KMS_LABEL } from "./trail_panel.ts";
@@ -7,10 +8,16 @@ import { KMS_LABEL } from "./trail_panel.ts";
 export interface FittedCurve extends PhaseCurve {
   /** Systemic velocity γ, km/s. */
   readonly systemic_kms: number;
+  /** Its standard deviation, km/s; null when not known. @default {null} */
+  readonly systemic_error_kms?: number | null;
   /** Amplitude K, km/s. */
   readonly k_kms: number;
+  /** Its standard deviation, km/s; null when not known. @default {null} */
+  readonly k_error_kms?: number | null;
   /** Phase φ0 at which the velocity crosses γ upwards, cycles. */
   readonly crossing_phase: number;
+  /** Its standard deviation, cycles; null when not known. @default {null} */
+  readonly crossing_error?: number | null;
 }
 
 /**
@@ -37,7 +44,11 @@ export function velocityCurvePanel(curves: readonly FittedCurve[], options: Pane
   const gap = 6;
   const top = { ...frame, height: frame.height - lower - gap };
   const bottom = { ...frame, y: frame.y + frame.height - lower, height: lower };
-  const fitted = curves.map((curve) => ({ ...curve, model: (phase: number) => fit(curve, phase) }));
+  const fitted = curves.map((curve) => ({
+    ...curve,
+    ...(curve.name === undefined ? {} : { name: lineLabel(curve.name) }),
+    model: (phase: number) => fit(curve, phase),
+  }));
   const left = curves.map((curve): PhaseCurve => ({
     phase: curve.phase,
     value: Array.from(curve.value, (v, i) => v - fit(curve, curve.phase[i]!)),

@@ -89,6 +89,7 @@ function drawMap(map: VelocityMap, subject: PlateSubject, drawing: MapDrawing): 
   const accretor = [0, centreOf(subject).vy_kms] as const;
   // Names stand once among neighbours, and not where they would hide a small map.
   const named = first && place.window.width > 100;
+  const roomy = named && place.window.width > 160;
   const unnamed = rims.map(({ speed_kms }) => ({ speed_kms }));
   const panel = mapPanel(map, {
     frame,
@@ -102,7 +103,7 @@ function drawMap(map: VelocityMap, subject: PlateSubject, drawing: MapDrawing): 
     ...(marked && features ? { features } : {}),
     overlay: [
       ...(streams ? uncertainBand(streams, place) : []),
-      ...(rims.length > 0 ? discRims(named ? rims : unnamed, { place, accretor }) : []),
+      ...(rims.length > 0 ? discRims(roomy ? rims : unnamed, { place, accretor }) : []),
       ...overlay,
     ],
   });
@@ -279,7 +280,7 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
       return drawMap(map, subject, { ...drawing, name: "resolution", marked: false, overlay });
     },
     tell: (subject) =>
-      "Ellipses: full width at half maximum of a point source at " +
+      "Ellipses: full width at half maximum of a point, seen at these phases and back-projected, at " +
       `${need(subject, "resolution", "resolution").length} places, ` +
       `${
         need(subject, "resolution", "resolution")
@@ -301,10 +302,18 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
         name: "detection-limit",
         marked: false,
       }),
-    tell: (_, scale) =>
-      `Least flux of a compact source that would have been found at each place; ${
-        tellScale(scale)
-      } ` +
-      "km/s of the continuum.",
+    tell: (subject, scale) => {
+      const limit = need(subject, "detection_limit", "detection-limit");
+      return `Least flux of a compact source, ${
+        captionNumber(limit.sigma_kms)
+      } km/s wide (σ), that ` +
+        `would have been found at each place in ${
+          captionNumber(100 * limit.found_part)
+        } % of all ` +
+        `cases (false alarms ${
+          captionNumber(100 * limit.false_alarm)
+        } %, ${limit.trials} trials); ` +
+        `${tellScale(scale)} km/s of the continuum.`;
+    },
   },
 };

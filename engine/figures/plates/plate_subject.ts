@@ -18,6 +18,18 @@ import type { FittedCurve } from "../panels/velocity_curve_panel.ts";
 /** What marks on a map need to know of a binary. */
 export type MarkedBinary = Pick<Binary, "mass_ratio" | "k_accretor_kms" | "k_donor_kms">;
 
+/** Least flux of a compact source that would have been found, place by place. */
+export interface DetectionMap extends VelocityMap {
+  /** Standard deviation of the source's own velocities, km/s. */
+  readonly sigma_kms: number;
+  /** Part of all cases in which it would have been found, 0 to 1. */
+  readonly found_part: number;
+  /** Rate at which data without a source would show one somewhere. */
+  readonly false_alarm: number;
+  /** Number of trials of noise. */
+  readonly trials: number;
+}
+
 /**
  * All that plates may show of one object in one line. Each panel needs a few of the fields and says
  * which one is missing.
@@ -70,7 +82,7 @@ export interface PlateSubject {
   /** Local resolution of the map. */
   readonly resolution?: readonly ResolutionEllipse[];
   /** Least flux of a compact source that would have been found, in units of the continuum × km/s. */
-  readonly detection_limit?: VelocityMap;
+  readonly detection_limit?: DetectionMap;
   /** Mean spectrum and the lines to name in it. */
   readonly spectrum?: MeanSpectrum & {
     /** Lines to identify. */

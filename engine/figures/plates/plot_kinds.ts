@@ -9,7 +9,8 @@ import { inclinationPlanePanel, massPlanePanel, type Plane } from "../panels/pla
 import type { PanelPlace } from "../panels/plot_panel.ts";
 import { periodogramPanel, type Scan, systemicScanPanel } from "../panels/scan_panel.ts";
 import { spectrumPanel } from "../panels/spectrum_panel.ts";
-import { velocityCurvePanel } from "../panels/velocity_curve_panel.ts";
+import { type FittedCurve, velocityCurvePanel } from "../panels/velocity_curve_panel.ts";
+import { measuredText } from "../measured_text.ts";
 import { captionNumber, type PanelKind, requireField } from "./panel_kind.ts";
 import type { PanelName } from "./panel_names.ts";
 import type { PlateSubject } from "./plate_subject.ts";
@@ -53,19 +54,26 @@ function centreOf(subject: PlateSubject) {
 }
 
 function tellBest(scan: Scan, unit: string): string {
-  const { best = null, best_error = null, levels = [] } = scan;
-  const error = best_error === null ? "" : ` ± ${captionNumber(best_error)}`;
+  const { best = null, best_error = null, reference = null, levels = [] } = scan;
   const lines = levels.map((level) => `${level.name} at ${captionNumber(level.y)}`);
-  return (best === null ? "" : ` Best value: ${captionNumber(best)}${error} ${unit}.`) +
+  return (best === null ? "" : ` Best value: ${measuredText(best, best_error)} ${unit}.`) +
+    (reference === null ? "" : ` Dotted: the adopted ${captionNumber(reference)} ${unit}.`) +
     (lines.length === 0 ? "" : ` Dashed: ${lines.join(", ")}.`);
 }
 
 function tellPlane(plane: Plane): string {
   const { adopted } = plane;
   if (!adopted) return "";
-  const value = (v: number, e?: number) =>
-    e === undefined ? captionNumber(v) : `${captionNumber(v)} ± ${captionNumber(e)}`;
+  const value = (v: number, error = 0) => measuredText(v, error);
   return ` Adopted: ${value(adopted.x, adopted.x_error)}, ${value(adopted.y, adopted.y_error)}.`;
+}
+
+function tellCurve(curve: FittedCurve): string {
+  const { name, k_error_kms, systemic_error_kms, crossing_error } = curve;
+  return (name === undefined ? "" : `${name}, `) +
+    `K = ${measuredText(curve.k_kms, k_error_kms ?? null)} km/s, ` +
+    `γ = ${measuredText(curve.systemic_kms, systemic_error_kms ?? null)} km/s, ` +
+    `upward crossing at phase ${measuredText(curve.crossing_phase, crossing_error ?? null)}`;
 }
 
 /** The panels that are line plots. */
@@ -128,13 +136,9 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
     height_pt: 140,
     draw: (curves, place) => velocityCurvePanel(curves, place),
     tell: (curves) =>
-      "Velocities with fitted orbits, and what is left of them: " +
-      curves.map(({ k_kms, systemic_kms, crossing_phase }) =>
-        `K = ${captionNumber(k_kms)} km/s, γ = ${
-          captionNumber(systemic_kms)
-        } km/s, upward crossing ` +
-        `at phase ${captionNumber(crossing_phase)}`
-      ).join("; ") + ".",
+      `Velocities with fitted orbits, and what is left of them: ${
+        curves.map(tellCurve).join("; ")
+      }.`,
   }),
   diagnostic: plotKind({
     panel: "diagnostic",
