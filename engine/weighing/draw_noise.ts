@@ -26,22 +26,19 @@ export function drawNoise(
   const { count, start, pixel_kms } = data.sampling;
   const residual = new Float64Array(bank.residual.length);
   const excess = new Float64Array(count);
-  const source = drawBlocks(bank, { data, random });
+  const { source, turn } = drawBlocks(bank, { data, random });
   const white = whiteNoise(data, random);
   for (let i = 0; i < count; i++) {
     const j = source[i]!;
-    excess[i] = bank.excess[j]!;
+    excess[i] = turn[i]! * bank.excess[j]!;
     const from = start[j]!, to = start[j + 1]!;
-    if (bank.kind === "white") {
-      for (let n = start[i]!; n < start[i + 1]!; n++) residual[n] = white();
-      continue;
-    }
     let m = from;
     for (let n = start[i]!; n < start[i + 1]!; n++) {
       const v = bank.velocity_kms[n]!;
       while (m + 1 < to && nearer(bank.velocity_kms, m, v)) m++;
-      const near = Math.abs(bank.velocity_kms[m]! - v) <= 0.75 * pixel_kms[n]!;
-      residual[n] = near ? bank.residual[m]! : white();
+      const near = bank.kind === "resampled" &&
+        Math.abs(bank.velocity_kms[m]! - v) <= 0.75 * pixel_kms[n]!;
+      residual[n] = near ? turn[i]! * bank.residual[m]! : white();
     }
   }
   return { residual, excess };
@@ -74,26 +71,29 @@ function nearer(velocity: Float64Array, m: number, v: number): boolean {
   return Math.abs(velocity[m + 1]! - v) <= Math.abs(velocity[m]! - v);
 }
 
-/** The exposure from which each takes its noise. */
+/** The exposure from which each takes its noise, and the sign it is given. */
 function drawBlocks(
   bank: NoiseBank,
   { data, random }: { readonly data: WeighingData; readonly random: RandomStream },
-): Uint32Array {
+): { readonly source: Uint32Array; readonly turn: Int8Array } {
   const { count } = data.sampling;
   const members = new Map<number, number[]>();
   data.group.forEach((group, i) => {
     members.set(group, [...(members.get(group) ?? []), i]);
   });
   const source = new Uint32Array(count);
+  const turn = new Int8Array(count);
   for (let i = 0; i < count;) {
     const first = random.integer(count);
+    const sign = bank.structured || random.integer(2) === 0 ? 1 : -1;
     for (let k = 0; k < bank.block && i < count; k++, i++) {
       const j = (first + k) % count;
       const own = members.get(data.group[i]!)!;
       source[i] = data.group[j] === data.group[i] ? j : own[random.integer(own.length)]!;
+      turn[i] = sign;
     }
   }
-  return source;
+  return { source, turn };
 }
 
 /** Normal deviates with the correlation from pixel to pixel that was measured at lag one. */

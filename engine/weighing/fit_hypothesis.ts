@@ -4,7 +4,13 @@ import { type FreeParameter, freeParameters } from "./free_parameters.ts";
 import { type Hypothesis, hypothesisName } from "./hypothesis.ts";
 import { type ParameterState, stateOf } from "./parameter_state.ts";
 import { coarseStart, isOtherPlace, randomStart, startValues } from "./fit_starts.ts";
-import { evaluate, type Evaluation, type Problem, sumOfSquares } from "./problem.ts";
+import {
+  evaluate,
+  type Evaluation,
+  type Problem,
+  sumOfSquares,
+  withGeometryHeld,
+} from "./problem.ts";
 import { isScanned, scan } from "./scan.ts";
 
 /** A hypothesis fitted to a problem's data. */
@@ -119,9 +125,11 @@ export function fitHypothesis(problem: Problem, options: FitOptions): Hypothesis
     best.push(randomStart(parameters, { settled, random: randomStream(seed) }));
   }
 
-  const fits = best.map((start) => fitFrom(problem, { hypothesis, parameters, start }))
-    .filter((fit) => fit !== null)
-    .sort((a, b) => total(a) - total(b));
+  const from = (start: ReadonlyMap<string, number>) =>
+    fitFrom(problem, { hypothesis, parameters, start });
+  let fits = best.map(from).filter((fit) => fit !== null).sort((a, b) => total(a) - total(b));
+  // Where the disc went to alone, another part may be impossible: then from what the model gives.
+  if (fits.length === 0) fits = [from(new Map())].filter((fit) => fit !== null);
   if (fits.length === 0) {
     throw new WorkError({
       action: `fit ${hypothesisName(hypothesis)}`,
@@ -142,13 +150,17 @@ export function total(fit: Pick<HypothesisFit, "chi_square" | "prior_chi_square"
   return fit.chi_square + fit.prior_chi_square;
 }
 
-/** The fit of parts that are not looked for on a grid; the disc's numbers may be. */
+/**
+ * The fit of parts that are not looked for on a grid; the disc's numbers may be. The geometry is
+ * held, or a disc alone would bend it to take what is another part's.
+ */
 function fitSteady(problem: Problem, { hypothesis, warm }: FitOptions): HypothesisFit | null {
   const steady = hypothesis.filter((part) => !isScanned(part));
   if (steady.length === 0) return null;
-  const parameters = freeParameters(steady, problem.setup);
-  const start = warm ?? coarseStart(problem, { hypothesis: steady, parameters });
-  return fitFrom(problem, { hypothesis: steady, parameters, start });
+  const held = withGeometryHeld(problem);
+  const parameters = freeParameters(steady, held.setup);
+  const start = warm ?? coarseStart(held, { hypothesis: steady, parameters });
+  return fitFrom(held, { hypothesis: steady, parameters, start });
 }
 
 function evaluateAt(

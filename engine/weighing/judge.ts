@@ -1,7 +1,7 @@
 import type { Progress } from "../workers/mod.ts";
 import { calibrate, type Calibration } from "./calibrate.ts";
 import type { Comparison, WeighedHypothesis } from "./compare_hypotheses.ts";
-import { valuesOf } from "./fit_hypothesis.ts";
+import { type HypothesisFit, valuesOf } from "./fit_hypothesis.ts";
 import { type Hypothesis, hypothesisName } from "./hypothesis.ts";
 import type { NoiseBank } from "./noise_bank.ts";
 import type { NullTable } from "./null_table.ts";
@@ -44,7 +44,10 @@ export interface Judgement {
   readonly best: WeighedHypothesis;
   /** Tests of parts, in the order in which they were made. */
   readonly part_tests: readonly PartTest[];
-  /** The contest with the nearest hypothesis of as many parts; null when there is none. */
+  /**
+   * The contest with the nearest hypothesis of as many parts; null when there is none, or when
+   * residual tests object to it and not to the best one.
+   */
   readonly contest: Contest | null;
 }
 
@@ -52,8 +55,11 @@ export interface Judgement {
 export interface JudgeOptions {
   /** The problem. */
   readonly problem: Problem;
-  /** Where noise is drawn from. */
-  readonly bank: NoiseBank;
+  /**
+   * Gives where noise is drawn from, for trials of a fit: residuals of the fit with all parts where it
+   * is adequate, and else those of the fit itself, so that what no model explains counts as noise.
+   */
+  readonly bankFor: (fit: HypothesisFit) => NoiseBank;
   /** Trials of each calibration at most. */
   readonly trials: number;
   /** Seed of all trials. */
@@ -113,7 +119,9 @@ export async function judge(comparison: Comparison, options: JudgeOptions): Prom
     const shared = parts.filter((part) => best.parts.includes(part)).length;
     return parts.length === best.parts.length && shared === parts.length - 1;
   });
-  const contest = rival === undefined ? null : await holdContest(best, rival, options);
+  // A rival that residual tests rule out while the best one passes needs no trials.
+  const open = rival !== undefined && (rival.adequate || !best.adequate);
+  const contest = open ? await holdContest(best, rival, options) : null;
   return { best, part_tests, contest };
 }
 
@@ -124,7 +132,7 @@ function isOneMore(simple: Hypothesis, rich: Hypothesis): boolean {
 async function weighPair(
   from: WeighedHypothesis,
   against: Hypothesis,
-  { problem, bank, seed, what, ...options }: JudgeOptions & { readonly what: string },
+  { problem, bankFor, seed, what, ...options }: JudgeOptions & { readonly what: string },
 ): Promise<Calibration> {
   const { statistic } = fitPair(problem, {
     first: from.parts,
@@ -132,14 +140,17 @@ async function weighPair(
     warm: valuesOf(from.fit),
   });
   const { progress } = options;
-  return await calibrate(trialJob(problem, { fit: from.fit, second: against, bank, seed }), {
-    ...options,
-    observed: statistic,
-    ...(progress === undefined ? {} : {
-      progress: (done: number, total: number) =>
-        progress(done, total, `trials of ${hypothesisName(from.parts)} (${what})`),
-    }),
-  });
+  return await calibrate(
+    trialJob(problem, { fit: from.fit, second: against, bank: bankFor(from.fit), seed }),
+    {
+      ...options,
+      observed: statistic,
+      ...(progress === undefined ? {} : {
+        progress: (done: number, total: number) =>
+          progress(done, total, `trials of ${hypothesisName(from.parts)} (${what})`),
+      }),
+    },
+  );
 }
 
 async function holdContest(

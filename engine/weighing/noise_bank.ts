@@ -2,6 +2,7 @@ import type { HypothesisFit } from "./fit_hypothesis.ts";
 import { lineOf } from "./line_of.ts";
 import type { LineScale } from "./line_scale.ts";
 import type { Problem } from "./problem.ts";
+import { isAdequate, residualTests } from "./residual_tests.ts";
 import { makeWhitening } from "./whitening.ts";
 
 /**
@@ -18,6 +19,11 @@ export interface NoiseBank {
   readonly excess: Float64Array;
   /** Exposures in a block. */
   readonly block: number;
+  /**
+   * Whether residuals hold structure that the model lacks. If not, drawn blocks are turned over at
+   * random, so that noise has no mean; if so, they are not, and what is the same at all phases stays.
+   */
+  readonly structured: boolean;
   /** "resampled" where blocks are drawn from the residuals, "white" where there are too few of them. */
   readonly kind: "resampled" | "white";
 }
@@ -77,6 +83,7 @@ export function noiseBank(
       return rms === 0 ? 0 : value * rms / Math.sqrt(total);
     }),
     block: blockLength(excess, { count, rms }),
+    structured: !isAdequate(residualTests(problem, fit)),
     kind: options.kind ?? (enough ? "resampled" : "white"),
   };
 }

@@ -5,7 +5,13 @@ import { lineOf } from "./line_of.ts";
 import { addNoise, drawNoise } from "./draw_noise.ts";
 import type { NoiseBank } from "./noise_bank.ts";
 import type { FitSetup } from "./fit_setup.ts";
-import { makeProblem, type Problem, type ProblemOptions, withFlux } from "./problem.ts";
+import {
+  makeProblem,
+  type Problem,
+  type ProblemOptions,
+  withFlux,
+  withGeometryHeld,
+} from "./problem.ts";
 import type { WeighingData } from "./weighing_data.ts";
 
 /** Two hypotheses fitted to the same data. */
@@ -19,8 +25,8 @@ export interface PairFit {
 }
 
 /**
- * Fits two hypotheses in the one way that data and trials share, so that their statistics compare.
- * Nested ones: the second goes on from the first. Others: both go on from what they have in common.
+ * Fits two hypotheses in the one way that data and trials share, so that their statistics compare: both
+ * go on from a fit of what they have in common, the geometry held.
  *
  * @param problem The problem.
  * @param options The two, and where fits start.
@@ -35,13 +41,14 @@ export function fitPair(
   },
 ): PairFit {
   const shared = first.filter((part) => second.includes(part));
-  const start = shared.length === 0
+  const base = shared.length === 0
     ? undefined
-    : fitHypothesis(problem, { hypothesis: shared, warm });
+    : fitHypothesis(withGeometryHeld(problem), { hypothesis: shared, warm });
+  const free = Object.values(problem.setup.errors ?? {}).some((error) => error > 0);
   const go = (hypothesis: Hypothesis) =>
-    start !== undefined && hypothesis.length === shared.length
-      ? start
-      : fitHypothesis(problem, { hypothesis, ...(start ? { base: start } : { warm }) });
+    base !== undefined && !free && hypothesis.length === shared.length
+      ? base
+      : fitHypothesis(problem, { hypothesis, ...(base ? { base } : { warm }) });
   const fits = { first: go(first), second: go(second) };
   return { ...fits, statistic: total(fits.first) - total(fits.second) };
 }

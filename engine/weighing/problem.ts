@@ -96,6 +96,11 @@ export function withFlux(problem: Problem, flux: Float64Array): Problem {
   };
 }
 
+/** The same problem with the geometry held where the orbit puts it. */
+export function withGeometryHeld(problem: Problem): Problem {
+  return { ...problem, setup: { ...problem.setup, errors: {} } };
+}
+
 /** A model at one place of its parameters, its brightnesses solved for. */
 export interface Evaluation {
   /** Parts in order, each with its amplitudes: its equivalent width, km/s, then its asymmetries. */

@@ -3,6 +3,7 @@ import type { Progress } from "../workers/mod.ts";
 import { compareHypotheses, type Comparison } from "./compare_hypotheses.ts";
 import { type StrongestSource, strongestSource } from "./compact_source.ts";
 import { type DetectionLimit, detectionLimit } from "./detection_limit.ts";
+import type { HypothesisFit } from "./fit_hypothesis.ts";
 import type { FitSetup } from "./fit_setup.ts";
 import { defaultSets, hypothesesOf } from "./hypothesis.ts";
 import { judge, type Judgement, NEEDED } from "./judge.ts";
@@ -127,9 +128,11 @@ export async function weighTrail(
   const { problem, richest, line_scale } = prepared;
   const comparison = compareHypotheses(prepared, sets, { seed });
   const bank = noiseBank(problem, richest, { line_scale });
+  const bankFor = (fit: HypothesisFit) =>
+    bank.structured ? noiseBank(problem, fit, { line_scale }) : bank;
   const judgement = await judge(comparison, {
     problem,
-    bank,
+    bankFor,
     trials,
     seed,
     tables,
@@ -140,9 +143,13 @@ export async function weighTrail(
 
   const simplest = comparison.hypotheses.reduce((a, b) => b.parts.length < a.parts.length ? b : a);
   const { fit, fit_errors } = simplest;
-  const search = options.limit === false
-    ? null
-    : detectionLimit(problem, { fit, fit_errors, bank, trials, seed });
+  const search = options.limit === false ? null : detectionLimit(problem, {
+    fit,
+    fit_errors,
+    bank: bankFor(fit),
+    trials,
+    seed,
+  });
   const found = search === null ? null : strongestSource(problem, { fit, search });
   let source: SeatedSource | null = null;
   if (found !== null && search !== null) {

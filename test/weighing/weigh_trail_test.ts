@@ -1,0 +1,98 @@
+import { InputError } from "@millrace/millrace/errors";
+import { synthesize } from "@millrace/millrace/synthesis";
+import { type WeighedLine, weighPlate, weighRecord, weighTrail } from "@millrace/millrace/weighing";
+import { assert, assertEquals, assertGreater, assertLess, assertRejects } from "@std/assert";
+import { binary, quick, rms, spotted, WIDTH } from "./made.ts";
+
+const sets = [["disc"], ["disc", "spot"]];
+const short = { binary, sets, trials: 20, limit: false } as const;
+
+/** No NaN anywhere, and nothing that JSON cannot hold. */
+function isPlain(value: unknown): boolean {
+  if (typeof value === "number") return Number.isFinite(value);
+  if (Array.isArray(value)) return value.every(isPlain);
+  if (value !== null && typeof value === "object") {
+    return Object.getPrototypeOf(value) === Object.prototype && Object.values(value).every(isPlain);
+  }
+  return value === null || ["string", "boolean"].includes(typeof value);
+}
+
+function claimsSpot({ verdict }: WeighedLine): boolean {
+  return verdict.preferred.includes("spot");
+}
+
+Deno.test("weighTrail() prefers disc and spot when a spot has 10 % of the light", async () => {
+  const trail = quick(spotted(0.1), { seed: 1, flicker_rms: 0.04, continuum_error: 0.01 });
+  const before = structuredClone(trail);
+  const weighed = await weighTrail(trail, { ...short, limit: true });
+  assertEquals(trail, before);
+  assertEquals(weighed.verdict.preferred, ["disc", "spot"]);
+  assertEquals(weighed.verdict.false_alarm?.null_parts, ["disc"]);
+  assert(weighed.warnings.some(({ code }) => code === "too-few-trials"));
+  assertGreater(weighed.source!.structures["rim-impact"], 0.5);
+
+  const record = weighRecord(weighed);
+  assert(isPlain(record));
+  assertEquals(record.hypotheses[0]!.parts, ["disc", "spot"]);
+  assertLess(Math.abs(record.hypotheses[0]!.fitted["spot.flux_fraction"]! - 0.1), 0.01);
+
+  const plate = weighPlate(weighed);
+  assertEquals(plate.residuals.map(({ parts }) => parts), [["disc", "spot"], ["disc"]]);
+  assertGreater(rms(plate.residuals[1]!.residual), rms(plate.residuals[0]!.residual));
+  assertEquals(plate.null_distribution?.gains.length, 20);
+});
+
+Deno.test("weighTrail() gives the same bytes on two workers", async () => {
+  const trail = quick(spotted(0.02), { seed: 3, exposures: 20, pixel_kms: 80 });
+  const one = await weighTrail(trail, { ...short, seed: 5 });
+  const two = await weighTrail(trail, { ...short, seed: 5, workers: 2 });
+  assertEquals(JSON.stringify(weighRecord(two)), JSON.stringify(weighRecord(one)));
+  const kept = await weighTrail(trail, { ...short, seed: 5, tables: one.tables });
+  assertEquals(JSON.stringify(weighRecord(kept)), JSON.stringify(weighRecord(one)));
+});
+
+Deno.test("weighTrail() claims no spot when a neighbour or a blend is in the window", async () => {
+  for (const [shift_kms, share] of [[1500, 0.08], [-350, 0.15]] as const) {
+    const trail = quick(spotted(0), { seed: 1 });
+    const { sampling } = trail;
+    const velocity_kms = sampling.velocity_kms.map((v) => v - shift_kms);
+    const other = synthesize(spotted(0), { binary, sampling: { ...sampling, velocity_kms } });
+    const flux = trail.flux.map((value, n) => value + share * other[n]!);
+    const weighed = await weighTrail({ ...trail, flux }, short);
+    assert(!claimsSpot(weighed));
+    assertEquals(weighed.verdict.preferred, []);
+    // What the disc cannot explain is noise to the trials: they gain as much.
+    const test = weighed.judgement.part_tests.find(({ part }) => part === "spot")!;
+    assertGreater(test.calibration.value, 0.05);
+  }
+});
+
+Deno.test("weighTrail() claims no spot when a thick disc is fitted as a thin one", async () => {
+  const trail = quick({
+    parts: ["disc"],
+    disc: { equivalent_width_kms: WIDTH, optical_depth: "thick" },
+  }, { seed: 2, exposures: 20, pixel_kms: 80 });
+  const weighed = await weighTrail(trail, short);
+  assertEquals(weighed.verdict.preferred, []);
+});
+
+Deno.test("weighTrail() widens errors and claims nothing false when 30 % of the orbit is missing", async () => {
+  const phases = [0.05, 0.75] as const;
+  const part = await weighTrail(quick(spotted(0), { seed: 3, phases, exposures: 21 }), short);
+  assert(!claimsSpot(part));
+  const error = async (exposures: number, range: readonly [number, number]) => {
+    const trail = quick(spotted(0.1), { seed: 4, phases: range, exposures });
+    const { comparison } = await weighTrail(trail, { ...short, sets: [["disc", "spot"]] });
+    return comparison.hypotheses[0]!.errors["spot.flux_fraction"]!;
+  };
+  // More than the fewer exposures alone would do: √(30 / 21).
+  assertGreater(await error(21, phases) / await error(30, [0, 1]), Math.sqrt(30 / 21));
+});
+
+Deno.test("weighTrail() names the set that is wrong", async () => {
+  await assertRejects(
+    () => weighTrail(quick(spotted(0)), { ...short, sets: [["disc", "halo"]] }),
+    InputError,
+    "weigh.sets",
+  );
+});
