@@ -43,6 +43,8 @@ export const demoCommand = (finish: (status: number) => void) =>
             target,
             target_name: "vx-0417.toml",
             seed: options.seed,
+            set: options.set,
+            overwrite: options.overwrite,
             progress,
             signal,
           });

@@ -1,3 +1,4 @@
+import { InputError } from "../../engine/errors.ts";
 import { newTarget, VERSION } from "../../engine/campaign/mod.ts";
 import { commandWith } from "../common_options.ts";
 import { runCommand } from "../run_command.ts";
@@ -15,6 +16,13 @@ export const newCommand = (finish: (status: number) => void) =>
     .action(async (dir, options) => {
       finish(
         await runCommand(options, async () => {
+          if (options.out !== undefined) {
+            throw new InputError({
+              action: "start a target file",
+              rule: "it stands in the folder of the spectra, so --out has no meaning",
+              value: options.out,
+            });
+          }
           const made = await newTarget(dir, { overwrite: options.overwrite });
           return {
             document: {
@@ -26,7 +34,10 @@ export const newCommand = (finish: (status: number) => void) =>
               warnings: made.warnings,
             },
             lines: [
-              ...tableLines(made.groups.map(({ pattern, files }) => [pattern, `${files} files`])),
+              ...tableLines(made.groups.map(({ pattern, files }) => [
+                pattern,
+                files === 1 ? "1 file" : `${files} files`,
+              ])),
               `  lines covered: ${
                 made.lines.length === 0 ? "none of the usual ones" : made.lines.join(", ")
               }`,

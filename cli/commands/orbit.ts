@@ -1,7 +1,7 @@
 import { type OrbitDocument, runOrbit } from "../../engine/campaign/mod.ts";
 import { commandWith } from "../common_options.ts";
 import { runCommand } from "../run_command.ts";
-import { openTarget } from "../target_command.ts";
+import { openTarget, recorded } from "../target_command.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 
 /**
@@ -17,8 +17,13 @@ export const orbitCommand = (finish: (status: number) => void) =>
     .action(async (file, options) => {
       finish(
         await runCommand(options, async (context) => {
-          const { session, output } = await openTarget(file, { call: options, context });
-          const result = await runOrbit(session, output, { refine: options.refine });
+          const opened = await openTarget(file, { call: options, context });
+          const { session, output } = opened;
+          const result = await recorded(
+            "orbit",
+            opened,
+            () => runOrbit(session, output, { refine: options.refine }),
+          );
           return { ...result, lines: orbitLines(result.document) };
         }),
       );
@@ -47,8 +52,10 @@ export function orbitLines(document: OrbitDocument): string[] {
       [
         "zero of phase",
         `BJD(TDB) ${
-          pair(document.zero_bjd_tdb, document.zero_error_d, "")
-        }(${document.zero_marks}, from the ${document.zero_from})`,
+          document.zero_error_d === null
+            ? document.zero_bjd_tdb.toFixed(5)
+            : withError(document.zero_bjd_tdb, document.zero_error_d)
+        } (${document.zero_marks}, from the ${document.zero_from})`,
       ],
       ...(accretor === null ? [] : [
         [

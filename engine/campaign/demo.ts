@@ -1,5 +1,6 @@
 import { join } from "@std/path";
 import { rimImpact } from "../binary/mod.ts";
+import { InputError } from "../errors.ts";
 import { makeFolder, writeFileAtomically } from "../files/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
@@ -26,9 +27,12 @@ export interface DemoCampaign {
  * @param options.target Text of the observer's target file.
  * @param options.target_name Name of the observer's target file.
  * @param options.seed Seed, in place of the recipe's.
+ * @param options.set Overrides that the target file will be read with, checked first.
+ * @param options.overwrite Whether an edited target file may be replaced. @default false
  * @param options.progress Told of each file.
  * @param options.signal Aborts the work.
  * @returns Where things are.
+ * @throws {InputError} When the target file was edited, or an override is wrong.
  */
 export async function simulateDemo(
   folder: string,
@@ -37,17 +41,43 @@ export async function simulateDemo(
     target: string;
     target_name: string;
     seed?: number;
+    set?: readonly string[];
+    overwrite?: boolean;
     progress?: Progress;
     signal?: AbortSignal;
   },
 ): Promise<DemoCampaign> {
   const { progress, signal, seed } = options;
   const recipe = parseTarget(options.recipe, { file: "examples/demo/recipe.toml", seed });
+  const target_file = join(folder, options.target_name);
+  const text = `# written by Millrace\n${options.target}`;
+  // Settings are checked before anything is written, and a file that was edited is left alone.
+  parseTarget(text, { file: target_file, set: options.set });
+  if (!options.overwrite) await refuseEdited(target_file, text);
   await makeFolder(folder);
   const exposures = await simulateExposures(recipe, { folder, progress, signal });
-  const target_file = join(folder, options.target_name);
-  await writeFileAtomically(target_file, `# written by Millrace\n${options.target}`);
+  await writeFileAtomically(target_file, text, { overwrite: options.overwrite });
   return { recipe, target_file, exposures };
+}
+
+async function refuseEdited(file: string, text: string): Promise<void> {
+  const before = await readTextIfAny(file);
+  if (before === null || before === text) return;
+  throw new InputError({
+    action: "write the demo's target file",
+    rule: "it must not have been edited since the demo wrote it",
+    file,
+    remedy: "save your changes under another name, or give --overwrite",
+  });
+}
+
+async function readTextIfAny(file: string): Promise<string | null> {
+  try {
+    return await Deno.readTextFile(file);
+  } catch (error) {
+    if (error instanceof Deno.errors.NotFound) return null;
+    throw error;
+  }
 }
 
 /** Where the bright spot of a recipe truly is, km/s; null when the recipe has none. */
@@ -58,7 +88,7 @@ export function trueSpot(
   const binary = binaryOf(recipe);
   const { model: common, lines } = recipe.settings;
   const model = lines.find(({ name }) => name === options.line)?.model ?? common;
-  if (binary === null || !model.parts.includes("spot")) return null;
+  if (binary === null || model === undefined || !model.parts.includes("spot")) return null;
   const { disc = {}, spot = {} } = model;
   const { stream, keplerian } = rimImpact(
     spot.radius_over_a ?? disc.outer_radius_over_a ?? 0.3,

@@ -1,10 +1,10 @@
-import { NotConverged, type Warning } from "../errors.ts";
+import { InputError, NotConverged, type Warning } from "../errors.ts";
 import {
-  backProject,
+  type BlendMember,
   type EntropyMap,
   fitOfMap,
   type InversionRecipe,
-  makeProjector,
+  makeInverter,
   type MaximumEntropyOptions,
   maximumEntropySteps,
   type PriorImage,
@@ -49,6 +49,8 @@ export interface InvertOptions {
   readonly systemic_kms: number;
   /** Default image of an entropy map. */
   readonly prior: PriorImage;
+  /** Lines mapped with it. */
+  readonly blends: readonly BlendMember[];
   /** Whether to go on in spite of a large gap in phase. */
   readonly force: boolean;
   /** Told of each iteration. */
@@ -71,34 +73,49 @@ export function invertTrail(trail: Trail, options: InvertOptions): Promise<Inver
 }
 
 async function byBackProjection(trail: Trail, options: InvertOptions): Promise<Inverted> {
-  const { settings, pixels, systemic_kms, signal } = options;
-  const shape = { pixels, half_width_kms: settings.half_width_kms, systemic_kms };
-  const map = backProject(trail, shape);
+  const { settings, pixels, systemic_kms, blends, force, signal } = options;
+  if (blends.length > 0) {
+    throw new InputError({
+      action: `map ${trail.line.name} with its blends`,
+      rule: "blends can be told apart by a fit alone",
+      value: settings.method,
+      key: "map.method",
+      remedy: 'use map.method = "entropy"',
+    });
+  }
+  const recipe: InversionRecipe = {
+    inversion: "back-projection",
+    pixels,
+    half_width_kms: settings.half_width_kms,
+    systemic_kms,
+    force,
+  };
+  // The native exposures are inverted: phase bins are for display.
+  const { map, scale, reduced_chi_square } = makeInverter(trail, recipe)(trail);
   await pause(signal);
-  const model = makeProjector(trail.sampling, shape).forward(map.intensity);
-  const fit = fitOfMap(trail, { model, scale: "fitted" });
   return {
     map,
-    scale: fit.scale,
-    reduced_chi_square: fit.reduced_chi_square,
-    sample_count: fit.sample_count,
+    scale,
+    reduced_chi_square,
+    sample_count: trail.error.reduce((n, error) => n + (Number.isFinite(error) ? 1 : 0), 0),
     iterations: 1,
     converged: true,
     misalignment: null,
     absorption: false,
     warnings: [],
-    recipe: { inversion: "back-projection", ...shape, force: options.force },
+    recipe,
   };
 }
 
 async function byEntropy(trail: Trail, options: InvertOptions): Promise<Inverted> {
-  const { settings, pixels, systemic_kms, prior, force, progress, signal } = options;
+  const { settings, pixels, systemic_kms, prior, blends, force, progress, signal } = options;
   const absorption = trail.flux.reduce((sum, value) => sum + value, 0) < 0;
   const asked: MaximumEntropyOptions = {
     pixels,
     half_width_kms: settings.half_width_kms,
     systemic_kms,
     prior,
+    blends,
     absorption,
     force,
   };

@@ -15,6 +15,7 @@ import type { SplitDate } from "../sky/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { gridModel } from "./grid_model.ts";
+import { blendsOf } from "./blends_of.ts";
 import { invertTrail } from "./invert.ts";
 import { priorOf } from "./prior_of.ts";
 import type { SystemicVelocity } from "./systemic_of.ts";
@@ -103,6 +104,7 @@ export async function mapLine(
     pixels,
     systemic_kms,
     prior: await priorOf(target, { line, resolution_kms, centre_kms: centre.vy_kms, pixels }),
+    blends: blendsOf(trail.line, { target }),
     force: options.force ?? false,
     progress,
     signal,
@@ -121,7 +123,7 @@ export async function mapLine(
     signal,
   });
   const named = binary !== null && ephemeris.zero_marks !== "emission-crossing";
-  const { disc } = target.settings.model;
+  const disc = target.settings.model?.disc;
   const features = mapFeatures(map, {
     resolution_kms,
     centre,

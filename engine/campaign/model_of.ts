@@ -7,7 +7,7 @@ import { airToVacuum, type SpectralLine } from "../sky/mod.ts";
 import { findMedium, recordedIn } from "../spectra/mod.ts";
 import type { LineTemplate, Model } from "../synthesis/mod.ts";
 import type { LineSettings } from "./schema/lines_section.ts";
-import type { Target } from "./target.ts";
+import { needed, type Target } from "./target.ts";
 
 /**
  * The model of a line: its own where it has one, else `[model]`; a donor's template is read from its
@@ -25,7 +25,11 @@ export async function modelOf(
   options: { settings: LineSettings; line: SpectralLine },
 ): Promise<Model> {
   const { settings, line } = options;
-  const model = settings.model ?? target.settings.model;
+  const model = needed(target, {
+    value: settings.model ?? target.settings.model,
+    key: "model",
+    action: `predict the trail of ${line.name}`,
+  });
   const file = model.donor?.template as unknown;
   if (typeof file !== "string") return model;
   const template = await readLineTemplate(join(target.folder, file), {

@@ -56,6 +56,9 @@ export async function newTarget(
       remedy: "edit that one, or give --overwrite",
     });
   }
+  if (!await exists(folder)) {
+    throw new InputError({ action, rule: "the folder must exist", value: folder });
+  }
   const groups = await groupsIn(folder);
   if (groups.length === 0) {
     throw new InputError({
@@ -157,7 +160,7 @@ function targetText(found: {
       "[[lines]]",
       `name = ${JSON.stringify(name)}`,
       "reach_kms = 2500",
-      `continuum_kms = ${JSON.stringify(continuum)}   # clear of other lines`,
+      `continuum_kms = ${JSON.stringify(continuum)}   # see what check finds in them`,
     ];
     return `${table.map((row) => (i === 0 ? row : `# ${row}`)).join("\n")}\n`;
   });

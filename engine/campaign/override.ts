@@ -46,11 +46,18 @@ export function overrideSetting(
       table[part] = {};
     }
     const next = table[part];
-    if (next === null || typeof next !== "object") {
+    const list = Array.isArray(next);
+    // A list is reached by an index, a table by a name: anything else would vanish unseen.
+    if (
+      next === null || typeof next !== "object" || list !== (typeof path[depth + 1] === "number")
+    ) {
       throw new InputError({
         action,
-        rule: `the target file has no ${path.slice(0, depth + 1).join(".")}`,
+        rule: list
+          ? `${path.slice(0, depth + 1).join(".")} is a list`
+          : `the target file has no ${path.slice(0, depth + 1).join(".")}`,
         value: assignment,
+        remedy: list ? `name an entry, as in ${part}[0]` : undefined,
       });
     }
     table = next as Record<string | number, unknown>;

@@ -1,5 +1,4 @@
 import type { Binary, Ephemeris } from "../binary/mod.ts";
-import type { OrbitMeasurement } from "../orbit/mod.ts";
 import { type AnyMap, canAnyMapFit } from "../tomography/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
@@ -11,7 +10,7 @@ import { pause } from "./pause.ts";
 import { readTargetExposures, type TargetExposures } from "./read_target_exposures.ts";
 import type { LineSettings } from "./schema/lines_section.ts";
 import type { Target } from "./target.ts";
-import { measureTargetOrbit } from "./steps/run_orbit.ts";
+import { measureTargetOrbit, type TargetOrbit } from "./steps/run_orbit.ts";
 import { systemicOf, type SystemicVelocity } from "./systemic_of.ts";
 import { trailOf } from "./trail_of.ts";
 
@@ -37,7 +36,7 @@ export interface Session {
   /** Whether any map can have made a line's trail. */
   readonly anyMap: (line: LineSettings) => Promise<AnyMap>;
   /** The orbit as measured. */
-  readonly orbit: () => Promise<OrbitMeasurement>;
+  readonly orbit: () => Promise<TargetOrbit>;
   /** The lines, at least one. */
   readonly lines: (action: string) => readonly LineSettings[];
   /** Systemic velocity, km/s, with the warning where it had to be assumed. */

@@ -32,7 +32,7 @@ export async function simulateExposures(
   const { folder, overwrite, progress, signal } = options;
   const action = "simulate exposures";
   const { settings } = target;
-  const { observation: plan, sky, orbit, model } = settings;
+  const { observation: plan, sky, orbit } = settings;
   const observation = needed(target, { value: plan, key: "observation", action });
   const direction = {
     ra_deg: needed(target, { value: sky.ra_deg, key: "sky.ra_deg", action }),
@@ -50,13 +50,11 @@ export async function simulateExposures(
       const named = lineOf(line, { target });
       return {
         line: named,
-        ...(line.model === undefined
-          ? {}
-          : { model: await modelOf(target, { settings: line, line: named }) }),
+        model: await modelOf(target, { settings: line, line: named }),
       };
     }),
   );
-  const raw = observe(model, {
+  const raw = observe(settings.model ?? { parts: [] }, {
     object: target.title,
     target: direction,
     site,

@@ -12,6 +12,9 @@ export const nonNegative: z.ZodNumber = z.number().nonnegative();
 /** A whole number above zero. */
 export const count: z.ZodNumber = z.number().int().positive();
 
+/** A full Julian date of our time. */
+export const julianDate: z.ZodNumber = z.number().gte(2_400_000).lte(2_500_000);
+
 /** Two increasing numbers. */
 export const range: z.ZodType<[number, number]> = z.tuple([z.number(), z.number()]).refine(
   ([low, high]) => low < high,

@@ -22,8 +22,8 @@ export interface MapSettings {
 /** Schema of MapSettings. */
 export const mapSection: z.ZodType<MapSettings> = z.strictObject({
   method: z.enum(["back-projection", "entropy"]).default("back-projection"),
-  half_width_kms: positive.default(2000),
-  pixels: positive.int().refine((n) => n % 2 === 1, {
+  half_width_kms: positive.lte(50_000).default(2000),
+  pixels: positive.int().lte(2001).refine((n) => n % 2 === 1, {
     error: "must be odd, so that one pixel is at (0, 0)",
   })
     .optional(),

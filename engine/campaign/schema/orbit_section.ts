@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { nonNegative, number, positive, range } from "./common.ts";
+import { julianDate, nonNegative, number, positive, range } from "./common.ts";
 
 /** `[orbit]`: the ephemeris and the systemic velocity. */
 export interface OrbitSettings {
@@ -34,9 +34,9 @@ export const orbitSection: z.ZodType<OrbitSettings> = z.strictObject({
   period_d: positive.optional(),
   period_range_d: range.refine(([low]) => low > 0, { error: "must be positive" }).optional(),
   period_error_d: nonNegative.optional(),
-  zero_bjd_tdb: number.optional(),
-  zero_hjd_utc: number.optional(),
-  zero_hjd_tt: number.optional(),
+  zero_bjd_tdb: julianDate.optional(),
+  zero_hjd_utc: julianDate.optional(),
+  zero_hjd_tt: julianDate.optional(),
   zero_error_d: nonNegative.optional(),
   zero_period_covariance_d2: number.default(0),
   zero_marks: z.enum(["donor-conjunction", "mid-eclipse", "emission-crossing"]).default(

@@ -36,7 +36,7 @@ export interface TargetSettings {
   /** `[map]`. */
   readonly map: MapSettings;
   /** `[model]`. */
-  readonly model: Model;
+  readonly model?: Model;
   /** `[observation]`. */
   readonly observation?: ObservationSettings;
   /** `[weigh]`. */
@@ -57,7 +57,7 @@ export const targetSchema: z.ZodType<TargetSettings> = z.strictObject({
   trail: trailSection.prefault({}),
   lines: z.array(linesSection).default([]),
   map: mapSection.prefault({}),
-  model: modelSection.prefault({ parts: ["disc"] }),
+  model: modelSection.optional(),
   observation: observationSection.optional(),
   weigh: weighSection.prefault({}),
   plate: plateSection.prefault({}),

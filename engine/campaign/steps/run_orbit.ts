@@ -1,3 +1,4 @@
+import type { Ephemeris } from "../../binary/mod.ts";
 import { median, randomStream } from "../../numerics/mod.ts";
 import { type EcsvTable, formatEcsv } from "../../files/mod.ts";
 import {
@@ -8,7 +9,8 @@ import {
   type VelocityRow,
 } from "../../orbit/mod.ts";
 import type { PanelName } from "../../figures/mod.ts";
-import { airToVacuum } from "../../sky/mod.ts";
+import type { Warning } from "../../errors.ts";
+import { airToVacuum, type SpectralLine } from "../../sky/mod.ts";
 import { FWHM_OVER_SIGMA } from "../../trail/mod.ts";
 import { figureFiles } from "../figure_files.ts";
 import { inclinationOf } from "../inclination_of.ts";
@@ -16,10 +18,10 @@ import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output
 import { pause } from "../pause.ts";
 import { readTemplates } from "../read_template.ts";
 import { refinedTarget } from "../refined_target.ts";
-import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
 import { VERSION } from "../version.ts";
 import { orbitSubject } from "../subject/orbit_subject.ts";
+import { trailOf } from "../trail_of.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
 /** Stream of chance of `orbit`, not that of any other step. */
@@ -28,17 +30,30 @@ const STREAM = 600_000;
 /** `orbit.json`. */
 export interface OrbitDocument extends OutputHead, OrbitReport {}
 
+/** An orbit as measured, with what its trails had to say. */
+export interface TargetOrbit extends OrbitMeasurement {
+  /** The first line. */
+  readonly line: SpectralLine;
+  /** What a user should know of the trails. */
+  readonly trail_warnings: readonly Warning[];
+}
+
 /**
  * Measures the orbit of a session's target: once, whoever asks.
  *
  * @param session The target at work.
  * @returns Report, velocities, data for plates.
  */
-export async function measureTargetOrbit(session: Session): Promise<OrbitMeasurement> {
+export async function measureTargetOrbit(session: Session): Promise<TargetOrbit> {
   const { target, signal } = session;
+  const provisional = await provisionalEphemeris(session);
+  const ephemeris = provisional ?? await session.ephemeris();
+  const { spectra } = await session.exposures();
   const lines: OrbitLine[] = [];
   for (const settings of session.lines("measure the orbit")) {
-    const trail = await session.trail(settings);
+    const trail = provisional === null
+      ? await session.trail(settings)
+      : trailOf(spectra, { target, line: settings, ephemeris });
     const resolution_kms = FWHM_OVER_SIGMA * median(trail.sampling.profile_sigma_kms);
     const templates = await readTemplates(target, { settings, line: trail.line, resolution_kms });
     lines.push({
@@ -51,14 +66,41 @@ export async function measureTargetOrbit(session: Session): Promise<OrbitMeasure
     });
     await pause(signal);
   }
-  return measureOrbit(lines, {
-    ephemeris: await session.ephemeris(),
+  const measurement = measureOrbit(lines, {
+    ephemeris,
     random: randomStream(target.settings.seed, STREAM),
     period_range_d: target.settings.orbit.period_range_d,
     inclination: inclinationOf(target),
     disc_shadow_deg: target.settings.binary.disc_shadow_deg ?? null,
     superhump_excess: superhump(session),
   });
+  const [{ trail }] = lines as [OrbitLine];
+  return {
+    ...measurement,
+    line: trail.line,
+    trail_warnings: lines.flatMap((line) => line.trail.warnings),
+  };
+}
+
+/**
+ * Where only a range of periods is known, an ephemeris by which the trails tell time: the middle of
+ * the range, from the zero of the target file or the first exposure.
+ */
+async function provisionalEphemeris(session: Session): Promise<Ephemeris | null> {
+  const { orbit } = session.target.settings;
+  if (orbit.period_d !== undefined || orbit.period_range_d === undefined) return null;
+  const { spectra } = await session.exposures();
+  const [low, high] = orbit.period_range_d;
+  const zero = orbit.zero_bjd_tdb;
+  return {
+    period_d: Math.sqrt(low * high),
+    period_error_d: 0,
+    zero: zero === undefined ? spectra[0]!.mid : [Math.floor(zero), zero - Math.floor(zero)],
+    zero_error_d: 0,
+    covariance_d2: 0,
+    period_derivative: 0,
+    zero_marks: orbit.zero_marks,
+  };
 }
 
 function superhump(session: Session) {
@@ -81,14 +123,13 @@ export async function runOrbit(
   session: Session,
   output: StepOutput,
   options: { refine?: boolean } = {},
-): Promise<StepResult<OrbitDocument> & { readonly measurement: OrbitMeasurement }> {
+): Promise<StepResult<OrbitDocument> & { readonly measurement: TargetOrbit }> {
   const { target } = session;
   const measurement = await session.orbit();
   const { inputs, warnings: reading } = await session.exposures();
-  const trails = await Promise.all(session.lines("measure the orbit").map(session.trail));
   const warnings = uniqueWarnings([
     ...reading,
-    ...trails.flatMap((trail) => trail.warnings),
+    ...measurement.trail_warnings,
     ...measurement.warnings,
   ]);
   const document: OrbitDocument = {
@@ -112,12 +153,11 @@ export async function runOrbit(
 /** Velocity curves and the diagrams behind them; masses where they were measured. */
 async function orbitPlate(
   session: Session,
-  measurement: OrbitMeasurement,
+  measurement: TargetOrbit,
 ): Promise<[name: string, data: Uint8Array | string][]> {
   const { plate } = session.target.settings;
-  const [line] = session.lines("draw the orbit") as [LineSettings];
-  const trail = await session.trail(line);
-  const subject = orbitSubject(measurement, { line: trail.line.name });
+  const { line } = measurement;
+  const subject = orbitSubject(measurement, { line: line.name });
   const rows: PanelName[][] = [
     [
       ...(subject.velocities === undefined ? [] : ["velocity-curve" as const]),
@@ -137,8 +177,9 @@ async function orbitPlate(
     { width: plate.width, letters: true, rows: shown.map((panels) => ({ panels })) },
     [{
       title: plate.title ?? session.target.title,
-      line: trail.line,
-      systemic_kms: (await session.systemic()).kms,
+      line,
+      systemic_kms: measurement.report.accretor?.systemic_kms ??
+        measurement.report.donor?.systemic_kms ?? 0,
       method: "",
       binary: session.binary(),
       ...subject,

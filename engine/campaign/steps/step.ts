@@ -1,5 +1,5 @@
 import { join } from "@std/path";
-import { makeFolder, writeFileAtomically } from "../../files/mod.ts";
+import { checkReplaceable, makeFolder, writeFileAtomically } from "../../files/mod.ts";
 import type { Warning } from "../../errors.ts";
 
 /** Where and how a step writes. */
@@ -34,6 +34,10 @@ export async function writeStep(
   output: StepOutput,
 ): Promise<string[]> {
   await makeFolder(output.folder);
+  // A refusal must come before the first file, not between two of them.
+  for (const [name] of files) {
+    await checkReplaceable(join(output.folder, name), { overwrite: output.overwrite });
+  }
   const paths: string[] = [];
   for (const [name, data] of files) {
     const path = join(output.folder, name);
