@@ -1,6 +1,7 @@
-import { type CheckDocument, type LineCheck, runCheck } from "../../engine/campaign/mod.ts";
+import { type CheckDocument, runCheck, type ZeroCheck } from "../../engine/campaign/mod.ts";
 import { targetCommand } from "../target_command.ts";
-import { phaseStrip } from "../terminal/phase_strip.ts";
+import { decisionLines } from "../terminal/decision_lines.ts";
+import { lineCheckLines } from "../terminal/line_check_lines.ts";
 import { plainNumber, tableLines } from "../terminal/table.ts";
 
 /** `millrace check`: what the exposures are worth, before anything is made of them. */
@@ -19,89 +20,69 @@ export const checkCommand = targetCommand("check", {
  * @returns Lines.
  */
 export function checkLines(document: CheckDocument): string[] {
+  const { exposures, journal } = document;
+  const groups = new Set(journal.map(({ group }) => group)).size;
   return [
-    `  ${document.target}: ${document.exposures} exposures in ${document.files} files`,
+    `  ${document.target}: ${exposures} exposures in ${document.files} files`,
     "",
-    ...tableLines([
-      ["group", "first (BJD TDB)", "exposures", "time", "wavelengths (vacuum)", "S/N a pixel"],
-      ...document.journal.map((entry) => [
-        String(entry.group + 1),
-        (entry.first[0] + entry.first[1]).toFixed(5),
-        String(entry.exposures),
-        entry.shortest_s === entry.longest_s
-          ? `${plainNumber(entry.longest_s)} s`
-          : `${plainNumber(entry.shortest_s)} to ${plainNumber(entry.longest_s)} s`,
-        `${plainNumber(entry.from_angstrom, 0)} to ${plainNumber(entry.to_angstrom, 0)} Å`,
-        plainNumber(entry.signal_to_noise_pixel, 0),
-      ]),
-    ], { heading: true, align: ["right", "right", "right", "right", "right", "right"] }),
+    ...journalLines(document),
     "",
-    "  decided",
-    ...tableLines(
-      document.decisions.map((decision) => [
-        decision.what,
-        decision.value,
-        `${decision.assumed ? "assumed: " : "from "}${decision.from}`,
-        decision.exposures === document.exposures ? "" : `${decision.exposures} exposures`,
-      ]),
-      { indent: 4 },
-    ),
-    ...document.lines.flatMap((line) => ["", ...lineLines(line)]),
+    "  how the files were understood (the target file overrides each)",
+    ...decisionLines(document.decisions, { exposures, groups }),
+    ...zeroLines(document.zeros),
+    ...document.lines.flatMap((line) => ["", ...lineCheckLines(line)]),
   ];
 }
 
-function lineLines(line: LineCheck): string[] {
-  const kms = (value: number) => `${plainNumber(value, 0)} km/s`;
-  const enough = line.exposures_per_half_orbit >= line.exposures_needed_per_half_orbit;
+function journalLines({ journal }: CheckDocument): string[] {
+  return tableLines([
+    [
+      "group",
+      "first (BJD TDB)",
+      "orbits",
+      "exposures",
+      "of",
+      "wavelengths in vacuum",
+      "S/N in a pixel",
+    ],
+    ...journal.map((entry) => [
+      String(entry.group + 1),
+      (entry.first[0] + entry.first[1]).toFixed(5),
+      plainNumber(entry.orbits, 2),
+      String(entry.exposures),
+      entry.shortest_s === entry.longest_s
+        ? `${plainNumber(entry.longest_s)} s`
+        : `${plainNumber(entry.shortest_s)} to ${plainNumber(entry.longest_s)} s`,
+      `${plainNumber(entry.from_angstrom, 0)} to ${plainNumber(entry.to_angstrom, 0)} Å`,
+      plainNumber(entry.signal_to_noise_pixel, 0),
+    ]),
+  ], { heading: true, align: ["right", "right", "right", "right", "right", "right", "right"] });
+}
+
+function zeroLines(zeros: readonly ZeroCheck[]): string[] {
+  if (zeros.length === 0) return [];
   return [
-    `  ${line.line} (${plainNumber(line.rest_air_angstrom, 2)} Å in air), ${line.net}`,
-    ...phaseStrip(line.coverage.exposures_in_bin).map((strip) => `    ${strip}`),
+    "",
+    "  zero of wavelengths, how far they were too long",
     ...tableLines([
-      ["exposures", `${line.exposures} over ${plainNumber(line.span_orbits, 2)} orbits`],
-      [
-        "phase",
-        `${
-          plainNumber(100 * line.coverage.covered_fraction, 0)
-        } % of the orbit covered, largest gap ${plainNumber(line.coverage.largest_gap, 3)}`,
-      ],
-      [
-        "signal to noise",
-        `${plainNumber(line.signal_to_noise.median, 0)} in the continuum per ${
-          kms(line.resolution_kms.median)
-        } (${plainNumber(line.signal_to_noise.low, 0)} to ${
-          plainNumber(line.signal_to_noise.high, 0)
-        }), errors scaled by ${plainNumber(line.noise_scale, 2)}`,
-      ],
-      [
-        "resolution, smear",
-        `${kms(line.resolution_kms.median)}; a feature at ${kms(line.velocity_kms)} moves ${
-          kms(line.smear_kms.median)
-        } during an exposure`,
-      ],
-      [
-        "exposures a half orbit",
-        `${
-          plainNumber(line.exposures_per_half_orbit, 0)
-        }, of ${line.exposures_needed_per_half_orbit} that this velocity needs${
-          enough ? "" : ": too few"
+      ["group", "from", "exposures", "median", "scatter", "with the orbit", "done"],
+      ...zeros.map((zero) => [
+        String(zero.group + 1),
+        zero.features.length === 0
+          ? zero.from
+          : `${zero.from}: ${zero.features.slice(0, 3).join(", ")}`,
+        `${zero.measured} of ${zero.exposures}`,
+        `${plainNumber(zero.median_kms, 1)} km/s`,
+        `${plainNumber(zero.scatter_kms, 1)} km/s`,
+        `${plainNumber(zero.orbital_kms, 1)} ± ${plainNumber(zero.orbital_error_kms, 1)} km/s${
+          zero.k_accretor_kms === null ? "" : ` (K1 is ${plainNumber(zero.k_accretor_kms, 0)} km/s)`
         }`,
-      ],
-      [
-        "error of the phase",
-        `${plainNumber(line.phase_error, 4)} cycles: ${kms(line.phase_error_kms)} at that velocity`,
-      ],
-      [
-        "mean profile",
-        `equivalent width ${kms(line.measures.equivalent_width_kms)}, FWHM ${
-          kms(line.measures.fwhm_kms)
-        }, peaks ${kms(line.measures.peak_separation_kms)} apart`,
-      ],
-      ...line.contents.map((entry, i) => [
-        i === 0 ? "in its windows" : "",
-        `${entry.name} at ${plainNumber(entry.velocity_kms, 0)} km/s, ${entry.window} window${
-          entry.ring_radius_kms === null ? "" : `, ring of ${kms(entry.ring_radius_kms)}`
-        }`,
+        zero.corrected ? "corrected" : "not corrected",
       ]),
-    ], { indent: 4 }),
+    ], {
+      heading: true,
+      indent: 4,
+      align: ["right", "left", "right", "right", "right", "right", "left"],
+    }),
   ];
 }

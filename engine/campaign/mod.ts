@@ -28,6 +28,8 @@ export * from "./map_line.ts";
 export * from "./read_target_exposures.ts";
 export * from "./session.ts";
 export * from "./simulate.ts";
+export type { CheckedContent } from "./steps/check_contents.ts";
+export type { ZeroCheck } from "./steps/check_zeros.ts";
 export * from "./steps/run_check.ts";
 export * from "./steps/run_map.ts";
 export * from "./steps/run_orbit.ts";
@@ -50,6 +52,7 @@ export * from "./input_digests.ts";
 export * from "./provenance.ts";
 export * from "./record_step.ts";
 export * from "./step_table.ts";
+export type { GroupZero } from "./wavelength_zeros.ts";
 export type {
   ManifestChange,
   ManifestSettings,

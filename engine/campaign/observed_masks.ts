@@ -5,11 +5,26 @@ import {
   type ObservedWindow,
   telluricBands,
 } from "../sky/mod.ts";
+import { median } from "../numerics/mod.ts";
+import type { Spectrum } from "../spectra/mod.ts";
 import type { ObservedMask } from "../trail/mod.ts";
 import type { TrailSettings } from "./schema/trail_section.ts";
 
 /** Width of a night-sky line where the resolution is not known, Å. */
 const USUAL_RESOLUTION = 2;
+
+/**
+ * The coarsest resolution among exposures: night-sky lines are at most as wide.
+ *
+ * @param spectra The exposures.
+ * @returns Full width at half maximum, Å; 2 where no exposure says.
+ */
+export function widestResolution(spectra: readonly Spectrum[]): number {
+  const widths = spectra.flatMap(({ resolution_angstrom }) =>
+    resolution_angstrom === null ? [] : [median(resolution_angstrom)]
+  );
+  return widths.length === 0 ? USUAL_RESOLUTION : Math.max(...widths);
+}
 
 /** A window of the kept lists as a mask. */
 function maskOf({ name, low_angstrom, high_angstrom }: ObservedWindow): ObservedMask {
@@ -38,16 +53,15 @@ export function keptLists(options: { resolution_angstrom?: number } = {}): Obser
  * The masks that `[trail]` asks for.
  *
  * @param settings `[trail]`.
- * @param options The instrument.
- * @param options.resolution_angstrom Full width at half maximum, Å. @default 2
+ * @param options What is masked.
+ * @param options.spectra The exposures: night-sky lines are as wide as their resolution. @default none
  * @returns Masks on vacuum wavelengths in the observer's frame.
  */
 export function observedMasks(
   settings: TrailSettings,
-  options: { resolution_angstrom?: number } = {},
+  options: { spectra?: readonly Spectrum[] } = {},
 ): ObservedMask[] {
-  const { resolution_angstrom = USUAL_RESOLUTION } = options;
-  const named = lists(resolution_angstrom);
+  const named = lists(widestResolution(options.spectra ?? []));
   return [
     ...settings.mask.flatMap((name) => named[name]().map(maskOf)),
     ...settings.mask_observed_angstrom.map(([low, high]) => ({

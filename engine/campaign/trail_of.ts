@@ -41,7 +41,7 @@ export function trailOf(
     skip_phases: trail.skip_phases,
     phase_bins: trail.phase_bins,
     cosmic_rays: trail.cosmic_rays,
-    masks: observedMasks(trail),
+    masks: observedMasks(trail, { spectra }),
     noise_scale: trail.noise_scale,
     photometry,
     resolution_kms: lineResolution(settings, line.vacuum_angstrom),

@@ -21,7 +21,7 @@ export interface GroupZero {
   readonly group: number;
   /** From what the shifts are: "night-sky lines", "telluric absorption", or the name of a table. */
   readonly from: string;
-  /** Features measured, as in "[O I] 5577"; empty for a table. */
+  /** Features they are from, as in "[O I] 5577"; empty for a table. */
   readonly features: readonly string[];
   /** Whether the wavelengths were corrected by them. */
   readonly corrected: boolean;
@@ -75,7 +75,8 @@ function covered(spectra: readonly Spectrum[]): Range {
  * @param options.target The target, for its lines.
  * @param options.by "sky-lines": night-sky emission lines; "telluric": absorption of the air, which
  * gives shifts relative to the mean of all.
- * @returns The shifts, NaN where nothing was measured, and the features that stand in the range.
+ * @returns The shifts, NaN where nothing was measured, and the features they are from; where none is
+ * seen, those that stand in the range.
  */
 export function measureZeros(
   spectra: readonly Spectrum[],
@@ -87,14 +88,19 @@ export function measureZeros(
   const free = ([from, to]: Range) =>
     from > low && to < high && own.every(([a, b]) => to < a || from > b);
   if (by === "sky-lines") {
-    const lines = nightSkyLines.filter(({ isolated, vacuum_angstrom: w }) =>
+    const inRange = nightSkyLines.filter(({ isolated, vacuum_angstrom: w }) =>
       isolated && free([w * 0.999, w * 1.001])
+    );
+    // A line that most exposures do not show is not there: what some show in its place is something else.
+    const shown = inRange.filter(({ vacuum_angstrom }) =>
+      2 * known(measureSkyLines(spectra, { lines_angstrom: [vacuum_angstrom] })).length >
+        spectra.length
     );
     return {
       from: "night-sky lines",
-      features: lines.map(({ name }) => name),
+      features: (shown.length > 0 ? shown : inRange).map(({ name }) => name),
       shifts: measureSkyLines(spectra, {
-        lines_angstrom: lines.map(({ vacuum_angstrom }) => vacuum_angstrom),
+        lines_angstrom: shown.map(({ vacuum_angstrom }) => vacuum_angstrom),
       }),
     };
   }
@@ -153,7 +159,7 @@ async function askedShifts(
     action: "measure the zero of wavelengths",
     rule: features.length === 0
       ? `the spectra must cover ${what} away from the lines of the target`
-      : `an exposure must show ${what}, and none of ${listed(features)} is seen`,
+      : `most exposures must show ${what}, and none of ${listed(features)} is seen`,
     value: how,
     ...place,
     remedy:

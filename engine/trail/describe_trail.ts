@@ -63,10 +63,16 @@ export interface TrailDescription {
   readonly velocity_kms: number;
   /** How far a feature of that speed moves within an exposure, 2π × velocity × width in phase, km/s. */
   readonly smear_kms: Spread;
-  /** Exposures per half orbit for which such a feature moves by no more than a resolution element from one to the next. */
-  readonly exposures_needed_per_half_orbit: number;
-  /** Exposures there are per half orbit, all orbits together. */
-  readonly exposures_per_half_orbit: number;
+  /**
+   * Steps in half an orbit, π × velocity / resolution: from one to the next such a feature moves by a
+   * resolution element. A map of that velocity and resolution needs an exposure in each.
+   */
+  readonly directions_needed: number;
+  /**
+   * How many of these steps hold the middle of an exposure, all orbits folded: half an orbit later a
+   * transparent gas shows the mirrored profile, so the two halves count as one.
+   */
+  readonly directions_observed: number;
   /** Standard deviation of the phase from the ephemeris at the epoch, cycles. */
   readonly phase_error: number;
   /** How far that moves a feature of that speed on the map, km/s. */
@@ -105,6 +111,10 @@ function continuumNoise(trail: Trail, row: number): number {
   return errors.length === 0 ? NaN : median(errors);
 }
 
+function directionsObserved(phase: Float64Array, steps: number): number {
+  return new Set(Array.from(phase, (p) => Math.floor((p % 0.5) * 2 * steps))).size;
+}
+
 function orbitalAmplitude(values: Float64Array, phase: Float64Array): number {
   const mean = values.reduce((a, b) => a + b, 0) / values.length;
   let [c, s] = [0, 0];
@@ -120,8 +130,8 @@ function orbitalAmplitude(values: Float64Array, phase: Float64Array): number {
  * resolution against what a map needs, error of the phase, shape of the line, noise.
  *
  * Signal to noise is that of the continuum in a resolution element, whose width stands beside it.
- * The number of exposures needed is π V / FWHM per half orbit: then a feature of speed V moves by at
- * most one resolution element from one exposure to the next.
+ * Half an orbit is to be seen in π V / FWHM steps: then a feature of speed V moves by at most one
+ * resolution element from one exposure to the next.
  *
  * @param trail The trail.
  * @param options Ephemeris and epoch; velocity of interest; systemic velocity.
@@ -203,7 +213,7 @@ export function describeTrail(trail: Trail, options: DescribeOptions): TrailDesc
   const span_orbits = sampling.count === 0
     ? 0
     : sampling.cycle.at(-1)! + sampling.phase.at(-1)! - sampling.cycle[0]! - sampling.phase[0]!;
-  const needed = Math.ceil(Math.PI * velocity_kms / resolution_kms.median);
+  const needed = Math.max(1, Math.ceil(Math.PI * velocity_kms / resolution_kms.median));
   const sigma_phase = phaseError(ephemeris, epoch);
   const level = trail.continuum.reduce((a, b) => a + b, 0) / sampling.count;
   const variance = trail.continuum.reduce((sum, c) => sum + (c - level) ** 2, 0) / sampling.count;
@@ -221,8 +231,8 @@ export function describeTrail(trail: Trail, options: DescribeOptions): TrailDesc
     pixel_kms: median(pixels),
     velocity_kms,
     smear_kms,
-    exposures_needed_per_half_orbit: needed,
-    exposures_per_half_orbit: sampling.count / Math.max(1, 2 * span_orbits),
+    directions_needed: needed,
+    directions_observed: directionsObserved(sampling.phase, needed),
     phase_error: sigma_phase,
     phase_error_kms,
     mean,

@@ -1,9 +1,7 @@
-import { median } from "../numerics/mod.ts";
-import { type SpectralLine, spectralLines } from "../sky/mod.ts";
+import { median, robustSigma } from "../numerics/mod.ts";
 import type { Spectrum } from "../spectra/mod.ts";
 import { pixelEdges } from "./pixel_edges.ts";
 import { rebin } from "./rebin.ts";
-import { lineVelocity } from "./velocity.ts";
 
 /** The mean spectrum of exposures that share a set-up. */
 export interface MeanSpectrum {
@@ -17,9 +15,28 @@ export interface MeanSpectrum {
   readonly exposures: number;
 }
 
+/** Deviation beyond which a single exposure's pixel is left out, standard deviations. */
+const CLIP = 8;
+/** Largest share of the exposures that may be left out at a pixel: what is in more of them is real. */
+const SHARE = 0.05;
+
+// Leaves out what struck a pixel in one exposure, or in very few: cosmic rays, bad pixels.
+function withoutHits(values: readonly { flux: number; error: number }[]): number[] {
+  const fluxes = values.map(({ flux }) => flux);
+  if (values.length < 5) return fluxes;
+  const middle = median(fluxes);
+  const scatter = robustSigma(fluxes, middle);
+  const off = ({ flux, error }: { flux: number; error: number }) =>
+    Math.abs(flux - middle) > CLIP * Math.max(scatter, error);
+  const hits = values.filter(off).length;
+  if (hits === 0 || hits > Math.max(1, SHARE * values.length)) return fluxes;
+  return values.filter((value) => !off(value)).map(({ flux }) => flux);
+}
+
 /**
  * Averages exposures in wavelength, not following any motion: for the identification of lines and
- * a first look. Exposures count the same whatever their signal.
+ * a first look. Exposures count the same whatever their signal. What deviates by eight standard
+ * deviations in one exposure in twenty or fewer is left out.
  *
  * @param spectra Exposures of one set-up.
  * @returns Their mean; null when there is none with a positive median.
@@ -59,14 +76,16 @@ export function meanSpectrum(spectra: readonly Spectrum[]): MeanSpectrum | null 
     rebin({
       edges: pixelEdges(spectrum.wavelength_angstrom),
       flux: spectrum.flux.map((f) => f / level),
-      error: spectrum.error,
-    }, edges).flux
+      error: spectrum.error.map((e) => e / level),
+    }, edges)
   );
   const flux = new Float64Array(wavelength_angstrom.length).fill(NaN);
   const error = new Float64Array(wavelength_angstrom.length).fill(Infinity);
   for (let i = 0; i < flux.length; i++) {
-    const values = rows.map((row) => row[i]!).filter((f) => Number.isFinite(f));
-    if (values.length < 0.5 * rows.length) continue;
+    const shown = rows.map((row) => ({ flux: row.flux[i]!, error: row.error[i]! }))
+      .filter((one) => Number.isFinite(one.flux));
+    if (shown.length < 0.5 * rows.length) continue;
+    const values = withoutHits(shown);
     const mean = values.reduce((a, b) => a + b, 0) / values.length;
     flux[i] = mean;
     if (values.length < 2) continue;
@@ -74,87 +93,4 @@ export function meanSpectrum(spectra: readonly Spectrum[]): MeanSpectrum | null 
     error[i] = Math.sqrt(variance / values.length);
   }
   return { wavelength_angstrom, flux, error, exposures: rows.length };
-}
-
-/** A line of the list looked for in a mean spectrum. */
-export interface IdentifiedLine {
-  /** The line. */
-  readonly line: SpectralLine;
-  /** Equivalent width, Å, emission positive. */
-  readonly equivalent_width_angstrom: number;
-  /** Its standard deviation, Å. */
-  readonly error_angstrom: number;
-  /** Whether it is seen at 5σ. */
-  readonly seen: boolean;
-  /** Other lines of the list within the range of integration: the width is shared with them. */
-  readonly blended_with: readonly string[];
-}
-
-/**
- * Looks for every line of the list in a mean spectrum.
- *
- * @param mean The mean spectrum.
- * @param options Half width of the integration, km/s; the continuum comes from as much on each side.
- * @returns The lines covered, in order of wavelength.
- *
- * @example
- * ```ts
- * import { identifyLines } from "@millrace/millrace/trail";
- * import { lineNamed } from "@millrace/millrace/sky";
- * import { assert } from "@std/assert";
- *
- * const rest = lineNamed("H beta").vacuum_angstrom;
- * const wavelength_angstrom = Float64Array.from({ length: 400 }, (_, i) => 4760 + 0.5 * i);
- * const found = identifyLines({
- *   wavelength_angstrom,
- *   flux: wavelength_angstrom.map((w) => 1 + Math.exp(-(((w - rest) / 8) ** 2))),
- *   error: wavelength_angstrom.map(() => 0.02),
- *   exposures: 10,
- * }, { half_width_kms: 1500 });
- * assert(found.find((f) => f.line.name === "H beta")!.seen);
- * ```
- */
-export function identifyLines(
-  mean: MeanSpectrum,
-  options: { readonly half_width_kms: number },
-): IdentifiedLine[] {
-  const { half_width_kms } = options;
-  const { wavelength_angstrom: w, flux, error } = mean;
-  const edges = pixelEdges(w);
-  const sorted = spectralLines.toSorted((a, b) => a.vacuum_angstrom - b.vacuum_angstrom);
-  return sorted.flatMap((line): IdentifiedLine[] => {
-    const inside: number[] = [];
-    const beside: number[] = [];
-    w.forEach((wavelength, i) => {
-      if (!Number.isFinite(flux[i]!) || !Number.isFinite(error[i]!)) return;
-      const v = Math.abs(lineVelocity(wavelength, line));
-      if (v <= half_width_kms) inside.push(i);
-      else if (v <= 2 * half_width_kms) beside.push(i);
-    });
-    const covered = line.vacuum_angstrom > w[0]! && line.vacuum_angstrom < w[w.length - 1]!;
-    if (!covered || inside.length < 3 || beside.length < 3) return [];
-    const level = median(beside.map((i) => flux[i]!));
-    let width = 0, variance = 0, length = 0;
-    for (const i of inside) {
-      const pixel = edges[i + 1]! - edges[i]!;
-      width += (flux[i]! / level - 1) * pixel;
-      variance += (error[i]! / level * pixel) ** 2;
-      length += pixel;
-    }
-    // The median of n samples has 1.25 times the error of their mean.
-    const beneath = 1.253 * median(beside.map((i) => error[i]!)) / level / Math.sqrt(beside.length);
-    const error_angstrom = Math.sqrt(variance + (length * beneath) ** 2);
-    const blended_with = sorted
-      .filter((other) =>
-        other !== line && Math.abs(lineVelocity(other.vacuum_angstrom, line)) < half_width_kms
-      )
-      .map((other) => other.name);
-    return [{
-      line,
-      equivalent_width_angstrom: width,
-      error_angstrom,
-      seen: Math.abs(width) > 5 * error_angstrom,
-      blended_with,
-    }];
-  });
 }

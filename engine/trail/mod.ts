@@ -12,6 +12,7 @@ export * from "./display_grid.ts";
 export * from "./equivalent_width_error.ts";
 export * from "./fold.ts";
 export * from "./group_noise.ts";
+export * from "./identify_lines.ts";
 export * from "./journal.ts";
 export * from "./line_coverage.ts";
 export * from "./line_strip.ts";

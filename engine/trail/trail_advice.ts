@@ -7,8 +7,8 @@ export function trailAdvice(
   description: Omit<TrailDescription, "warnings">,
   ephemeris: Ephemeris,
 ): Warning[] {
-  const { line, coverage, smear_kms, resolution_kms, velocity_kms, exposures } = description;
-  const { exposures_needed_per_half_orbit, phase_error, phase_error_kms, net } = description;
+  const { line, coverage, smear_kms, resolution_kms, velocity_kms } = description;
+  const { directions_needed, directions_observed, phase_error, phase_error_kms, net } = description;
   const warnings: Warning[] = [];
   const warn = (code: string, text: string) => warnings.push({ code, text, line });
   if (coverage.largest_half_gap > 0.08) {
@@ -31,12 +31,14 @@ export function trailAdvice(
       } resolution elements: shorter exposures would show more`,
     );
   }
-  if (exposures < 0.7 * exposures_needed_per_half_orbit) {
+  if (directions_observed < 0.7 * directions_needed) {
     warn(
       "few-exposures",
-      `${exposures} exposures are fewer than the ${exposures_needed_per_half_orbit} per half orbit that features at ${
+      `exposures fall into ${directions_observed} of the ${directions_needed} steps of half an orbit (π × ${
         velocity_kms.toFixed(0)
-      } km/s need at this resolution`,
+      } / ${resolution_kms.median.toFixed(0)} km/s) from one to the next of which a feature at ${
+        velocity_kms.toFixed(0)
+      } km/s moves by one resolution element: at that velocity a map will be coarser than the spectra, or show streaks`,
     );
   }
   if (phase_error_kms > resolution_kms.median) {
@@ -58,13 +60,13 @@ export function trailAdvice(
   if (net === "absorption") {
     warn(
       "line-in-absorption",
-      "the line is net in absorption: it is inverted with its sign turned, which is right only where it is nowhere above the continuum",
+      "the line is net in absorption: entropy maps it with its sign turned, which is right only where it is nowhere above the continuum; back-projection and signed total variation take both signs",
     );
   }
   if (net === "emission with absorption core") {
     warn(
       "absorption-core",
-      "the mean profile falls below the continuum: entropy maps cannot be negative and will put a hole or a ring there; back-projection and signed total variation show it",
+      "the mean profile falls below the continuum: entropy maps cannot be negative and will put a hole or a ring there; back-projection and signed total variation show it as negative light",
     );
   }
   return warnings;

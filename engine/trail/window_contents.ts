@@ -15,9 +15,11 @@ export interface WindowContent {
   readonly kind: "line" | "static";
   /** Velocity of its middle about the line, km/s. */
   readonly velocity_kms: number;
+  /** What it takes of the window, km/s. */
+  readonly range_kms: VelocityRange;
   /**
    * Radius of the ring that a static feature draws on a map, |velocity − systemic|, km/s; null for
-   * lines of the object.
+   * lines of the object, and for bands broader than half the reach, whose features draw many.
    */
   readonly ring_radius_kms: number | null;
 }
@@ -91,6 +93,10 @@ export function windowContents(
         name: other.name,
         kind: "line",
         velocity_kms,
+        range_kms: [
+          Math.max(velocity_kms - half_width_kms, low),
+          Math.min(velocity_kms + half_width_kms, high),
+        ],
         ring_radius_kms: null,
       }];
     });
@@ -98,14 +104,16 @@ export function windowContents(
       const from = lineVelocity(mask.low_angstrom * observer_factor, line);
       const to = lineVelocity(mask.high_angstrom * observer_factor, line);
       if (to < low || from > high) return [];
-      const velocity_kms = 0.5 * (Math.max(from, low) + Math.min(to, high));
+      const range_kms: VelocityRange = [Math.max(from, low), Math.min(to, high)];
+      const velocity_kms = 0.5 * (range_kms[0] + range_kms[1]);
       return [{
         window,
         window_kms,
         name: mask.name,
         kind: "static",
         velocity_kms,
-        ring_radius_kms: Math.abs(velocity_kms - systemic_kms),
+        range_kms,
+        ring_radius_kms: to - from > 0.5 * reach_kms ? null : Math.abs(velocity_kms - systemic_kms),
       }];
     });
     return [...lines, ...still];

@@ -23,7 +23,8 @@ Deno.test("describeTrail() tells smear, resolution and exposures needed in the s
   // 2π × 800 km/s × 0.9 × 1.3 / 60 of an orbit.
   assertAlmostEquals(d.smear_kms.median, 2 * Math.PI * 800 * 0.0195, 1e-6);
   assertAlmostEquals(d.resolution_kms.median, 73.98, 0.01);
-  assertEquals(d.exposures_needed_per_half_orbit, Math.ceil(Math.PI * 800 / 73.98));
+  assertEquals(d.directions_needed, Math.ceil(Math.PI * 800 / 73.98));
+  assertGreater(d.directions_observed, 0.7 * d.directions_needed);
   assertAlmostEquals(d.span_orbits, 1.3 * 59 / 60, 1e-6);
   assertEquals(d.net, "emission");
   assertEquals(d.warnings.map((w) => w.code), []);
@@ -49,6 +50,21 @@ Deno.test("describeTrail() warns of gaps, smearing, few exposures and an uncerta
       "zero-not-donor",
     ),
   );
+});
+
+Deno.test("describeTrail() counts directions over nights apart, and the same phases only once", () => {
+  const whole = described({ count: 12, orbits: 1 });
+  // A day of 12.5 orbits: the second night falls half an orbit on, onto the same directions.
+  const nights = [0, 1].flatMap((start_d) => madeSpectra({ count: 12, orbits: 1, start_d }));
+  const trail = makeTrail(nights, {
+    line: H_BETA,
+    ephemeris: EPHEMERIS,
+    continuum_kms: [[-8000, -3000], [5800, 7800]],
+  });
+  const both = describeTrail(trail, { ephemeris: EPHEMERIS, epoch: EPOCH, velocity_kms: 800 });
+  assertEquals(both.exposures, 24);
+  // Twelve exposures of one orbit are six directions, each seen twice.
+  assertEquals([whole.directions_observed, both.directions_observed], [6, 6]);
 });
 
 Deno.test("describeTrail() recognises net absorption and a core below the continuum", () => {

@@ -39,6 +39,20 @@ Deno.test("windowContents() tells the ring that a static feature draws", () => {
     systemic_kms: 27,
   }).filter((c) => c.kind === "static");
   assertAlmostEquals(ring!.ring_radius_kms!, 1005 - 27, 1e-6);
+  assertAlmostEquals(ring!.range_kms[0], 1000, 1e-6);
+  // A band over the whole window draws no single ring.
+  const band = {
+    name: "a band",
+    low_angstrom: line.vacuum_angstrom * 0.97,
+    high_angstrom: line.vacuum_angstrom * 1.03,
+  };
+  const [all] = windowContents(line, {
+    reach_kms: 2500,
+    continuum_kms: [],
+    half_width_kms: 0,
+    observed: [band],
+  }).filter((c) => c.kind === "static");
+  assertEquals([all!.range_kms, all!.ring_radius_kms], [[-2500, 2500], null]);
 });
 
 Deno.test("continuumWindows() keeps clear of neighbours and falls back beside a crowded line", () => {

@@ -1,7 +1,6 @@
-import { type EcsvTable, formatEcsv } from "../../files/mod.ts";
+import { formatEcsv } from "../../files/mod.ts";
 import type { Decision } from "../../spectra/mod.ts";
 import {
-  continuumWindows,
   describeTrail,
   type JournalEntry,
   journalOf,
@@ -9,17 +8,16 @@ import {
   type PhaseCoverage,
   type ProfileMeasures,
   type Spread,
-  type Trail,
   type TrailNoise,
-  type WindowContent,
-  windowContents,
+  widthInAngstrom,
 } from "../../trail/mod.ts";
 import type { Warning } from "../../errors.ts";
-import { keptLists, observedMasks } from "../observed_masks.ts";
+import { identifiedGroups } from "../identified_groups.ts";
 import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
-import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
-import { VERSION } from "../version.ts";
+import { type CheckedContent, checkedContents, contentWarnings } from "./check_contents.ts";
+import { checkZeros, type ZeroCheck } from "./check_zeros.ts";
+import { journalTable } from "./journal_table.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
 /** `check.json`. */
@@ -30,6 +28,8 @@ export interface CheckDocument extends OutputHead {
   readonly files: number;
   /** What each "auto" decided, and from which key. */
   readonly decisions: readonly Decision[];
+  /** The zero of wavelengths of each group in which anything shows it. */
+  readonly zeros: readonly ZeroCheck[];
   /** The journal of observations. */
   readonly journal: readonly JournalEntry[];
   /** One entry a line. */
@@ -56,20 +56,26 @@ export interface LineCheck {
   readonly velocity_kms: number;
   /** How far a feature of that velocity moves during an exposure, km/s. */
   readonly smear_kms: Spread;
-  /** Exposures needed per half orbit at that velocity. */
-  readonly exposures_needed_per_half_orbit: number;
-  /** Exposures there are per half orbit. */
-  readonly exposures_per_half_orbit: number;
+  /** Steps of half an orbit in which such a feature moves by one resolution element. */
+  readonly directions_needed: number;
+  /** How many of them hold the middle of an exposure, all orbits folded. */
+  readonly directions_observed: number;
   /** Standard deviation of the phase, cycles. */
   readonly phase_error: number;
   /** How far that moves a feature of that velocity, km/s. */
   readonly phase_error_kms: number;
   /** What is measured on the mean profile. */
   readonly measures: ProfileMeasures;
+  /** Star with which the line moves. */
+  readonly traces: "accretor" | "donor";
+  /** Equivalent width of the mean profile, Å, emission positive. */
+  readonly equivalent_width_angstrom: number;
   /** Whether the line is in emission or absorption. */
   readonly net: string;
   /** Variation of the continuum: standard deviation over mean. */
   readonly continuum_variation: number;
+  /** Part of it that goes with the orbit: semi-amplitude over mean. */
+  readonly continuum_orbital_amplitude: number;
   /** Factor applied to the errors. */
   readonly noise_scale: number;
   /** What was measured of the noise. */
@@ -77,7 +83,7 @@ export interface LineCheck {
   /** Noise within the line from repeats and mirrored pairs. */
   readonly pairs: { readonly repeat: PairNoise | null; readonly mirror: PairNoise | null };
   /** What else falls into the windows. */
-  readonly contents: readonly WindowContent[];
+  readonly contents: readonly CheckedContent[];
 }
 
 /**
@@ -92,23 +98,46 @@ export async function runCheck(
   output: StepOutput,
 ): Promise<StepResult<CheckDocument>> {
   const { target } = session;
-  const { spectra, decisions, inputs, warnings: reading } = await session.exposures();
+  const read = await session.exposures();
+  const { spectra, decisions, inputs, warnings: reading } = read;
   const ephemeris = await session.ephemeris();
-  const warnings: Warning[] = [...reading, ...(await session.systemic()).warnings];
+  const systemic = await session.systemic();
+  const binary = session.binary();
+  const found = checkZeros(spectra, {
+    target,
+    zeros: read.zeros,
+    ephemeris,
+    k_accretor_kms: binary?.k_accretor_kms ?? null,
+  });
+  const warnings: Warning[] = [...reading, ...found.warnings, ...systemic.warnings];
   const lines: LineCheck[] = [];
+  const described = [];
   for (const line of session.lines("check the exposures")) {
     const trail = await session.trail(line);
     const description = describeTrail(trail, {
       ephemeris,
       epoch: spectra[0]!.mid,
-      systemic_kms: (await session.systemic()).kms,
+      systemic_kms: systemic.kms,
+      // What moves with the donor has its speed, however wide the line is.
+      ...(line.traces === "donor" && binary !== null ? { velocity_kms: binary.k_donor_kms } : {}),
     });
-    const contents = contentsOf(trail, {
-      session,
+    described.push({ line, trail, description });
+  }
+  const seen = identifiedGroups(
+    spectra,
+    described.map(({ trail, description }) => ({
+      trail,
+      full_width_kms: description.measures.full_width_kms,
+    })),
+  ).flatMap(({ identified }) => identified.filter((one) => one.seen).map(({ line }) => line));
+  for (const { line, trail, description } of described) {
+    const contents = checkedContents(trail, {
+      target,
       line,
-      half_width_kms: description.velocity_kms,
-      observer_factor: spectra[0]!.observer_factor ?? 1,
-      systemic_kms: (await session.systemic()).kms,
+      spectra,
+      half_width_kms: description.measures.full_width_kms / 2 || description.velocity_kms,
+      systemic_kms: systemic.kms,
+      seen,
     });
     warnings.push(...trail.warnings, ...description.warnings, ...contentWarnings(trail, contents));
     const {
@@ -118,7 +147,15 @@ export async function runCheck(
       pixel_kms: _pixel,
       ...rest
     } = description;
-    lines.push({ ...rest, noise_scale: trail.noise_scale, noise: trail.noise, contents });
+    lines.push({
+      ...rest,
+      traces: line.traces,
+      equivalent_width_angstrom: (description.net === "absorption" ? -1 : 1) *
+        widthInAngstrom(description.measures.equivalent_width_kms, trail.line.vacuum_angstrom),
+      noise_scale: trail.noise_scale,
+      noise: trail.noise,
+      contents,
+    });
   }
   const all = uniqueWarnings(warnings);
   const journal = journalOf(spectra, { ephemeris });
@@ -127,112 +164,13 @@ export async function runCheck(
     exposures: spectra.length,
     files: inputs.length,
     decisions,
+    zeros: found.zeros,
     journal,
     lines,
   };
   const files = await writeStep([
     ["check.json", jsonText(document)],
-    ["journal.ecsv", formatEcsv(journalTable(journal, target.title))],
+    ["journal.ecsv", formatEcsv(journalTable(journal, { title: target.title }))],
   ], output);
   return { document, files, warnings: all };
-}
-
-function contentsOf(
-  trail: Trail,
-  options: {
-    session: Session;
-    line: LineSettings;
-    half_width_kms: number;
-    observer_factor: number;
-    systemic_kms: number;
-  },
-): WindowContent[] {
-  const { session, line, half_width_kms, observer_factor, systemic_kms } = options;
-  const { reach_kms } = line;
-  const { trail: settings } = session.target.settings;
-  const masked = observedMasks(settings);
-  return windowContents(trail.line, {
-    reach_kms,
-    continuum_kms: line.continuum_kms ?? continuumWindows(trail.line, { reach_kms }),
-    half_width_kms,
-    // What is masked already cannot disturb.
-    observed: keptLists().filter((entry) =>
-      !masked.some((mask) =>
-        mask.low_angstrom <= entry.low_angstrom && mask.high_angstrom >= entry.high_angstrom
-      )
-    ),
-    observer_factor,
-    systemic_kms,
-  });
-}
-
-function contentWarnings(trail: Trail, contents: readonly WindowContent[]): Warning[] {
-  const line = trail.line.name;
-  const lines = contents.filter(({ kind }) => kind === "line");
-  const still = contents.filter(({ kind, window }) => kind === "static" && window === "line");
-  const at = ({ name, velocity_kms }: WindowContent) =>
-    `${name} at ${velocity_kms > 0 ? "+" : "−"}${Math.abs(velocity_kms).toFixed(0)} km/s`;
-  return [
-    ...(lines.length === 0 ? [] : [{
-      code: "window-shared",
-      line,
-      text: `as wide as this line, others reach into its windows: ${
-        [...new Set(lines.map((entry) => `${at(entry)} (${entry.window} window)`))].join(", ")
-      }`,
-    }]),
-    ...(still.length === 0 ? [] : [{
-      code: "static-feature",
-      line,
-      text: `features of sky or interstellar gas stand in the line's window and draw rings: ${
-        still.map((entry) => `${at(entry)} (ring of ${entry.ring_radius_kms?.toFixed(0)} km/s)`)
-          .join(", ")
-      }; mask them with trail.mask`,
-    }]),
-  ];
-}
-
-function journalTable(journal: readonly JournalEntry[], title: string): EcsvTable {
-  const number = (
-    name: string,
-    unit: string | undefined,
-    value: (entry: JournalEntry) => number | null,
-    description: string,
-  ) => ({ name, datatype: "float64" as const, unit, description, values: journal.map(value) });
-  return {
-    meta: { creator: "Millrace", version: VERSION, schema: "journal/1", target: title },
-    columns: [
-      {
-        name: "group",
-        datatype: "int32",
-        description: "index of the exposures group, from 1",
-        values: journal.map(({ group }) => group + 1),
-      },
-      number("first_bjd_tdb", "d", ({ first }) => first[0] + first[1], "first mid-exposure"),
-      number("last_bjd_tdb", "d", ({ last }) => last[0] + last[1], "last mid-exposure"),
-      {
-        name: "exposures",
-        datatype: "int32",
-        values: journal.map(({ exposures }) => exposures),
-      },
-      number("shortest_s", "s", ({ shortest_s }) => shortest_s, "shortest exposure"),
-      number("longest_s", "s", ({ longest_s }) => longest_s, "longest exposure"),
-      number("from_angstrom", "Angstrom", (e) => e.from_angstrom, "first wavelength, vacuum"),
-      number("to_angstrom", "Angstrom", (e) => e.to_angstrom, "last wavelength, vacuum"),
-      number("pixel_angstrom", "Angstrom", (e) => e.pixel_angstrom, "median pixel"),
-      number(
-        "resolution_angstrom",
-        "Angstrom",
-        (e) => e.resolution_angstrom,
-        "full width at half maximum",
-      ),
-      number(
-        "signal_to_noise_pixel",
-        undefined,
-        (e) => e.signal_to_noise_pixel,
-        "median flux over error of a pixel",
-      ),
-      number("orbits", undefined, (e) => e.orbits, "span in orbits"),
-      number("first_orbit", undefined, (e) => e.first_orbit, "orbits since the zero at the start"),
-    ],
-  };
 }
