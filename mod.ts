@@ -5,10 +5,11 @@
  *
  * @example From files to a map
  * ```ts
- * import { backProject, type Ephemeris, makeTrail, readExposures, type VelocityMap } from "@millrace/millrace";
+ * import { backProject, ephemerisFrom, makeTrail, readExposures, type VelocityMap } from "@millrace/millrace";
  * import { lineNamed } from "@millrace/millrace/sky";
  *
- * async function mapOf(files: readonly string[], ephemeris: Ephemeris): Promise<VelocityMap> {
+ * async function mapOf(files: readonly string[]): Promise<VelocityMap> {
+ *   const ephemeris = ephemerisFrom({ period_d: 0.0823714, zero_bjd_tdb: 2460311.62107 });
  *   const { spectra } = await readExposures(files, { resolution_angstrom: 1.2 });
  *   const trail = makeTrail(spectra, { line: lineNamed("H beta"), ephemeris });
  *   return backProject(trail, { pixels: 151, half_width_kms: 2000, systemic_kms: 0 });
@@ -18,7 +19,7 @@
  * @module
  */
 export * from "./engine/errors.ts";
-export { type Binary, binaryFrom, type Ephemeris } from "./engine/binary/mod.ts";
+export { type Binary, binaryFrom, type Ephemeris, ephemerisFrom } from "./engine/binary/mod.ts";
 export { readExposures, type Spectrum } from "./engine/spectra/mod.ts";
 export { makeTrail, type Sampling, type Trail } from "./engine/trail/mod.ts";
 export {

@@ -18,6 +18,7 @@ export * from "./donor_density.ts";
 export * from "./donor_surface.ts";
 export * from "./eclipse_width.ts";
 export * from "./ephemeris.ts";
+export * from "./ephemeris_from.ts";
 export * from "./ephemeris_phase.ts";
 export * from "./geometry.ts";
 export * from "./kepler_equation.ts";
