@@ -33,7 +33,8 @@ function maskOf({ name, low_angstrom, high_angstrom }: ObservedWindow): Observed
 
 const lists = (resolution: number) => ({
   sky: () => nightSkyWindows(resolution),
-  telluric: () => telluricBands,
+  // The weak bands are as wide as a line and a few per cent deep: to mask one would cost the line.
+  telluric: () => telluricBands.filter(({ name }) => !name.includes("weak")),
   interstellar: () => interstellarWindows,
 });
 
