@@ -5,12 +5,14 @@ import { checkTrail, type TrailSamples } from "./check_trail.ts";
 import { fitOfMap } from "./map_fit.ts";
 import { type EntropyMap, maximumEntropy, type MaximumEntropyOptions } from "./maximum_entropy.ts";
 import { makeProjector, type Projector } from "./projector.ts";
+import { totalVariation, type TotalVariationOptions } from "./total_variation.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
 /** A way to make a map: plain data, so that it can be sent to a worker or kept in a file. */
 export type InversionRecipe =
   | ({ readonly inversion: "back-projection"; readonly force?: boolean } & BackProjectionOptions)
-  | ({ readonly inversion: "entropy" } & Omit<MaximumEntropyOptions, "projector">);
+  | ({ readonly inversion: "entropy" } & Omit<MaximumEntropyOptions, "projector">)
+  | ({ readonly inversion: "total-variation" } & Omit<TotalVariationOptions, "projector">);
 
 /** A map with its fit to the data, whatever made it. */
 export interface Inversion {
@@ -24,7 +26,7 @@ export interface Inversion {
   readonly reduced_chi_square: number;
   /** Iterations; 0 for back-projection. */
   readonly iterations: number;
-  /** Multiplier of the regularisation; null for back-projection. */
+  /** Multiplier of the entropy or weight of the variation; null for back-projection. */
   readonly multiplier: number | null;
 }
 
@@ -66,9 +68,14 @@ export type Inverter = (trail: TrailSamples) => Inversion;
  */
 export function makeInverter(trail: TrailSamples, recipe: InversionRecipe): Inverter {
   const { sampling } = trail;
-  if (recipe.inversion === "entropy") {
+  if (recipe.inversion !== "back-projection") {
     const projector = blendProjector(sampling, { ...recipe, members: recipe.blends ?? [] });
-    return (data) => described(maximumEntropy(data, { ...recipe, projector }));
+    return recipe.inversion === "entropy"
+      ? (data) => described(maximumEntropy(data, { ...recipe, projector }))
+      : (data) => {
+        const found = totalVariation(data, { ...recipe, projector });
+        return described({ ...found, multiplier: found.weight });
+      };
   }
   let projector: Projector | undefined;
   return (data) => {
@@ -87,7 +94,12 @@ export function makeInverter(trail: TrailSamples, recipe: InversionRecipe): Inve
   };
 }
 
-function described(found: EntropyMap): Inversion {
+function described(
+  found: Pick<
+    EntropyMap,
+    "map" | "model" | "reduced_chi_square" | "iterations" | "multiplier"
+  >,
+): Inversion {
   const { map, model, reduced_chi_square, iterations, multiplier } = found;
   return { map, model, scale: 1, reduced_chi_square, iterations, multiplier };
 }

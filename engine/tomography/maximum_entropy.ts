@@ -1,15 +1,13 @@
-import { InputError, NotConverged, type Warning } from "../errors.ts";
+import { NotConverged, type Warning } from "../errors.ts";
 import { median } from "../numerics/mod.ts";
-import { makeGrid } from "../trail/mod.ts";
-import { backProject } from "./back_projection.ts";
 import { freeBaselines } from "./baseline.ts";
 import { type BlendMember, blendProjector } from "./blend_projector.ts";
 import { checkTrail, type TrailSamples } from "./check_trail.ts";
 import { type EntropyOptions, type EntropyState, entropySteps } from "./entropy_solver.ts";
+import { backProjectedSamples, lineLevel } from "./line_level.ts";
 import type { LinearOperator } from "./linear_operator.ts";
 import type { Samples } from "./map_fit.ts";
-import { type MapShape, mapStep } from "./map_shape.ts";
-import { meanFlux } from "./mean_flux.ts";
+import type { MapShape } from "./map_shape.ts";
 import { type PriorImage, priorImage } from "./prior_image.ts";
 import type { Projector, ProjectorMethod, ProjectorPrecision } from "./projector.ts";
 import type { VelocityMap } from "./velocity_map.ts";
@@ -168,19 +166,19 @@ export function* maximumEntropySteps(
   if (free_baselines) {
     ({ operator, samples } = freeBaselines(operator, { sampling, samples }));
   }
-  const shares = blends.reduce((sum, member) => sum + member.flux_ratio, 1);
-  const level = options.level ?? defaultLevel({ sampling, flux, error }, { ...options, shares });
+  const level = options.level ?? lineLevel({ sampling, flux, error }, options);
   const prior = options.prior ?? {
     kind: "blurred",
     fwhm_kms: 3 * Math.sqrt(8 * Math.LN2) * median(sampling.profile_sigma_kms),
   };
-  const start = options.start?.intensity ?? backProjected({ sampling, flux, error }, options);
+  const start = options.start?.intensity ??
+    backProjectedSamples({ sampling, flux, error }, options);
   const floor = START_FLOOR * level;
   const steps = entropySteps({
     operator,
     samples,
     prior: priorImage(prior, { ...shape, level }),
-    start: start.map((f) => Math.max(f / shares, floor)),
+    start: start.map((f) => Math.max(f, floor)),
   }, options);
 
   const describe = (state: EntropyState): EntropyMap => {
@@ -243,34 +241,4 @@ export function maximumEntropy(
   let last: EntropyMap | undefined;
   for (const state of maximumEntropySteps(trail, options)) last = state;
   return last!;
-}
-
-function defaultLevel(
-  trail: TrailSamples,
-  options: MaximumEntropyOptions & { readonly shares: number },
-): number {
-  const { half_width_kms, systemic_kms, pixels, shares } = options;
-  const flux = meanFlux(trail, { centre_kms: systemic_kms, half_range_kms: half_width_kms });
-  if (!(flux > 0)) {
-    throw new InputError({
-      action: "make maximum-entropy map",
-      rule: options.absorption === true
-        ? "a line inverted with its sign turned must be in absorption on the whole"
-        : "a line inverted as it is must be in emission on the whole",
-      value: Number(((options.absorption === true ? -1 : 1) * flux).toPrecision(4)),
-      unit: "km/s mean equivalent width",
-      remedy: options.absorption === true
-        ? "invert it as it is"
-        : "invert it with its sign turned, or give the level of the default image",
-    });
-  }
-  return flux / shares / (pixels * mapStep(options)) ** 2;
-}
-
-function backProjected(trail: TrailSamples, options: MaximumEntropyOptions): Float64Array {
-  const { half_width_kms, systemic_kms, pixels } = options;
-  const grid = makeGrid(trail.sampling, trail, {
-    reach_kms: 1.2 * half_width_kms + Math.abs(systemic_kms),
-  });
-  return backProject({ grid }, { pixels, half_width_kms, systemic_kms }).intensity;
 }

@@ -208,9 +208,9 @@ Deno.test("maximumEntropy() inverts an absorption line with its sign turned", ()
   const error = assertThrows(() => maximumEntropy(trail, { ...shape, prior: UNIFORM }), InputError);
   assertEquals(
     error.message.replace(/-?\d+\.\d+/, "X"),
-    "Cannot make maximum-entropy map as a line inverted as it is must be in emission on the whole: " +
+    "Cannot make velocity map as a line inverted as it is must be in emission on the whole: " +
       "current value is X km/s mean equivalent width; invert it with its sign turned, or give the level " +
-      "of the default image",
+      "of the map",
   );
   const found = maximumEntropy(trail, { ...shape, ...RELAXED, absorption: true });
   assertAlmostEquals(centroid(found.map).vx, -300, 1);
