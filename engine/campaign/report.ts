@@ -33,7 +33,7 @@ export async function reportHtml(
   for (const line of lines) maps.push(await session.map(line));
   const orbit = await orbitOrNull(session);
   const binary = session.binary();
-  const { disc = {} } = target.settings.model;
+  const disc = target.settings.model?.disc ?? {};
   const { inputs } = await session.exposures();
   const checklist: ChecklistRow[] = refereeChecklist(
     await refereeFacts(session, {

@@ -15,9 +15,12 @@ import { needed } from "./target.ts";
  */
 export async function weighOptionsOf(session: Session, line: LineSettings): Promise<WeighOptions> {
   const { target } = session;
-  const { weigh, seed } = target.settings;
+  const { weigh, seed, model } = target.settings;
   const trail = await session.trail(line);
-  const { parts: _parts, ...known } = await modelOf(target, { settings: line, line: trail.line });
+  // Without [model] nothing is stated of the parts: their defaults are where the fits start.
+  const { parts: _parts, ...known } = (line.model ?? model) === undefined
+    ? { parts: [] }
+    : await modelOf(target, { settings: line, line: trail.line });
   return {
     binary: needed(target, {
       value: session.binary(),

@@ -26,6 +26,7 @@ const WITHOUT_MAP: readonly PanelName[] = [
   "spectrum",
   "coverage",
   "disc-in-space",
+  "stacked-profiles",
 ];
 
 /**
