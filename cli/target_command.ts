@@ -1,5 +1,12 @@
-import { openSession, outputFolder, readTarget, type Session } from "../engine/campaign/mod.ts";
-import type { StepOutput } from "../engine/campaign/mod.ts";
+import {
+  openSession,
+  outputFolder,
+  readTarget,
+  recordStep,
+  type Session,
+} from "../engine/campaign/mod.ts";
+import type { StepOutput, StepResult } from "../engine/campaign/mod.ts";
+import { utcNow } from "./clock.ts";
 import { commandWith, type CommonOptions } from "./common_options.ts";
 import { type CommandContext, type CommandResult, runCommand } from "./run_command.ts";
 
@@ -9,6 +16,8 @@ export interface TargetContext extends CommandContext {
   readonly session: Session;
   /** Where to write. */
   readonly output: StepOutput;
+  /** Whether maps are made in spite of a large gap in phase. */
+  readonly force: boolean;
 }
 
 /**
@@ -22,7 +31,7 @@ export async function openTarget(
   file: string,
   options: { call: CommonOptions; context: CommandContext; force?: boolean },
 ): Promise<TargetContext> {
-  const { call, context, force } = options;
+  const { call, context, force = false } = options;
   const target = await readTarget(file, { set: call.set, seed: call.seed });
   return {
     ...context,
@@ -33,7 +42,26 @@ export async function openTarget(
       signal: context.signal,
     }),
     output: { folder: outputFolder(target, call.out), overwrite: call.overwrite },
+    force,
   };
+}
+
+/**
+ * Runs a step and records it in the output folder's `provenance.json`.
+ *
+ * @typeParam T What the step gives.
+ * @param command The command.
+ * @param context The target at work.
+ * @param run The step.
+ * @returns What the step gives, `provenance.json` among its files.
+ */
+export function recorded<T extends Pick<StepResult<unknown>, "files" | "warnings">>(
+  command: string,
+  context: TargetContext,
+  run: () => Promise<T>,
+): Promise<T> {
+  const { session: { target }, output, force, signal } = context;
+  return recordStep(target, { command, run }, { output, force, now: utcNow, signal });
 }
 
 /**
@@ -57,7 +85,10 @@ export function targetCommand(
         finish(
           await runCommand(
             options,
-            async (context) => parts.run(await openTarget(file, { call: options, context })),
+            async (context) => {
+              const opened = await openTarget(file, { call: options, context });
+              return recorded(name, opened, () => parts.run(opened));
+            },
           ),
         );
       });

@@ -1,7 +1,8 @@
 import { type MapDocument, runMap } from "../../engine/campaign/mod.ts";
 import { commandWith } from "../common_options.ts";
+import { runInParts } from "../part_options.ts";
 import { runCommand } from "../run_command.ts";
-import { openTarget } from "../target_command.ts";
+import { openTarget, recorded } from "../target_command.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 
 /**
@@ -14,16 +15,17 @@ export const mapCommand = (finish: (status: number) => void) =>
   commandWith("map", "the velocity map")
     .argument("<target>", "target file")
     .option("--force", "make the map in spite of a large gap in phase")
+    .option("--part <i/n>", "make one share of n of the resamples, together with other processes")
+    .option("--gather", "make the outputs from what the shares have done")
     .action(async (file, options) => {
       finish(
         await runCommand(options, async (context) => {
-          const { session, output } = await openTarget(file, {
+          const opened = await openTarget(file, { call: options, context, force: options.force });
+          return runInParts("map", opened, {
             call: options,
-            context,
-            force: options.force,
+            run: () => recorded("map", opened, () => runMap(opened.session, opened.output)),
+            lines: mapLines,
           });
-          const result = await runMap(session, output);
-          return { ...result, lines: mapLines(result.document) };
         }),
       );
     });

@@ -1,7 +1,7 @@
 import { type ModelDocument, runSynth } from "../../engine/campaign/mod.ts";
 import { commandWith } from "../common_options.ts";
 import { runCommand } from "../run_command.ts";
-import { openTarget } from "../target_command.ts";
+import { openTarget, recorded } from "../target_command.ts";
 import { plainNumber, tableLines } from "../terminal/table.ts";
 
 /**
@@ -17,8 +17,13 @@ export const synthCommand = (finish: (status: number) => void) =>
     .action(async (file, options) => {
       finish(
         await runCommand(options, async (context) => {
-          const { session, output } = await openTarget(file, { call: options, context });
-          const result = await runSynth(session, output, { exposures: options.exposures });
+          const opened = await openTarget(file, { call: options, context });
+          const { session, output } = opened;
+          const result = await recorded(
+            "synth",
+            opened,
+            () => runSynth(session, output, { exposures: options.exposures }),
+          );
           const shown = result.files.filter((path) => !result.document.exposures.includes(path));
           return {
             ...result,

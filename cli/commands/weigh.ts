@@ -1,15 +1,33 @@
 import { runWeigh, type WeighDocument } from "../../engine/campaign/mod.ts";
-import { targetCommand } from "../target_command.ts";
+import { commandWith } from "../common_options.ts";
+import { runInParts } from "../part_options.ts";
+import { runCommand } from "../run_command.ts";
+import { openTarget, recorded } from "../target_command.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 
-/** `millrace weigh`: hypotheses against each other. */
-export const weighCommand = targetCommand("weigh", {
-  summary: "hypotheses against each other, with calibrated false-alarm rates",
-  run: async ({ session, output }) => {
-    const result = await runWeigh(session, output);
-    return { ...result, lines: weighLines(result.document) };
-  },
-});
+/**
+ * `millrace weigh`: hypotheses against each other.
+ *
+ * @param finish Takes the exit status.
+ * @returns The command.
+ */
+export const weighCommand = (finish: (status: number) => void) =>
+  commandWith("weigh", "hypotheses against each other, with calibrated false-alarm rates")
+    .argument("<target>", "target file")
+    .option("--part <i/n>", "make one share of n of the trials, together with other processes")
+    .option("--gather", "make the outputs from what the shares have done")
+    .action(async (file, options) => {
+      finish(
+        await runCommand(options, async (context) => {
+          const opened = await openTarget(file, { call: options, context });
+          return runInParts("weigh", opened, {
+            call: options,
+            run: () => recorded("weigh", opened, () => runWeigh(opened.session, opened.output)),
+            lines: weighLines,
+          });
+        }),
+      );
+    });
 
 /**
  * The verdicts as text: a table sorted by support, then one sentence.

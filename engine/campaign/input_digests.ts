@@ -68,7 +68,7 @@ const WORDS: Readonly<Record<string, readonly string[]>> = {
 };
 
 function patterns(target: Target): [key: string, pattern: string][] {
-  const { exposures, lines, map } = target.settings;
+  const { exposures, lines, map, model } = target.settings;
   const named: [key: string, pattern: string][] = [];
   const add = (key: string, value: string | readonly string[] | undefined) => {
     const word = key.slice(key.lastIndexOf(".") + 1);
@@ -84,7 +84,16 @@ function patterns(target: Target): [key: string, pattern: string][] {
     add(`exposures[${i}].wavelength_zero_kms`, group.wavelength_zero_kms);
     add(`exposures[${i}].photometry`, group.photometry);
   }
-  for (const [i, line] of lines.entries()) add(`lines[${i}].template`, line.template);
+  // In a target file the template of a model's donor is the name of its spectrum.
+  const templateOf = (of: typeof model) => {
+    const template: unknown = of?.donor?.template;
+    return typeof template === "string" ? template : undefined;
+  };
+  for (const [i, line] of lines.entries()) {
+    add(`lines[${i}].template`, line.template);
+    add(`lines[${i}].model.donor.template`, templateOf(line.model));
+  }
+  add("model.donor.template", templateOf(model));
   add("map.prior_image", map.prior_image);
   return named;
 }

@@ -61,3 +61,4 @@ export type {
   SamplePlateSettings,
 } from "./schema/manifest_schema.ts";
 export * from "./redo_run.ts";
+export * from "./batch/share_step.ts";

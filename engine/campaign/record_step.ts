@@ -51,7 +51,7 @@ async function writtenFiles(folder: string, paths: readonly string[]): Promise<W
  * Runs a step of one command and records it in the folder's `provenance.json`: what it was made
  * from, when, and the digest of every file.
  *
- * @typeParam T The step's document.
+ * @typeParam T What the step gives: files and warnings, and what else it likes.
  * @param target The target.
  * @param work The step.
  * @param work.command The command.
@@ -64,11 +64,11 @@ async function writtenFiles(folder: string, paths: readonly string[]): Promise<W
  * @returns What the step gives, `provenance.json` among its files.
  * @throws {WorkError} When another run is at work in the folder.
  */
-export function recordStep<T>(
+export function recordStep<T extends Pick<StepResult<unknown>, "files" | "warnings">>(
   target: Target,
-  work: { command: string; run: () => Promise<StepResult<T>> },
+  work: { command: string; run: () => Promise<T> },
   options: { output: StepOutput; force?: boolean; now?: Clock; signal?: AbortSignal },
-): Promise<StepResult<T>> {
+): Promise<T> {
   const { output: { folder }, force, now, signal } = options;
   return holdFolder(folder, async () => {
     const inputs = await inputDigests(target, { signal });

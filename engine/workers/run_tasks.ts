@@ -2,6 +2,7 @@ import { InputError } from "../errors.ts";
 import { runOnPool } from "./pool.ts";
 import type { Progress } from "./progress.ts";
 import { loadTaskModule } from "./task_module.ts";
+import { currentTaskStore } from "./task_store.ts";
 
 /**
  * Options of {@linkcode runTasks}.
@@ -106,12 +107,39 @@ export async function runTasks<Task, Result, Shared = undefined>(
     });
   }
   const total = tasks.length;
+  signal?.throwIfAborted();
+  if (total === 0) return [];
+  const store = currentTaskStore();
+  if (store === undefined) return runHere(tasks, options);
+  const results = await store.results<Result>({
+    module: module.href,
+    shared: options.shared,
+    tasks,
+    what,
+    async run(indices, onIndex) {
+      await runHere(indices.map((index) => tasks[index]!), {
+        ...options,
+        progress: undefined,
+        onResult: (at: number, result: Result) => onIndex(indices[at]!, result),
+      });
+    },
+    progress: (done) => progress?.(done, total, what),
+    signal,
+  });
+  results.forEach((result, index) => onResult?.(index, result));
+  return results;
+}
+
+async function runHere<Task, Result, Shared>(
+  tasks: readonly Task[],
+  options: RunTasksOptions<Shared, Result>,
+): Promise<Result[]> {
+  const { module, workers = 1, progress, onResult, what = "tasks", signal } = options;
+  const total = tasks.length;
   const onDone = (done: number, index: number, result: Result) => {
     onResult?.(index, result);
     progress?.(done, total, what);
   };
-  signal?.throwIfAborted();
-  if (total === 0) return [];
   if (workers > 1 && total > 1 && !insideWorker()) {
     const { shared } = options;
     return runOnPool<Result>(tasks, { module: module.href, workers, shared, onDone, signal });

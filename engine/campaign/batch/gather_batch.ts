@@ -6,6 +6,7 @@ import type { Clock } from "../record_step.ts";
 import { VERSION } from "../version.ts";
 import type { BatchJob } from "./batch_jobs.ts";
 import { type GatheredRun, gatherJob } from "./gather_job.ts";
+import { clearParts } from "./hold_part.ts";
 import { indexPage } from "./index_page.ts";
 import type { Manifest } from "./manifest.ts";
 import { samplePlates } from "./sample_plates.ts";
@@ -147,6 +148,7 @@ export async function gatherBatch(
       ended: now?.() ?? null,
     });
     await write("batch.json", jsonText(document));
+    await clearParts(folder);
     return { document, files };
   }, { owner });
 }

@@ -1,4 +1,5 @@
 import { join } from "@std/path";
+import { WorkError } from "../../errors.ts";
 import { makeFolder, withLock } from "../../files/mod.ts";
 import type { Part } from "./share_jobs.ts";
 
@@ -32,4 +33,16 @@ export async function holdPart<T>(
     }
     return await action();
   }, { owner });
+}
+
+/** Removes the locks of parts that were killed; those that are held stay. */
+export async function clearParts(folder: string): Promise<void> {
+  for await (const { name } of Deno.readDir(folder)) {
+    if (!LOCKS.test(name)) continue;
+    try {
+      await withLock(join(folder, name), () => {});
+    } catch (error) {
+      if (!(error instanceof WorkError)) throw error;
+    }
+  }
 }

@@ -1,11 +1,9 @@
-import { deserialize, serialize } from "node:v8";
 import { join } from "@std/path";
 import { makeFolder, sha256, writeFileAtomically } from "../../files/mod.ts";
+import { packValue, unpackValue } from "./packed_value.ts";
 
 /** Folder, within an output folder, of what is kept from one step to the next. */
 export const KEPT_FOLDER = ".millrace-kept";
-
-const DIGEST_LENGTH = 64;
 
 /** Keeps what is costly to make and is needed by several steps. */
 export interface ResultKeeper {
@@ -28,10 +26,12 @@ export function keepResults(folder: string, key: string): ResultKeeper {
   return {
     async keep<T>(name: string, make: () => Promise<T>): Promise<T> {
       const path = join(kept, `${sha256(name).slice(0, 16)}.bin`);
-      const found = await load(path, `${key} ${name}`);
-      if (found !== undefined) return found.value as T;
+      const own = `${key} ${name}`;
+      const found = await load(path, own);
+      if (found !== null) return found.value as T;
       const value = await make();
-      if (isPlain(value)) await store(kept, { path, key: `${key} ${name}`, value });
+      const bytes = packValue(own, value);
+      if (bytes !== null) await store(kept, path, bytes);
       return value;
     },
     async clear() {
@@ -44,41 +44,19 @@ export function keepResults(folder: string, key: string): ResultKeeper {
   };
 }
 
-async function load(path: string, key: string): Promise<{ value: unknown } | undefined> {
+async function load(path: string, key: string): Promise<{ readonly value: unknown } | null> {
   try {
-    const bytes = await Deno.readFile(path);
-    const payload = bytes.subarray(DIGEST_LENGTH);
-    const digest = new TextDecoder().decode(bytes.subarray(0, DIGEST_LENGTH));
-    return digest === digestOf(key, payload) ? { value: deserialize(payload) } : undefined;
+    return unpackValue(key, await Deno.readFile(path));
   } catch {
-    return undefined;
+    return null;
   }
 }
 
-async function store(
-  folder: string,
-  { path, key, value }: { path: string; key: string; value: unknown },
-): Promise<void> {
-  const payload = new Uint8Array(serialize(value));
-  const bytes = new Uint8Array(DIGEST_LENGTH + payload.length);
-  bytes.set(new TextEncoder().encode(digestOf(key, payload)));
-  bytes.set(payload, DIGEST_LENGTH);
+async function store(folder: string, path: string, bytes: Uint8Array): Promise<void> {
   try {
     await makeFolder(folder);
     await writeFileAtomically(path, bytes, { overwrite: true });
   } catch {
     // Without space for it, it is made again when it is needed.
   }
-}
-
-function digestOf(key: string, payload: Uint8Array): string {
-  return sha256(`${key} ${sha256(payload)}`);
-}
-
-/** Whether a value comes back from the disc as it went: no functions, no classes of ours. */
-function isPlain(value: unknown): boolean {
-  if (value === null || typeof value !== "object") return typeof value !== "function";
-  if (ArrayBuffer.isView(value)) return true;
-  if (Array.isArray(value)) return value.every(isPlain);
-  return Object.getPrototypeOf(value) === Object.prototype && Object.values(value).every(isPlain);
 }
