@@ -65,8 +65,8 @@ const WRONG: readonly (readonly [name: string, text: string, message: string])[]
   ],
   [
     "two zeros of phase",
-    GOOD.replace("zero_bjd_tdb", "zero_hjd_utc = 1.0\nzero_bjd_tdb"),
-    "Cannot read target file as zero_hjd_utc must not stand beside zero_bjd_tdb: give the zero of phase once: current value is 1 (star.toml:6:1, key orbit.zero_hjd_utc)",
+    GOOD.replace("zero_bjd_tdb", "zero_hjd_utc = 2460311.5\nzero_bjd_tdb"),
+    "Cannot read target file as zero_hjd_utc must not stand beside zero_bjd_tdb: give the zero of phase once: current value is 2460311.5 (star.toml:6:1, key orbit.zero_hjd_utc)",
   ],
   [
     "an empty list of files",

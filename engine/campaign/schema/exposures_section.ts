@@ -33,6 +33,32 @@ export interface ExposuresSettings {
   readonly keys: Readonly<Record<string, string>>;
 }
 
+/** What a header key or a column may hold, as the spectra room looks them up. */
+const ROLES = [
+  "mid",
+  "start",
+  "end",
+  "exposure_s",
+  "ra",
+  "dec",
+  "latitude",
+  "longitude",
+  "longitude_west",
+  "height",
+  "resolution",
+  "wavelength",
+  "flux",
+  "error",
+  "inverse_variance",
+  "mask",
+  "file",
+  "aperture",
+] as const;
+
+const roles = z.strictObject(
+  Object.fromEntries(ROLES.map((role) => [role, text.optional()])),
+);
+
 /** Schema of ExposuresSettings. */
 export const exposuresSection: z.ZodType<ExposuresSettings> = z.strictObject({
   files: z.array(text).min(1),
@@ -48,7 +74,7 @@ export const exposuresSection: z.ZodType<ExposuresSettings> = z.strictObject({
   resolving_power: positive.optional(),
   wavelength_zero_kms: text.default("none"),
   photometry: text.default("none"),
-  keys: z.record(z.string(), text).default({}),
+  keys: roles.prefault({}) as unknown as z.ZodType<Record<string, string>>,
 }).superRefine((group, context) => {
   const given = (["resolution_angstrom", "resolution_kms", "resolving_power"] as const)
     .filter((key) => group[key] !== undefined);
