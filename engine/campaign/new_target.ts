@@ -1,14 +1,14 @@
 import { basename, join, relative } from "@std/path";
 import { InputError, type Warning } from "../errors.ts";
-import { expandGlob, writeFileAtomically } from "../files/mod.ts";
-import { lineNamed, vacuumToAir } from "../sky/mod.ts";
-import { type ExposuresRead, readExposures } from "../spectra/mod.ts";
+import { expandGlob, readBytes, writeFileAtomically } from "../files/mod.ts";
+import { lineNamed } from "../sky/mod.ts";
+import { type ExposuresRead, readExposures, recordedIn } from "../spectra/mod.ts";
 
 const SPECTRA = "*.{fits,fit,fts,fits.gz,fit.gz,txt,dat,ascii,asc}";
 
 /** Lines that show gas in accreting binaries, the first covered ones of which a new file names. */
 const USUAL = [
-  { name: "H alpha", continuum: [[-6000, -3500], [3500, 6000]] },
+  { name: "H alpha", continuum: [[-6000, -3500], [2700, 4200]] },
   { name: "H beta", continuum: [[-6000, -3000], [5800, 7800]] },
   { name: "He II 4686", continuum: [[-9000, -6000], [3000, 6000]] },
   { name: "H gamma", continuum: [[-6000, -3000], [3000, 6000]] },
@@ -67,21 +67,30 @@ export async function newTarget(
       value: folder,
     });
   }
+  const ranges: (WavelengthRange | null)[] = [];
   const read: (ExposuresRead | null)[] = [];
   const warnings: Warning[] = [];
   for (const { pattern, paths } of groups) {
+    ranges.push(await rangeOf(paths[0]!));
     try {
-      read.push(await readExposures(paths.slice(0, 1), {}));
+      const log = await logOf(folder, pattern);
+      read.push(await readExposures(paths.slice(0, 1), log === null ? {} : { log }));
     } catch (error) {
       if (!(error instanceof InputError)) throw error;
       read.push(null);
       warnings.push({ code: "not-read-yet", text: `${pattern}: ${error.message}` });
     }
   }
-  const covered = USUAL.filter(({ name }) => read.some((one) => covers(one, name)));
+  const covered = USUAL.filter(({ name }) => ranges.some((range) => covers(range, name)));
   const text = targetText({
     title: basename(folder),
-    groups: groups.map(({ pattern, paths }, i) => ({ pattern, paths, read: read[i]! })),
+    groups: await Promise.all(groups.map(async ({ pattern, paths }, i) => ({
+      pattern,
+      paths,
+      read: read[i]!,
+      range: ranges[i]!,
+      log: await logOf(folder, pattern) !== null,
+    }))),
     covered,
   });
   await writeFileAtomically(file, text, { overwrite });
@@ -103,6 +112,16 @@ async function exists(path: string): Promise<boolean> {
   }
 }
 
+/** Name of the log that belongs to a group of text spectra: in their own folder. */
+function logName(pattern: string): string {
+  return pattern.includes("/") ? `${pattern.split("/")[0]}/log.csv` : "log.csv";
+}
+
+async function logOf(folder: string, pattern: string): Promise<string | null> {
+  const log = join(folder, logName(pattern));
+  return /\.(fits|fit|fts)(\.gz)?$/.test(pattern) || !await exists(log) ? null : log;
+}
+
 async function groupsIn(folder: string): Promise<{ pattern: string; paths: string[] }[]> {
   const found: string[] = [];
   for (const pattern of [SPECTRA, `*/${SPECTRA}`]) {
@@ -112,7 +131,10 @@ async function groupsIn(folder: string): Promise<{ pattern: string; paths: strin
       if (!(error instanceof InputError)) throw error;
     }
   }
-  const groups = Map.groupBy(found, (path) => {
+  // Outputs of an earlier run are no spectra.
+  const own = new Set(["map.fits", "trail.fits", "model.fits", "plate.txt"]);
+  const spectra = found.filter((path) => !own.has(basename(path)) && !/-plate\.txt$/.test(path));
+  const groups = Map.groupBy(spectra, (path) => {
     const name = relative(folder, path);
     const extension = /\.(fits|fit|fts|txt|dat|ascii|asc)(\.gz)?$/.exec(name)![0];
     const inner = name.includes("/") ? `${name.split("/")[0]}/` : "";
@@ -122,35 +144,58 @@ async function groupsIn(folder: string): Promise<{ pattern: string; paths: strin
     .sort((a, b) => (a.pattern < b.pattern ? -1 : 1));
 }
 
-function covers(read: ExposuresRead | null, name: string): boolean {
-  const wavelengths = read?.spectra[0]?.wavelength_angstrom;
-  if (wavelengths === undefined) return false;
-  const rest = lineNamed(name).vacuum_angstrom;
-  return wavelengths[0]! < rest * 0.99 && wavelengths[wavelengths.length - 1]! > rest * 1.01;
+/** First and last wavelength of a file as recorded, Å. */
+type WavelengthRange = readonly [number, number];
+
+/** What a file covers can be told even where its times cannot be settled yet. */
+async function rangeOf(file: string): Promise<WavelengthRange | null> {
+  try {
+    const { recorded } = recordedIn(await readBytes(file), { file });
+    const waves = recorded[0]!.axis.wavelength_angstrom;
+    const ends = [waves[0]!, waves[waves.length - 1]!] as const;
+    return [Math.min(...ends), Math.max(...ends)];
+  } catch (error) {
+    if (error instanceof InputError) return null;
+    throw error;
+  }
+}
+
+function covers(range: WavelengthRange | null, name: string): boolean {
+  if (range === null) return false;
+  const rest = lineNamed(name).air_angstrom;
+  return range[0] < rest * 0.99 && range[1] > rest * 1.01;
 }
 
 function targetText(found: {
   title: string;
-  groups: readonly { pattern: string; paths: readonly string[]; read: ExposuresRead | null }[];
+  groups: readonly {
+    pattern: string;
+    paths: readonly string[];
+    read: ExposuresRead | null;
+    range: WavelengthRange | null;
+    log: boolean;
+  }[];
   covered: readonly (typeof USUAL)[number][];
 }): string {
   const { title, groups, covered } = found;
   const lacks = (what: string) =>
     groups.some(({ read }) => read === null) ||
     !groups.every(({ read }) => read!.decisions.some((decision) => decision.what === what));
-  const exposures = groups.map(({ pattern, paths, read }) => {
+  const exposures = groups.map(({ pattern, paths, read, range: covered, log: hasLog }) => {
     const spectrum = read?.spectra[0];
-    const range = spectrum === undefined
+    const range = covered === null
       ? "could not be read yet: see what `check` says"
-      : `${paths.length} file${paths.length === 1 ? "" : "s"}, ${
-        vacuumToAir(spectrum.wavelength_angstrom[0]!).toFixed(0)
-      } to ${vacuumToAir(spectrum.wavelength_angstrom.at(-1)!).toFixed(0)} Å`;
+      : `${paths.length} file${paths.length === 1 ? "" : "s"}, ${covered[0].toFixed(0)} to ${
+        covered[1].toFixed(0)
+      } Å`;
     const resolution = spectrum === undefined || spectrum.resolution_angstrom === null
       ? "# resolution_angstrom = 1.0        # full width at half maximum of an arc line: please fill in"
       : "# the headers state the resolution";
-    const log = pattern.includes("fit") || pattern.includes("fts")
+    const text = !/\.(fits|fit|fts)(\.gz)?$/.test(pattern);
+    const name = JSON.stringify(logName(pattern));
+    const log = !text
       ? ""
-      : 'log = "log.csv"                    # columns file, mid, exposure_s\n';
+      : `${hasLog ? "" : "# "}log = ${name}                    # columns file, mid, exposure_s\n`;
     return `[[exposures]]                       # ${range}\nfiles = [${
       JSON.stringify(pattern)
     }]\n${log}${resolution}\n`;
