@@ -21,6 +21,8 @@ export interface SmallCampaign {
   readonly manifest: string;
   /** Names of the targets. */
   readonly names: readonly string[];
+  /** The manifest's overrides, for single commands. */
+  readonly set: readonly string[];
 }
 
 /** Makes a campaign that a batch goes through in a few seconds. */
@@ -43,7 +45,7 @@ ${SMALL_SETTINGS.map((text) => `  '''${text}''',`).join("\n")}
 ]
 ${more}`,
   );
-  return { manifest, names };
+  return { manifest, names, set: SMALL_SETTINGS };
 }
 
 /** All ordinary files under a folder, by their paths from it; those of our own making begin with a dot. */

@@ -1,6 +1,6 @@
 import { assert, assertEquals } from "@std/assert";
 import { join } from "@std/path";
-import { KEPT_FOLDER, keepResults } from "../../engine/campaign/batch/keep_results.ts";
+import { keepResults, KEPT_FOLDER } from "../../engine/campaign/batch/keep_results.ts";
 import { inFolder, namesIn } from "../files/support.ts";
 
 Deno.test("keepResults() gives back what was kept, bit for bit", () =>

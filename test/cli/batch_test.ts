@@ -40,7 +40,6 @@ Deno.test("millrace batch does parts, and gathers them with what is missing", ()
     const both = await run("--part", "1/2", "--gather");
     assertEquals(both.code, 2);
     assertStringIncludes(both.stderr, "--part and --gather must not stand together");
-    assertEquals((await run("--part", "3/2")).code, 2);
     const part = await run("--part", "1/2", "--json");
     assertEquals(part.code, 0, part.stderr);
     const document = JSON.parse(part.stdout);
@@ -89,15 +88,14 @@ Deno.test("millrace batch leaves no lock and nothing half-written when interrupt
 
 Deno.test("millrace redo makes the same bytes, or names what differs", () =>
   inFolder(async (folder) => {
-    const { manifest } = await smallCampaign(folder, { stars: 1, commands: ["check", "map"] });
+    const { manifest } = await smallCampaign(folder, { stars: 1, commands: ["check", "trail"] });
     const out = join(folder, "out");
     assertEquals((await runMillrace(["batch", manifest, "--out", out])).code, 0);
     const record = join(out, "vx-2401/provenance.json");
     const before = await namesIn(join(out, "vx-2401"));
     const good = await runMillrace(["redo", record]);
     assertEquals(good.code, 0, good.stderr);
-    assertStringIncludes(good.stdout, "check, map, thumbnail: ");
-    assertStringIncludes(good.stdout, "files with the same bytes");
+    assertStringIncludes(good.stdout, "check, trail: 3 files with the same bytes");
     assertEquals(await namesIn(join(out, "vx-2401")), before);
 
     // The target file edited: the recorded text is used, and that is said.
@@ -107,11 +105,11 @@ Deno.test("millrace redo makes the same bytes, or names what differs", () =>
     const edited = await runMillrace(["redo", record, "--out", kept, "--json"]);
     assertEquals(edited.code, 0, edited.stderr);
     const { same, differences } = JSON.parse(edited.stdout);
-    assert(same.includes("map.fits"));
+    assert(same.includes("trail.fits"));
     assertEquals(differences.map(({ kind }: { kind: string }) => kind), ["target-file"]);
     assertEquals(
-      await Deno.readFile(join(kept, "map.fits")),
-      await Deno.readFile(join(out, "vx-2401/map.fits")),
+      await Deno.readFile(join(kept, "trail.fits")),
+      await Deno.readFile(join(out, "vx-2401/trail.fits")),
     );
 
     // An exposure changed: its name, and those of the outputs that differ for it.
@@ -132,4 +130,48 @@ Deno.test("millrace redo makes the same bytes, or names what differs", () =>
     const wrong = await runMillrace(["redo", join(out, "batch.json")]);
     assertEquals(wrong.code, 2);
     assertStringIncludes(wrong.stderr, 'its schema must be "provenance/1"');
+  }));
+
+Deno.test("single commands record themselves, other settings apart, and redo takes them all", () =>
+  inFolder(async (folder) => {
+    const { set } = await smallCampaign(folder, { stars: 1 });
+    const settings = set.flatMap((text) => ["--set", text]);
+    const star = join(folder, "stars/vx-2401.toml");
+    const run = (...args: string[]) => runMillrace([...args, "--quiet"]);
+    assertEquals((await run("check", star, ...settings)).code, 0);
+    assertEquals((await run("trail", star, ...settings)).code, 0);
+    const other = await run("check", star, ...settings, "--seed", "9");
+    assertEquals(other.code, 0, other.stderr);
+    assertStringIncludes(other.stdout, "stars/vx-2401/provenance.json");
+    const record = join(folder, "stars/vx-2401/provenance.json");
+    const { runs } = JSON.parse(await Deno.readTextFile(record));
+    assertEquals(
+      runs.map((one: { seed: number; steps: { command: string }[] }) => [
+        one.seed,
+        ...one.steps.map(({ command }) => command),
+      ]),
+      [[1, "trail"], [9, "check"]],
+    );
+    assertMatch(runs[0].steps[0].started, /^\d{4}-\d\d-\d\dT[\d:.]+Z$/);
+    const redone = await run("redo", record);
+    assertEquals(redone.code, 0, redone.stderr);
+    assertStringIncludes(redone.stdout, "trail, check: 3 files with the same bytes");
+  }));
+
+Deno.test("millrace map does shares of its resamples, and gathers them", () =>
+  inFolder(async (folder) => {
+    const { set } = await smallCampaign(folder, { stars: 1 });
+    const settings = set.flatMap((text) => ["--set", text]);
+    const star = join(folder, "stars/vx-2401.toml");
+    const run = (...args: string[]) => runMillrace(["map", star, ...settings, "--quiet", ...args]);
+    const early = await run("--gather");
+    assertEquals(early.code, 1);
+    assertStringIncludes(early.stderr, "2 of 2 pieces of the replicas are missing: 0 to 1");
+    const part = await run("--part", "2/2", "--json");
+    assertEquals(part.code, 0, part.stderr);
+    assertEquals(JSON.parse(part.stdout).part, { index: 2, count: 2 });
+    assertEquals((await run("--gather")).code, 0);
+    const shared = await Deno.readFile(join(folder, "stars/vx-2401/map.fits"));
+    assertEquals((await run("--out", join(folder, "alone"))).code, 0);
+    assertEquals(await Deno.readFile(join(folder, "alone/map.fits")), shared);
   }));
