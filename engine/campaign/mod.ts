@@ -15,7 +15,11 @@ export type { BlendSettings, LineSettings } from "./schema/lines_section.ts";
 export type { MapSettings } from "./schema/map_section.ts";
 export type { ArmSettings, ObservationSettings } from "./schema/observation_section.ts";
 export type { OrbitSettings } from "./schema/orbit_section.ts";
-export type { PlateRowSettings, PlateSettings } from "./schema/plate_section.ts";
+export type {
+  PlatePanelSettings,
+  PlateRowSettings,
+  PlateSettings,
+} from "./schema/plate_section.ts";
 export type { SkySettings } from "./schema/sky_section.ts";
 export type { TargetSettings } from "./schema/target_schema.ts";
 export type { TrailSettings } from "./schema/trail_section.ts";
@@ -39,6 +43,7 @@ export * from "./steps/run_synth.ts";
 export * from "./steps/run_trail.ts";
 export * from "./steps/run_weigh.ts";
 export * from "./steps/step.ts";
+export * from "./systemic_of.ts";
 export * from "./batch/batch_jobs.ts";
 export * from "./batch/gather_batch.ts";
 export * from "./batch/gather_job.ts";

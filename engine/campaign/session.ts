@@ -87,7 +87,7 @@ export function openSession(
     return trailOf(spectra, { target, line, ephemeris: folded, photometry });
   });
   const systemic = once(() =>
-    systemicOf(target, async () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))
+    systemicOf(target, () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))
   );
   const map = perLine((line) => keep(`map of ${line.name}`, () => makeMap(line)));
   const makeMap = async (line: LineSettings) => {

@@ -33,11 +33,23 @@ function mapCost({ map }: TargetSettings): number {
 /** A trial of two hypotheses, in units of reading the exposures. */
 const TRIAL = 4;
 
+/** Name of a step. */
+export type StepName =
+  | "check"
+  | "profile"
+  | "trail"
+  | "orbit"
+  | "map"
+  | "synth"
+  | "weigh"
+  | "plate"
+  | "thumbnail";
+
 /**
  * The steps by command, in the order in which one target's are run. A new command joins `batch`,
  * `redo` and the manifest by its entry here.
  */
-export const stepTable = {
+export const stepTable: Readonly<Record<StepName, StepEntry>> = {
   check: { run: runCheck, cost: () => 1 },
   profile: { run: runProfile, cost: () => 1 },
   trail: { run: runTrail, cost: () => 1 },
@@ -47,10 +59,7 @@ export const stepTable = {
   weigh: { run: runWeigh, cost: ({ weigh }) => 20 + TRIAL * weigh.trials },
   plate: { run: runPlate, cost: () => 3 },
   thumbnail: { run: runThumbnail, cost: () => 0.5 },
-} as const satisfies Record<string, StepEntry>;
-
-/** Name of a step. */
-export type StepName = keyof typeof stepTable;
+};
 
 /** Steps that a manifest may ask for; a thumbnail comes with the map by itself. */
 export const commandNames: readonly StepName[] = (Object.keys(stepTable) as StepName[])
