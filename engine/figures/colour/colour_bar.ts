@@ -49,8 +49,13 @@ export function colourBar(scale: ColourScale, options: ColourBarOptions): Item[]
     ticks: ticks.map((value) => value / divide_by),
     format: writeValue,
   });
-  const written = [...labels.map(({ text }) => text), unit ?? ""].join("  ");
-  const unitFits = unit !== undefined && roughWidth(labelRuns(written), NOTE_PT) < box.width;
+  const fits = (end: string) => {
+    const written = [...labels.map(({ text }) => text), end].join("  ");
+    return roughWidth(labelRuns(written), NOTE_PT) < box.width;
+  };
+  // Where there is no room for the unit, the power of ten must still stand.
+  const power = divide_by === 1 ? "" : `× 10^{${minus(Math.round(Math.log10(divide_by)))}}`;
+  const end = unit !== undefined && fits(unit) ? unit : power;
   labels.forEach(({ text }, i) => {
     const part = stretched(ticks[i]!, scale);
     const x = box.x + part * box.width;
@@ -58,7 +63,7 @@ export function colourBar(scale: ColourScale, options: ColourBarOptions): Item[]
       const d = linePath([[x, box.y], [x, box.y + box.height]]);
       items.push({ kind: "path", d, stroke: QUIET, stroke_pt: HAIRLINE_PT });
     }
-    const last = i === labels.length - 1 && unitFits;
+    const last = i === labels.length - 1 && end !== "";
     items.push({
       kind: "text",
       x,
@@ -66,7 +71,7 @@ export function colourBar(scale: ColourScale, options: ColourBarOptions): Item[]
       size_pt: NOTE_PT,
       fill: INK,
       anchor: part <= 0.01 ? "start" : part >= 0.99 ? "end" : "middle",
-      runs: labelRuns(last ? `${text} ${unit}` : text),
+      runs: labelRuns(last ? `${text} ${end}` : text),
     });
   });
   return items;
@@ -80,8 +85,11 @@ function endTicks(scale: ColourScale): number[] {
 
 /** Up to three significant digits with a true minus sign. */
 function writeValue(value: number): string {
-  const text = String(Number(value.toPrecision(3)));
-  return text.replace("-", "−");
+  return minus(Number(value.toPrecision(3)));
+}
+
+function minus(value: number): string {
+  return String(value).replace("-", "−");
 }
 
 /**

@@ -198,7 +198,7 @@ export function trailPicture(shown: Shown, state: PageState): Picture {
         name: "residual",
       }),
       word(a, "observed"),
-      word(b, "map, projected"),
+      word(b, "from the map"),
       word(c, "residual"),
       ...colourBar(scale, { box: bar(a, b), unit: "*F*/*F*_{c} − 1" }),
       ...colourBar(left, { box: bar(c, c), unit: "*σ*" }),

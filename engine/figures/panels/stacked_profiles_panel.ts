@@ -40,8 +40,11 @@ export function stackedProfilesPanel(grid: DisplayGrid, options: StackedProfiles
   const { columns, first_kms, step_kms } = grid;
   const x = Float64Array.from({ length: columns }, (_, i) => first_kms + i * step_kms);
   const data = binnedRows(grid, { values: grid.flux, bins });
-  const peak = data.flat().reduce((top, v) => Number.isFinite(v) ? Math.max(top, v) : top, 0) || 1;
-  const rise = 2 / bins / peak; // the highest reaches two levels up
+  const peak = data.flat().reduce(
+    (top, v) => Number.isFinite(v) ? Math.max(top, Math.abs(v)) : top,
+    0,
+  ) || 1;
+  const rise = 2 / bins / peak; // the highest reaches two levels up, the deepest two down
   const onLevel = (rows: readonly number[][], bin: number) =>
     rows[bin]!.map((value) => (bin + 0.5) / bins + rise * value);
   const fitted = model ? binnedRows(grid, { values: model, bins }) : null;

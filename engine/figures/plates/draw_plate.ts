@@ -27,6 +27,8 @@ interface Piece {
   readonly scale: PanelScale | undefined;
   readonly letter: string;
   readonly name: string;
+  /** Name that the description gives, as the caption says it. */
+  readonly called: string;
 }
 
 /**
@@ -90,12 +92,13 @@ export function drawPlate(
         scale: scales.of(kind, entry.subject),
         letter: letters ? `(${letterAt(count++)})` : "",
         name: entry.name ?? kind.name(subject),
+        called: entry.name === undefined ? "" : `${entry.name}: `,
       }));
     })
   );
   const items = pieces.flatMap((row) => drawRow(row, description));
-  const caption = pieces.flat().map(({ kind, subject, scale, letter }) =>
-    `${letter === "" ? "" : `${letter} `}${kind.tell(subject, scale).trim()}`
+  const caption = pieces.flat().map(({ kind, subject, scale, letter, called }) =>
+    `${letter === "" ? "" : `${letter} `}${called}${kind.tell(subject, scale).trim()}`
   ).join(" ");
   const { title, line } = subjects[0]!;
   const picture = {

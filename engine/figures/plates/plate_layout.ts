@@ -93,7 +93,8 @@ function layRow(row: LaidRow, options: { top: number; width: number }) {
   const aspects = shaped.reduce((sum, { kind }) => sum + kind.aspect!, 0);
   let height = row.height_mm === undefined ? undefined : row.height_mm * POINTS_PER_MM;
   if (shaped.length > 0) {
-    const share = free * 3 / weights;
+    const own = shaped.reduce((sum, { kind }) => sum + kind.weight, 0);
+    const share = free * own / weights / aspects;
     const side = shaped.length === panels.length
       ? Math.min(free / aspects, tallest(panels))
       : Math.min(share, 200);

@@ -74,7 +74,7 @@ export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
   },
   model: {
     ...shape,
-    name: () => "map, projected",
+    name: () => "from the map",
     scale_family: "trail",
     scale: fluxScale,
     draw: (subject, drawing) =>

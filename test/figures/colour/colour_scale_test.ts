@@ -81,3 +81,15 @@ Deno.test("colourBar() divides its values by the power that its unit states", ()
   const texts = items.flatMap((item) => item.kind === "text" ? [runsText(item.runs)] : []);
   assertEquals(texts, ["0", "3.2 u"]);
 });
+
+Deno.test("colourBar() keeps the power of ten when there is no room for the unit", () => {
+  const options = { unit: "× 10^{−3} (km s^{−1})^{−1}", divide_by: 1e-3 };
+  const end = (width: number) => {
+    const box = { x: 0, y: 20, width, height: 4 };
+    const items = colourBar({ limits: [0, 0.0062] }, { ...options, box });
+    const texts = items.flatMap((item) => item.kind === "text" ? [runsText(item.runs)] : []);
+    return texts.at(-1);
+  };
+  assertEquals(end(200), "6.2 × 10−3 (km s−1)−1");
+  assertEquals(end(50), "6.2 × 10−3");
+});

@@ -209,3 +209,12 @@ Deno.test("drawPlate() keeps its width and shape of page when it is enlarged for
 Deno.test("drawPlate() asks for a line when there is none", () => {
   assertThrows(() => drawPlate({}, []), InputError, "there must be at least one line to show");
 });
+
+Deno.test("drawPlate() tells in the caption the name that a panel is given", () => {
+  const rows = [{ panels: [{ panel: "spectrum", name: "group 2" }] }] as const;
+  assertEquals(drawPlate({ rows }, [subject]).caption, "group 2: Mean spectrum.");
+  assertEquals(
+    drawPlate({ rows: [{ panels: ["spectrum"] }] }, [subject]).caption,
+    "Mean spectrum.",
+  );
+});
