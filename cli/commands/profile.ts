@@ -14,22 +14,37 @@ export const profileCommand = targetCommand("profile", {
 function profileLines(document: ProfileDocument): string[] {
   const measured = (pair: { readonly value: number; readonly error: number }) =>
     Number.isFinite(pair.value) ? withError(pair.value, pair.error) : "–";
+  const several = document.groups.length > 1;
   return [
-    ...document.groups.flatMap(({ group, exposures, identified }) => [
-      `  group ${group + 1}: mean of ${exposures} exposures`,
-      ...tableLines([
-        ["line", "air / Å", "equivalent width / Å", "shares its window with"],
-        ...identified.filter(({ seen }) => seen).map((found) => [
-          found.line.name,
-          plainNumber(found.line.air_angstrom, 2),
-          withError(found.equivalent_width_angstrom, found.error_angstrom),
-          found.blended_with.slice(0, 4).join(", "),
-        ]),
-      ], { heading: true, indent: 4, align: ["left", "right", "right", "left"] }),
-      "",
-    ]),
+    ...document.groups.flatMap(({ group, exposures, identified }) => {
+      const seen = identified.filter((found) => found.seen);
+      return [
+        `  ${
+          several ? `group ${group + 1}: ` : ""
+        }lines seen in the mean of ${exposures} exposures${seen.length === 0 ? ": none" : ""}`,
+        ...(seen.length === 0 ? [] : tableLines([
+          ["line", "air / Å", "equivalent width / Å", "", "known lines in the same place"],
+          ...seen.map((found) => [
+            found.line.name,
+            plainNumber(found.line.air_angstrom, 2),
+            withError(found.equivalent_width_angstrom, found.error_angstrom),
+            found.equivalent_width_angstrom > 0 ? "emission" : "absorption",
+            found.blended_with.slice(0, 4).join(", "),
+          ]),
+        ], { heading: true, indent: 4, align: ["left", "right", "right", "left", "left"] })),
+        "",
+      ];
+    }),
+    "  lines of the target file, mean of all exposures (equivalent width positive in emission)",
     ...tableLines([
-      ["line", "EW / Å", "FWHM / km/s", "peaks / km/s", "V/R", "centroid / km/s"],
+      [
+        "line",
+        "equivalent width / Å",
+        "FWHM / km/s",
+        "peaks apart / km/s",
+        "V/R",
+        "centroid / km/s",
+      ],
       ...document.lines.map(({ line, mean }) => [
         line,
         measured(mean.equivalent_width_angstrom),
@@ -38,6 +53,6 @@ function profileLines(document: ProfileDocument): string[] {
         measured(mean.profile.blue_over_red),
         measured(mean.profile.centroid_kms),
       ]),
-    ], { heading: true, align: ["left", "right", "right", "right", "right", "right"] }),
+    ], { heading: true, indent: 4, align: ["left", "right", "right", "right", "right", "right"] }),
   ];
 }

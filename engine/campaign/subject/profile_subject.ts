@@ -1,6 +1,5 @@
 import type { PhaseCurve, PlateSubject } from "../../figures/mod.ts";
 import { randomStream } from "../../numerics/mod.ts";
-import { spectralLines } from "../../sky/mod.ts";
 import type { Spectrum } from "../../spectra/mod.ts";
 import {
   identifyLines,
@@ -9,17 +8,28 @@ import {
   type MeasuredRow,
   measureTrail,
   type Trail,
+  type TrailMeasurements,
 } from "../../trail/mod.ts";
+import type { IdentifiedGroup } from "../identified_groups.ts";
+
+/** Half width within which lines are sought, km/s. */
+const HALF_WIDTH_KMS = 1200;
 
 /** Stream of chance of the errors on plates. */
 const STREAM = 700_000;
 
+/** What plates show against phase. */
+export type PhaseCurves = Required<
+  Pick<PlateSubject, "equivalent_width" | "violet_red" | "continuum">
+>;
+
 /** Equivalent width, V/R and continuum against phase, each exposure on its own. */
-export function phaseCurves(
-  trail: Trail,
-  options: { seed: number },
-): Required<Pick<PlateSubject, "equivalent_width" | "violet_red" | "continuum">> {
-  const { exposures } = measureTrail(trail, { random: randomStream(options.seed, STREAM) });
+export function phaseCurves(trail: Trail, options: { seed: number }): PhaseCurves {
+  return curvesOf(measureTrail(trail, { random: randomStream(options.seed, STREAM) }));
+}
+
+/** The same of a trail that has been measured. */
+export function curvesOf({ exposures }: TrailMeasurements): PhaseCurves {
   const curve = (pick: (row: MeasuredRow) => Measured): PhaseCurve[] => [{
     phase: exposures.map((row) => row.phase),
     value: exposures.map((row) => pick(row).value),
@@ -40,14 +50,19 @@ export function spectrumSubject(
   const groups = new Set(options.trail.group);
   const mean = meanSpectrum(spectra.filter(({ group }) => groups.has(group)));
   if (mean === null) return undefined;
-  const seen = identifyLines(mean, { half_width_kms: 1200 }).filter((found) => found.seen)
-    .filter((found) => found.equivalent_width_angstrom > 0)
-    .map(({ line }) => line.name);
+  return spectrumOf({ mean, identified: identifyLines(mean, { half_width_kms: HALF_WIDTH_KMS }) });
+}
+
+/** A mean spectrum with the lines that are seen in it. */
+export function spectrumOf(
+  group: Pick<IdentifiedGroup, "mean" | "identified">,
+): NonNullable<PlateSubject["spectrum"]> {
+  const { mean, identified } = group;
   return {
     wavelength_angstrom: mean.wavelength_angstrom,
     flux: mean.flux,
     error: mean.error,
     unit: "flux over its median",
-    lines: spectralLines.filter(({ name }) => seen.includes(name)),
+    lines: identified.filter(({ seen }) => seen).map(({ line }) => line),
   };
 }
