@@ -1,8 +1,9 @@
 import { InputError } from "../errors.ts";
-import { gatherLines } from "./gather_lines.ts";
+import { gatherLines, type PhasedRows } from "./gather_lines.ts";
 import { halfOrbitIntervals } from "./half_orbit.ts";
 import { checkMapShape, mapStep } from "./map_shape.ts";
-import { filterProfiles, type ProfileRows } from "./profile_filter.ts";
+import { filterSpectra, type ProfileRows, profileSpectra } from "./profile_filter.ts";
+import type { ProjectorMethod, ProjectorPrecision } from "./projector.ts";
 import { systemFrame } from "./system_frame.ts";
 import { type ProfileGrid, uniformProfiles } from "./uniform_profiles.ts";
 import type { VelocityMap } from "./velocity_map.ts";
@@ -48,12 +49,18 @@ export interface BackProjectionOptions {
    */
   readonly circle?: boolean;
   /**
-   * `reference` interpolates each filtered profile linearly at every pixel, by definition; `fast`
-   * interpolates by cubics on a grid finer than the map's pixels, along slanted lines.
+   * `reference` interpolates each filtered profile linearly at every pixel, by definition; `fast` and
+   * `plain` interpolate by cubics on a grid finer than the map's pixels, along slanted lines.
    *
    * @default {"fast"}
    */
-  readonly method?: "fast" | "reference";
+  readonly method?: ProjectorMethod;
+  /**
+   * Number format of the map where WebAssembly does the work.
+   *
+   * @default {"double"}
+   */
+  readonly precision?: ProjectorPrecision;
 }
 
 /**
@@ -117,31 +124,29 @@ export function backProject(
   for (let i = 0; i < weight.length; i++) weight[i] = weight[i]! / total;
 
   const profiles: ProfileRows = { rows: grid.rows, columns: grid.columns, step_kms, flux };
-  const noise = variance.map((v) => v * grid.columns);
-  const judged = options.filter_of === undefined
-    ? profiles
-    : { ...profiles, flux: uniformProfiles(options.filter_of.grid).flux };
+  const spectra = profileSpectra(profiles);
   const hold = wiener
-    ? wienerGain(judged, { weight, noise, diameter_kms: 2 * half_width_kms })
+    ? wienerGain(spectra, {
+      weight,
+      noise: variance.map((v) => v * grid.columns),
+      diameter_kms: 2 * half_width_kms,
+    })
     : () => 1;
   const roll = Math.PI * roll_off_fwhm_kms / Math.sqrt(8 * Math.LN2);
-  const filtered = filterProfiles(profiles, {
+  const filtered = filterSpectra(spectra, {
     gain: (f) => hold(f) * Math.exp(-2 * (roll * f) ** 2),
+    scale: weight.map((w) => Math.PI * w / step_kms),
   });
-  for (let row = 0; row < grid.rows; row++) {
-    const scale = Math.PI * weight[row]! / step_kms;
-    for (let k = row * grid.columns; k < (row + 1) * grid.columns; k++) {
-      filtered[k] = filtered[k]! * scale;
-    }
-  }
   const rows = { ...profiles, flux: filtered, first_kms, phase: grid.phase };
-  const intensity = method === "fast" ? gatherLines(rows, options) : gatherPixels(rows, options);
+  const intensity = method === "reference"
+    ? gatherPixels(rows, options)
+    : gatherLines(rows, { ...options, plain: method === "plain" });
   if (circle) clearCorners(intensity, pixels);
   return { pixels, half_width_kms, intensity };
 }
 
 function gatherPixels(
-  rows: ProfileRows & { readonly first_kms: number; readonly phase: Float64Array },
+  rows: PhasedRows,
   options: BackProjectionOptions,
 ): Float64Array {
   const { pixels, half_width_kms } = options;

@@ -45,6 +45,7 @@ export * from "./ring_profile.ts";
 export * from "./search_subspace.ts";
 export * from "./slant_geometry.ts";
 export * from "./slant_kernel.ts";
+export * from "./slant_memory.ts";
 export * from "./slant_plan.ts";
 export * from "./slant_projector.ts";
 export * from "./smearing.ts";

@@ -248,6 +248,12 @@ function spread<T>(plan: Plan, t: i32, slot: i32): void {
       p = f64x2.mul(p, rr);
     }
   }
+  toStrands<T>(plan, slot);
+}
+
+/** Deals the whole grid out to the strands of the given slot: values, and steps to the next point. */
+function toStrands<T>(plan: Plan, slot: i32): void {
+  const over = plan.over, length = plan.strand_length;
   const block = slot * over * length;
   for (let strand = 0; strand < over; strand++) {
     let s = address<T>(plan.sum, block + strand * length);
@@ -306,6 +312,64 @@ function gatherFour<T>(plan: Plan, lines: usize): void {
   }
 }
 
+/**
+ * Fills the whole grid of instant t from its profile, by cubic Lagrange interpolation on the four bins
+ * around; bins beyond the ends count as zero. Grid point n lies at bin `position + n × rise`.
+ */
+function interpolate(plan: Plan, t: i32, columns: i32, position: f64, rise: f64): void {
+  const count = plan.over * plan.strand_length;
+  const row = address<f64>(plan.data, t * columns);
+  for (let n = 0; n < count; n++) {
+    const at = position + <f64> n * rise;
+    const below = Math.floor(at);
+    const k = <i32> below;
+    let value: f64 = 0;
+    if (k >= 1 && k < columns - 2) {
+      const q = address<f64>(row, k - 1);
+      value = cubic(load<f64>(q), load<f64>(q + 8), load<f64>(q + 16), load<f64>(q + 24), at - below);
+    } else if (k >= -1 && k < columns) {
+      value = cubic(
+        bin(row, k - 1, columns),
+        bin(row, k, columns),
+        bin(row, k + 1, columns),
+        bin(row, k + 2, columns),
+        at - below,
+      );
+    }
+    store<f64>(address<f64>(plan.whole, n), value);
+  }
+}
+
+@inline
+function bin(row: usize, k: i32, columns: i32): f64 {
+  return k >= 0 && k < columns ? f64At(row, k) : 0;
+}
+
+@inline
+function cubic(a: f64, b: f64, c: f64, d: f64, p: f64): f64 {
+  const third = 1.5 * (b - c) + 0.5 * (d - a);
+  return b + p * (0.5 * (c - a) + p * (a - 2.5 * b + 2 * c - 0.5 * d + p * third));
+}
+
+function gatherProfiles<T>(plan: Plan, columns: i32, positions: usize, rises: usize): void {
+  for (let axis = 0; axis < 2; axis++) {
+    const lines = axis == 1 ? plan.columns : plan.rows;
+    let filled = 0;
+    for (let t = 0; t < plan.instants; t++) {
+      if (i32At(plan.axis, t) != axis) continue;
+      placeLines(plan, t, filled);
+      interpolate(plan, t, columns, f64At(positions, t), f64At(rises, t));
+      toStrands<T>(plan, filled);
+      filled++;
+      if (filled == GROUP) {
+        gatherFour<T>(plan, lines);
+        filled = 0;
+      }
+    }
+    for (let slot = 0; slot < filled; slot++) gatherOne<T>(plan, lines, slot);
+  }
+}
+
 function forward<T>(plan: Plan): void {
   for (let t = 0; t < plan.instants; t++) {
     if (i32At(plan.wanted, t) == 0) continue;
@@ -347,4 +411,12 @@ export function forward32(plan: Plan): void {
 
 export function adjoint32(plan: Plan): void {
   adjoint<f32>(plan);
+}
+
+export function gatherProfiles64(plan: Plan, columns: i32, positions: usize, rises: usize): void {
+  gatherProfiles<f64>(plan, columns, positions, rises);
+}
+
+export function gatherProfiles32(plan: Plan, columns: i32, positions: usize, rises: usize): void {
+  gatherProfiles<f32>(plan, columns, positions, rises);
 }

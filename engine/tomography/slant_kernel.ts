@@ -1,18 +1,32 @@
 import type { Sampling } from "../trail/mod.ts";
 import type { LinearOperator } from "./linear_operator.ts";
-import type { Projector, ProjectorOptions, ProjectorPrecision } from "./projector.ts";
+import type { Projector, ProjectorOptions } from "./projector.ts";
 import { SLANT_KERNEL_BYTES } from "./slant_kernel_bytes.ts";
-import { type SlantPlan, slantPlan, wantedInstants } from "./slant_plan.ts";
+import { joinLines, slantMemory, writeLines } from "./slant_memory.ts";
+import { slantPlan, wantedInstants } from "./slant_plan.ts";
 
-/** Zeros on either side of a map line, and lines or instants per pass: as in slant_kernel.as. */
-const PAD = 16, GROUP = 4;
-
-interface KernelExports {
+/** What the kernel offers; `plan` is the address of its Plan. */
+export interface KernelExports {
+  /** Map to samples, double precision. */
   readonly forward64: (plan: number) => void;
+  /** Samples to map, double precision. */
   readonly adjoint64: (plan: number) => void;
+  /** Map to samples, single precision. */
   readonly forward32: (plan: number) => void;
+  /** Samples to map, single precision. */
   readonly adjoint32: (plan: number) => void;
+  /** Interpolated profiles to map, double precision. */
+  readonly gatherProfiles64: GatherProfiles;
+  /** Interpolated profiles to map, single precision. */
+  readonly gatherProfiles32: GatherProfiles;
 }
+
+type GatherProfiles = (
+  plan: number,
+  columns: number,
+  positions: number,
+  rises: number,
+) => void;
 
 let compiled: WebAssembly.Module | null | undefined;
 
@@ -45,6 +59,28 @@ export function kernelAvailable(): boolean {
 }
 
 /**
+ * Starts the kernel on a memory.
+ *
+ * @param memory The memory, from {@linkcode slantMemory}.
+ * @returns The kernel's functions, or null where WebAssembly SIMD is missing.
+ *
+ * @example
+ * ```ts
+ * import { kernelAvailable, startKernel } from "@millrace/millrace/tomography";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const run = startKernel(new WebAssembly.Memory({ initial: 1 }));
+ * assertEquals(run !== null, kernelAvailable());
+ * ```
+ */
+export function startKernel(memory: WebAssembly.Memory): KernelExports | null {
+  const module = kernelModule();
+  if (module === null) return null;
+  return new WebAssembly.Instance(module, { env: { memory } })
+    .exports as unknown as KernelExports;
+}
+
+/**
  * The projector along slanted lines in WebAssembly with SIMD. In double precision its results are
  * those of {@linkcode slantProjector} to the bit: same arithmetic in the same order.
  *
@@ -73,17 +109,13 @@ export function kernelAvailable(): boolean {
  * ```
  */
 export function kernelProjector(sampling: Sampling, options: ProjectorOptions): Projector | null {
-  const module = kernelModule();
-  if (module === null) return null;
   const { pixels, half_width_kms, systemic_kms, precision = "double" } = options;
   const sample_count = sampling.velocity_kms.length;
   const plan = slantPlan(sampling, options);
-  const { memory, header, data, wanted, rows, columns, stride } = layOut(plan, {
-    sample_count,
-    precision,
-  });
-  const instance = new WebAssembly.Instance(module, { env: { memory } });
-  const run = instance.exports as unknown as KernelExports;
+  const memory = slantMemory(plan, { sample_count, precision });
+  const { header, data, wanted, rows, columns } = memory;
+  const run = startKernel(memory.memory);
+  if (run === null) return null;
   const [down, up] = precision === "double"
     ? [run.forward64, run.adjoint64]
     : [run.forward32, run.adjoint32];
@@ -92,10 +124,7 @@ export function kernelProjector(sampling: Sampling, options: ProjectorOptions): 
     image_size: pixels * pixels,
     sample_count,
     forward(map, into = new Float64Array(sample_count)) {
-      for (let r = 0; r < pixels; r++) {
-        rows.set(map.subarray(r * pixels, (r + 1) * pixels), r * stride + PAD);
-      }
-      turn(map, columns, { pixels, stride });
+      writeLines(map, memory, pixels);
       data.fill(0);
       wanted.set(flags);
       down(header);
@@ -108,7 +137,7 @@ export function kernelProjector(sampling: Sampling, options: ProjectorOptions): 
       columns.fill(0);
       wanted.set(flags);
       up(header);
-      join(rows, columns, { into, pixels, stride });
+      joinLines(memory, into, pixels);
       // The forward direction counts on zeros around the lines.
       rows.fill(0);
       columns.fill(0);
@@ -124,128 +153,4 @@ export function kernelProjector(sampling: Sampling, options: ProjectorOptions): 
     sampling,
     code: "kernel",
   };
-}
-
-type Lines = Float64Array | Float32Array;
-
-interface Layout {
-  readonly memory: WebAssembly.Memory;
-  /** Address of the kernel's Plan. */
-  readonly header: number;
-  readonly data: Float64Array;
-  readonly wanted: Int32Array;
-  readonly rows: Lines;
-  readonly columns: Lines;
-  /** From line to line, values. */
-  readonly stride: number;
-}
-
-/** Writes the plan into a memory of its own, in the order of the kernel's class Plan. */
-function layOut(
-  plan: SlantPlan,
-  options: { readonly sample_count: number; readonly precision: ProjectorPrecision },
-): Layout {
-  const { pixels, over, strand_length, instants } = plan;
-  const bytes = options.precision === "double" ? 8 : 4;
-  const stride = 4 * Math.ceil((pixels + 2 * PAD) / 4);
-  const FIELDS = 26, SLACK = 64;
-  let top = 4 * FIELDS;
-  const reserve = (size: number) => {
-    const at = 16 * Math.ceil(top / 16);
-    top = at + size + SLACK;
-    return at;
-  };
-  const integers = [plan.axis, plan.tap_start, plan.entry_start, plan.sample, plan.first] as const;
-  const doubles = [plan.u0, plan.du, plan.taps, plan.scale, plan.ratio] as const;
-  const [axis, tap_start, entry_start, sample, first] = integers.map((a) => reserve(a.byteLength));
-  const [u0, du, taps, scale, ratio] = doubles.map((a) => reserve(a.byteLength));
-  const wanted = reserve(4 * instants);
-  const data = reserve(8 * options.sample_count);
-  const rows = reserve(bytes * pixels * stride), columns = reserve(bytes * pixels * stride);
-  const strands = bytes * GROUP * over * strand_length;
-  const sum = reserve(strands), part = reserve(strands);
-  const whole = reserve(8 * (over * strand_length + 2));
-  const strand = reserve(4 * GROUP * pixels), at = reserve(4 * GROUP * pixels);
-  const offset = reserve(8 * GROUP * pixels), order = reserve(4 * pixels);
-
-  const memory = new WebAssembly.Memory({ initial: Math.ceil(top / 65536) });
-  const { buffer } = memory;
-  const inner = bytes * PAD;
-  new Int32Array(buffer, 0, FIELDS).set([
-    pixels,
-    stride,
-    over,
-    strand_length,
-    instants,
-    ...[
-      axis,
-      wanted,
-      u0,
-      du,
-      tap_start,
-      taps,
-      entry_start,
-      sample,
-      first,
-      scale,
-      ratio,
-    ] as number[],
-    ...[data, rows + inner, columns + inner, sum, part, whole, strand, at, offset, order],
-  ]);
-  integers.forEach((a, i) =>
-    new Int32Array(buffer, [axis, tap_start, entry_start, sample, first][i], a.length).set(a)
-  );
-  doubles.forEach((a, i) =>
-    new Float64Array(buffer, [u0, du, taps, scale, ratio][i], a.length).set(a)
-  );
-  const lines = (from: number): Lines =>
-    bytes === 8
-      ? new Float64Array(buffer, from, pixels * stride)
-      : new Float32Array(buffer, from, pixels * stride);
-  return {
-    memory,
-    header: 0,
-    data: new Float64Array(buffer, data, options.sample_count),
-    wanted: new Int32Array(buffer, wanted, instants),
-    rows: lines(rows),
-    columns: lines(columns),
-    stride,
-  };
-}
-
-const BLOCK = 16;
-
-function turn(
-  map: Float64Array,
-  into: Lines,
-  { pixels, stride }: { readonly pixels: number; readonly stride: number },
-): void {
-  for (let r0 = 0; r0 < pixels; r0 += BLOCK) {
-    const r1 = Math.min(pixels, r0 + BLOCK);
-    for (let c = 0; c < pixels; c++) {
-      const to = c * stride + PAD;
-      for (let r = r0; r < r1; r++) into[to + r] = map[r * pixels + c]!;
-    }
-  }
-}
-
-/** Adds columns to rows, without the zeros around them. */
-function join(
-  rows: Lines,
-  columns: Lines,
-  { into, pixels, stride }: {
-    readonly into: Float64Array;
-    readonly pixels: number;
-    readonly stride: number;
-  },
-): void {
-  for (let r0 = 0; r0 < pixels; r0 += BLOCK) {
-    const r1 = Math.min(pixels, r0 + BLOCK);
-    for (let c = 0; c < pixels; c++) {
-      const from = c * stride + PAD;
-      for (let r = r0; r < r1; r++) {
-        into[r * pixels + c] = rows[r * stride + PAD + c]! + columns[from + r]!;
-      }
-    }
-  }
 }

@@ -1,6 +1,4 @@
-import FFT from "fft.js";
-import { nextPowerOfTwo } from "../numerics/mod.ts";
-import type { ProfileRows } from "./profile_filter.ts";
+import { meanPower, type ProfileSpectra } from "./profile_filter.ts";
 
 /** What {@linkcode wienerGain} must know of the noise and the geometry. */
 export interface WienerOptions {
@@ -18,17 +16,17 @@ export interface WienerOptions {
  * (Crowther, DeRosier & Klug 1970, Proc. R. Soc. A 317, 319); where there are more, they share the
  * noise. The gain never rises with frequency and is 1 at zero, so that the flux is kept.
  *
- * @param profiles Profiles on a uniform grid.
+ * @param spectra Spectra of the profiles.
  * @param options Weights, noise, size of the map.
  * @returns Gain as a function of frequency in cycles per km/s.
  *
  * @example Without noise nothing is held back
  * ```ts
- * import { wienerGain } from "@millrace/millrace/tomography";
+ * import { profileSpectra, wienerGain } from "@millrace/millrace/tomography";
  * import { assertAlmostEquals } from "@std/assert";
  *
- * const profiles = { rows: 1, columns: 4, step_kms: 10, flux: Float64Array.of(0, 1, 0, 0) };
- * const gain = wienerGain(profiles, {
+ * const flux = Float64Array.of(0, 1, 0, 0);
+ * const gain = wienerGain(profileSpectra({ rows: 1, columns: 4, step_kms: 10, flux }), {
  *   weight: Float64Array.of(1),
  *   noise: Float64Array.of(0),
  *   diameter_kms: 40,
@@ -37,28 +35,18 @@ export interface WienerOptions {
  * ```
  */
 export function wienerGain(
-  profiles: ProfileRows,
+  spectra: ProfileSpectra,
   options: WienerOptions,
 ): (cycles_per_kms: number) => number {
-  const { rows, columns, step_kms, flux } = profiles;
+  const { size, step_kms } = spectra;
   const { weight, noise, diameter_kms } = options;
-  const size = nextPowerOfTwo(2 * columns);
-  const fft = new FFT(size);
-  const pair = new Float64Array(2 * size), spectrum = new Float64Array(2 * size);
-  const power = new Float64Array(size / 2 + 1);
+  const power = meanPower(spectra, weight);
   let floor = 0, squares = 0;
-  for (let row = 0; row < rows; row++) {
-    const w = weight[row]!;
-    if (w === 0) continue;
+  weight.forEach((w, row) => {
+    if (w === 0) return;
     floor += w * noise[row]!;
     squares += w * w;
-    pair.fill(0);
-    for (let c = 0; c < columns; c++) pair[2 * c] = flux[row * columns + c]!;
-    fft.transform(spectrum, pair);
-    for (let k = 0; k <= size / 2; k++) {
-      power[k] = power[k]! + w * (spectrum[2 * k]! ** 2 + spectrum[2 * k + 1]! ** 2);
-    }
-  }
+  });
   const effective_rows = 1 / squares;
   const gain = new Float64Array(size / 2 + 1);
   let least = 1;
