@@ -1,4 +1,4 @@
-import { closestApproach, lagrangePoints } from "../binary/mod.ts";
+import { closestApproach, lagrangePoints, lobeRadiusEggleton } from "../binary/mod.ts";
 import { InputError } from "../errors.ts";
 import { completeModel, modelParameters, type PartName } from "../synthesis/mod.ts";
 import type { FitSetup } from "./fit_setup.ts";
@@ -93,6 +93,9 @@ export function freeParameters(hypothesis: Hypothesis, setup: FitSetup): readonl
   const model = completeModel({ ...setup.model, parts: hypothesis });
   // The stream is followed from just inside L1 to its closest approach.
   const l1 = lagrangePoints(setup.binary.mass_ratio).l1_over_a;
+  // By Eggleton's formula, as models are checked, and a little less for rounding.
+  const lobe = 0.999 * lobeRadiusEggleton(1 / setup.binary.mass_ratio) /
+    (1 + model.disc.eccentricity);
   const closest = hypothesis.includes("spot") ? closestApproach(setup.binary.mass_ratio) : 0;
   const found: FreeParameter[] = [];
   const add = (
@@ -103,8 +106,11 @@ export function freeParameters(hypothesis: Hypothesis, setup: FitSetup): readonl
     const path = `${section}.${key}`;
     if (!hypothesis.includes(section) || fixed.includes(path)) return;
     const known = modelParameters.find((p) => p.section === section && p.key === key)!;
-    const radius = key === "outer_radius_over_a" || key === "radius_over_a";
-    const top = radius ? Math.min(high, 0.95 * l1) : high;
+    const top = key === "outer_radius_over_a"
+      ? Math.min(high, lobe)
+      : key === "radius_over_a"
+      ? Math.min(high, 0.95 * l1)
+      : high;
     const bottom = path === "spot.radius_over_a" ? Math.max(low, 1.02 * closest) : low;
     const given = (model[section] as unknown as Record<string, number | null>)[key] ??
       model.disc.outer_radius_over_a;

@@ -46,7 +46,7 @@ export interface Judgement {
   readonly part_tests: readonly PartTest[];
   /**
    * The contest with the nearest hypothesis of as many parts; null when there is none, or when
-   * residual tests object to it and not to the best one.
+   * residual tests object to one of them.
    */
   readonly contest: Contest | null;
 }
@@ -119,8 +119,8 @@ export async function judge(comparison: Comparison, options: JudgeOptions): Prom
     const shared = parts.filter((part) => best.parts.includes(part)).length;
     return parts.length === best.parts.length && shared === parts.length - 1;
   });
-  // A rival that residual tests rule out while the best one passes needs no trials.
-  const open = rival !== undefined && (rival.adequate || !best.adequate);
+  // What residual tests rule out needs no trials.
+  const open = rival !== undefined && rival.adequate && best.adequate;
   const contest = open ? await holdContest(best, rival, options) : null;
   return { best, part_tests, contest };
 }

@@ -1,4 +1,4 @@
-import { fitHypothesis, type HypothesisFit, valuesOf } from "./fit_hypothesis.ts";
+import { fitHypothesis, type HypothesisFit, total, valuesOf } from "./fit_hypothesis.ts";
 import { type FitSetup, fitSetup } from "./fit_setup.ts";
 import { type Hypothesis, hypothesisOf } from "./hypothesis.ts";
 import { lineOf } from "./line_of.ts";
@@ -46,12 +46,15 @@ export interface PreparedProblem {
 }
 
 /** Rounds of fit and nuisance; two are enough where flickering is below a quarter of the line. */
-const ROUNDS = 3;
+const ROUNDS = 4;
 const SAME_RMS = 0.02;
+/** A line that varies by more than this is another line at every exposure. */
+const LARGEST_RMS = 0.5;
 
 /**
  * Makes data ready to be weighed: fits all parts together, measures how the line's brightness
- * varies, and makes a whitening that gives such variations no weight, by alternation.
+ * varies, and makes a whitening that gives such variations no weight, by alternation as long as the
+ * likelihood grows.
  *
  * @param data The samples.
  * @param setup What is known.
@@ -69,10 +72,13 @@ export function prepareProblem(
   const plain = makeWhitening(data, order);
   const own = fitSetup(setup);
   let problem = makeProblem(data, own, order);
-  let richest = fitHypothesis(problem, { hypothesis });
+  let richest = fitHypothesis(problem, { hypothesis, starts: 2 });
   let line = lineOf(problem, richest);
   let measured = measureLineScale(line, { data, whitening: plain });
-  let prior = line_scale === "measured" ? measured.rms : line_scale;
+  const priorOf = ({ rms }: LineScale) =>
+    line_scale === "measured" ? Math.min(LARGEST_RMS, rms) : line_scale;
+  let prior = priorOf(measured);
+  let applied = 0;
   for (let round = 0; round < ROUNDS && (prior > 0 || shift_kms > 0); round++) {
     const soft: SoftDirection[] = [{ pattern: line, sigma: prior }];
     if (shift_kms > 0) {
@@ -80,14 +86,22 @@ export function prepareProblem(
       const there = lineOf(problem, richest, { state: moved });
       soft.push({ pattern: there.map((value, n) => value - line[n]!), sigma: shift_kms });
     }
-    problem = makeProblem(data, own, { ...order, soft });
-    richest = fitHypothesis(problem, { hypothesis, warm: valuesOf(richest) });
+    const next = makeProblem(data, own, { ...order, soft });
+    const fit = fitHypothesis(next, { hypothesis, warm: valuesOf(richest) });
+    if (unlikelihood(next, fit) > unlikelihood(problem, richest)) break;
+    const settled = Math.abs(prior - applied) <= SAME_RMS * prior;
+    problem = next;
+    richest = fit;
+    applied = prior;
+    if (settled) break;
     line = lineOf(problem, richest);
     measured = measureLineScale(line, { data, whitening: plain });
-    const next = line_scale === "measured" ? measured.rms : line_scale;
-    const same = Math.abs(next - prior) <= SAME_RMS * prior;
-    prior = next;
-    if (same) break;
+    prior = priorOf(measured);
   }
-  return { problem, richest, line_scale: measured, line_scale_prior: prior };
+  return { problem, richest, line_scale: measured, line_scale_prior: applied };
+}
+
+/** −2 ln likelihood, but for a constant. */
+function unlikelihood(problem: Problem, fit: HypothesisFit): number {
+  return total(fit) + problem.whitening.log_determinant;
 }

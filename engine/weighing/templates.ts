@@ -51,9 +51,12 @@ export function templateStore(
   const raw = (part: PartName, state: ParameterState) => {
     const { model, binary, systemic_kms } = state;
     const context = { sampling: samplingAt(state.phase), binary, systemic_kms };
-    if (model.disc.inner_radius_over_a > 0.97 * model.disc.outer_radius_over_a) return null;
     try {
-      if (part === "disc") return discBasis(model, { ...context, asymmetry });
+      if (part === "disc") {
+        // Hardly a disc any more, and at last none: the fit keeps away.
+        if (model.disc.inner_radius_over_a > 0.97 * model.disc.outer_radius_over_a) return null;
+        return discBasis(model, { ...context, asymmetry });
+      }
       const own: Record<string, unknown> = { ...model[part], equivalent_width_kms: 1 };
       // A trough is a share of its pedestal: it scales with it.
       const { trough_equivalent_width_kms: trough, equivalent_width_kms: whole } = model.outflow;

@@ -18,6 +18,8 @@ export interface Whitening {
   readonly apply: (values: Float64Array) => Float64Array;
   /** Adds to each exposure's raw standardised residuals the share that the baseline explains. */
   readonly baseline: (values: Float64Array) => Float64Array;
+  /** Σ ln(1 + σ²|p|²) over exposures and nuisances: what a likelihood charges for them. */
+  readonly log_determinant: number;
   /** Sum over exposures of the parameters spent: baseline terms, and shares of soft amplitudes. */
   readonly parameters: number;
 }
@@ -69,7 +71,7 @@ export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}
   const { start, count, velocity_kms } = data.sampling;
   const weight = data.error.map((error) => 1 / error);
   const directions: Direction[] = [];
-  let parameters = 0;
+  let parameters = 0, log_determinant = 0;
 
   const project = (values: Float64Array, { unit, removed }: Direction) => {
     for (let i = 0; i < count; i++) {
@@ -115,6 +117,7 @@ export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}
     if (!(sigma > 0)) continue;
     add(pattern, (length) => {
       const ratio = (sigma * length) ** 2;
+      log_determinant += Math.log1p(ratio);
       return [1 - 1 / Math.sqrt(1 + ratio), ratio / (1 + ratio)];
     });
   }
@@ -125,6 +128,7 @@ export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}
       for (const direction of baselines) project(left, direction);
       return values.map((value, n) => value - left[n]!);
     },
+    log_determinant,
     parameters,
   };
 }
