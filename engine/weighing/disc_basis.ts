@@ -1,6 +1,6 @@
 import { type Binary, keplerianSpeed } from "../binary/mod.ts";
 import { type CompleteModel, type Model, synthesizeParts } from "../synthesis/mod.ts";
-import { panelled, shiftVelocities, systemFrame } from "../tomography/mod.ts";
+import { panelled, systemFrame } from "../tomography/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
 import { blurHarmonic, discHarmonics } from "./disc_harmonics.ts";
 
@@ -74,8 +74,7 @@ export function thinDiscBasis(
 ): Float64Array[] {
   const { sampling, binary, systemic_kms, asymmetry } = context;
   const frame = systemFrame(systemic_kms);
-  const velocity = shiftVelocities(sampling.velocity_kms, frame);
-  const { start, count, phase, phase_width } = sampling;
+  const { start, count, phase, phase_width, velocity_kms: velocity } = sampling;
   const k1 = binary.k_accretor_kms;
   const shape = {
     rim_kms: disc.keplerian_factor * keplerianSpeed(disc.outer_radius_over_a, binary),
@@ -86,7 +85,9 @@ export function thinDiscBasis(
     Math.hypot(sigma * frame.factor, disc.turbulence_kms)
   );
   let fastest = 0;
-  for (let n = 0; n < velocity.length; n++) fastest = Math.max(fastest, Math.abs(velocity[n]!));
+  for (let n = 0; n < velocity.length; n++) {
+    fastest = Math.max(fastest, Math.abs(frame.offset_kms + frame.factor * velocity[n]!));
+  }
   const finest = sigmas.reduce((a, b) => Math.min(a, b));
   const step_kms = finest / BINS_PER_SIGMA;
   const harmonics = discHarmonics(shape, {
@@ -115,9 +116,15 @@ export function thinDiscBasis(
     return made;
   };
 
+  const known = new Map<number, ReturnType<typeof instants>>();
+  const instantsOf = (width: number) => {
+    const made = known.get(width) ?? instants(width);
+    known.set(width, made);
+    return made;
+  };
   const trails = Array.from({ length: 1 + 2 * asymmetry }, () => new Float64Array(velocity.length));
   for (let i = 0; i < count; i++) {
-    const { offset, weight } = instants(phase_width[i]!);
+    const { offset, weight } = instantsOf(phase_width[i]!);
     const table = tablesOf(sigmas[i]!);
     for (let q = 0; q < offset.length; q++) {
       const angle = 2 * Math.PI * (phase[i]! + offset[q]!);
@@ -126,8 +133,9 @@ export function thinDiscBasis(
         velocity,
         from: start[i]!,
         to: start[i + 1]!,
-        centre: -k1 * Math.sin(angle),
-        step_kms,
+        // x = slope · velocity + offset is the place in bins from the table's middle.
+        slope: frame.factor / step_kms,
+        offset: (frame.offset_kms + k1 * Math.sin(angle)) / step_kms,
       };
       addLookUp(table.even0, exposure, [[trails[0]!, share]]);
       if (table.odd1 !== null) {
@@ -156,23 +164,22 @@ function instants(phase_width: number): { offset: Float64Array; weight: Float64A
 /** Adds a table's cubic interpolation, times a factor, to each target. */
 function addLookUp(
   table: { readonly half: number; readonly values: Float64Array },
-  { velocity, from, to, centre, step_kms }: {
+  { velocity, from, to, slope, offset }: {
     readonly velocity: Float64Array;
     readonly from: number;
     readonly to: number;
-    readonly centre: number;
-    readonly step_kms: number;
+    readonly slope: number;
+    readonly offset: number;
   },
   targets: readonly (readonly [into: Float64Array, factor: number])[],
 ): void {
   const { half, values } = table;
-  const perStep = 1 / step_kms;
-  const offset = half - centre * perStep;
+  const middle = half + offset;
   const last = 2 * half - 2;
   const [first, firstFactor] = targets[0]!;
   const [second, secondFactor] = targets[1] ?? [first, 0];
   for (let n = from; n < to; n++) {
-    const x = velocity[n]! * perStep + offset;
+    const x = velocity[n]! * slope + middle;
     const k = Math.floor(x);
     if (k < 1 || k > last) continue;
     const t = x - k, s = 1 - t;
