@@ -15,8 +15,8 @@ Deno.test("a batch killed again and again leaves nothing wrong and ends with the
   inFolder(async (folder) => {
     const commands = ["check", "trail", "map"];
     const { manifest } = await smallCampaign(folder, { commands });
-    const { kills } = await killBatch(manifest, { folder, kills: 4, seed: 1 });
-    assertEquals(kills, 4);
+    const { kills } = await killBatch(manifest, { folder, kills: 3, seed: 1 });
+    assertEquals(kills, 3);
   }));
 
 async function mount(folder: string, size: string): Promise<boolean> {
@@ -54,8 +54,7 @@ Deno.test({
   ignore: !await canMount(),
   fn: () =>
     inFolder(async (folder) => {
-      const commands = ["check", "trail", "map"];
-      const { manifest } = await smallCampaign(folder, { stars: 2, commands });
+      const { manifest } = await smallCampaign(folder, { commands: ["check", "trail"] });
       const reference = join(folder, "reference");
       assertEquals((await batch(manifest, reference)).code, 0);
       let whole = 0;
