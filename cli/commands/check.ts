@@ -2,7 +2,7 @@ import { type CheckDocument, runCheck, type ZeroCheck } from "../../engine/campa
 import { targetCommand } from "../target_command.ts";
 import { decisionLines } from "../terminal/decision_lines.ts";
 import { lineCheckLines } from "../terminal/line_check_lines.ts";
-import { plainNumber, tableLines } from "../terminal/table.ts";
+import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 
 /** `millrace check`: what the exposures are worth, before anything is made of them. */
 export const checkCommand = targetCommand("check", {
@@ -29,6 +29,8 @@ export function checkLines(document: CheckDocument): string[] {
     "",
     "  how the files were understood (the target file overrides each)",
     ...decisionLines(document.decisions, { exposures, groups }),
+    "",
+    ...ephemerisLines(document.ephemeris),
     ...zeroLines(document.zeros),
     ...document.lines.flatMap((line) => ["", ...lineCheckLines(line)]),
   ];
@@ -57,6 +59,47 @@ function journalLines({ journal }: CheckDocument): string[] {
       plainNumber(entry.signal_to_noise_pixel, 0),
     ]),
   ], { heading: true, align: ["right", "right", "right", "right", "right", "right", "right"] });
+}
+
+const MARKS = {
+  "donor-conjunction": "the donor nearest to the observer",
+  "mid-eclipse": "the middle of the eclipse",
+  "emission-crossing":
+    "a crossing of the emission: maps are rotated by an unknown angle and name no structures",
+} as const;
+
+function ephemerisLines(ephemeris: CheckDocument["ephemeris"]): string[] {
+  const { zero_bjd_tdb, zero_error_d, zero_from, zero_moved_s, zero_marks } = ephemeris;
+  const { period_d, period_error_d, orbits_since_zero, decorrelated_bjd_tdb } = ephemeris;
+  const moved = zero_moved_s === 0
+    ? ""
+    : `, ${plainNumber(zero_moved_s, 1)} s later than ${zero_from} as given`;
+  return [
+    "  ephemeris",
+    ...tableLines([
+      [
+        "period",
+        `${period_error_d === null ? period_d : withError(period_d, period_error_d)} d`,
+      ],
+      [
+        "zero of phase",
+        `BJD(TDB) ${
+          zero_error_d === null ? zero_bjd_tdb.toFixed(5) : withError(zero_bjd_tdb, zero_error_d)
+        }${moved}`,
+      ],
+      ["", `marks ${MARKS[zero_marks]}`],
+      [
+        "first exposure",
+        `${plainNumber(Math.abs(orbits_since_zero), 2)} orbits ${
+          orbits_since_zero < 0 ? "before" : "after"
+        } the zero`,
+      ],
+      ...(decorrelated_bjd_tdb === null ? [] : [[
+        "best known",
+        `at BJD(TDB) ${decorrelated_bjd_tdb.toFixed(3)}, where zero and period are uncorrelated`,
+      ]]),
+    ], { indent: 4 }),
+  ];
 }
 
 function zeroLines(zeros: readonly ZeroCheck[]): string[] {

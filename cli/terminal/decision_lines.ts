@@ -19,6 +19,7 @@ const VALUES: Readonly<Record<string, Readonly<Record<string, string>>>> = {
     jd: "Julian date",
     mjd: "modified Julian date",
   },
+  "exposure time": { seconds: "in seconds", minutes: "in minutes" },
   "time place": { observatory: "at the observatory" },
   "time scale": { utc: "UTC", tt: "TT", tdb: "TDB", tai: "TAI" },
   "time marks": {
@@ -35,7 +36,7 @@ const DONE: Readonly<Record<string, Readonly<Record<string, string>>>> = {
     topocentric: "the observer's motion taken out",
     heliocentric: "brought from the Sun to the barycentre",
   },
-  "time marks": { start: "half of it added", end: "half of it taken off" },
+  "time marks": { start: "half the exposure added", end: "half the exposure taken off" },
   "time place": {
     observatory: "light time to the barycentre added",
     heliocentric: "brought from the Sun to the barycentre",

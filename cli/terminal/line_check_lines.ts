@@ -50,10 +50,18 @@ function coverageRows(line: LineCheck): string[][] {
       `(${directions_needed} = π × ${plainNumber(velocity_kms, 0)} / ${
         plainNumber(line.resolution_kms.median, 0)
       }: a feature at ${kms(velocity_kms)}, ${
-        line.traces === "donor" ? "the donor's speed," : "half of the distance of the peaks,"
-      } moves by one resolution element in each)`,
+        speedText(line)
+      }, moves by one resolution element in each)`,
     ],
   ];
+}
+
+function speedText({ traces, measures, velocity_kms }: LineCheck): string {
+  if (traces === "donor" && velocity_kms !== measures.peak_separation_kms / 2) {
+    return "the donor's speed";
+  }
+  if (measures.peak_separation_kms > 0) return "half of the distance of the peaks";
+  return measures.fwhm_kms > 0 ? "half of the line's width" : "the end of its reach";
 }
 
 function sharpnessRows(line: LineCheck): string[][] {
@@ -74,9 +82,11 @@ function sharpnessRows(line: LineCheck): string[][] {
     ],
     [
       "error of the phase",
-      `${plainNumber(line.phase_error, 4)} cycles from the ephemeris: a map may be turned by ${
-        plainNumber(360 * line.phase_error, 1)
-      } deg, ${kms(line.phase_error_kms)} at ${kms(velocity_kms)}`,
+      line.phase_error === null
+        ? "not known, as the ephemeris is given without errors"
+        : `${plainNumber(line.phase_error, 4)} cycles from the ephemeris: a map may be turned by ${
+          plainNumber(360 * line.phase_error, 1)
+        } deg, ${kms(line.phase_error_kms ?? NaN)} at ${kms(velocity_kms)}`,
     ],
   ];
 }
@@ -95,12 +105,12 @@ function noiseRows(line: LineCheck): string[][] {
         plainNumber(measured_scale, 2)
       })`;
   });
-  const pair = (name: string, found: typeof pairs.repeat) =>
+  const pair = (name: string, found: typeof pairs.repeat, excess: string) =>
     found === null ? [] : [[
       "",
       `within the line, exposures ${name} differ by ${plainNumber(found.scale, 2)} ± ${
         plainNumber(found.scale_error, 2)
-      } of their errors (${found.pairs} pairs)`,
+      } of their errors (${found.pairs} pairs)${found.scale > 1.2 ? `: ${excess}` : ""}`,
     ]];
   return [
     [
@@ -110,8 +120,16 @@ function noiseRows(line: LineCheck): string[][] {
       }) in the continuum, in a resolution element`,
     ],
     ...[...new Set(scales)].map((text, i) => [i === 0 ? "errors" : "", text]),
-    ...pair("at the same phase of other orbits", pairs.repeat),
-    ...pair("half an orbit apart, mirrored,", pairs.mirror),
+    ...pair(
+      "at the same phase of other orbits",
+      pairs.repeat,
+      "the object changed, or errors are too small",
+    ),
+    ...pair(
+      "half an orbit apart, mirrored,",
+      pairs.mirror,
+      "gas that hides gas, or γ or the zero of phase is off",
+    ),
     [
       "continuum",
       `varies by ${percent(line.continuum_variation)} from exposure to exposure, ${
@@ -129,7 +147,7 @@ function profileRows({ measures, net, equivalent_width_angstrom }: LineCheck): s
       `equivalent width ${plainNumber(equivalent_width_angstrom, 2)} Å (${
         kms(sign * measures.equivalent_width_kms)
       })`,
-      `full width at half maximum ${kms(measures.fwhm_kms)}`,
+      ...(measures.fwhm_kms > 0 ? [`full width at half maximum ${kms(measures.fwhm_kms)}`] : []),
       ...(measures.peak_separation_kms > 0
         ? [`peaks ${kms(measures.peak_separation_kms)} apart`]
         : []),

@@ -1,4 +1,4 @@
-import type { Ephemeris } from "../binary/mod.ts";
+import { type Ephemeris, phaseError } from "../binary/mod.ts";
 import { InputError } from "../errors.ts";
 import { heliocentricToBjd, type SplitDate } from "../sky/mod.ts";
 import { needed, type Target } from "./target.ts";
@@ -47,7 +47,7 @@ export function ephemerisOf(
       target: options.direction,
     });
   }
-  return {
+  const ephemeris: Ephemeris = {
     period_d,
     period_error_d: orbit.period_error_d ?? 0,
     zero,
@@ -56,4 +56,20 @@ export function ephemerisOf(
     period_derivative: orbit.period_derivative,
     zero_marks: orbit.zero_marks,
   };
+  try {
+    phaseError(ephemeris, zero);
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    const key = "orbit.zero_period_covariance_d2";
+    throw new InputError({
+      action: error.action,
+      rule: error.rule,
+      value: error.value,
+      unit: error.unit,
+      file: target.file,
+      line: target.places.get(key)?.line,
+      key,
+    });
+  }
+  return ephemeris;
 }

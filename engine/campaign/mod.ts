@@ -33,6 +33,8 @@ export * from "./read_target_exposures.ts";
 export * from "./session.ts";
 export * from "./simulate.ts";
 export type { CheckedContent } from "./steps/check_contents.ts";
+export type { LineCheck } from "./steps/line_check.ts";
+export type { EphemerisCheck } from "./steps/check_ephemeris.ts";
 export type { ZeroCheck } from "./steps/check_zeros.ts";
 export * from "./steps/run_check.ts";
 export * from "./steps/run_map.ts";

@@ -35,6 +35,7 @@ continuum_kms = [[-5000, -2500], [2500, 5000]]
 method = "back-projection"
 half_width_kms = 1000
 pixels = 61
+resamples = 4
 `,
 };
 

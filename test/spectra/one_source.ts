@@ -71,12 +71,8 @@ export function assertRightPlace(
   return found;
 }
 
-/** HJD of mid-exposure in some scale, by bisection on the code's own way back: there is one formula. */
-export function hjdOf(e: RawExposure, scale: "utc" | "tt"): string {
-  const { bjd } = midExposureBjd({ date: e.start, exposure_s: e.exposure_s }, {
-    target: TARGET,
-    site: SITE,
-  });
+/** HJD of an instant, BJD(TDB), by bisection on the code's own way back: there is one formula. */
+export function hjdOfBjd(bjd: SplitDate, scale: "utc" | "tt"): string {
   let low = -0.01, high = 0.01;
   for (let n = 0; n < 60; n++) {
     const middle = 0.5 * (low + high);
@@ -86,4 +82,13 @@ export function hjdOf(e: RawExposure, scale: "utc" | "tt"): string {
     else low = middle;
   }
   return `${bjd[0]}${(bjd[1] + low).toFixed(9).slice(1)}`;
+}
+
+/** HJD of mid-exposure in some scale. */
+export function hjdOf(e: RawExposure, scale: "utc" | "tt"): string {
+  const { bjd } = midExposureBjd({ date: e.start, exposure_s: e.exposure_s }, {
+    target: TARGET,
+    site: SITE,
+  });
+  return hjdOfBjd(bjd, scale);
 }

@@ -134,6 +134,29 @@ export function contentWarnings(
   ];
 }
 
+/** Components of a multiplet lie within this of its middle, km/s. */
+const SAME_LINE_KMS = 400;
+
+/**
+ * Warns of a line that the mean spectrum does not show.
+ *
+ * @param trail The line's trail.
+ * @param seen Lines that the mean spectra show.
+ * @returns The warning; none when the line, or a component of it, is seen.
+ */
+export function unseenWarnings(trail: Trail, seen: readonly SpectralLine[]): Warning[] {
+  const { line } = trail;
+  const shown = seen.some(({ vacuum_angstrom }) =>
+    Math.abs(lineVelocity(vacuum_angstrom, line)) < SAME_LINE_KMS
+  );
+  return shown ? [] : [{
+    code: "line-not-seen",
+    line: line.name,
+    text:
+      "the line does not stand out of the mean spectrum by 5 sigma: what is measured of it may be noise, or the wing of another",
+  }];
+}
+
 function ringText({ name, velocity_kms, range_kms, ring_radius_kms }: WindowContent): string {
   return ring_radius_kms === null
     ? `${name} from ${signed(range_kms[0])} to ${signed(range_kms[1])}`
