@@ -23,7 +23,7 @@ function onBounds(at: Float64Array, bounds: Bounds): ("lower" | "upper" | null)[
 
 /**
  * Non-linear least squares by the Levenberg–Marquardt method as a scaled trust region (Moré 1978, in
- * "Numerical Analysis", Lecture Notes in Mathematics 630, 105), with bounds by an active set: minimises
+ * "Numerical Analysis", LNM 630, 105), with bounds by an active set: minimises
  * Σ r_i(p)². It finds the minimum near the start, which need not be the lowest one. A point where a
  * residual is not finite is avoided.
  *
