@@ -1,7 +1,10 @@
 import type { Trail, TrailGrid } from "../../trail/mod.ts";
 
+/** A cloud lasts less, a day more. */
+const GAP_D = 0.25;
+
 /**
- * Night of each exposure, from 0: gaps of more than half an orbit, and at least six hours, part them.
+ * Night of each exposure, from 0: gaps of more than six hours part them.
  *
  * @param sampling Cycles and phases of the exposures, in order of time.
  * @param options The period.
@@ -13,7 +16,7 @@ export function nightsOf(
   options: { period_d: number },
 ): number[] {
   const { cycle, phase } = sampling;
-  const least = Math.max(0.5, 0.25 / options.period_d);
+  const least = GAP_D / options.period_d;
   let night = 0;
   return Array.from(phase, (_, i) => {
     const gap = i === 0 ? 0 : cycle[i]! + phase[i]! - cycle[i - 1]! - phase[i - 1]!;

@@ -151,17 +151,13 @@ export function refereeChecklist(facts: RefereeFacts): ChecklistRow[] {
       "Does the map hold at γ ± σ?",
       systemic_shift
         ? settled(
-          `At γ ± ${
-            measuredText(systemic_shift.sigma_kms, null)
-          } km/s (${systemic_shift.source}) ` +
+          `At γ ± ${twoDigits(systemic_shift.sigma_kms)} km/s (${systemic_shift.source}) ` +
             (systemic_shift.moves_kms < Infinity
-              ? `the strongest feature moves by ${
-                measuredText(systemic_shift.moves_kms, null)
-              } km/s`
+              ? `the strongest feature moves by ${twoDigits(systemic_shift.moves_kms)} km/s`
               : "the strongest feature is lost") +
             (systemic_shift.error_kms === null
               ? "."
-              : `; its own error is ${measuredText(systemic_shift.error_kms, null)} km/s.`),
+              : `; its own error is ${twoDigits(systemic_shift.error_kms)} km/s.`),
           systemic_shift.error_kms !== null && systemic_shift.moves_kms <= systemic_shift.error_kms,
         )
         : notDone("make maps at both ends of the error of γ"),
@@ -218,7 +214,7 @@ export function refereeChecklist(facts: RefereeFacts): ChecklistRow[] {
       "Is there an upper limit where nothing is seen?",
       facts.upper_limit
         ? settled(
-          `${measuredText(facts.upper_limit.flux_kms, null)} km/s of the continuum ` +
+          `${twoDigits(facts.upper_limit.flux_kms)} km/s of the continuum ` +
             `${facts.upper_limit.where}, at ${
               Number((100 * facts.upper_limit.confidence).toFixed(2))
             } %.`,
@@ -226,6 +222,11 @@ export function refereeChecklist(facts: RefereeFacts): ChecklistRow[] {
         : notDone("put the panel detection-limit on the plate, or run weigh"),
     ),
   ];
+}
+
+/** As many digits as an error has. */
+function twoDigits(value: number): string {
+  return String(Number(value.toPrecision(2)));
 }
 
 function upper(text: string): string {
