@@ -4,12 +4,14 @@ import {
   assertEquals,
   assertGreater,
   assertLess,
+  assertMatch,
   assertRejects,
   assertStringIncludes,
 } from "@std/assert";
 import { join } from "@std/path";
 import { InputError } from "../../engine/errors.ts";
-import { midExposureBjd } from "../../engine/sky/mod.ts";
+import { median } from "../../engine/numerics/mod.ts";
+import { lineNamed, midExposureBjd } from "../../engine/sky/mod.ts";
 import type { RawExposure } from "../../engine/spectra/mod.ts";
 import type { Trail } from "../../engine/trail/mod.ts";
 import { checkLines } from "../../cli/commands/check.ts";
@@ -259,6 +261,45 @@ reach_kms = 1500
   const document = await campaign.check();
   const unseen = document.warnings.filter(({ code }) => code === "line-not-seen");
   assertEquals(unseen.map(({ line }) => line), ["He II 4686"]);
+});
+
+Deno.test("runCheck() recognises a line in absorption and says what each inversion makes of it", async () => {
+  const raw = few().map((e) => {
+    const level = median([...e.flux]);
+    return { ...e, flux: e.flux.map((f) => level - 0.5 * (f - level)) };
+  });
+  const document = await (await writeCampaign([{ raw }])).check();
+  const [line] = document.lines;
+  assertEquals(line!.net, "absorption");
+  assertLess(line!.equivalent_width_angstrom, 0);
+  const said = document.warnings.find(({ code }) => code === "line-in-absorption")!;
+  for (const word of ["entropy", "sign turned", "back-projection", "total variation"]) {
+    assertStringIncludes(said.text, word);
+  }
+  const text = checkLines(document).join("\n");
+  assertStringIncludes(text, "in air): absorption, 12 exposures");
+  assertStringIncludes(text, "equivalent width −");
+});
+
+Deno.test("runCheck() tells lines that are seen in the windows from those that are only known there", async () => {
+  // He I 4922, half as strong, stands at +3740 km/s from H beta: in the continuum's window.
+  const raw = madeExposures({ count: 12, cadence_s: 570, high_angstrom: 5100, medium: "vacuum" });
+  const factor = lineNamed("He I 4922").vacuum_angstrom / lineNamed("H beta").vacuum_angstrom;
+  const both = raw.map((e) => {
+    const level = median([...e.flux]);
+    const flux = e.flux.map((f, i) => {
+      const from = Math.round((e.wavelength_angstrom[i]! / factor - 4760) / 0.5);
+      return from >= 0 ? f + 0.5 * (e.flux[from]! - level) : f;
+    });
+    return { ...e, flux };
+  });
+  const document = await (await writeCampaign([{ raw: both }])).check();
+  const shared = document.lines[0]!.contents.filter(({ kind }) => kind === "line");
+  assertEquals(shared.find(({ name }) => name === "He I 4922")?.seen, true);
+  assertEquals(shared.find(({ name }) => name === "[O III] 4959")?.seen ?? false, false);
+  const said = document.warnings.find(({ code }) => code === "window-shared")!;
+  assertMatch(said.text, /He I 4922 at \+37\d\d km\/s \(continuum window\)/);
+  assertEquals(said.text.includes("Fe II"), false);
 });
 
 const PYTHON = "/usr/bin/python3";

@@ -271,6 +271,50 @@ Deno.test("trap: flexure of 15 km/s that drifts with phase is reported against K
   assertEquals(byTable.zeros[0]!.error_kms, null);
 });
 
+Deno.test("trap: flexure is measured from telluric absorption where no sky line is left", async () => {
+  const flexure = (k: number) => 15 * Math.sin(2 * Math.PI * k / 23);
+  const raw = asLine(
+    madeExposures({
+      count: 24,
+      signal_to_noise: 80,
+      medium: "vacuum",
+      low_angstrom: 4600,
+      high_angstrom: 5010,
+    }),
+    "H alpha",
+  ).map((e, k) => ({
+    ...e,
+    // The gamma band of oxygen, three of its blends.
+    flux: e.flux.map((f, i) =>
+      [[6279, 0.4], [6287, 0.3], [6296, 0.35]].reduce(
+        (light, [place, depth]) =>
+          light * (1 - depth! * Math.exp(-0.5 * ((e.wavelength_angstrom[i]! - place!) / 2) ** 2)),
+        f,
+      )
+    ),
+    wavelength_angstrom: e.wavelength_angstrom.map((w) => w * (1 + flexure(k) / C)),
+  }));
+  const campaign = await writeCampaign([{ raw }], {
+    lines: SECTIONS.lines!.replace("H beta", "H alpha"),
+  });
+  const plain = await campaign.check();
+  assertEquals([plain.zeros[0]!.from, plain.zeros[0]!.features], [
+    "telluric absorption",
+    ["O2 gamma band"],
+  ]);
+  assertStringIncludes(textOf(plain, "wavelength-zero-off"), 'wavelength_zero_kms = "telluric"');
+  // 15 km/s, smoothed a little by the mean to which each exposure is matched.
+  assertAlmostEquals(plain.zeros[0]!.orbital_kms, 15, 1.5);
+  const asked = ['exposures[0].wavelength_zero_kms="telluric"'];
+  const [off, right] = [
+    findSource(await trailOf(campaign)),
+    findSource(await trailOf(campaign, asked)),
+  ];
+  const miss = ({ vx, vy }: typeof off) => Math.hypot(vx - SOURCE.vx_kms, vy - SOURCE.vy_kms);
+  assertGreater(miss(off), 8);
+  assertLess(miss(right), 4);
+});
+
 Deno.test("trap: a sky line across the wing draws a ring, is named, and is masked when asked", async () => {
   const lines = SECTIONS.lines!.replace("H beta", "He I 5876");
   const raw = withSky(
