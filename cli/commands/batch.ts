@@ -14,6 +14,7 @@ import {
   runBatch,
 } from "../../engine/campaign/mod.ts";
 import { InputError, WorkError } from "../../engine/errors.ts";
+import type { Progress } from "../../engine/workers/mod.ts";
 import { utcNow } from "../clock.ts";
 import { commandWith, type CommonOptions } from "../common_options.ts";
 import { type CommandContext, type CommandResult, runCommand } from "../run_command.ts";
@@ -65,34 +66,55 @@ async function batch(
     const jobs = batchJobs(manifest, common);
     return told(await gatherBatch(manifest, { ...common, jobs }), { manifest, call, context });
   }
+  const { stop, ...news } = newsTeller(context);
   const report = await runBatch(manifest, {
     ...common,
+    ...news,
     part,
     workers: call.workers ?? navigator.hardwareConcurrency,
     module: new URL("../batch_worker.ts", import.meta.url),
-    onTarget: newsTeller(context),
-  });
+  }).finally(stop);
   return report.result === null
     ? partTold(report, { part: part!, call, context })
     : told(report.result, { manifest, call, context });
 }
 
 /** Tells of each target: on a terminal in one line that changes, else in a line each. */
-function newsTeller({ console }: CommandContext): (news: BatchNews) => void {
+function newsTeller(
+  { console }: CommandContext,
+): { onTarget: (news: BatchNews) => void; progress: Progress; stop: () => void } {
   const started = performance.now();
-  return ({ outcome, done, total, done_fraction }) => {
-    const passed = (performance.now() - started) / 1000;
-    const left = (passed / done_fraction) * (1 - done_fraction);
-    // A guess from the first twentieth would mislead.
-    const count = `${done} of ${total} targets${
-      done === total || done_fraction < 0.05 ? "" : `, ${durationText(left)} left`
-    }`;
-    if (!console.onTerminal) {
-      console.err(`${count}: ${outcomeText(outcome)}`);
-      return;
-    }
-    if (firstError(outcome) !== null) console.err(outcomeText(outcome));
-    console.status(done === total ? "" : count);
+  let count = "";
+  let left_s: number | null = null;
+  let told = started;
+  let detail = "";
+  const show = () => {
+    const since = (performance.now() - told) / 1000;
+    const left = left_s === null ? "" : `, ${durationText(left_s - since)} left`;
+    console.status(count === "" ? detail : `${count}${left}${detail === "" ? "" : `; ${detail}`}`);
+  };
+  // The line goes on counting down while a long target is at work.
+  const timer = setInterval(show, 1000);
+  return {
+    onTarget({ outcome, done, total, done_fraction }) {
+      told = performance.now();
+      const passed = (told - started) / 1000;
+      // A guess from the first twentieth would mislead.
+      left_s = done === total || done_fraction < 0.05
+        ? null
+        : (passed / done_fraction) * (1 - done_fraction);
+      count = `${done} of ${total} targets`;
+      detail = "";
+      if (!console.onTerminal) {
+        const left = left_s === null ? "" : `, ${durationText(left_s)} left`;
+        console.err(`${count}${left}: ${outcomeText(outcome)}`);
+      } else if (firstError(outcome) !== null) console.err(outcomeText(outcome));
+      if (done < total) show();
+    },
+    progress(done, total, what) {
+      detail = `${what}: ${done} of ${total}`;
+    },
+    stop: () => clearInterval(timer),
   };
 }
 

@@ -64,7 +64,7 @@ const WORDS: Readonly<Record<string, readonly string[]>> = {
   wavelength_zero_kms: ["none", "sky-lines", "telluric"],
   photometry: ["none"],
   template: ["none"],
-  prior_image: ["uniform", "blurred", "axisymmetric"],
+  prior_image: ["uniform", "blurred", "axisymmetric", "mixed"],
 };
 
 function patterns(target: Target): [key: string, pattern: string][] {

@@ -25,14 +25,15 @@ export interface SmallCampaign {
   readonly set: readonly string[];
 }
 
-/** Makes a campaign that a batch goes through in a few seconds. */
+/** Makes a campaign that a batch goes through in a few seconds; with `full`, stars of full size. */
 export async function smallCampaign(
   folder: string,
-  options: { stars?: number; more?: string; commands?: readonly string[] } = {},
+  options: { stars?: number; more?: string; commands?: readonly string[]; full?: boolean } = {},
 ): Promise<SmallCampaign> {
-  const { stars = 3, more = "", commands = ["check", "trail", "map", "plate"] } = options;
+  const { stars = 3, more = "", commands = ["check", "trail", "map", "plate"], full } = options;
   const names: string[] = [];
-  await makeSample(folder, { stars, set: SMALL_STARS, onStar: (name) => names.push(name) });
+  const onStar = (name: string) => names.push(name);
+  await makeSample(folder, { stars, set: full ? [] : SMALL_STARS, onStar });
   const manifest = join(folder, "night.toml");
   await Deno.writeTextFile(
     manifest,
@@ -41,7 +42,7 @@ title = "A night"
 targets = ["stars/*.toml"]
 commands = ${JSON.stringify(commands)}
 set = [
-${SMALL_SETTINGS.map((text) => `  '''${text}''',`).join("\n")}
+${(full ? [] : SMALL_SETTINGS).map((text) => `  '''${text}''',`).join("\n")}
 ]
 ${more}`,
   );

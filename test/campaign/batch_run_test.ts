@@ -53,6 +53,7 @@ columns = 1
       const name of ["summary.ecsv", "summary.csv", "index.html", "sample.png", "sample.txt"]
         .concat(["vx-2402/map.json", "vx-2402/thumbnail.png", "vx-2402/narrow/map.fits"])
     ) assert(files.has(name), name);
+    assertEquals(result!.document.files.includes("sample.png"), true);
     // The page shows every target's picture and opens its report.
     const page = new TextDecoder().decode(files.get("index.html")!);
     const links = [...page.matchAll(/(?:href|src)="([^"#:]+)"/g)].map((match) => match[1]!);
@@ -72,6 +73,12 @@ columns = 1
     const read = await readManifest(manifest);
     await gatherBatch(read, { jobs: batchJobs(read), folder: parts });
     await assertSameOutputs(parts, one);
+
+    // Without sample plates in the manifest the old ones go.
+    const plain = { ...read, settings: { ...read.settings, sample_plates: [] } };
+    await gatherBatch(plain, { jobs: batchJobs(plain), folder: parts });
+    const left = [...(await filesUnder(parts)).keys()].filter((name) => /^[^/]+$/.test(name));
+    assertEquals(left.sort(), ["batch.json", "index.html", "summary.csv", "summary.ecsv"]);
   }));
 
 Deno.test("runBatch() goes on when a target is bad, and says which and why", () =>

@@ -1,5 +1,5 @@
-import { join } from "@std/path";
-import { makeFolder, writeFileAtomically } from "../../files/mod.ts";
+import { basename, join, relative } from "@std/path";
+import { checkReplaceable, makeFolder, writeFileAtomically } from "../../files/mod.ts";
 import { holdFolder } from "../hold_folder.ts";
 import { jsonText } from "../output_head.ts";
 import type { Clock } from "../record_step.ts";
@@ -50,6 +50,8 @@ export interface BatchDocument {
   readonly missing: readonly string[];
   /** Sample plates that could not be drawn. */
   readonly plate_errors: readonly (StepError & { readonly plate: string })[];
+  /** Tables, page and sample plates, in the folder of the batch. */
+  readonly files: readonly string[];
   /** One entry a target and treatment. */
   readonly runs: readonly BatchRun[];
 }
@@ -141,8 +143,11 @@ export async function gatherBatch(
     }
     const { title } = manifest;
     await write("index.html", await indexPage({ title, runs, rows, sample_files }));
+    const names = files.map((path) => relative(folder, path));
+    await removeOld(folder, names);
     const document = batchDocument(manifest, {
       runs,
+      files: names,
       plate_errors,
       cost,
       ended: now?.() ?? null,
@@ -153,16 +158,33 @@ export async function gatherBatch(
   }, { owner });
 }
 
+/** Removes sample plates of an earlier manifest that the new one does not ask for. */
+async function removeOld(folder: string, names: readonly string[]): Promise<void> {
+  let old: Partial<BatchDocument> | null = null;
+  try {
+    old = JSON.parse(await Deno.readTextFile(join(folder, "batch.json")));
+  } catch {
+    // There was none.
+  }
+  for (const name of old?.schema === "batch/1" ? old.files ?? [] : []) {
+    if (names.includes(name) || name !== basename(name)) continue;
+    const path = join(folder, name);
+    await checkReplaceable(path);
+    await Deno.remove(path).catch(() => {});
+  }
+}
+
 function batchDocument(
   manifest: Manifest,
   options: {
     runs: readonly GatheredRun[];
+    files: readonly string[];
     plate_errors: BatchDocument["plate_errors"];
     cost: BatchCost | null;
     ended: string | null;
   },
 ): BatchDocument {
-  const { runs, plate_errors, cost, ended } = options;
+  const { runs, files, plate_errors, cost, ended } = options;
   const named = (status: GatheredRun["status"]) => [
     ...new Set(runs.filter((run) => run.status === status).map(({ name }) => name)),
   ];
@@ -176,6 +198,7 @@ function batchDocument(
     failed: named("failed"),
     missing: named("missing"),
     plate_errors,
+    files,
     runs: runs.map(({ steps, files: _files, ...run }) => ({
       ...run,
       steps: steps.map(({ command, status, record }) => ({

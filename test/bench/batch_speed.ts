@@ -1,0 +1,66 @@
+/**
+ * Measures a batch: two workers against one on 24 targets, and time and memory for each target with 10,
+ * 100 and 300 of them:
+ * `deno run --allow-read --allow-write --allow-run test/bench/batch_speed.ts [workers|growth]`.
+ */
+import { join } from "@std/path";
+import { smallCampaign } from "../campaign/batch_fixture.ts";
+import { LAUNCH } from "../cli/run_millrace.ts";
+
+const COMMANDS = ["check", "trail", "orbit", "map", "plate"];
+
+async function run(
+  manifest: string,
+  options: { out: string; workers: number },
+): Promise<{ seconds: number; peak_mib: number }> {
+  const { out, workers } = options;
+  const began = performance.now();
+  const { code, stderr } = await new Deno.Command(Deno.execPath(), {
+    args: [...LAUNCH, "batch", manifest, "--out", out, "--workers", String(workers), "--quiet"],
+    stdin: "null",
+    stdout: "null",
+  }).output();
+  if (code !== 0) throw new Error(new TextDecoder().decode(stderr));
+  const seconds = (performance.now() - began) / 1000;
+  const { cost } = JSON.parse(await Deno.readTextFile(join(out, "batch.json")));
+  await Deno.remove(out, { recursive: true });
+  return { seconds, peak_mib: cost.peak_memory_bytes / 2 ** 20 };
+}
+
+async function workers(folder: string): Promise<void> {
+  const { manifest } = await smallCampaign(folder, { stars: 24, commands: COMMANDS, full: true });
+  console.log("| workers | time of 24 targets, s | highest memory, MiB |\n| --: | --: | --: |");
+  const seconds: number[][] = [[], []];
+  // Interleaved, so that what else the machine does falls on both.
+  for (let turn = 0; turn < 3; turn++) {
+    for (const count of [1, 2]) {
+      const made = await run(manifest, { out: join(folder, "out"), workers: count });
+      seconds[count - 1]!.push(made.seconds);
+      console.log(`| ${count} | ${made.seconds.toFixed(1)} | ${made.peak_mib.toFixed(0)} |`);
+    }
+  }
+  const [one, two] = seconds.map((all) => Math.min(...all)) as [number, number];
+  console.log(
+    `two workers are ${(one / two).toFixed(2)} times as fast as one (best of three each)`,
+  );
+}
+
+async function growth(folder: string): Promise<void> {
+  console.log("| targets | s for each | highest memory, MiB |\n| --: | --: | --: |");
+  for (const stars of [10, 100, 300]) {
+    const place = join(folder, String(stars));
+    const { manifest } = await smallCampaign(place, { stars, commands: COMMANDS });
+    const made = await run(manifest, { out: join(place, "out"), workers: 2 });
+    const each = (made.seconds / stars).toFixed(3);
+    console.log(`| ${stars} | ${each} | ${made.peak_mib.toFixed(0)} |`);
+  }
+}
+
+const folder = await Deno.makeTempDir({ prefix: "millrace-speed-" });
+try {
+  const [what] = Deno.args;
+  if (what !== "growth") await workers(folder);
+  if (what !== "workers") await growth(folder);
+} finally {
+  await Deno.remove(folder, { recursive: true });
+}
