@@ -117,7 +117,7 @@ function zeroLines(zeros: readonly ZeroCheck[]): string[] {
         `${zero.measured} of ${zero.exposures}`,
         `${plainNumber(zero.median_kms, 1)} km/s`,
         `${plainNumber(zero.scatter_kms, 1)} km/s`,
-        `${plainNumber(zero.orbital_kms, 1)} ± ${plainNumber(zero.orbital_error_kms, 1)} km/s${
+        `${withError(zero.orbital_kms, zero.orbital_error_kms)} km/s${
           zero.k_accretor_kms === null ? "" : ` (K1 is ${plainNumber(zero.k_accretor_kms, 0)} km/s)`
         }`,
         zero.corrected ? "corrected" : "not corrected",

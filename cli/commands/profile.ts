@@ -11,7 +11,13 @@ export const profileCommand = targetCommand("profile", {
   },
 });
 
-function profileLines(document: ProfileDocument): string[] {
+/**
+ * What was measured, as text.
+ *
+ * @param document The profile document.
+ * @returns Lines.
+ */
+export function profileLines(document: ProfileDocument): string[] {
   const measured = (pair: { readonly value: number; readonly error: number }) =>
     Number.isFinite(pair.value) ? withError(pair.value, pair.error) : "–";
   const several = document.groups.length > 1;

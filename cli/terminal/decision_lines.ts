@@ -74,5 +74,7 @@ export function decisionLines(
         : `${options.groups > 1 ? `group ${groups.join(", ")}: ` : ""}${count} exposures`,
     ];
   });
-  return tableLines([["what", "as", "by", "for"], ...rows], { heading: true, indent: 4 });
+  const all = [["what", "as", "by", "for"], ...rows];
+  const some = rows.some((row) => row[3] !== "");
+  return tableLines(some ? all : all.map((row) => row.slice(0, 3)), { heading: true, indent: 4 });
 }

@@ -66,11 +66,12 @@ function speedText({ traces, measures, velocity_kms }: LineCheck): string {
 
 function sharpnessRows(line: LineCheck): string[][] {
   const { resolution_kms, smear_kms, velocity_kms } = line;
-  const sharp = resolution_kms.low === resolution_kms.high
-    ? kms(resolution_kms.median)
-    : `${plainNumber(resolution_kms.low, 0)} to ${kms(resolution_kms.high)}`;
+  const [low, high] = [kms(resolution_kms.low), kms(resolution_kms.high)];
+  const sharp = low === high ? low : `${plainNumber(resolution_kms.low, 0)} to ${high}`;
   const smeared = smear_kms.median > 1.5 * resolution_kms.median
     ? "more than the resolution: shorter exposures would show more"
+    : smear_kms.median > resolution_kms.median
+    ? "about the resolution"
     : "within the resolution";
   return [
     ["resolution", `${sharp}, full width at half maximum`],
@@ -110,7 +111,9 @@ function noiseRows(line: LineCheck): string[][] {
       "",
       `within the line, exposures ${name} differ by ${plainNumber(found.scale, 2)} ± ${
         plainNumber(found.scale_error, 2)
-      } of their errors (${found.pairs} pairs)${found.scale > 1.2 ? `: ${excess}` : ""}`,
+      } of their errors (${found.pairs} pair${found.pairs === 1 ? "" : "s"})${
+        found.scale > 1.2 ? `: ${excess}` : ""
+      }`,
     ]];
   return [
     [

@@ -1,6 +1,7 @@
 import { assert, assertAlmostEquals, assertEquals, assertStringIncludes } from "@std/assert";
 import { join } from "@std/path";
 import { openSession, readTarget, runProfile } from "../../engine/campaign/mod.ts";
+import { profileLines } from "../../cli/commands/profile.ts";
 import { parseEcsv } from "../../engine/files/mod.ts";
 import { median } from "../../engine/numerics/mod.ts";
 import { lineNamed } from "../../engine/sky/mod.ts";
@@ -86,6 +87,10 @@ Deno.test("runProfile() names the lines that are seen and takes no neighbour's w
   // The Bowen blend and its parts are listed as covered, not as seen.
   const bowen = document.groups[0]!.identified.find(({ line }) => line.name === "Bowen blend");
   assertEquals(bowen?.seen, false);
+  const text = profileLines(document).join("\n");
+  assertStringIncludes(text, "lines seen in the mean of 16 exposures");
+  assert(/He II 4686 +4685\.\d\d +\d+\.\d+ ± \d\.\d+ +emission/.test(text), text);
+  assertEquals(/NaN|undefined|null|Bowen/.test(text), false, text);
 });
 
 Deno.test("runProfile() leaves V/R out for a line of the donor, and tells absorption by its sign", async () => {

@@ -104,7 +104,9 @@ function zeroWarnings(zero: ZeroCheck, target: Target): Warning[] {
       : []),
     ...(orbital_kms > Math.max(limit, 4 * orbital_error_kms)
       ? [
-        `goes with the orbit by ${orbital_kms.toFixed(1)} ± ${orbital_error_kms.toFixed(1)} km/s${
+        `goes with the orbit by ${orbital_kms.toFixed(1)} ± ${
+          Math.max(0.1, orbital_error_kms).toFixed(1)
+        } km/s${
           zero.k_accretor_kms === null
             ? ""
             : `, against K1 of ${zero.k_accretor_kms.toFixed(0)} km/s`
