@@ -23,6 +23,29 @@ export interface BootstrapErrors {
  * @param problem The problem.
  * @param options The fit, where noise comes from, how many replicas, and the seed.
  * @returns Intervals.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   blockBootstrap,
+ *   noiseBank,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertLess } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * const { intervals } = blockBootstrap(problem, { fit: richest, bank, replicas: 5 });
+ * const [low, high] = intervals["disc.outer_radius_over_a"]!;
+ * assertLess(low, high);
+ * ```
  */
 export function blockBootstrap(
   problem: Problem,

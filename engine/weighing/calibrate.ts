@@ -72,6 +72,35 @@ const CLEAR = 10;
  * @param options What was observed, and how many trials.
  * @returns The rate; its table can be kept and joined with others.
  * @throws {InputError} When there are no trials to be run.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   calibrate,
+ *   fitHypothesis,
+ *   fitPair,
+ *   noiseBank,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   trialJob,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assert, assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * const fit = fitHypothesis(problem, { hypothesis: ["disc"] });
+ * const job = trialJob(problem, { fit, second: ["disc", "spot"], bank, seed: 1 });
+ * const observed = fitPair(problem, job).statistic;
+ * const { value, trials } = await calibrate(job, { observed, trials: 5 });
+ * assertEquals(trials, 5);
+ * assert(value >= 1 / 6);
+ * ```
  */
 export async function calibrate(job: TrialJob, options: CalibrateOptions): Promise<Calibration> {
   const { observed, trials = 200, tables = [] } = options;
@@ -117,6 +146,35 @@ export async function calibrate(job: TrialJob, options: CalibrateOptions): Promi
  * @param job The pair.
  * @param options First trial and the one after the last, threads, progress.
  * @returns Their statistics.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   fitHypothesis,
+ *   joinNullTables,
+ *   noiseBank,
+ *   prepareProblem,
+ *   runNullTable,
+ *   simulateTrail,
+ *   trialJob,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * const fit = fitHypothesis(problem, { hypothesis: ["disc"] });
+ * const job = trialJob(problem, { fit, second: ["disc", "spot"], bank, seed: 1 });
+ * const whole = await runNullTable(job, { from: 0, to: 4 });
+ * const late = await runNullTable(job, { from: 2, to: 4 });
+ * const early = await runNullTable(job, { from: 0, to: 2 });
+ * assertEquals(joinNullTables([late, early]), whole);
+ * ```
  */
 export async function runNullTable(
   job: TrialJob,

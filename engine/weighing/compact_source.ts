@@ -37,6 +37,33 @@ export interface StrongestSource {
  * @param problem The problem.
  * @param options The fit, and the search that a detection limit made.
  * @returns The strongest source, whether it is significant or not; null when there is no excess.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   compareHypotheses,
+ *   detectionLimit,
+ *   noiseBank,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   strongestSource,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assert } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc", "spot"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const { fit, fit_errors } = compareHypotheses(prepared, [["disc"]]).hypotheses[0]!;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * const grid = { cells: 7, half_width_kms: 900 };
+ * const search = detectionLimit(problem, { fit, fit_errors, bank, grid, trials: 20 });
+ * const source = strongestSource(problem, { fit, search })!;
+ * assert(source.vx_kms < -100 && source.vy_kms > 100); // upper left, where the stream strikes
+ * ```
  */
 export function strongestSource(
   problem: Problem,

@@ -22,7 +22,7 @@ export interface WeighedHypothesis extends FittedValues {
   readonly chi_square: number;
   /** Number of unmasked samples. */
   readonly sample_count: number;
-  /** Numbers that were free: of the model, amplitudes that are not zero, baselines. */
+  /** Numbers that were free and are not on a bound: of the model, amplitudes, baselines. */
   readonly free_parameters: number;
   /** The same, each counted by the share that the data and not a prior determine. */
   readonly effective_parameters: number;
@@ -53,7 +53,7 @@ export interface Comparison {
 /** A richer hypothesis that gains less than this is fitted again from the simpler one. */
 const LEFT_BEHIND = 1;
 
-/** Starts that end this much higher in chi-square than the best are said. */
+/** Starts that end within this of the best in chi-square agree with it. */
 const DISAGREE = 0.5;
 
 /**
@@ -64,6 +64,26 @@ const DISAGREE = 0.5;
  * @param sets The hypotheses.
  * @param options Starts per hypothesis, and the seed of random ones.
  * @returns The hypotheses, best supported first.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   compareHypotheses,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assert, assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { hypotheses } = compareHypotheses(prepared, sets);
+ * assertEquals(hypotheses.length, 2);
+ * assert(hypotheses[0]!.aicc <= hypotheses[1]!.aicc);
+ * ```
  */
 export function compareHypotheses(
   prepared: PreparedProblem,
@@ -110,10 +130,10 @@ function weighed(
   const scale = noise_scale * Math.sqrt(data.pixels_per_sample);
   const errors = fitErrors(problem, fit, { scale });
   const amplitudes = errors.names.length - fit.parameters.length;
-  const zero = errors.derivatives.slice(fit.parameters.length).filter((c) => c === null).length;
   const held = fit.at_bound.filter((bound) => bound !== null).length;
   const size = errors.names.length;
-  let effective = whitening.parameters + amplitudes - zero;
+  // A part that ended without light was free to have some.
+  let effective = whitening.parameters + amplitudes;
   fit.parameters.forEach(({ prior }, j) => {
     if (fit.at_bound[j] !== null) return;
     const share = prior === null ? 1 : 1 - errors.covariance[j * size + j]! / prior ** 2;
@@ -134,7 +154,7 @@ function weighed(
     fit_errors: errors,
     chi_square,
     sample_count: problem.observed.length,
-    free_parameters: baselines + fit.parameters.length - held + amplitudes - zero,
+    free_parameters: baselines + fit.parameters.length - held + amplitudes,
     effective_parameters: effective,
     aicc,
     bic,
@@ -169,11 +189,11 @@ function fitWarnings(fit: HypothesisFit, errors: FitErrors): Warning[] {
     " cannot be told apart: their errors are correlated by more than 0.98",
   );
   if (!fit.converged) warn("fit-not-converged", ["the iterations ended before chi-square settled"]);
-  const worse = fit.starts.filter((start) => start > fit.starts[0]! + DISAGREE).length;
-  const gap = (fit.starts[fit.starts.length - 1] ?? 0) - (fit.starts[0] ?? 0);
-  if (worse > 0) {
-    const told = `${worse} of ${fit.starts.length} starts ended in another minimum`;
-    warn("starts-disagree", [told], `, higher by ${gap.toFixed(1)} in chi-square at most`);
+  const agree = fit.starts.filter((start) => start <= fit.starts[0]! + DISAGREE).length;
+  if (fit.starts.length > 1 && agree === 1) {
+    const next = fit.starts[1]! - fit.starts[0]!;
+    const told = `none of the other ${fit.starts.length - 1} starts ended in the best minimum`;
+    warn("starts-disagree", [told], `: the next one is ${next.toFixed(1)} higher in chi-square`);
   }
   const disc = amplitudes.get("disc") ?? [];
   const wild = [["one-armed", 1], ["two-armed", 3]].flatMap(([pattern, at]) => {

@@ -103,6 +103,31 @@ const BLIND = 1e-9;
  * @param problem The problem.
  * @param options The fit without the source, noise, places and threshold.
  * @returns The limit.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   compareHypotheses,
+ *   detectionLimit,
+ *   noiseBank,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assert } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const { fit, fit_errors } = compareHypotheses(prepared, [["disc"]]).hypotheses[0]!;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * const grid = { cells: 3, half_width_kms: 600 };
+ * const { limit } = detectionLimit(problem, { fit, fit_errors, bank, grid, trials: 100 });
+ * assert(limit.fraction_95[4]! < 0.02);
+ * ```
  */
 export function detectionLimit(
   problem: Problem,

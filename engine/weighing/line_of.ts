@@ -11,6 +11,25 @@ import type { Problem } from "./problem.ts";
  * @param state Another state to compute it at.
  * @default state The fit's own
  * @returns One trail of N samples per part, in units of the data.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   partLines,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const lines = partLines(prepared.problem, prepared.richest);
+ * assertEquals([...lines.keys()], ["disc", "spot"]);
+ * ```
  */
 export function partLines(
   problem: Problem,
@@ -37,6 +56,25 @@ export function partLines(
  * @param fit The fit.
  * @param options As for the parts.
  * @returns N samples, in units of the data.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   lineOf,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const line = lineOf(prepared.problem, prepared.richest);
+ * assertEquals(line.length, trail.flux.length);
+ * ```
  */
 export function lineOf(
   problem: Problem,

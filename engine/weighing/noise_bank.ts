@@ -42,6 +42,26 @@ const CORRELATED = 0.1;
  * @param options What was measured of the line's brightness; and the kind, which is else chosen by
  * the number of exposures.
  * @returns The bank.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   noiseBank,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * assertEquals([bank.kind, bank.structured], ["resampled", false]);
+ * ```
  */
 export function noiseBank(
   problem: Problem,

@@ -20,6 +20,31 @@ export interface NullTable {
  *
  * @param job The pair.
  * @returns 64 hexadecimal digits.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   fitHypothesis,
+ *   noiseBank,
+ *   nullKey,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   trialJob,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertNotEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * const fit = fitHypothesis(problem, { hypothesis: ["disc"] });
+ * const job = trialJob(problem, { fit, second: ["disc", "spot"], bank, seed: 1 });
+ * assertNotEquals(nullKey({ ...job, seed: 2 }), nullKey(job));
+ * ```
  */
 export function nullKey(job: TrialJob): string {
   return sha256(JSON.stringify(job, (_, value) => {

@@ -31,6 +31,29 @@ export interface PairFit {
  * @param problem The problem.
  * @param options The two, and where fits start.
  * @returns Both fits and their statistic.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   fitPair,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assert } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { statistic } = fitPair(prepared.problem, {
+ *   first: ["disc"],
+ *   second: ["disc", "spot"],
+ *   warm: new Map(),
+ * });
+ * assert(statistic >= 0);
+ * ```
  */
 export function fitPair(
   problem: Problem,
@@ -75,7 +98,31 @@ export interface TrialJob {
   readonly seed: number;
 }
 
-/** Everything about a pair's trials, from a fit of the null hypothesis. */
+/** Everything about a pair's trials, from a fit of the null hypothesis. *
+ * @example
+ * ```ts
+ * import {
+ *   fitHypothesis,
+ *   noiseBank,
+ *   prepareProblem,
+ *   simulateTrail,
+ *   trialJob,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * const { problem, richest, line_scale } = prepared;
+ * const bank = noiseBank(problem, richest, { line_scale });
+ * const fit = fitHypothesis(problem, { hypothesis: ["disc"] });
+ * const job = trialJob(problem, { fit, second: ["disc", "spot"], bank, seed: 1 });
+ * assertEquals([job.first, job.second], [["disc"], ["disc", "spot"]]);
+ * ```
+ */
 export function trialJob(
   problem: Problem,
   { fit, second, bank, seed }: {

@@ -60,6 +60,19 @@ const LARGEST_RMS = 0.5;
  * @param setup What is known.
  * @param options Sets and nuisances.
  * @returns The problem and what was measured.
+ *
+ * @example
+ * ```ts
+ * import { prepareProblem, simulateTrail, weighingData } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertLess } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * assertLess(prepared.line_scale.rms, 0.02);
+ * ```
  */
 export function prepareProblem(
   data: WeighingData,

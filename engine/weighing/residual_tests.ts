@@ -42,6 +42,25 @@ const FWHM = 2 * Math.sqrt(2 * Math.log(2));
  * @param problem The problem.
  * @param fit Its fit.
  * @returns The tests.
+ *
+ * @example
+ * ```ts
+ * import {
+ *   isAdequate,
+ *   prepareProblem,
+ *   residualTests,
+ *   simulateTrail,
+ *   weighingData,
+ * } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assert } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const sets = [["disc"], ["disc", "spot"]] as const;
+ * const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+ * assert(isAdequate(residualTests(prepared.problem, prepared.richest)));
+ * ```
  */
 export function residualTests(problem: Problem, fit: HypothesisFit): ResidualTests {
   const { data, whitening } = problem;
@@ -105,6 +124,23 @@ export function residualTests(problem: Problem, fit: HypothesisFit): ResidualTes
  *
  * @param tests The tests.
  * @returns True when every probability is at least 0.001.
+ *
+ * @example
+ * ```ts
+ * import { isAdequate } from "@millrace/millrace/weighing";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const good = { statistic: 0, dof: null, probability: 0.5 };
+ * const bad = { ...good, probability: 1e-5 };
+ * const tests = {
+ *   chi_square: good,
+ *   profile: good,
+ *   phase: good,
+ *   velocity_correlation: good,
+ *   phase_correlation: good,
+ * };
+ * assertEquals([isAdequate(tests), isAdequate({ ...tests, phase: bad })], [true, false]);
+ * ```
  */
 export function isAdequate(tests: ResidualTests): boolean {
   return Object.values(tests).every(({ probability }: ResidualTest) => probability >= ADEQUATE);

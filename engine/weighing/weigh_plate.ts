@@ -38,6 +38,18 @@ export interface WeighPlate {
  *
  * @param weighed The weighed line.
  * @returns What to draw.
+ *
+ * @example
+ * ```ts
+ * import { simulateTrail, weighPlate, weighTrail } from "@millrace/millrace/weighing";
+ * import { binaryFrom } from "@millrace/millrace/binary";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
+ * const weighed = await weighTrail(trail, { binary, sets: [["disc"]], limit: false });
+ * assertEquals(weighPlate(weighed).model.length, trail.flux.length);
+ * ```
  */
 export function weighPlate(weighed: WeighedLine): WeighPlate {
   const { comparison, judgement, prepared, verdict } = weighed;

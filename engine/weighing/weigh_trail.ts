@@ -10,7 +10,6 @@ import { judge, type Judgement, NEEDED } from "./judge.ts";
 import { noiseBank } from "./noise_bank.ts";
 import type { NullTable } from "./null_table.ts";
 import { type PreparedProblem, type PrepareOptions, prepareProblem } from "./prepare_problem.ts";
-import { placeErrors } from "./structure_errors.ts";
 import { type StructureProbabilities, structureProbabilities } from "./structure_probabilities.ts";
 import { type Verdict, verdictOf } from "./verdict.ts";
 import { type WeighableTrail, weighingData, type WeighingDataOptions } from "./weighing_data.ts";
@@ -110,9 +109,9 @@ export interface WeighedLine {
  * import { assertEquals } from "@std/assert";
  *
  * const binary = binaryFrom({ k_accretor_kms: 70, k_donor_kms: 320 });
- * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 40 });
+ * const trail = simulateTrail({ parts: ["disc"] }, { binary, exposures: 16, pixel_kms: 80 });
  * const sets = [["disc"], ["disc", "spot"]];
- * const { verdict } = await weighTrail(trail, { binary, sets, trials: 20, limit: false });
+ * const { verdict } = await weighTrail(trail, { binary, sets, trials: 10, limit: false });
  * assertEquals(verdict.preferred, ["disc"]);
  * ```
  */
@@ -153,14 +152,13 @@ export async function weighTrail(
   const found = search === null ? null : strongestSource(problem, { fit, search });
   let source: SeatedSource | null = null;
   if (found !== null && search !== null) {
-    // What the fit left free is in its covariance already; phases and γ turn and pull the rest.
-    const place = placeErrors(found, { errors, phases: data.sampling.phase });
-    const [xx, , yy] = place.covariance;
+    // The geometry was free in the fit: its errors are in the covariance.
+    const [xx, , yy] = found.covariance;
     source = {
       ...found,
       vx_error_kms: Math.sqrt(xx),
       vy_error_kms: Math.sqrt(yy),
-      structures: structureProbabilities(place, {
+      structures: structureProbabilities(found, {
         binary: options.binary,
         errors,
         half_width_kms: search.limit.half_width_kms,
@@ -188,7 +186,7 @@ export async function weighTrail(
     tables: calibrations.map(({ table }) => table),
     warnings: [
       ...warningsOf(prepared, { trials, white: bank.kind === "white" }),
-      ...comparison.hypotheses.filter((hypothesis, k) => k === 0 || hypothesis.adequate)
+      ...comparison.hypotheses.filter((hypothesis, k) => k === 0 || hypothesis === judgement.best)
         .flatMap(({ warnings }) => warnings),
     ],
   };

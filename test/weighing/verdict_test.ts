@@ -3,10 +3,10 @@ import {
   type Contest,
   type Hypothesis,
   type Judgement,
-  verdictOf,
   type WeighedHypothesis,
 } from "@millrace/millrace/weighing";
 import { assertEquals, assertMatch, assertNotMatch, assertStringIncludes } from "@std/assert";
+import { verdictOf } from "../../engine/weighing/verdict.ts";
 
 const DISC: Hypothesis = ["disc"];
 const SPOT: Hypothesis = ["disc", "spot"];
