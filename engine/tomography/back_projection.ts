@@ -125,8 +125,12 @@ export function backProject(
 
   const profiles: ProfileRows = { rows: grid.rows, columns: grid.columns, step_kms, flux };
   const spectra = profileSpectra(profiles);
+  const judged = options.filter_of === undefined ? spectra : profileSpectra({
+    ...profiles,
+    flux: uniformProfiles(options.filter_of.grid).flux,
+  });
   const hold = wiener
-    ? wienerGain(spectra, {
+    ? wienerGain(judged, {
       weight,
       noise: variance.map((v) => v * grid.columns),
       diameter_kms: 2 * half_width_kms,

@@ -2,8 +2,7 @@ import { type MapShape, mapStep } from "./map_shape.ts";
 import type { ProfileRows } from "./profile_filter.ts";
 import type { ProjectorPrecision } from "./projector.ts";
 import { slantGeometry } from "./slant_geometry.ts";
-import { startKernel } from "./slant_kernel.ts";
-import { joinLines, slantMemory } from "./slant_memory.ts";
+import { joinLines, slantMemory, startKernel } from "./slant_memory.ts";
 import type { SlantPlan } from "./slant_plan.ts";
 
 /** Profiles in the system's frame with their phases. */

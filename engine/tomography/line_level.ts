@@ -72,6 +72,51 @@ export function lineLevel(trail: TrailSamples, options: LineLevelOptions): numbe
 }
 
 /**
+ * Intensity of a uniform map whose profile is as strong as the data are in the root mean square, noise
+ * taken out: how large the values of a signed map may be.
+ *
+ * @param trail Exposures, data, errors.
+ * @param options Map's shape, systemic velocity, blend.
+ * @returns Level, positive.
+ *
+ * @example
+ * ```ts
+ * import { lineAmplitude } from "@millrace/millrace/tomography";
+ * import { assertAlmostEquals } from "@std/assert";
+ *
+ * const sampling = {
+ *   count: 1,
+ *   phase: Float64Array.of(0),
+ *   cycle: Float64Array.of(0),
+ *   phase_width: Float64Array.of(0),
+ *   start: Uint32Array.of(0, 2),
+ *   velocity_kms: Float64Array.of(-10, 10),
+ *   pixel_kms: Float64Array.of(20, 20),
+ *   profile_sigma_kms: Float64Array.of(10),
+ * };
+ * const trail = { sampling, flux: Float64Array.of(-5, 5), error: Float64Array.of(3, 3) };
+ * const level = lineAmplitude(trail, { pixels: 3, half_width_kms: 20, systemic_kms: 0 });
+ * assertAlmostEquals(level, 4 * 40 / 60 ** 2, 1e-12);
+ * ```
+ */
+export function lineAmplitude(trail: TrailSamples, options: LineLevelOptions): number {
+  const { sampling, flux, error } = trail;
+  const { half_width_kms, systemic_kms, pixels } = options;
+  let signal = 0, noise = 0, count = 0;
+  flux.forEach((f, k) => {
+    if (Math.abs(sampling.velocity_kms[k]! - systemic_kms) > half_width_kms) return;
+    if (!(error[k]! < Infinity)) return;
+    signal += f * f;
+    noise += error[k]! ** 2;
+    count++;
+  });
+  // With nothing but noise, a tenth of it.
+  const mean = Math.max(signal - noise, 0.01 * noise) / count;
+  return Math.sqrt(mean) * 2 * half_width_kms / sharesOf(options) /
+    (pixels * mapStep(options)) ** 2;
+}
+
+/**
  * Filtered back-projection of native samples, put on a uniform grid first: where inversions start.
  *
  * @param trail Exposures, data, errors.

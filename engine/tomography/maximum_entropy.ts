@@ -3,12 +3,15 @@ import { median } from "../numerics/mod.ts";
 import { freeBaselines } from "./baseline.ts";
 import { type BlendMember, blendProjector } from "./blend_projector.ts";
 import { checkTrail, type TrailSamples } from "./check_trail.ts";
+import { POSITIVE_ENTROPY, SIGNED_ENTROPY } from "./entropy_measure.ts";
 import { type EntropyOptions, type EntropyState, entropySteps } from "./entropy_solver.ts";
-import { backProjectedSamples, lineLevel } from "./line_level.ts";
+import { insideOutMap, insideOutOperator } from "./inside_out.ts";
+import { backProjectedSamples, lineAmplitude, lineLevel } from "./line_level.ts";
 import type { LinearOperator } from "./linear_operator.ts";
 import type { Samples } from "./map_fit.ts";
 import type { MapShape } from "./map_shape.ts";
 import { type PriorImage, priorImage } from "./prior_image.ts";
+import { negativeFlux } from "./negative_flux.ts";
 import type { Projector, ProjectorMethod, ProjectorPrecision } from "./projector.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
@@ -19,13 +22,14 @@ export interface MaximumEntropyOptions extends MapShape, EntropyOptions {
   /**
    * The image that the map falls back on.
    *
-   * @default {{ kind: "blurred", fwhm_kms: three times the resolution }}
+   * @default {{ kind: "blurred", fwhm_kms: three times the resolution }; uniform for a signed map}
    */
   readonly prior?: PriorImage;
   /**
-   * Level of the uniform image, normalised flux × km/s per (km/s)².
+   * Level of the uniform image, normalised flux × km/s per (km/s)². For a signed map: how large values
+   * are expected to be.
    *
-   * @default {the data's mean flux spread evenly over the map}
+   * @default {the data's mean flux spread evenly over the map; for a signed map their r.m.s. flux}
    */
   readonly level?: number;
   /**
@@ -52,6 +56,21 @@ export interface MaximumEntropyOptions extends MapShape, EntropyOptions {
    * @default {false}
    */
   readonly absorption?: boolean;
+  /**
+   * Whether the map may have either sign, for lines that are part emission and part absorption: the
+   * entropy is then that of the difference of two positive maps, and zero is what it falls back on.
+   *
+   * @default {false}
+   */
+  readonly signed?: boolean;
+  /**
+   * Whether to solve for the map with its speeds turned inside out, so that the default image is smooth
+   * there: it favours structure at high speeds. The map given is turned back. What lies beyond the
+   * circle of the half-width stays empty.
+   *
+   * @default {false}
+   */
+  readonly inside_out?: boolean;
   /**
    * Whether to go on in spite of a large gap in phase.
    *
@@ -80,9 +99,9 @@ export interface MaximumEntropyOptions extends MapShape, EntropyOptions {
 
 /** A maximum-entropy map, or where it stands on its way. */
 export interface EntropyMap {
-  /** The map; positive, with the sign turned when the line was said to be in absorption. */
+  /** The map; positive unless signed, with the sign turned when the line was said to be in absorption. */
   readonly map: VelocityMap;
-  /** The default image that went with it. */
+  /** The default image that went with it; turned inside out when the solution was. */
   readonly prior: VelocityMap;
   /** Level of the uniform image. */
   readonly level: number;
@@ -153,7 +172,7 @@ export function* maximumEntropySteps(
   options: MaximumEntropyOptions,
 ): Generator<EntropyMap, void, void> {
   const { pixels, half_width_kms } = options;
-  const { blends = [], free_baselines = false, absorption = false } = options;
+  const { blends = [], free_baselines = false, absorption = false, signed = false } = options;
   const warnings = checkTrail(trail, options);
   const sign = absorption ? -1 : 1;
   const { sampling, error } = trail;
@@ -162,30 +181,41 @@ export function* maximumEntropySteps(
 
   let operator: LinearOperator = options.projector ??
     blendProjector(sampling, { ...options, members: blends });
+  if (options.inside_out === true) operator = insideOutOperator(operator, shape);
   let samples: Samples = { flux, error };
   if (free_baselines) {
     ({ operator, samples } = freeBaselines(operator, { sampling, samples }));
   }
-  const level = options.level ?? lineLevel({ sampling, flux, error }, options);
-  const prior = options.prior ?? {
-    kind: "blurred",
-    fwhm_kms: 3 * Math.sqrt(8 * Math.LN2) * median(sampling.profile_sigma_kms),
-  };
-  const start = options.start?.intensity ??
-    backProjectedSamples({ sampling, flux, error }, options);
+  const turned = { sampling, flux, error };
+  if (!signed) warnings.push(...negativeFlux(turned, options));
+  const level = options.level ??
+    (signed ? lineAmplitude(turned, options) : lineLevel(turned, options));
+  const prior: PriorImage = options.prior ??
+    (signed ? { kind: "uniform" } : {
+      kind: "blurred",
+      fwhm_kms: 3 * Math.sqrt(8 * Math.LN2) * median(sampling.profile_sigma_kms),
+    });
+  const begin = options.start?.intensity ?? backProjectedSamples(turned, options);
+  const start = options.inside_out === true
+    ? insideOutMap({ ...shape, intensity: begin }).intensity
+    : begin;
   const floor = START_FLOOR * level;
+  const fallback = priorImage(prior, { ...shape, level });
   const steps = entropySteps({
     operator,
     samples,
-    prior: priorImage(prior, { ...shape, level }),
-    start: start.map((f) => Math.max(f, floor)),
+    prior: signed ? (image) => fallback(image.map(Math.abs)) : fallback,
+    start: signed ? start : start.map((f) => Math.max(f, floor)),
+    measure: signed ? SIGNED_ENTROPY : POSITIVE_ENTROPY,
   }, options);
 
   const describe = (state: EntropyState): EntropyMap => {
     const { image, prior, model, ...numbers } = state;
     return {
       ...numbers,
-      map: { ...shape, intensity: image },
+      map: options.inside_out === true
+        ? insideOutMap({ ...shape, intensity: image })
+        : { ...shape, intensity: image },
       prior: { ...shape, intensity: prior },
       model: sign === 1 ? model : model.map((m) => -m),
       level,

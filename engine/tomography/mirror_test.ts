@@ -88,32 +88,14 @@ const CELL_SIGMAS = 4, CELL_CYCLES = 1 / 24;
  * ```
  */
 export function mirrorTest(trail: TrailSamples, options: MirrorTestOptions): MirrorTest | null {
-  const { systemic_kms, half_range_kms, tolerance = 0.03, left = 1 } = options;
-  const { sampling } = trail;
-  const pairs = pairsOf(sampling.phase, tolerance);
-  if (pairs.length < 3) return null;
-  const widest = sampling.profile_sigma_kms.reduce((a, b) => Math.max(a, b), 0);
-  const width = CELL_SIGMAS * widest;
-  const cells = Math.max(2, 2 * Math.ceil(half_range_kms / width));
-  const binned = binResiduals(trail, { ...options, cells, systemic_kms });
-
-  const groups = Math.round(0.5 / CELL_CYCLES);
-  const sum = new Float64Array(groups * cells), variance = new Float64Array(groups * cells);
-  for (const { first, second, phase } of pairs) {
-    const group = Math.min(groups - 1, Math.floor(phase * 2 * groups));
-    for (let c = 0; c < cells; c++) {
-      const a = first * cells + c, b = second * cells + (cells - 1 - c);
-      const together = binned.variance[a]! + binned.variance[b]!;
-      if (!(together < Infinity)) continue;
-      const at = group * cells + c;
-      sum[at] = sum[at]! + (binned.mean[a]! - binned.mean[b]!) / together;
-      variance[at] = variance[at]! + 1 / together;
-    }
-  }
+  const { half_range_kms, left = 1 } = options;
+  const found = antisymmetricCells(trail, options);
+  if (found === null) return null;
+  const { value, variance, cells, groups, pairs } = found;
   let chi_square = 0, degrees_of_freedom = 0, worst = 0, most = 0;
-  sum.forEach((s, at) => {
-    if (variance[at] === 0) return;
-    const z = s / Math.sqrt(left * variance[at]!);
+  value.forEach((d, at) => {
+    if (!(variance[at]! < Infinity)) return;
+    const z = d / Math.sqrt(left * variance[at]!);
     chi_square += z * z;
     degrees_of_freedom++;
     if (Math.abs(z) > Math.abs(most)) [worst, most] = [at, z];
@@ -123,12 +105,89 @@ export function mirrorTest(trail: TrailSamples, options: MirrorTestOptions): Mir
     p_value: chiSquareTail(chi_square, degrees_of_freedom),
     chi_square,
     degrees_of_freedom,
-    pairs: pairs.length,
+    pairs,
     worst: {
       phase: (Math.floor(worst / cells) + 0.5) * 0.5 / groups,
       velocity_kms: (worst % cells + 0.5 - 0.5 * cells) * 2 * half_range_kms / cells,
       sigma: most,
     },
+  };
+}
+
+/** Differences between profiles and their mirror images half an orbit later, in cells. */
+export interface AntisymmetricCells {
+  /** Mean difference in each cell, groups × cells row-major. */
+  readonly value: Float64Array;
+  /** Its variance; Infinity where there is none. */
+  readonly variance: Float64Array;
+  /** Number of cells of velocity. */
+  readonly cells: number;
+  /** Number of groups of phase in the half orbit. */
+  readonly groups: number;
+  /** Number of pairs of exposures. */
+  readonly pairs: number;
+}
+
+/**
+ * The part of the data less a model that is antisymmetric under (v, φ) → (−v, φ + ½), averaged over
+ * cells of velocity and phase: no fixed map reaches it.
+ *
+ * @param trail Exposures, data, errors.
+ * @param options Systemic velocity, range, model.
+ * @returns The differences; null with fewer than three pairs of exposures half an orbit apart.
+ *
+ * @example
+ * ```ts
+ * import { antisymmetricCells } from "@millrace/millrace/tomography";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const sampling = {
+ *   count: 2,
+ *   phase: Float64Array.of(0.1, 0.6),
+ *   cycle: new Float64Array(2),
+ *   phase_width: new Float64Array(2),
+ *   start: Uint32Array.of(0, 1, 2),
+ *   velocity_kms: new Float64Array(2),
+ *   pixel_kms: new Float64Array(2).fill(20),
+ *   profile_sigma_kms: new Float64Array(2).fill(40),
+ * };
+ * const flux = new Float64Array(2);
+ * const trail = { sampling, flux, error: flux.map(() => 1) };
+ * const found = antisymmetricCells(trail, { systemic_kms: 0, half_range_kms: 100, model: flux });
+ * assertEquals(found, null); // one pair is too few
+ * ```
+ */
+export function antisymmetricCells(
+  trail: TrailSamples,
+  options: Omit<MirrorTestOptions, "left">,
+): AntisymmetricCells | null {
+  const { half_range_kms, tolerance = 0.03 } = options;
+  const { sampling } = trail;
+  const pairs = pairsOf(sampling.phase, tolerance);
+  if (pairs.length < 3) return null;
+  const widest = sampling.profile_sigma_kms.reduce((a, b) => Math.max(a, b), 0);
+  const cells = Math.max(2, 2 * Math.ceil(half_range_kms / (CELL_SIGMAS * widest)));
+  const binned = binResiduals(trail, { ...options, cells });
+
+  const groups = Math.round(0.5 / CELL_CYCLES);
+  const sum = new Float64Array(groups * cells), weight = new Float64Array(groups * cells);
+  for (const { first, second, phase } of pairs) {
+    const group = Math.min(groups - 1, Math.floor(phase * 2 * groups));
+    for (let c = 0; c < cells; c++) {
+      const a = first * cells + c, b = second * cells + (cells - 1 - c);
+      const together = binned.variance[a]! + binned.variance[b]!;
+      if (!(together < Infinity)) continue;
+      const at = group * cells + c;
+      sum[at] = sum[at]! + (binned.mean[a]! - binned.mean[b]!) / together;
+      weight[at] = weight[at]! + 1 / together;
+    }
+  }
+  return {
+    value: sum.map((s, at) => weight[at]! > 0 ? s / weight[at]! : 0),
+    variance: weight.map((w) => w > 0 ? 1 / w : Infinity),
+    cells,
+    groups,
+    pairs: pairs.length,
   };
 }
 
@@ -173,8 +232,10 @@ function binResiduals(
   for (let i = 0; i < sampling.count; i++) {
     for (let k = sampling.start[i]!; k < sampling.start[i + 1]!; k++) {
       if (!(error[k]! < Infinity)) continue;
-      const cell = Math.floor((velocity[k]! / half_range_kms + 1) * 0.5 * cells);
-      if (cell < 0 || cell >= cells) continue;
+      // Counted outwards on either side, so that a sample and its mirror image share a cell's fate.
+      const out = Math.floor(Math.abs(velocity[k]!) / half_range_kms * 0.5 * cells);
+      if (out >= 0.5 * cells || velocity[k] === 0) continue;
+      const cell = velocity[k]! > 0 ? 0.5 * cells + out : 0.5 * cells - 1 - out;
       const w = 1 / error[k]! ** 2;
       const at = i * cells + cell;
       sum[at] = sum[at]! + w * (flux[k]! - model[k]!);

@@ -1,44 +1,8 @@
 import type { Sampling } from "../trail/mod.ts";
 import type { LinearOperator } from "./linear_operator.ts";
 import type { Projector, ProjectorOptions } from "./projector.ts";
-import { SLANT_KERNEL_BYTES } from "./slant_kernel_bytes.ts";
-import { joinLines, slantMemory, writeLines } from "./slant_memory.ts";
+import { joinLines, kernelModule, slantMemory, startKernel, writeLines } from "./slant_memory.ts";
 import { slantPlan, wantedInstants } from "./slant_plan.ts";
-
-/** What the kernel offers; `plan` is the address of its Plan. */
-export interface KernelExports {
-  /** Map to samples, double precision. */
-  readonly forward64: (plan: number) => void;
-  /** Samples to map, double precision. */
-  readonly adjoint64: (plan: number) => void;
-  /** Map to samples, single precision. */
-  readonly forward32: (plan: number) => void;
-  /** Samples to map, single precision. */
-  readonly adjoint32: (plan: number) => void;
-  /** Interpolated profiles to map, double precision. */
-  readonly gatherProfiles64: GatherProfiles;
-  /** Interpolated profiles to map, single precision. */
-  readonly gatherProfiles32: GatherProfiles;
-}
-
-type GatherProfiles = (
-  plan: number,
-  columns: number,
-  positions: number,
-  rises: number,
-) => void;
-
-let compiled: WebAssembly.Module | null | undefined;
-
-function kernelModule(): WebAssembly.Module | null {
-  if (compiled === undefined) {
-    const bytes = Uint8Array.from(atob(SLANT_KERNEL_BYTES), (c) => c.charCodeAt(0));
-    compiled = typeof WebAssembly === "object" && WebAssembly.validate(bytes)
-      ? new WebAssembly.Module(bytes)
-      : null;
-  }
-  return compiled;
-}
 
 /**
  * Whether this machine can run the WebAssembly kernel (it needs 128-bit SIMD). Where it cannot, the
@@ -56,28 +20,6 @@ function kernelModule(): WebAssembly.Module | null {
  */
 export function kernelAvailable(): boolean {
   return kernelModule() !== null;
-}
-
-/**
- * Starts the kernel on a memory.
- *
- * @param memory The memory, from {@linkcode slantMemory}.
- * @returns The kernel's functions, or null where WebAssembly SIMD is missing.
- *
- * @example
- * ```ts
- * import { kernelAvailable, startKernel } from "@millrace/millrace/tomography";
- * import { assertEquals } from "@std/assert";
- *
- * const run = startKernel(new WebAssembly.Memory({ initial: 1 }));
- * assertEquals(run !== null, kernelAvailable());
- * ```
- */
-export function startKernel(memory: WebAssembly.Memory): KernelExports | null {
-  const module = kernelModule();
-  if (module === null) return null;
-  return new WebAssembly.Instance(module, { env: { memory } })
-    .exports as unknown as KernelExports;
 }
 
 /**

@@ -1,9 +1,59 @@
 import type { ProjectorPrecision } from "./projector.ts";
+import { SLANT_KERNEL_BYTES } from "./slant_kernel_bytes.ts";
 import type { SlantPlan } from "./slant_plan.ts";
 
 /** Zeros on either side of a map line, and lines or instants per pass: as in slant_kernel.as. */
 export const LINE_PAD = 16;
 const GROUP = 4;
+
+/** What the kernel offers; `plan` is the address of its Plan. */
+export interface KernelExports {
+  /** Map to samples, double precision. */
+  readonly forward64: (plan: number) => void;
+  /** Samples to map, double precision. */
+  readonly adjoint64: (plan: number) => void;
+  /** Map to samples, single precision. */
+  readonly forward32: (plan: number) => void;
+  /** Samples to map, single precision. */
+  readonly adjoint32: (plan: number) => void;
+  /** Interpolated profiles to map, double precision. */
+  readonly gatherProfiles64: GatherProfiles;
+  /** Interpolated profiles to map, single precision. */
+  readonly gatherProfiles32: GatherProfiles;
+}
+
+type GatherProfiles = (
+  plan: number,
+  columns: number,
+  positions: number,
+  rises: number,
+) => void;
+
+let compiled: WebAssembly.Module | null | undefined;
+
+/** The compiled kernel; null where WebAssembly SIMD is missing. */
+export function kernelModule(): WebAssembly.Module | null {
+  if (compiled === undefined) {
+    const bytes = Uint8Array.from(atob(SLANT_KERNEL_BYTES), (c) => c.charCodeAt(0));
+    compiled = typeof WebAssembly === "object" && WebAssembly.validate(bytes)
+      ? new WebAssembly.Module(bytes)
+      : null;
+  }
+  return compiled;
+}
+
+/**
+ * Starts the kernel on a memory.
+ *
+ * @param memory The memory, from {@linkcode slantMemory}.
+ * @returns The kernel's functions, or null where WebAssembly SIMD is missing.
+ */
+export function startKernel(memory: WebAssembly.Memory): KernelExports | null {
+  const module = kernelModule();
+  if (module === null) return null;
+  return new WebAssembly.Instance(module, { env: { memory } })
+    .exports as unknown as KernelExports;
+}
 
 /** Lines of a map in the kernel's memory. */
 export type Lines = Float64Array | Float32Array;
@@ -33,25 +83,6 @@ export interface SlantMemory {
  * @param plan The plan.
  * @param options Number of samples, number format of the map, further vectors to write.
  * @returns Where things are.
- *
- * @example
- * ```ts
- * import { slantMemory, slantPlan } from "@millrace/millrace/tomography";
- * import { assertEquals } from "@std/assert";
- *
- * const sampling = {
- *   count: 1,
- *   phase: Float64Array.of(0.1),
- *   cycle: Float64Array.of(0),
- *   phase_width: Float64Array.of(0),
- *   start: Uint32Array.of(0, 1),
- *   velocity_kms: Float64Array.of(0),
- *   pixel_kms: Float64Array.of(20),
- *   profile_sigma_kms: Float64Array.of(100),
- * };
- * const plan = slantPlan(sampling, { pixels: 3, half_width_kms: 100, systemic_kms: 0 });
- * assertEquals(slantMemory(plan, { sample_count: 1, precision: "double" }).data.length, 1);
- * ```
  */
 export function slantMemory(
   plan: SlantPlan,
@@ -142,14 +173,6 @@ const BLOCK = 16;
  * @param map The map, pixels².
  * @param memory The memory.
  * @param pixels Pixels along a side.
- *
- * @example
- * ```ts
- * import { writeLines } from "@millrace/millrace/tomography";
- * import { assertEquals } from "@std/assert";
- *
- * assertEquals(writeLines.length, 3);
- * ```
  */
 export function writeLines(
   map: Float64Array,
@@ -174,14 +197,6 @@ export function writeLines(
  * @param memory The memory.
  * @param into Receives the map, pixels².
  * @param pixels Pixels along a side.
- *
- * @example
- * ```ts
- * import { joinLines } from "@millrace/millrace/tomography";
- * import { assertEquals } from "@std/assert";
- *
- * assertEquals(joinLines.length, 3);
- * ```
  */
 export function joinLines(
   { rows, columns, stride }: Pick<SlantMemory, "rows" | "columns" | "stride">,
