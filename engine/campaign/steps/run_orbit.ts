@@ -48,12 +48,12 @@ export async function measureTargetOrbit(session: Session): Promise<TargetOrbit>
   const { target, signal } = session;
   const provisional = await provisionalEphemeris(session);
   const ephemeris = provisional ?? await session.ephemeris();
-  const { spectra } = await session.exposures();
+  const { spectra, photometry } = await session.exposures();
   const lines: OrbitLine[] = [];
   for (const settings of session.lines("measure the orbit")) {
     const trail = provisional === null
       ? await session.trail(settings)
-      : trailOf(spectra, { target, line: settings, ephemeris });
+      : trailOf(spectra, { target, line: settings, ephemeris, photometry });
     const resolution_kms = FWHM_OVER_SIGMA * median(trail.sampling.profile_sigma_kms);
     const templates = await readTemplates(target, { settings, line: trail.line, resolution_kms });
     lines.push({
