@@ -50,18 +50,32 @@ export function resampleCells(image: ImageItem, size: RasterSize): Uint8Array {
   }
   const stride = size.columns * 3;
   const result = new Uint8Array(size.rows * stride);
-  down.forEach(({ first, weights }, row) => {
-    for (let i = 0; i < stride; i++) {
-      let sum = 0.5;
-      let at = first * stride + i;
-      for (const weight of weights) {
-        sum += weight * wide[at]!;
-        at += stride;
-      }
-      result[row * stride + i] = sum;
-    }
+  down.forEach((share, row) => {
+    const before = down[row - 1];
+    const same = share.weights.length === 1 && before?.weights.length === 1 &&
+      before.first === share.first;
+    if (same) result.copyWithin(row * stride, (row - 1) * stride, row * stride);
+    else addRows(wide, { share, into: result.subarray(row * stride, (row + 1) * stride) });
   });
   return result;
+}
+
+/** One row of the result: the weighted sum of the rows under it, rounded. */
+function addRows(
+  wide: Float32Array,
+  options: { readonly share: Share; readonly into: Uint8Array },
+): void {
+  const { share: { first, weights }, into } = options;
+  const stride = into.length;
+  for (let i = 0; i < stride; i++) {
+    let sum = 0.5;
+    let at = first * stride + i;
+    for (const weight of weights) {
+      sum += weight * wide[at]!;
+      at += stride;
+    }
+    into[i] = sum;
+  }
 }
 
 interface Share {

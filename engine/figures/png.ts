@@ -69,18 +69,24 @@ export async function pictureRaster(picture: Picture, options: PngOptions = {}):
   const resvg = await renderer(svg.replace(/(width|height)="([\d.]+)pt"/g, '$1="$2"'), scale);
   try {
     const image = resvg.render();
-    const { width: columns, height: rows, pixels } = image;
-    const rgb = new Uint8Array(columns * rows * 3);
-    for (let i = 0, j = 0; i < pixels.length; i += 4) {
-      rgb[j++] = pixels[i]!;
-      rgb[j++] = pixels[i + 1]!;
-      rgb[j++] = pixels[i + 2]!;
-    }
+    const { width: columns, height: rows } = image;
+    const rgb = withoutAlpha(image.pixels);
     image.free();
     return { columns, rows, rgb };
   } finally {
     resvg.free();
   }
+}
+
+/** Red, green, blue of each pixel: the paper under the picture is opaque. */
+function withoutAlpha(rgba: Uint8Array): Uint8Array {
+  const rgb = new Uint8Array(rgba.length / 4 * 3);
+  for (let i = 0, j = 0; i < rgba.length; i += 4) {
+    rgb[j++] = rgba[i]!;
+    rgb[j++] = rgba[i + 1]!;
+    rgb[j++] = rgba[i + 2]!;
+  }
+  return rgb;
 }
 
 /**

@@ -8,7 +8,9 @@ import {
 } from "@std/assert";
 import { join } from "@std/path";
 import { runPlate } from "../../engine/campaign/mod.ts";
-import { nightsOf } from "../../engine/campaign/subject/nights.ts";
+import { halvesSubject, nightMaps } from "../../engine/campaign/subject/map_subject.ts";
+import { nightsOf, rowsOf } from "../../engine/campaign/subject/nights.ts";
+import { backProject } from "../../engine/tomography/mod.ts";
 import { limitMap } from "../../engine/campaign/subject/limit_subject.ts";
 import { toolExists } from "../figures/decode.ts";
 import { BROWSER } from "../figures/page/browser_checks.ts";
@@ -97,6 +99,38 @@ Deno.test("nightsOf() parts exposures at gaps of hours, not at read-outs or a cl
     phase: Float64Array.of(0.01, 0.02, 0.36, 0.37),
   };
   assertEquals(nightsOf(long, { period_d: 2 }), [0, 0, 1, 1]);
+});
+
+Deno.test("halvesSubject() and nightMaps() part two nights, and make no map of too few exposures", async () => {
+  const line = session.lines("test")[0]!;
+  const mapped = await session.map(line);
+  const { sampling } = mapped.trail;
+  const parted = (first: number) => {
+    const cycle = sampling.cycle.map((value, i) => i < first ? value : value + 291); // a day later
+    return { ...mapped, trail: { ...mapped.trail, sampling: { ...sampling, cycle } } };
+  };
+  const period_d = 0.0823714;
+  assertEquals(halvesSubject(mapped, { period_d }).names, ["odd exposures", "even exposures"]);
+  const { names, maps } = halvesSubject(parted(30), { period_d });
+  assertEquals(names, ["first night", "second night"]);
+  assertNotEquals(maps[0].intensity, maps[1].intensity);
+  const [first, second] = nightMaps(parted(55), { period_d });
+  assertEquals([first!.name, first!.exposures, second!.name, second!.exposures], [
+    "night 1",
+    55,
+    "night 2",
+    5,
+  ]);
+  assert(first!.map !== null);
+  assertEquals(second!.map, null);
+  // Each night's map is that of its own exposures alone.
+  const grid = rowsOf(mapped.trail.grid, (row) => row < 55);
+  const alone = backProject({ grid }, {
+    pixels: mapped.map.pixels,
+    half_width_kms: mapped.map.half_width_kms,
+    systemic_kms: mapped.systemic_kms,
+  });
+  assertEquals(first!.map!.intensity, alone.intensity);
 });
 
 Deno.test("limitMap() turns shares of the line's light into flux, place by place", () => {

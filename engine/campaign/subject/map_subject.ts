@@ -69,7 +69,9 @@ export function halvesSubject(
   return {
     maps: [made[0]!, made[1]!],
     names: last === 0
-      ? ["odd exposures", "even exposures"]
+      ? mapped.trail.grid.rows === mapped.trail.sampling.count
+        ? ["odd exposures", "even exposures"]
+        : ["odd bins of phase", "even bins of phase"]
       : last === 1
       ? ["first night", "second night"]
       : ["first half of the nights", "second half of the nights"],

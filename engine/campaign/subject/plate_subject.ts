@@ -50,7 +50,9 @@ export async function plateSubject(
   const { line, panels } = options;
   const { target } = session;
   const wants = (names: readonly PanelName[]) => panels.some((name) => names.includes(name));
-  const binary = session.binary();
+  // On another zero the binary stands turned by an unknown angle: nothing of it is marked.
+  const turned = target.settings.orbit.zero_marks === "emission-crossing";
+  const binary = turned ? null : session.binary();
   const trail = await session.trail(line);
   const subject: PlateSubject = {
     title: target.settings.plate.title ?? target.title,

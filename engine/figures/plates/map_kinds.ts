@@ -39,7 +39,7 @@ export type MapPanelName = Extract<
 
 const remedies: Partial<Record<keyof PlateSubject, string>> = {
   spread: "set map.resamples to 2 or more",
-  detection_limit: "let [binary] fix K1 and K2",
+  detection_limit: "let [binary] fix K1 and K2, and the zero of phase mark the donor",
 };
 const intensityUnit = `(${KMS_LABEL})^{−1}`;
 

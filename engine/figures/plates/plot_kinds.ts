@@ -166,14 +166,14 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   periodogram: plotKind({
     panel: "periodogram",
     field: "periodogram",
-    remedy: "give orbit.period_range_d in place of orbit.period_d",
+    remedy: "millrace orbit says why no velocities were measured",
     draw: periodogramPanel,
     tell: (scan) => `Periodogram.${tellBest(scan, "cycles per day")}`,
   }),
   "systemic-scan": plotKind({
     panel: "systemic-scan",
     field: "systemic_scan",
-    remedy: "exposures must cover the orbit, and half of map.half_width_kms on either side of γ",
+    remedy: "exposures must cover the orbit, and map.half_width_kms on either side of γ",
     draw: (scan, place) => systemicScanPanel(scan, { ...place, y_label: scan.label }),
     tell: (scan) => `${scan.statistic} against the systemic velocity.${tellBest(scan, "km/s")}`,
   }),
@@ -196,7 +196,7 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
   "disc-in-space": plotKind({
     panel: "disc-in-space",
     field: "binary",
-    remedy: "let [binary] fix K1 and K2",
+    remedy: "let [binary] fix K1 and K2, and the zero of phase mark the donor",
     weight: 3,
     aspect: 1.5,
     height_pt: 150,

@@ -74,7 +74,7 @@ const fields: Partial<Record<PanelName, [field: keyof PlateSubject, remedy: stri
   "detection-limit": ["detection_limit", "let [binary] fix K1 and K2"],
   spectrum: ["spectrum", "millrace profile makes it"],
   "velocity-curve": ["velocities", "millrace orbit says why"],
-  periodogram: ["periodogram", "give orbit.period_range_d"],
+  periodogram: ["periodogram", "millrace orbit says why"],
   "systemic-scan": ["systemic_scan", "exposures must cover the orbit"],
   "mass-plane": ["mass_plane", "K2 must be measured"],
   "disc-in-space": ["binary", "let [binary] fix K1 and K2"],
