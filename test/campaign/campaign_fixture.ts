@@ -64,12 +64,18 @@ export interface Campaign {
   readonly map: (set?: readonly string[]) => Promise<MapDocument>;
 }
 
+const written: string[] = [];
+globalThis.addEventListener("unload", () => {
+  for (const folder of written) Deno.removeSync(folder, { recursive: true });
+});
+
 /** Writes a campaign: folders of exposures and the target file. */
 export async function writeCampaign(
   folders: readonly Folder[],
   sections: Partial<typeof SECTIONS> = {},
 ): Promise<Campaign> {
   const folder = await Deno.makeTempDir({ prefix: "millrace-campaign-" });
+  written.push(folder);
   for (const { name = "night", raw, layout } of folders) {
     await Deno.mkdir(join(folder, name), { recursive: true });
     for (const file of encodeExposures(raw, { layout, stem: name })) {

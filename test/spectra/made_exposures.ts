@@ -111,9 +111,15 @@ export function madeExposures(making: Making = {}): RawExposure[] {
   });
 }
 
+const folders: string[] = [];
+globalThis.addEventListener("unload", () => {
+  for (const folder of folders) Deno.removeSync(folder, { recursive: true });
+});
+
 /** Writes files into a fresh folder and gives their paths. */
 export async function written(files: readonly EncodedFile[]): Promise<string[]> {
   const folder = await Deno.makeTempDir({ prefix: "millrace-spectra-" });
+  folders.push(folder);
   const paths: string[] = [];
   for (const { name, bytes } of files) {
     await Deno.writeFile(`${folder}/${name}`, bytes);
