@@ -23,11 +23,25 @@ export async function holdFolder<T>(
   action: () => Promise<T>,
   options: { owner?: string } = {},
 ): Promise<T> {
+  const found = await isThere(folder);
   await makeFolder(folder);
-  return withLock(join(folder, FOLDER_LOCK), async () => {
-    for await (const { name, isFile } of Deno.readDir(folder)) {
-      if (isFile && UNFINISHED.test(name)) await Deno.remove(join(folder, name));
-    }
-    return await action();
-  }, options);
+  try {
+    return await withLock(join(folder, FOLDER_LOCK), async () => {
+      for await (const { name, isFile } of Deno.readDir(folder)) {
+        if (isFile && UNFINISHED.test(name)) await Deno.remove(join(folder, name));
+      }
+      return await action();
+    }, options);
+  } finally {
+    // A run that wrote nothing leaves nothing; a folder that holds something stays.
+    if (!found) await Deno.remove(folder).catch(() => {});
+  }
+}
+
+async function isThere(folder: string): Promise<boolean> {
+  try {
+    return (await Deno.stat(folder)).isDirectory;
+  } catch {
+    return false;
+  }
 }

@@ -261,7 +261,7 @@ Deno.test({
       const run = await runMillrace(["trail", "star.toml", "--out", "disc/out"], { cwd: folder });
       assertEquals([run.code, run.stdout], [1, ""]);
       assertStringIncludes(run.stderr, "Cannot write file: the disc is full (disc/out/trail.fits)");
-      assertEquals([...Deno.readDirSync(`${disc}/out`)], []);
+      assertEquals([...Deno.readDirSync(disc)], []);
     } finally {
       await mount(["umount", disc]);
       await Deno.remove(folder, { recursive: true });
