@@ -98,7 +98,9 @@ export async function mapLine(
   const line = trail.line.name;
   const pixels = settings.pixels ?? pixelsFor(trail, settings.half_width_kms);
   const resolution_kms = FWHM_PER_SIGMA * median(trail.sampling.profile_sigma_kms);
-  const centre = { vx_kms: 0, vy_kms: binary === null ? 0 : -binary.k_accretor_kms };
+  // On a map that is rotated by an unknown angle only the centre of mass is known to be where it is.
+  const placed = binary !== null && ephemeris.zero_marks !== "emission-crossing";
+  const centre = { vx_kms: 0, vy_kms: placed ? -binary.k_accretor_kms : 0 };
   const inverted = await invertTrail(trail, {
     settings,
     pixels,
@@ -122,7 +124,6 @@ export async function mapLine(
     progress,
     signal,
   });
-  const named = binary !== null && ephemeris.zero_marks !== "emission-crossing";
   const disc = target.settings.model?.disc;
   const features = mapFeatures(map, {
     resolution_kms,
@@ -130,7 +131,7 @@ export async function mapLine(
     spread,
     systemic_error_kms: systemic.error_kms ?? 0,
     phase_error: phaseError(ephemeris, options.epoch),
-    find_part: named ? partFinder(binary) : null,
+    find_part: placed ? partFinder(binary) : null,
     rim_speed_kms: binary === null || disc?.outer_radius_over_a === undefined
       ? null
       : keplerianSpeed(disc.outer_radius_over_a, binary),
