@@ -24,14 +24,16 @@ export interface StepEntry {
 const REPLICA = 0.02;
 /** An iterative inversion over a direct one. */
 const ITERATIVE = 20;
+/** The tests whether any map can fit. */
+const ANY_MAP = 30;
 
 function mapCost({ map }: TargetSettings): number {
   const one = map.method === "back-projection" ? 1 : ITERATIVE;
-  return one * (1 + REPLICA * map.resamples);
+  return ANY_MAP + one * (1 + REPLICA * map.resamples);
 }
 
 /** A trial of two hypotheses, in units of reading the exposures. */
-const TRIAL = 4;
+const TRIAL = 1;
 
 /** Name of a step. */
 export type StepName =
@@ -56,7 +58,7 @@ export const stepTable: Readonly<Record<StepName, StepEntry>> = {
   orbit: { run: runOrbit, cost: () => 5 },
   map: { run: runMap, cost: mapCost },
   synth: { run: runSynth, cost: () => 1 },
-  weigh: { run: runWeigh, cost: ({ weigh }) => 20 + TRIAL * weigh.trials },
+  weigh: { run: runWeigh, cost: ({ weigh }) => 10 + TRIAL * weigh.trials },
   plate: { run: runPlate, cost: () => 3 },
   thumbnail: { run: runThumbnail, cost: () => 0.5 },
 };

@@ -1,6 +1,6 @@
 /**
- * Measures a batch: two workers against one on 24 targets, and time and memory for each target with 10,
- * 100 and 300 of them:
+ * Measures a batch: two workers against one on 24 targets, and time for each target and memory with
+ * 10 to 300 small ones:
  * `deno run --allow-read --allow-write --allow-run test/bench/batch_speed.ts [workers|growth]`.
  */
 import { join } from "@std/path";
@@ -46,13 +46,22 @@ async function workers(folder: string): Promise<void> {
 }
 
 async function growth(folder: string): Promise<void> {
-  console.log("| targets | s for each | highest memory, MiB |\n| --: | --: | --: |");
-  for (const stars of [10, 100, 300]) {
-    const place = join(folder, String(stars));
-    const { manifest } = await smallCampaign(place, { stars, commands: COMMANDS });
-    const made = await run(manifest, { out: join(place, "out"), workers: 2 });
-    const each = (made.seconds / stars).toFixed(3);
-    console.log(`| ${stars} | ${each} | ${made.peak_mib.toFixed(0)} |`);
+  console.log(
+    "| commands | targets | s for each | highest memory, MiB |\n| --- | --: | --: | --: |",
+  );
+  for (
+    const [commands, counts] of [
+      [["check", "trail", "map"], [10, 100, 300]],
+      [["check", "trail", "map", "plate"], [10, 60]],
+    ] as const
+  ) {
+    for (const stars of counts) {
+      const place = join(folder, `${commands.length}-${stars}`);
+      const { manifest } = await smallCampaign(place, { stars, commands });
+      const made = await run(manifest, { out: join(place, "out"), workers: 2 });
+      const each = (made.seconds / stars).toFixed(3);
+      console.log(`| ${commands.at(-1)} | ${stars} | ${each} | ${made.peak_mib.toFixed(0)} |`);
+    }
   }
 }
 

@@ -77,20 +77,29 @@ function counts(runs: readonly GatheredRun[]): string {
   ].join(", ");
 }
 
+/** What is not done: a row for each failure, and one for all of which nothing is there yet. */
 function undone(runs: readonly GatheredRun[]): string {
-  const rows = runs.filter(({ status }) => status !== "done");
-  if (rows.length === 0) return "";
-  return `<h2>Not done</h2>
-<div class="scroll"><table>
+  const nothing = runs.filter(({ steps, error }) =>
+    error === null && steps.every(({ status }) => status === "missing")
+  );
+  const rest = runs.filter((run) => run.status !== "done" && !nothing.includes(run));
+  if (nothing.length + rest.length === 0) return "";
+  const name = (run: GatheredRun) =>
+    htmlText(run.title + (run.variant === null ? "" : `, ${run.variant}`));
+  const rows = rest.map((run) =>
+    `<tr><td class="${run.status}">${name(run)}</td><td>${htmlText(run.path)}</td>` +
+    `<td>${failureText(run)}</td></tr>`
+  );
+  const more = nothing.length === 0
+    ? ""
+    : `<p><span class="missing">Not begun</span>, or to be made again: ${
+      nothing.map(name).join("; ")
+    }.</p>`;
+  const table = rows.length === 0 ? "" : `<div class="scroll"><table>
 <tr><th>target</th><th>file</th><th>why</th></tr>
-${
-    rows.map((run) =>
-      `<tr><td class="${run.status}">${htmlText(run.title)}${
-        run.variant === null ? "" : `, ${htmlText(run.variant)}`
-      }</td><td>${htmlText(run.path)}</td><td>${failureText(run)}</td></tr>`
-    ).join("\n")
-  }
+${rows.join("\n")}
 </table></div>`;
+  return `<h2>Not done</h2>\n${table}${more}`;
 }
 
 function plates(files: readonly string[]): string {

@@ -1,6 +1,7 @@
 import { join } from "@std/path";
 import type { PlateDescription, PlateSubject } from "../../figures/mod.ts";
 import type { SamplePlateSettings } from "../schema/manifest_schema.ts";
+import { VERSION } from "../version.ts";
 import type { BatchJob } from "./batch_jobs.ts";
 import type { GatheredRun } from "./gather_job.ts";
 import { isMeant } from "./manifest.ts";
@@ -63,17 +64,27 @@ async function* drawPage(
 ): AsyncGenerator<SampleFile> {
   const { subjects, name } = options;
   // Fonts and renderer are heavy: they load only here.
-  const { drawPlate, pdfBytes, pngBytes, svgText } = await import("../../figures/mod.ts");
+  const figures = await import("../../figures/mod.ts");
+  const { drawPlate, panelKinds, pdfBytes, plateLayout, plateWidth, pngBytes, svgText } = figures;
+  const { panels, columns, width } = plate;
+  // A last row of few targets would be drawn larger: all rows take the height of a full one.
+  const full = Array.from(
+    { length: columns },
+    (_, subject) => panels.map((panel) => ({ kind: panelKinds[panel], subject, named: false })),
+  ).flat();
+  const { rows: [boxes] } = plateLayout([{ panels: full }], plateWidth({ width }));
+  const height_mm = boxes![0]!.frame.height / figures.POINTS_PER_MM;
   const rows: PlateDescription["rows"] = Array.from(
-    { length: Math.ceil(subjects.length / plate.columns) },
+    { length: Math.ceil(subjects.length / columns) },
     (_, row) => ({
-      panels: subjects.slice(row * plate.columns, (row + 1) * plate.columns).flatMap((_, i) =>
-        plate.panels.map((panel) => ({ panel, subject: row * plate.columns + i }))
+      height_mm,
+      panels: subjects.slice(row * columns, (row + 1) * columns).flatMap((_, i) =>
+        panels.map((panel) => ({ panel, subject: row * columns + i }))
       ),
     }),
   );
   const share = plate.shared_scale ? ["map", "trail"] as const : [];
-  const { picture, caption } = drawPlate({ width: plate.width, rows, share }, subjects);
+  const { picture, caption } = drawPlate({ width, rows, share }, subjects);
   for (const format of plate.formats) {
     const data = format === "svg"
       ? svgText(picture)
@@ -82,5 +93,5 @@ async function* drawPage(
       : await pdfBytes(picture);
     yield { name: `${name}.${format}`, data };
   }
-  yield { name: `${name}.txt`, data: `${caption}\n\nWritten by Millrace.\n` };
+  yield { name: `${name}.txt`, data: `Written by Millrace ${VERSION}.\n\n${caption}\n` };
 }

@@ -95,20 +95,30 @@ const check = (...path: string[]) => (source: SummarySource) =>
 const weigh = (...path: string[]) => (source: SummarySource) =>
   at(entry(source, "weigh", "lines"), path);
 
-/** The weighing's preferred parts in one word, as in "disc+spot". */
+/** γ of the star for which it was measured better. */
+const systemic = (key: "systemic_kms" | "systemic_error_kms") => (source: SummarySource) => {
+  const stars = (["accretor", "donor"] as const).filter((star) =>
+    numberOrNull(orbit(star, "systemic_error_kms")(source)) !== null
+  );
+  const [best] = stars.sort((a, b) => error(a) - error(b));
+  return best === undefined ? null : orbit(best, key)(source);
+
+  function error(star: string): number {
+    return numberOrNull(orbit(star, "systemic_error_kms")(source)) ?? Infinity;
+  }
+};
+
+/** The weighing in a few words: "disc+spot", "disc+spot or disc+stream", "outside", "undecided". */
 function verdict(source: SummarySource): unknown {
   const preferred = weigh("preferred")(source);
-  return Array.isArray(preferred) ? preferred.join("+") : preferred;
-}
-
-/** Whether the preferred hypothesis can be true at all. */
-function adequate(source: SummarySource): EcsvValue {
-  const preferred = JSON.stringify(weigh("preferred")(source));
+  if (!Array.isArray(preferred)) return null;
+  const rival = weigh("undecided_with")(source);
+  if (preferred.length > 0) {
+    return preferred.join("+") + (Array.isArray(rival) ? ` or ${rival.join("+")}` : "");
+  }
   const hypotheses = weigh("hypotheses")(source);
-  if (!Array.isArray(hypotheses)) return null;
-  const found = hypotheses.find((one) => JSON.stringify(at(one, ["parts"])) === preferred);
-  const value = at(found, ["adequate"]);
-  return typeof value === "boolean" ? value : null;
+  const some = Array.isArray(hypotheses) && hypotheses.some((one) => at(one, ["adequate"]));
+  return some ? "undecided" : "outside";
 }
 
 /**
@@ -136,15 +146,15 @@ export const summaryColumns: readonly SummaryColumn[] = [
   ),
   number("k_accretor_kms", "K1 as measured", orbit("accretor", "k_kms"), KMS),
   number("k_accretor_error_kms", "its standard deviation", orbit("accretor", "k_error_kms"), KMS),
-  number("k_donor_kms", "K2 as measured", orbit("donor", "k_kms"), KMS),
-  number("k_donor_error_kms", "its standard deviation", orbit("donor", "k_error_kms"), KMS),
-  number("systemic_kms", "systemic velocity as measured", orbit("accretor", "systemic_kms"), KMS),
   number(
-    "systemic_error_kms",
-    "its standard deviation",
-    orbit("accretor", "systemic_error_kms"),
+    "k_donor_kms",
+    "K2 of the donor's centre as measured",
+    orbit("donor", "k_centre_kms"),
     KMS,
   ),
+  number("k_donor_error_kms", "its standard deviation", orbit("donor", "k_centre_error_kms"), KMS),
+  number("systemic_kms", "systemic velocity as measured", systemic("systemic_kms"), KMS),
+  number("systemic_error_kms", "its standard deviation", systemic("systemic_error_kms"), KMS),
   number("mass_ratio", "M2/M1 as measured", orbit("mass_ratio")),
   number("mass_ratio_error", "its standard deviation", orbit("mass_ratio_error")),
   number("accretor_msun", "M1", orbit("masses", "accretor_msun"), "solMass"),
@@ -174,13 +184,7 @@ export const summaryColumns: readonly SummaryColumn[] = [
   number("feature_flux_fraction", "its share of the flux", map("features", 0, "flux_fraction")),
   number("feature_sigma", "its significance", map("features", 0, "significance_sigma")),
   word("feature_nearest", "structure nearest to it", map("features", 0, "nearest")),
-  word("verdict", "parts of the preferred hypothesis", verdict),
-  {
-    name: "verdict_adequate",
-    datatype: "bool",
-    description: "whether the data can come from it",
-    value: adequate,
-  },
+  word("verdict", "preferred parts; outside where no hypothesis explains the data", verdict),
   number("false_alarm", "false-alarm rate as measured", weigh("false_alarm", "value")),
   number("false_alarm_error", "its error", weigh("false_alarm", "error")),
   word("warnings", "codes of the warnings about the line", ({ run, line }) =>
