@@ -21,9 +21,10 @@ export interface DemoNight {
   readonly open: (options?: { plate?: string; set?: readonly string[] }) => Promise<Session>;
 }
 
-/** Simulates the demo's night. */
+/** Simulates the demo's night, for one file of tests; its folder goes when they are done. */
 export async function demoNight(): Promise<DemoNight> {
   const folder = await Deno.makeTempDir({ prefix: "millrace-plates-" });
+  Deno.test.afterAll(() => Deno.remove(folder, { recursive: true }));
   const recipe = await Deno.readTextFile(new URL("recipe.toml", DEMO));
   const target = await Deno.readTextFile(new URL("vx-0417.toml", DEMO));
   await simulateExposures(parseTarget(recipe, { file: "recipe.toml" }), { folder });
