@@ -91,7 +91,7 @@ const MOST_PEAKS = 40;
 
 /**
  * Pixels that may be the peaks of features: where the excess over the axisymmetric part, smoothed to
- * the resolution, is higher than around.
+ * the resolution, is higher than around, within the circle of the half-width.
  *
  * @param map The map.
  * @param options Resolution and centre.
@@ -114,7 +114,14 @@ export function featurePeaks(
 ): number[] {
   const { resolution_kms, centre = { vx_kms: 0, vy_kms: 0 } } = options;
   const excess = mapExcess(map, { centre, resolution_kms });
+  const { pixels, half_width_kms } = map;
+  const middle = (pixels - 1) / 2;
+  // Beyond the circle not every profile was seen, and at its edge an excess has no other side.
+  const inside = (k: number) =>
+    Math.hypot(k % pixels - middle, Math.floor(k / pixels) - middle) * mapStep(map) <
+      half_width_kms - 0.5 * resolution_kms;
   return excess.peaks(LEAST_PEAK)
+    .filter(inside)
     .sort((a, b) => excess.values[b]! - excess.values[a]! || a - b)
     .slice(0, MOST_PEAKS);
 }
