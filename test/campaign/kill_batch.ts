@@ -43,10 +43,42 @@ async function stepCount(out: string): Promise<number> {
   return steps;
 }
 
+/** Names in the folders of the targets, hidden ones aside. */
+async function namesThere(out: string): Promise<Set<string>> {
+  const names = new Set<string>();
+  try {
+    for await (const target of Deno.readDir(out)) {
+      if (!target.isDirectory) continue;
+      for await (const { name } of Deno.readDir(join(out, target.name))) {
+        if (!name.startsWith(".")) names.add(`${target.name}/${name}`);
+      }
+    }
+  } catch (error) {
+    if (!(error instanceof Deno.errors.NotFound)) throw error;
+  }
+  return names;
+}
+
+/** Waits until some new names have appeared, or a time has passed, or the child has ended. */
+async function untilNewNames(
+  out: string,
+  options: { count: number; deadline_ms: number; ended: () => boolean },
+): Promise<void> {
+  const { count, deadline_ms, ended } = options;
+  const known = await namesThere(out);
+  const end = performance.now() + deadline_ms;
+  while (performance.now() < end && !ended()) {
+    const fresh = [...await namesThere(out)].filter((name) => !known.has(name));
+    if (fresh.length >= count) return;
+    await new Promise((resolve) => setTimeout(resolve, 1));
+  }
+}
+
 /**
- * Runs a batch, kills it with SIGKILL at a random moment, and again, and looks after every kill that
- * nothing wrong is there; whenever a run comes to its end, its outputs must be those of the
- * undisturbed one, and the next begins from nothing.
+ * Runs a batch, kills it with SIGKILL, and again, and looks after every kill that nothing wrong is
+ * there; whenever a run comes to its end, its outputs must be those of the undisturbed one, and the
+ * next begins from nothing. Every other kill comes at a random moment, the others as soon as a random
+ * number of new files have appeared.
  *
  * @param manifest The manifest.
  * @param options How often, and where.
@@ -64,34 +96,29 @@ export async function killBatch(
   const total = await stepCount(reference);
   const random = randomStream(seed);
   const report = { kills: 0, ended: 0, in_the_middle: 0 };
-  while (report.kills < kills) {
+  for (let attempt = 0; report.kills < kills; attempt++) {
     const child = start(manifest, out);
-    const output = child.output();
+    let ended = false;
+    const output = child.output().finally(() => ended = true);
     // From the first file on; later moments find less and less to do.
-    const delay = (0.12 + 0.5 * random.uniform()) * whole_ms;
-    let timer: ReturnType<typeof setTimeout> | undefined;
-    const late = await Promise.race([
-      output.then(({ code, stderr }) => {
-        if (code !== 0) throw new Error(new TextDecoder().decode(stderr));
-        return false;
-      }),
-      new Promise<boolean>((resolve) => timer = setTimeout(() => resolve(true), delay)),
-    ]);
-    clearTimeout(timer);
-    if (late) {
+    const deadline_ms = (0.12 + 0.5 * random.uniform()) * whole_ms;
+    const count = attempt % 2 === 0 ? 1 + random.integer(5) : Infinity;
+    await untilNewNames(out, { count, deadline_ms, ended: () => ended });
+    try {
       child.kill("SIGKILL");
-      const { signal } = await output;
-      if (signal === "SIGKILL") {
-        report.kills++;
-        const steps = await stepCount(out);
-        if (steps > 0 && steps < total) report.in_the_middle++;
-        await assertNothingWrong(out, reference).catch((error) => {
-          if (!(error instanceof Deno.errors.NotFound)) throw error;
-        });
-        onKill?.(report.kills);
-        continue;
-      }
+    } catch {
+      // It has ended by itself.
     }
+    const { code, signal, stderr } = await output;
+    if (signal === "SIGKILL") {
+      report.kills++;
+      const steps = await stepCount(out);
+      if (steps > 0 && steps < total) report.in_the_middle++;
+      if (await exists(out)) await assertNothingWrong(out, reference);
+      onKill?.(report.kills);
+      continue;
+    }
+    if (code !== 0) throw new Error(new TextDecoder().decode(stderr));
     report.ended++;
     await assertSameOutputs(out, reference);
     await Deno.remove(out, { recursive: true });
@@ -99,4 +126,13 @@ export async function killBatch(
   await toItsEnd(start(manifest, out));
   await assertSameOutputs(out, reference);
   return report;
+}
+
+async function exists(path: string): Promise<boolean> {
+  try {
+    await Deno.stat(path);
+    return true;
+  } catch {
+    return false;
+  }
 }
