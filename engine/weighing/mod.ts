@@ -43,6 +43,7 @@ export {
   type ResidualTests,
   residualTests,
 } from "./residual_tests.ts";
+export * from "./sets_to_weigh.ts";
 export * from "./simulate_trail.ts";
 export * from "./structure_bands.ts";
 export { placeErrors, type StructureErrors, type UncertainPlace } from "./structure_errors.ts";

@@ -5,12 +5,13 @@ import { type StrongestSource, strongestSource } from "./compact_source.ts";
 import { type DetectionLimit, detectionLimit } from "./detection_limit.ts";
 import type { HypothesisFit } from "./fit_hypothesis.ts";
 import type { FitSetup } from "./fit_setup.ts";
-import { defaultSets, hypothesesOf } from "./hypothesis.ts";
+import { defaultSets, hypothesesOf, type Hypothesis } from "./hypothesis.ts";
 import { judge, type Judgement, NEEDED } from "./judge.ts";
 import { noiseBank } from "./noise_bank.ts";
 import type { NullTable } from "./null_table.ts";
 import { type PreparedProblem, type PrepareOptions, prepareProblem } from "./prepare_problem.ts";
 import { type StructureProbabilities, structureProbabilities } from "./structure_probabilities.ts";
+import { setsToWeigh } from "./sets_to_weigh.ts";
 import { type Verdict, verdictOf } from "./verdict.ts";
 import { type WeighableTrail, weighingData, type WeighingDataOptions } from "./weighing_data.ts";
 
@@ -121,8 +122,8 @@ export async function weighTrail(
 ): Promise<WeighedLine> {
   const { trials = 200, seed = 1, workers = 1, tables = [], progress, signal, errors = {} } =
     options;
-  const sets = hypothesesOf(options.sets ?? defaultSets);
   const data = weighingData(trail, options);
+  const sets = setsToWeigh(options, data);
   const prepared = prepareProblem(data, options, { ...options, sets });
   const { problem, richest, line_scale } = prepared;
   const comparison = compareHypotheses(prepared, sets, { seed });
@@ -185,7 +186,11 @@ export async function weighTrail(
     verdict,
     tables: calibrations.map(({ table }) => table),
     warnings: [
-      ...warningsOf(prepared, { trials, white: bank.kind === "white" }),
+      ...warningsOf(prepared, {
+        trials,
+        white: bank.kind === "white",
+        donor: options.sets !== undefined || options.binary.inclination_deg !== null,
+      }),
       ...comparison.hypotheses.filter((hypothesis, k) => k === 0 || hypothesis === judgement.best)
         .flatMap(({ warnings }) => warnings),
     ],
@@ -194,7 +199,11 @@ export async function weighTrail(
 
 function warningsOf(
   { problem, line_scale }: PreparedProblem,
-  { trials, white }: { readonly trials: number; readonly white: boolean },
+  { trials, white, donor }: {
+    readonly trials: number;
+    readonly white: boolean;
+    readonly donor: boolean;
+  },
 ): Warning[] {
   const warnings: Warning[] = [];
   const warn = (code: string, text: string) => warnings.push({ code, text });
@@ -203,6 +212,9 @@ function warningsOf(
   }
   if (1 / (trials + 1) > NEEDED) {
     warn("too-few-trials", `${trials} trials cannot show a false-alarm rate of 1 %: 99 can`);
+  }
+  if (!donor) {
+    warn("donor-not-weighed", "sets with a donor need an inclination and were left out");
   }
   if (white) {
     warn(

@@ -96,3 +96,36 @@ Deno.test("weighTrail() names the set that is wrong", async () => {
     "weigh.sets",
   );
 });
+
+Deno.test("weighTrail() leaves donor sets out, or refuses them, when the inclination is unknown", async () => {
+  const trail = quick(spotted(0), { exposures: 12, pixel_kms: 100 });
+  const flat = { ...binary, inclination_deg: null };
+  const weighed = await weighTrail(trail, { binary: flat, trials: 1, limit: false });
+  assert(weighed.warnings.some(({ code }) => code === "donor-not-weighed"));
+  assertEquals(weighed.comparison.hypotheses.length, 4);
+  assert(weighed.warnings.some(({ code }) => code === "noise-assumed-white"));
+  await assertRejects(
+    () => weighTrail(trail, { ...short, binary: flat, sets: [["disc", "donor"]] }),
+    InputError,
+    "binary.inclination_deg",
+  );
+});
+
+Deno.test("weighTrail() weighs a line in absorption with its sign turned", async () => {
+  const trail = quick(spotted(0.1), { seed: 1, exposures: 20, pixel_kms: 80 });
+  const upside = { ...trail, flux: trail.flux.map((value) => -value) };
+  const up = weighRecord(await weighTrail(trail, short));
+  const down = await weighTrail(upside, short);
+  assertEquals({ ...weighRecord(down), absorption: false }, up);
+  assert(down.warnings.some(({ code }) => code === "absorption-turned"));
+});
+
+Deno.test("weighTrail() takes sets without a disc, and any part", async () => {
+  const trail = quick(spotted(0.1), { seed: 1, exposures: 16, pixel_kms: 100 });
+  const { comparison } = await weighTrail(trail, {
+    ...short,
+    trials: 2,
+    sets: [["spot"], ["outflow"], ["accretor", "disc", "spot"]],
+  });
+  assertEquals(comparison.hypotheses[0]!.parts, ["disc", "spot", "accretor"]);
+});
