@@ -5,7 +5,6 @@ import { type StrongestSource, strongestSource } from "./compact_source.ts";
 import { type DetectionLimit, detectionLimit } from "./detection_limit.ts";
 import type { HypothesisFit } from "./fit_hypothesis.ts";
 import type { FitSetup } from "./fit_setup.ts";
-import { defaultSets, hypothesesOf, type Hypothesis } from "./hypothesis.ts";
 import { judge, type Judgement, NEEDED } from "./judge.ts";
 import { noiseBank } from "./noise_bank.ts";
 import type { NullTable } from "./null_table.ts";
