@@ -26,7 +26,7 @@ export interface BaselineProblem {
  * import { freeBaselines } from "@millrace/millrace/tomography";
  * import { assertAlmostEquals } from "@std/assert";
  *
- * const identity = (x: Float64Array, into = new Float64Array(x.length)) => {
+ * const identity = (x: Float64Array, into: Float64Array = new Float64Array(x.length)) => {
  *   into.set(x);
  *   return into;
  * };

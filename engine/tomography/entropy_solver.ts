@@ -128,7 +128,7 @@ const PATIENCE = 10, LEAST_LOSS = 5e-3;
  * import { entropySteps } from "@millrace/millrace/tomography";
  * import { assertAlmostEquals } from "@std/assert";
  *
- * const identity = (x: Float64Array, into = new Float64Array(x.length)) => {
+ * const identity = (x: Float64Array, into: Float64Array = new Float64Array(x.length)) => {
  *   into.set(x);
  *   return into;
  * };
@@ -272,7 +272,7 @@ export function* entropySteps(
  * import { solveEntropy } from "@millrace/millrace/tomography";
  * import { assertAlmostEquals } from "@std/assert";
  *
- * const identity = (x: Float64Array, into = new Float64Array(x.length)) => {
+ * const identity = (x: Float64Array, into: Float64Array = new Float64Array(x.length)) => {
  *   into.set(x);
  *   return into;
  * };

@@ -118,7 +118,7 @@ export function insideOutMap(map: VelocityMap): VelocityMap {
  * import { insideOutOperator } from "@millrace/millrace/tomography";
  * import { assertEquals } from "@std/assert";
  *
- * const identity = (x: Float64Array, into = new Float64Array(x.length)) => {
+ * const identity = (x: Float64Array, into: Float64Array = new Float64Array(x.length)) => {
  *   into.set(x);
  *   return into;
  * };

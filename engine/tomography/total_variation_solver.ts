@@ -124,7 +124,7 @@ const HOPELESS_LOOKS = 8;
  * import { variationSteps } from "@millrace/millrace/tomography";
  * import { assertAlmostEquals } from "@std/assert";
  *
- * const identity = (x: Float64Array, into = new Float64Array(x.length)) => {
+ * const identity = (x: Float64Array, into: Float64Array = new Float64Array(x.length)) => {
  *   into.set(x);
  *   return into;
  * };

@@ -66,7 +66,7 @@ export function currentTaskStore(): TaskStore | undefined {
  * const results = await withTaskStore({
  *   async results(call) {
  *     calls++;
- *     const found = [];
+ *     const found: unknown[] = [];
  *     await call.run(call.tasks.map((_, i) => i), (index, result) => found[index] = result);
  *     return found;
  *   },
