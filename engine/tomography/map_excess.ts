@@ -15,7 +15,7 @@ export interface Excess {
   readonly values: Float64Array;
   /** The pixel uphill of a given one, no further away than the resolution. */
   readonly climb: (from: number) => number;
-  /** Centroid of what stands above half a peak, and twice the flux in there; null if not positive. */
+  /** Centroid under a Gaussian window, and twice the flux above half the peak; null if not positive. */
   readonly blobAt: (peak: number) => ExcessBlob | null;
   /** Pixels higher than all their neighbours and than a share of the highest. */
   readonly peaks: (share: number) => number[];
@@ -23,7 +23,8 @@ export interface Excess {
 
 /**
  * The excess of a map over the part that is axisymmetric about a centre, with the means to measure
- * its blobs. The flux above half the peak, doubled, is the flux of a Gaussian.
+ * its blobs. The place is the centroid under a Gaussian window as wide as a point source looks; the
+ * flux above half the peak, doubled, is the flux of a Gaussian.
  *
  * @param map The map.
  * @param options Centre of symmetry, resolution (FWHM).
@@ -70,7 +71,7 @@ export function mapExcess(
       }
       return k;
     },
-    blobAt: (peak) => blobAround(values, peak, { map, total }),
+    blobAt: (peak) => blobAround(values, peak, { map, total, resolution_kms }),
     peaks(share) {
       const floor = share * values.reduce((a, b) => Math.max(a, b), 0);
       const found: number[] = [];
@@ -97,7 +98,11 @@ function uphill(values: Float64Array, k: number, pixels: number): number {
 function blobAround(
   values: Float64Array,
   peak: number,
-  { map, total }: { readonly map: VelocityMap; readonly total: number },
+  { map, total, resolution_kms }: {
+    readonly map: VelocityMap;
+    readonly total: number;
+    readonly resolution_kms: number;
+  },
 ): ExcessBlob | null {
   const { pixels, half_width_kms } = map;
   const step = mapStep(map);
@@ -125,9 +130,47 @@ function blobAround(
       queue.push(j);
     }
   }
+  const centre = windowedCentre(values, { x: x / weight, y: y / weight }, {
+    pixels,
+    sigma: resolution_kms / Math.sqrt(8 * Math.LN2) / step,
+  });
   return {
-    vx_kms: x / weight * step - half_width_kms,
-    vy_kms: y / weight * step - half_width_kms,
+    vx_kms: centre.x * step - half_width_kms,
+    vy_kms: centre.y * step - half_width_kms,
     flux_fraction: total > 0 ? 2 * sum / total : 0,
   };
+}
+
+/** Rounds of the centroid, and how far each goes beyond the windowed mean: the window halves it. */
+const ROUNDS = 12, BEYOND = 1.5;
+
+/**
+ * Centroid under a round Gaussian window that is moved to it: unlike one within an outline, it does
+ * not feel how pixels fall. Where the window leaves the blob the first guess stays.
+ */
+function windowedCentre(
+  values: Float64Array,
+  guess: { readonly x: number; readonly y: number },
+  { pixels, sigma }: { readonly pixels: number; readonly sigma: number },
+): { x: number; y: number } {
+  const width = Math.SQRT2 * Math.max(sigma, 1);
+  let { x, y } = guess;
+  for (let round = 0; round < ROUNDS; round++) {
+    const reach = Math.ceil(3.5 * width);
+    let sum = 0, sx = 0, sy = 0;
+    for (let r = Math.max(0, Math.round(y) - reach); r <= Math.min(pixels - 1, y + reach); r++) {
+      for (let c = Math.max(0, Math.round(x) - reach); c <= Math.min(pixels - 1, x + reach); c++) {
+        const square = (c - x) ** 2 + (r - y) ** 2;
+        const f = values[r * pixels + c]! * Math.exp(-0.5 * square / (width * width));
+        sum += f;
+        sx += f * (c - x);
+        sy += f * (r - y);
+      }
+    }
+    if (!(sum > 0)) return guess;
+    x += BEYOND * sx / sum;
+    y += BEYOND * sy / sum;
+    if (Math.hypot(x - guess.x, y - guess.y) > 1.5 * width) return guess;
+  }
+  return { x, y };
 }

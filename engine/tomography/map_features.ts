@@ -46,6 +46,13 @@ export interface MapFeaturesOptions {
    */
   readonly spread?: MapSpread | null;
   /**
+   * Maps of the same data with more and with less regularisation, as twice and half the weight: how
+   * far they move a feature goes into its error.
+   *
+   * @default {[]}
+   */
+  readonly alternatives?: readonly VelocityMap[];
+  /**
    * Error of the systemic velocity, km/s: it moves every feature along with the whole data.
    *
    * @default {0}
@@ -128,9 +135,9 @@ export function featurePeaks(
 
 /**
  * Finds compact excesses over the part of a map that is axisymmetric about the accretor: peaks of the
- * excess smoothed to the resolution. The place is the centroid of what stands above half the peak; the
- * flux is twice what lies in there, which is exact for a Gaussian. Errors are the scatter of the same
- * measurement on replicas, and of γ and phase zero. Significance counts the resolution elements searched.
+ * excess smoothed to the resolution. The place is the centroid under a Gaussian window; the flux
+ * is twice what lies above half the peak, which is exact for a Gaussian. Errors are the scatter of the same
+ * measurement on replicas, what more or less regularisation moves, and those of γ and phase zero. Significance counts the resolution elements searched.
  *
  * @param map The map.
  * @param options Resolution, centre, scatter.
@@ -157,12 +164,16 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
   const excess = mapExcess(map, { centre, resolution_kms });
   const area = (map.pixels * mapStep(map)) ** 2;
   const places = Math.max(1, area / (Math.PI * (0.5 * resolution_kms) ** 2));
+  const others = (options.alternatives ?? []).map((m) => mapExcess(m, { centre, resolution_kms }));
   const features: (MapFeature & { readonly rank: number })[] = [];
   featurePeaks(map, options).forEach((peak, f) => {
     const blob = excess.blobAt(peak);
     if (blob === null) return;
     const followed = spread?.features[f];
-    const errors = followed === undefined ? null : placeErrors(followed, { ...options, blob });
+    const moved = others.flatMap((e) => e.blobAt(e.climb(peak)) ?? []);
+    const errors = followed === undefined
+      ? null
+      : placeErrors(followed, { ...options, blob, moved });
     const significance = followed === undefined
       ? null
       : globalSigma(excess.values[peak]! / deviation(followed.height), places);
@@ -186,14 +197,21 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
 /** Scatter among replicas, with γ and phase zero in quadrature. */
 function placeErrors(
   followed: FollowedFeature,
-  { blob, systemic_error_kms = 0, phase_error = 0 }: MapFeaturesOptions & {
+  { blob, moved, systemic_error_kms = 0, phase_error = 0 }: MapFeaturesOptions & {
     readonly blob: MapPlace;
+    readonly moved: readonly MapPlace[];
   },
 ): { vx: number; vy: number } {
   const turn = 2 * Math.PI * phase_error;
+  const shift = (key: keyof MapPlace) =>
+    Math.sqrt(moved.reduce((sum, m) => sum + (m[key] - blob[key]) ** 2, 0) / (moved.length || 1));
   return {
-    vx: Math.hypot(deviation(followed.vx_kms), turn * blob.vy_kms, systemic_error_kms),
-    vy: Math.hypot(deviation(followed.vy_kms), turn * blob.vx_kms, systemic_error_kms),
+    vx: Math.hypot(
+      ...[deviation(followed.vx_kms), shift("vx_kms"), turn * blob.vy_kms, systemic_error_kms],
+    ),
+    vy: Math.hypot(
+      ...[deviation(followed.vy_kms), shift("vy_kms"), turn * blob.vx_kms, systemic_error_kms],
+    ),
   };
 }
 
