@@ -57,16 +57,16 @@ export function currentTaskStore(): TaskStore | undefined {
  *
  * @example A store that runs everything here
  * ```ts
- * import { runTasks, withTaskStore } from "@millrace/millrace/workers";
+ * import { runTasks, type StoredCall, withTaskStore } from "@millrace/millrace/workers";
  * import { assertEquals } from "@std/assert";
  *
  * const text = "export const runTask = (task) => task * task;";
  * const module = new URL(`data:text/javascript,${encodeURIComponent(text)}`);
  * let calls = 0;
  * const results = await withTaskStore({
- *   async results(call) {
+ *   async results<Result>(call: StoredCall<Result>) {
  *     calls++;
- *     const found: unknown[] = [];
+ *     const found: Result[] = [];
  *     await call.run(call.tasks.map((_, i) => i), (index, result) => found[index] = result);
  *     return found;
  *   },
