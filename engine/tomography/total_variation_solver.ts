@@ -104,8 +104,11 @@ const BLOWN = 5;
 /** Looks in a row that chi-square must be at its goal with the weight unchanged. */
 const HELD_LOOKS = 4;
 
-/** Weights that win no more than this share of the missing chi-square in so many looks are hopeless. */
-const HOPELESS_LOOKS = 8;
+/** Least weight in search of a chi-square, over the first: below it maps are made of noise. */
+const LEAST_WEIGHT = 0.1;
+
+/** Looks at the least weight after which a chi-square that is still too large is out of reach. */
+const HOPELESS_LOOKS = 3;
 
 /**
  * The positive image of least total variation for its chi-square, step by step: a primal-dual splitting
@@ -207,6 +210,7 @@ export function* variationSteps(
   let held = 0;
   let stride = FIRST_DUAL, kept = g, misses: number[] = [];
   let beta = typeof wished === "number" ? wished : noiseWeight();
+  const least_weight = LEAST_WEIGHT * beta;
   let least = Infinity;
   for (let iterations = 0;; iterations++) {
     let chi_square = pull(model);
@@ -239,14 +243,13 @@ export function* variationSteps(
       yield state;
       if (state.converged) return;
       const miss = goal === null ? 0 : state.reduced_chi_square / goal - 1;
-      misses = miss > chi_square_tolerance && change <= settled ? [...misses, miss] : [];
-      const hopeless = misses.length > HOPELESS_LOOKS &&
-        misses[misses.length - 1]! > 0.9 * misses[0]!;
+      misses = miss > chi_square_tolerance && beta <= least_weight ? [...misses, miss] : [];
+      const hopeless = beta <= least_weight && misses.length > HOPELESS_LOOKS;
       if (iterations >= max_iterations || hopeless) throw unfinished(state, goal);
       // Chi-square lags behind the weight: near the goal the weight stays, to see whether it holds.
       if (goal !== null && iterations > 0 && !near) {
         const factor = Math.pow(goal * used / chi_square, ANSWER);
-        beta *= Math.min(1.5, Math.max(0.6, factor));
+        beta = Math.max(least_weight, beta * Math.min(1.5, Math.max(0.6, factor)));
         stride = Math.max(stride, RESUMED_DUAL);
       }
       kept = g;

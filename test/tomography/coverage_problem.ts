@@ -12,7 +12,7 @@ const sampling = plainSampling({
   first_kms: -1120,
   step_kms: 28,
   sigma_kms: 35,
-  phase_width: 0.02,
+  phase_width: 0.002,
 });
 const DISC = Float64Array.from({ length: 41 * 41 }, (_, k) => {
   const v = Math.hypot((k % 41) * 40 - 800, Math.floor(k / 41) * 40 - 800);
