@@ -32,6 +32,13 @@ export interface EntropyOptions {
    */
   readonly reduced_chi_square?: number;
   /**
+   * Whether a goal that is out of reach may be raised to just above what was reached. The state's `goal`
+   * says which it was in the end. Otherwise such a goal is an error.
+   *
+   * @default {false}
+   */
+  readonly raise_goal?: boolean;
+  /**
    * Fixed multiplier α of the objective χ² − α S, instead of a goal for chi-square.
    *
    * @default {null}
@@ -80,6 +87,8 @@ export interface EntropyState {
   readonly prior: Float64Array;
   /** Chi-square over the number of unmasked samples. */
   readonly reduced_chi_square: number;
+  /** Chi-square per sample aimed for: higher than asked for when it was raised; null with a fixed multiplier. */
+  readonly goal: number | null;
   /**
    * Half the squared difference of the unit gradients of entropy and chi-square, in the entropy's
    * metric: 0 at the solution, 1 where they are at right angles.
@@ -111,6 +120,9 @@ const STALLED_STEPS = 5, STALLED_GAIN = 0.02;
 
 /** or when chi-square has lost no more than this share of itself in so many steps. */
 const PATIENCE = 10, LEAST_LOSS = 5e-3;
+
+/** A raised goal is so many times what was reached: at the least chi-square itself the multiplier is zero. */
+const RAISED = 1.02;
 
 /**
  * Maximum entropy step by step. Each step searches the span of one new direction, the gradient of
@@ -148,7 +160,7 @@ export function* entropySteps(
   options: EntropyOptions = {},
 ): Generator<EntropyState, void, void> {
   const { samples, measure = POSITIVE_ENTROPY } = problem;
-  const { reduced_chi_square: goal = 1, multiplier: fixed = null, memory = 12 } = options;
+  const { multiplier: fixed = null, memory = 12, raise_goal = false } = options;
   const { chi_square_tolerance = 1e-3, misalignment: aligned = 0.01 } = options;
   const { max_iterations = 200 } = options;
   const size = problem.operator.image_size, count = problem.operator.sample_count;
@@ -164,7 +176,7 @@ export function* entropySteps(
     flux[k] = samples.flux[k]!;
     used++;
   }
-  const target = goal * used;
+  let goal = options.reduced_chi_square ?? 1, target = goal * used;
   const operator = problem.operator.sparing?.(weight) ?? problem.operator;
 
   let calls = 0;
@@ -202,7 +214,8 @@ export function* entropySteps(
     const reduced_chi_square = chi_square / used;
     const state: EntropyState = {
       ...{ image: image.slice(), model: model.slice(), prior },
-      ...{ reduced_chi_square, misalignment, entropy, multiplier },
+      ...{ reduced_chi_square, goal: fixed === null ? goal : null },
+      ...{ misalignment, entropy, multiplier },
       ...{ iterations, operator_calls: calls, converged },
     };
     yield state;
@@ -238,7 +251,12 @@ export function* entropySteps(
       const slow = missing > 3 * NEAR * target && before !== undefined &&
         iterations > 2 * PATIENCE &&
         chi_square > (1 - LEAST_LOSS) * before;
-      if (slow || stalled >= STALLED_STEPS) throw outOfReach(state, goal);
+      if (slow || stalled >= STALLED_STEPS) {
+        if (!raise_goal) throw outOfReach(state, goal);
+        goal = RAISED * reduced_chi_square;
+        target = goal * used;
+        stalled = 0;
+      }
     }
 
     const taken = spare.pop()!;
@@ -341,7 +359,7 @@ function outOfReach(state: EntropyState, goal: number): NotConverged<EntropyStat
       `${
         reached.toPrecision(5)
       } after ${state.iterations} iterations, as no map of this kind fits the ` +
-      `data so closely; set map.reduced_chi_square to ${(1.02 * reached).toPrecision(3)} or more`,
+      `data so closely; set map.reduced_chi_square to ${(RAISED * reached).toPrecision(3)} or more`,
     state,
   );
 }

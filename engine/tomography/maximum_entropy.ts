@@ -5,6 +5,7 @@ import { type BlendMember, blendProjector } from "./blend_projector.ts";
 import { checkTrail, type TrailSamples } from "./check_trail.ts";
 import { POSITIVE_ENTROPY, SIGNED_ENTROPY } from "./entropy_measure.ts";
 import { type EntropyOptions, type EntropyState, entropySteps } from "./entropy_solver.ts";
+import { goalRaised } from "./goal_raised.ts";
 import { insideOutMap, insideOutOperator } from "./inside_out.ts";
 import { backProjectedSamples, lineAmplitude, lineLevel } from "./line_level.ts";
 import type { LinearOperator } from "./linear_operator.ts";
@@ -109,6 +110,8 @@ export interface EntropyMap {
   readonly model: Float64Array;
   /** Chi-square over the number of unmasked samples. */
   readonly reduced_chi_square: number;
+  /** Chi-square per sample aimed for: higher than asked for when it was raised; null with a fixed multiplier. */
+  readonly goal: number | null;
   /** Half the squared difference of the unit gradients of entropy and chi-square, in the metric of the entropy. */
   readonly misalignment: number;
   /** Entropy relative to the default image. */
@@ -219,7 +222,7 @@ export function* maximumEntropySteps(
       prior: { ...shape, intensity: prior },
       model: sign === 1 ? model : model.map((m) => -m),
       level,
-      warnings,
+      warnings: [...warnings, ...goalRaised(state.goal, options)],
     };
   };
   try {

@@ -2,6 +2,7 @@ import { NotConverged, type Warning } from "../errors.ts";
 import type { Sampling } from "../trail/mod.ts";
 import { checkTrail, type TrailSamples } from "./check_trail.ts";
 import { type EntropyOptions, type EntropyState, entropySteps } from "./entropy_solver.ts";
+import { goalRaised } from "./goal_raised.ts";
 import { lineLevel } from "./line_level.ts";
 import type { LinearOperator } from "./linear_operator.ts";
 import type { MapShape } from "./map_shape.ts";
@@ -231,7 +232,8 @@ export function modulatedMap(trail: TrailSamples, options: ModulatedMapOptions):
       average: combined(one),
       cosine: combined(cos),
       sine: combined(sin),
-      ...{ model, reduced_chi_square, misalignment, iterations, converged, warnings },
+      ...{ model, reduced_chi_square, misalignment, iterations, converged },
+      warnings: [...warnings, ...goalRaised(state.goal, options)],
     };
   };
   try {

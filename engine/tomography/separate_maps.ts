@@ -3,6 +3,7 @@ import { median } from "../numerics/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
 import { checkTrail, type TrailSamples } from "./check_trail.ts";
 import { type EntropyState, entropySteps } from "./entropy_solver.ts";
+import { goalRaised } from "./goal_raised.ts";
 import { lineLevel } from "./line_level.ts";
 import type { LinearOperator } from "./linear_operator.ts";
 import type { MaximumEntropyOptions } from "./maximum_entropy.ts";
@@ -180,7 +181,7 @@ export function separateMaps(trail: TrailSamples, options: SeparateMapsOptions):
     multiplier: state.multiplier,
     iterations: state.iterations,
     converged: state.converged,
-    warnings,
+    warnings: [...warnings, ...goalRaised(state.goal, options)],
   });
   try {
     let last: EntropyState | undefined;

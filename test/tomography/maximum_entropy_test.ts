@@ -236,6 +236,27 @@ Deno.test("maximumEntropy() says that a goal is out of reach and hands over what
   assertEquals(error.partial.map.intensity.length, 81 * 81);
 });
 
+Deno.test("maximumEntropy() raises a goal out of reach when it may, and says both goals", () => {
+  const trail = noisyTrail(gaussianTrail(sampling, [POINT]), 0.01);
+  const asked = { ...shape, prior: UNIFORM, reduced_chi_square: 0.3, raise_goal: true } as const;
+  const found = maximumEntropy(trail, asked);
+  assert(found.converged);
+  assertGreater(found.goal!, 0.6);
+  assertLess(found.goal!, 1);
+  assertAlmostEquals(found.reduced_chi_square / found.goal!, 1, 1e-3);
+  assertLessOrEqual(found.misalignment, 0.01);
+  const [warning] = found.warnings;
+  assertEquals(warning!.code, "goal-raised");
+  assert(warning!.text.includes("0.3") && warning!.text.includes(found.goal!.toPrecision(4)));
+  // From a flat start it comes to the same place: what was reached is the least chi-square, within 2 %.
+  const level = new Float64Array(81 * 81).fill(found.level);
+  const again = maximumEntropy(trail, { ...asked, start: { ...shape, intensity: level } });
+  assertAlmostEquals(again.goal! / found.goal!, 1, 0.02);
+  // A goal within reach is kept.
+  const kept = maximumEntropy(trail, { ...asked, reduced_chi_square: 1.1 });
+  assertEquals([kept.goal, kept.warnings], [1.1, []]);
+});
+
 Deno.test("maximumEntropy() says that iterations ran out and hands over where it stood", () => {
   const trail = noisyTrail(gaussianTrail(sampling, [POINT]), 0.002);
   const error = assertThrows(
