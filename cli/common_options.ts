@@ -16,8 +16,7 @@ export function commandWith(name: string, summary: string) {
     .option(
       "--set <section.key=value>",
       "override one setting (repeatable)",
-      (value: string, before: string[]) => [...before, value],
-      [] as string[],
+      (value: string, before: string[] | undefined) => [...before ?? [], value],
     );
 }
 

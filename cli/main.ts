@@ -3,6 +3,11 @@ import settings from "../deno.json" with { type: "json" };
 import { InputError, NotConverged, WorkError } from "../engine/errors.ts";
 import { INTERRUPTED } from "./interrupt.ts";
 
+// The library would look for colour variables in the environment, which is not open to us.
+const COLOURS = {
+  getOutHasColors: () => !Deno.noColor && Deno.stdout.isTerminal(),
+  getErrHasColors: () => !Deno.noColor && Deno.stderr.isTerminal(),
+};
 const FAILED = 1;
 const WRONG_CALL = 2;
 
@@ -22,16 +27,13 @@ export async function main(args: readonly string[]): Promise<number> {
     .version(settings.version)
     .exitOverride()
     .showHelpAfterError("(millrace --help lists the commands)")
-    .configureOutput({
-      getOutHasColors: () => !Deno.noColor && Deno.stdout.isTerminal(),
-      getErrHasColors: () => !Deno.noColor && Deno.stderr.isTerminal(),
-    });
+    .configureOutput(COLOURS);
   const finish = (result: number) => {
     status = result;
   };
-  for (const add of await commands()) {
+  for (const add of await commandsFor(args[0])) {
     const command = add(finish);
-    command.exitOverride();
+    command.exitOverride().configureOutput(COLOURS);
     program.addCommand(command as Command);
   }
   try {
@@ -44,23 +46,29 @@ export async function main(args: readonly string[]): Promise<number> {
 
 type AddCommand = (finish: (status: number) => void) => Command;
 
-async function commands(): Promise<AddCommand[]> {
-  const modules = await Promise.all([
-    import("./commands/new.ts").then(({ newCommand }) => newCommand),
-    import("./commands/demo.ts").then(({ demoCommand }) => demoCommand),
-    import("./commands/check.ts").then(({ checkCommand }) => checkCommand),
-    import("./commands/profile.ts").then(({ profileCommand }) => profileCommand),
-    import("./commands/trail.ts").then(({ trailCommand }) => trailCommand),
-    import("./commands/orbit.ts").then(({ orbitCommand }) => orbitCommand),
-    import("./commands/map.ts").then(({ mapCommand }) => mapCommand),
-    import("./commands/synth.ts").then(({ synthCommand }) => synthCommand),
-    import("./commands/weigh.ts").then(({ weighCommand }) => weighCommand),
-    import("./commands/plate.ts").then(({ plateCommand }) => plateCommand),
-    import("./commands/batch.ts").then(({ batchCommand }) => batchCommand),
-    import("./commands/redo.ts").then(({ redoCommand }) => redoCommand),
-    import("./commands/geometry.ts").then(({ geometryCommand }) => geometryCommand),
-  ]);
-  return modules as unknown as AddCommand[];
+// In the order of the help. A command is loaded when it is called: none pays for another's start.
+const COMMANDS: Readonly<Record<string, () => Promise<unknown>>> = {
+  new: () => import("./commands/new.ts").then(({ newCommand }) => newCommand),
+  demo: () => import("./commands/demo.ts").then(({ demoCommand }) => demoCommand),
+  check: () => import("./commands/check.ts").then(({ checkCommand }) => checkCommand),
+  profile: () => import("./commands/profile.ts").then(({ profileCommand }) => profileCommand),
+  trail: () => import("./commands/trail.ts").then(({ trailCommand }) => trailCommand),
+  orbit: () => import("./commands/orbit.ts").then(({ orbitCommand }) => orbitCommand),
+  map: () => import("./commands/map.ts").then(({ mapCommand }) => mapCommand),
+  synth: () => import("./commands/synth.ts").then(({ synthCommand }) => synthCommand),
+  weigh: () => import("./commands/weigh.ts").then(({ weighCommand }) => weighCommand),
+  plate: () => import("./commands/plate.ts").then(({ plateCommand }) => plateCommand),
+  batch: () => import("./commands/batch.ts").then(({ batchCommand }) => batchCommand),
+  redo: () => import("./commands/redo.ts").then(({ redoCommand }) => redoCommand),
+  geometry: () => import("./commands/geometry.ts").then(({ geometryCommand }) => geometryCommand),
+};
+
+/** The command that is called, or all of them: for the help, or when the name is unknown. */
+async function commandsFor(name: string | undefined): Promise<AddCommand[]> {
+  const called = name !== undefined && Object.hasOwn(COMMANDS, name)
+    ? [COMMANDS[name]!]
+    : Object.values(COMMANDS);
+  return await Promise.all(called.map((load) => load())) as AddCommand[];
 }
 
 function report(error: unknown): number {

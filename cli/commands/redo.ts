@@ -31,7 +31,7 @@ async function redo(
   options: { call: CommonOptions; context: CommandContext },
 ): Promise<CommandResult> {
   const { call, context: { signal, progress, console } } = options;
-  if (call.set.length > 0 || call.seed !== undefined) {
+  if (call.set !== undefined || call.seed !== undefined) {
     throw new InputError({
       action: "redo the run",
       rule: "--set and --seed must not be given: the recorded ones are used",

@@ -38,6 +38,9 @@ Deno.test("millrace names the nearest command and prints help", async () => {
   assertStringIncludes(wrong.stderr, "Did you mean geometry?");
   const help = await runMillrace(["--help"]);
   assertEquals([help.code, help.stderr], [0, ""]);
+  const own = await runMillrace(["geometry", "--help"]);
+  assertEquals([own.code, own.stderr], [0, ""]);
+  assertStringIncludes(own.stdout, "--mass-ratio");
   const none = await runMillrace([]);
   assertEquals(none.code, 2);
 });
