@@ -8,6 +8,10 @@ export interface Fact {
   readonly text: string;
   /** What the file says of it; empty when nothing. */
   readonly comment: string;
+  /** File in which it stands, where that is not the spectrum's own. */
+  readonly file?: string;
+  /** Line in that file, from 1. */
+  readonly line?: number;
 }
 
 /** Where facts about one exposure are looked up. */
@@ -18,6 +22,12 @@ export interface Facts {
    * @param key Key or column name, without regard to case.
    */
   find(key: string): Fact | undefined;
+  /**
+   * Names what can be asked for, without values too.
+   *
+   * @returns Keys or column names, as they are written.
+   */
+  names(): readonly string[];
 }
 
 /**
@@ -44,6 +54,7 @@ export function headerFacts(header: FitsHeader): Facts {
       const text = header.string(key)?.trim() ?? "";
       return text === "" ? undefined : { key: card.keyword, text, comment: card.comment };
     },
+    names: () => header.cards.filter((card) => !card.commentary).map((card) => card.keyword),
   };
 }
 
@@ -69,6 +80,7 @@ export function plainKey(key: string): string {
  * Facts given by name, such as the row of a log.
  *
  * @param entries Names and values.
+ * @param place File and line in which they stand, where that is not the spectrum's own file.
  * @returns The facts; an empty value is none.
  *
  * @example
@@ -80,15 +92,20 @@ export function plainKey(key: string): string {
  * assertEquals([facts.find("MID")?.text, facts.find("note")], ["2460311.5", undefined]);
  * ```
  */
-export function namedFacts(entries: Iterable<readonly [string, string]>): Facts {
+export function namedFacts(
+  entries: Iterable<readonly [string, string]>,
+  place: Pick<Fact, "file" | "line"> = {},
+): Facts {
   const known = new Map<string, Fact>();
+  const names: string[] = [];
   for (const [key, text] of entries) {
     const id = plainKey(key);
+    names.push(key.trim());
     if (text.trim() !== "" && !known.has(id)) {
-      known.set(id, { key: key.trim(), text: text.trim(), comment: "" });
+      known.set(id, { key: key.trim(), text: text.trim(), comment: "", ...place });
     }
   }
-  return { find: (key) => known.get(plainKey(key)) };
+  return { find: (key) => known.get(plainKey(key)), names: () => names };
 }
 
 /**
@@ -115,6 +132,7 @@ export function joinFacts(places: readonly Facts[]): Facts {
       }
       return undefined;
     },
+    names: () => places.flatMap((place) => place.names()),
   };
 }
 

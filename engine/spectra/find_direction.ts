@@ -6,7 +6,8 @@ import {
   parseRightAscension,
 } from "../sky/mod.ts";
 import type { OneDecision } from "./decision.ts";
-import { type Facts, firstFact } from "./facts.ts";
+import { type Fact, type Facts, firstFact } from "./facts.ts";
+import { firstRead, unreadNote } from "./first_read.ts";
 import { numberOf } from "./number_text.ts";
 
 /** Keys looked up for a direction. */
@@ -47,13 +48,33 @@ export interface FoundDirection {
   readonly decision: OneDecision;
 }
 
+function orNull(read: () => number): number | null {
+  try {
+    return read();
+  } catch (error) {
+    if (error instanceof InputError) return null;
+    throw error;
+  }
+}
+
+const inHours = (ra: Fact) =>
+  /[:hms\s]/i.test(ra.text.trim()) ||
+  /\bhours?\b|\bhr?s?\b/i.test(ra.comment) && !/deg/i.test(ra.comment);
+
+function rightAscension(ra: Fact): number | null {
+  const plain = numberOf(ra.text);
+  if (plain === null || !inHours(ra)) return orNull(() => parseRightAscension(ra.text));
+  return plain >= 0 && plain <= 24 ? 15 * plain : null;
+}
+
 /**
  * Finds where the target is. A right ascension written with colons or letters, or whose comment says
  * hours, is in hours; a plain number is in degrees.
  *
  * @param facts The facts of an exposure.
  * @param options A direction known better; names of keys by what they hold: `ra`, `dec`.
- * @returns The direction; null when it cannot be had.
+ * @returns The direction; null when nothing says.
+ * @throws {InputError} When a coordinate is there and cannot be read, with its value and key.
  *
  * @example
  * ```ts
@@ -82,29 +103,33 @@ export function findDirection(
     },
   });
   if (target !== undefined) return say(target, "sky.ra_deg, sky.dec_deg of the target file");
-  const ra = firstFact(facts, keys["ra"] === undefined ? DIRECTION_KEYS.ra : [keys["ra"]]);
-  const dec = firstFact(facts, keys["dec"] === undefined ? DIRECTION_KEYS.dec : [keys["dec"]]);
-  if (ra === undefined || dec === undefined) return null;
-  const inHours = /[:hms\s]/i.test(ra.text.trim()) ||
-    /\bhours?\b|\bhr?s?\b/i.test(ra.comment) && !/deg/i.test(ra.comment);
-  const plain = numberOf(ra.text);
-  const read = (): Direction => ({
-    ra_deg: plain !== null && inHours ? 15 * plain : parseRightAscension(ra.text),
-    dec_deg: parseDeclination(dec.text),
+  const action = "read direction of target";
+  const ra = firstRead(facts, {
+    keys: keys["ra"] === undefined ? DIRECTION_KEYS.ra : [keys["ra"]],
+    read: rightAscension,
+    action,
+    rule: "right ascension must be sexagesimal hours, or a number from 0 to 360 degrees",
   });
-  let direction: Direction;
-  try {
-    direction = read();
-  } catch (error) {
-    if (error instanceof InputError) return null;
-    throw error;
-  }
-  if (direction.ra_deg > 360) return null;
-  const from = `${ra.key} (${inHours ? "hours" : "degrees"}), ${dec.key}`;
+  const dec = firstRead(facts, {
+    keys: keys["dec"] === undefined ? DIRECTION_KEYS.dec : [keys["dec"]],
+    read: (fact) => orNull(() => parseDeclination(fact.text)),
+    action,
+    rule: "declination must be sexagesimal, or a number from -90 to 90 degrees",
+  });
+  if (ra === null || dec === null) return null;
+  const direction: Direction = { ra_deg: ra.value, dec_deg: dec.value };
+  const unit = inHours(ra.fact) ? "hours" : "degrees";
+  const from = `${ra.fact.key} (${unit}), ${dec.fact.key}${
+    unreadNote([...ra.unread, ...dec.unread])
+  }`;
   const equinox = firstFact(facts, ["EQUINOX", "EPOCH"]);
-  const year = equinox === undefined ? null : numberOf(equinox.text.replace(/^[BJ]/i, ""));
-  if (year === null || Math.abs(year - 2000) < 0.1 || !(year >= 1800 && year <= 2200)) {
-    return say(direction, from);
+  if (equinox === undefined) return say(direction, from);
+  const year = numberOf(equinox.text.replace(/^[BJ]/i, ""));
+  const told = `${equinox.key} = ${equinox.text}`;
+  // An EPOCH of 0 is one that was never filled in.
+  if (year === null || !(year >= 1800 && year <= 2200)) {
+    return say(direction, `${from} (${told} is no equinox: taken as 2000)`, true);
   }
-  return say(directionFromEquinox(direction, year), `${from}, ${equinox!.key} = ${equinox!.text}`);
+  if (Math.abs(year - 2000) < 0.1) return say(direction, from);
+  return say(directionFromEquinox(direction, year), `${from}, ${told}`);
 }

@@ -1,5 +1,6 @@
 import type { OneDecision } from "./decision.ts";
 import type { Facts } from "./facts.ts";
+import { firstRead, unreadNote } from "./first_read.ts";
 import { numberOf } from "./number_text.ts";
 
 /** An exposure time, and where it stood. */
@@ -30,6 +31,7 @@ export const EXPOSURE_KEYS: readonly string[] = [
  * @param facts The facts.
  * @param keys Names of keys by what they hold: `exposure_s`.
  * @returns The exposure time, whatever its sign; null when there is none.
+ * @throws {InputError} When one is there and cannot be read, with its value and key.
  *
  * @example
  * ```ts
@@ -43,22 +45,23 @@ export function findDuration(
   facts: Facts,
   keys: Readonly<Record<string, string>>,
 ): RecordedDuration | null {
-  const wanted = keys["exposure_s"] === undefined ? EXPOSURE_KEYS : [keys["exposure_s"]];
-  for (const key of wanted) {
-    const fact = facts.find(key);
-    const value = fact === undefined ? null : numberOf(fact.text);
-    if (fact === undefined || value === null) continue;
-    const minutes = /\bmin(utes?)?\b/i.test(fact.comment);
-    const unit = minutes ? `min (${fact.comment})` : "s";
-    return {
-      exposure_s: minutes ? 60 * value : value,
-      decision: {
-        what: "exposure time",
-        value: minutes ? "minutes" : "seconds",
-        from: `${fact.key}, ${unit}`,
-        assumed: false,
-      },
-    };
-  }
-  return null;
+  const found = firstRead(facts, {
+    keys: keys["exposure_s"] === undefined ? EXPOSURE_KEYS : [keys["exposure_s"]],
+    read: (fact) => numberOf(fact.text),
+    action: "read exposure time",
+    rule: "it must be a number",
+  });
+  if (found === null) return null;
+  const { fact, value, unread } = found;
+  const minutes = /\bmin(utes?)?\b/i.test(fact.comment);
+  const unit = minutes ? `min (${fact.comment})` : "s";
+  return {
+    exposure_s: minutes ? 60 * value : value,
+    decision: {
+      what: "exposure time",
+      value: minutes ? "minutes" : "seconds",
+      from: `${fact.key}, ${unit}${unreadNote(unread)}`,
+      assumed: false,
+    },
+  };
 }

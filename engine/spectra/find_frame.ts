@@ -112,7 +112,10 @@ export function findMedium(
     if (/^vac/i.test(stated.text)) return say("vacuum", from);
     if (/^air/i.test(stated.text)) return say("air", from);
   }
+  const said = stated === undefined
+    ? "nothing said"
+    : `${stated.key} = '${stated.text}' is neither air nor vacuum`;
   return wavelength_angstrom < 2000
-    ? say("vacuum", "nothing said: vacuum below 2000 angstrom by custom", true)
-    : say("air", "nothing said: air in the optical by custom", true);
+    ? say("vacuum", `${said}: vacuum below 2000 angstrom by custom`, true)
+    : say("air", `${said}: air in the optical by custom`, true);
 }

@@ -1,6 +1,7 @@
 import { SPEED_OF_LIGHT_KMS } from "../constants.ts";
 import type { OneDecision } from "./decision.ts";
-import { type Facts, firstFact } from "./facts.ts";
+import type { Facts } from "./facts.ts";
+import { firstRead, unreadNote } from "./first_read.ts";
 import { numberOf } from "./number_text.ts";
 import type { ReadExposuresOptions } from "./read_options.ts";
 
@@ -31,6 +32,7 @@ export interface FoundResolution {
  * @param facts The facts of an exposure.
  * @param options What is stated, names of keys (`resolution`), and the wavelengths, Å.
  * @returns The full width at half maximum at each pixel; null when nothing says.
+ * @throws {InputError} When one is there and is no positive number, with its value and key.
  *
  * @example
  * ```ts
@@ -67,15 +69,21 @@ export function findResolution(
   if (resolving_power !== undefined) {
     return say((w) => w / resolving_power, `power ${resolving_power}`, "resolving_power");
   }
-  const fact = firstFact(
-    facts,
-    keys["resolution"] === undefined ? RESOLUTION_KEYS : [keys["resolution"]],
-  );
-  const value = fact === undefined ? null : numberOf(fact.text);
-  if (fact === undefined || value === null || !(value > 0)) return null;
+  const found = firstRead(facts, {
+    keys: keys["resolution"] === undefined ? RESOLUTION_KEYS : [keys["resolution"]],
+    read: (fact) => {
+      const value = numberOf(fact.text);
+      return value !== null && value > 0 ? value : null;
+    },
+    action: "read resolution",
+    rule: "it must be a positive number",
+  });
+  if (found === null) return null;
+  const { fact, value, unread } = found;
   const words = `${fact.key} ${fact.comment}`;
   const isWidth = /angstrom|\bA\b|fwhm/i.test(words);
   const isPower = !isWidth && (/power|RP\b|RP$/i.test(words) || value > 200);
-  if (isPower) return say((w) => w / value, `power ${value}`, fact.key, !/power|RP/i.test(words));
-  return say(() => value, `${value} angstrom`, fact.key, !isWidth);
+  const from = `${fact.key}${unreadNote(unread)}`;
+  if (isPower) return say((w) => w / value, `power ${value}`, from, !/power|RP/i.test(words));
+  return say(() => value, `${value} angstrom`, from, !isWidth);
 }

@@ -67,7 +67,7 @@ export function fitsAxis(header: FitsHeader, options: FitsAxisOptions): Recorded
     };
   }
   const type = (header.string(`CTYPE${axis}`) ?? "").trim().toUpperCase();
-  const linear = linearKeys(header, axis);
+  const linear = linearKeys(header, options);
   if (linear === null) {
     throw refuseAxis(
       `the image must have a wavelength axis; CTYPE${axis}, CRVAL${axis}, CDELT${axis}, CD${axis}_${axis}, WAT cards and an HDU of wavelengths were tried`,

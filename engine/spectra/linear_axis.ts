@@ -31,16 +31,33 @@ export interface LinearKeys {
   readonly keys: string;
 }
 
-/** Reads the linear keys of an axis: CD before CDELT, PC counted; null when they are incomplete. */
-export function linearKeys(header: FitsHeader, axis: number): LinearKeys | null {
+/**
+ * Reads the linear keys of an axis: CD before CDELT, PC counted; null when they are incomplete.
+ *
+ * @throws {InputError} When the step is 0, or a value is no number.
+ */
+export function linearKeys(header: FitsHeader, options: FitsAxisOptions): LinearKeys | null {
+  const { axis = 1 } = options;
   const value = header.number(`CRVAL${axis}`);
   if (value === undefined) return null;
   const matrix = header.number(`CD${axis}_${axis}`);
   const delta = header.number(`CDELT${axis}`);
   const scale = header.number(`PC${axis}_${axis}`) ?? 1;
   const usesMatrix = matrix !== undefined && matrix !== 0;
-  const step = usesMatrix ? matrix : delta === undefined ? undefined : delta * scale;
-  if (step === undefined || step === 0) return null;
+  const step = usesMatrix ? matrix : delta === undefined ? matrix : delta * scale;
+  if (step === undefined) return null;
+  if (step === 0) {
+    const key = delta === undefined
+      ? `CD${axis}_${axis}`
+      : delta === 0
+      ? `CDELT${axis}`
+      : `PC${axis}_${axis}`;
+    throw refuseAxis("the step from pixel to pixel must not be 0", 0, {
+      ...options,
+      key,
+      remedy: "mend the header",
+    });
+  }
   const keys = `CRVAL${axis}, ${usesMatrix ? `CD${axis}_${axis}` : `CDELT${axis}`}, CRPIX${axis}`;
   return { value, step, pixel: header.number(`CRPIX${axis}`) ?? 1, keys };
 }

@@ -18,6 +18,7 @@ export * from "./find_frame.ts";
 export * from "./find_site.ts";
 export * from "./find_resolution.ts";
 export * from "./find_time.ts";
+export * from "./first_read.ts";
 export * from "./fits_axis.ts";
 export * from "./flux_image.ts";
 export * from "./number_text.ts";

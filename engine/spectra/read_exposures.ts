@@ -10,7 +10,7 @@ import { pointedElsewhere } from "./pointing.ts";
 import { readImage } from "./read_image.ts";
 import type { ReadExposuresOptions, SpectraLayout } from "./read_options.ts";
 import { isStack, readStack } from "./read_stack.ts";
-import { readTable, spectrumTable } from "./read_table.ts";
+import { COLUMN_ROLES, readTable, spectrumTable } from "./read_table.ts";
 import { readLog } from "./read_log.ts";
 import { readText1d } from "./read_text.ts";
 import type { RecordedExposure } from "./recorded_exposure.ts";
@@ -38,6 +38,27 @@ function isFits(bytes: Uint8Array): boolean {
 // A file that is neither text nor starts as FITS must be told as what it is: no FITS.
 function isText(bytes: Uint8Array): boolean {
   return !bytes.subarray(0, 4096).includes(0);
+}
+
+// A name that a layout has no use for would be passed over unseen.
+function refuseMeaningless(
+  keys: Readonly<Record<string, string>>,
+  roles: readonly string[],
+  options: { readonly file: string; readonly layout: SpectraLayout },
+): void {
+  const { file, layout } = options;
+  const role = roles.find((one) => keys[one] !== undefined);
+  if (role === undefined) return;
+  throw new InputError({
+    action: "read exposures",
+    rule: role === "aperture"
+      ? `keys.aperture is the row of an image with several objects, and the layout here is ${layout}`
+      : `keys.${role} names a column of a FITS table, and the layout here is ${layout}`,
+    value: keys[role],
+    file,
+    key: `keys.${role}`,
+    remedy: "leave it out, or state layout",
+  });
 }
 
 /** Options of {@linkcode recordedIn}. */
@@ -71,6 +92,7 @@ export function recordedIn(
   const text = layout === "text" ||
     layout === "auto" && !isFits(bytes) && isText(bytes) && !/\.fits?(\.gz)?$/i.test(file);
   if (text) {
+    refuseMeaningless(keys, [...COLUMN_ROLES, "aperture"], { file, layout: "text" });
     const content = new TextDecoder().decode(bytes);
     const facts = log?.factsOf(file);
     return {
@@ -90,6 +112,8 @@ export function recordedIn(
       : isStack(fits, { keys })
       ? "stack"
       : "image");
+  if (chosen !== "table") refuseMeaningless(keys, COLUMN_ROLES, { file, layout: chosen });
+  if (chosen !== "image") refuseMeaningless(keys, ["aperture"], { file, layout: chosen });
   const read = { image: readImage, stack: readStack, table: readTable, text: readImage }[chosen];
   return { recorded: read(fits, { keys }), layout: chosen };
 }
@@ -160,6 +184,15 @@ export async function readExposures(
     await readText(logPath, { action: "read log of spectra" }),
     { file: logPath, ...(options.keys === undefined ? {} : { keys: options.keys }) },
   );
+  if (log === undefined && options.keys?.["file"] !== undefined) {
+    throw new InputError({
+      action: "read exposures",
+      rule: "keys.file names a column of the log, and there is no log",
+      value: options.keys["file"],
+      key: "keys.file",
+      remedy: "state log, or leave it out",
+    });
+  }
   const settled: SettledExposure[] = [];
   const decided: { group: number; source: string; decisions: readonly OneDecision[] }[] = [];
   const warnings = new Map<string, Warning>();

@@ -56,7 +56,7 @@ export function readLog(
     }
     // "mid_bjd_tdb" is a mid-exposure, and its own name says place and scale.
     const entries = table.names.flatMap((column, k): [string, string][] => [[column, cells[k]!]]);
-    rows.set(name, withMarkedNames(entries));
+    rows.set(name, withMarkedNames(entries, { file, line }));
   }
   const asked = new Set<string>();
   return {
@@ -79,14 +79,19 @@ export function readLog(
   };
 }
 
-function withMarkedNames(entries: readonly (readonly [string, string])[]): Facts {
-  const plain = namedFacts(entries);
+function withMarkedNames(
+  entries: readonly (readonly [string, string])[],
+  place: { readonly file: string; readonly line: number },
+): Facts {
+  const plain = namedFacts(entries, place);
   return {
     find(key) {
       const exact = plain.find(key);
       if (exact !== undefined || !/^(mid|start|end)$/.test(key)) return exact;
-      const longer = entries.find(([name]) => name.toLowerCase().startsWith(`${key}_`));
+      // "mid (BJD)" or "mid [HJD, UTC]" as well.
+      const longer = entries.find(([name]) => new RegExp(`^${key}[_\\s([]`, "i").test(name.trim()));
       return longer === undefined ? undefined : plain.find(longer[0]);
     },
+    names: plain.names,
   };
 }

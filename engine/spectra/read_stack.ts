@@ -53,6 +53,7 @@ export function numberedFacts(facts: Facts, row: number): Facts {
       }
       return undefined;
     },
+    names: () => facts.names(),
   };
 }
 
@@ -91,6 +92,7 @@ function rowTimes(fits: FitsFile, image: FluxImage, options: StackOptions): (row
     const shared: Facts = {
       find: (key) =>
         /^(TIMESYS|TREFPOS)$/i.test(key) ? joinFacts([header, image.facts]).find(key) : undefined,
+      names: () => [],
     };
     return (row) => joinFacts([tableRowFacts(table, row), shared]);
   }
@@ -107,6 +109,7 @@ function rowTimes(fits: FitsFile, image: FluxImage, options: StackOptions): (row
   }
   const shared: Facts = {
     find: (key) => /^(TIMESYS|TREFPOS)$/i.test(key) ? image.facts.find(key) : undefined,
+    names: () => [],
   };
   return (row) => joinFacts([numberedFacts(image.facts, row + 1), shared]);
 }
@@ -152,6 +155,7 @@ export function readStack(fits: FitsFile, options: StackOptions = {}): RecordedE
           Object.values(options.keys ?? {}).includes(key)
           ? own.find(key) ?? image.facts.find(key)
           : image.facts.find(key),
+      names: () => own.names(),
     };
     return {
       source: `${file}[${row + 1}]`,

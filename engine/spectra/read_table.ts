@@ -5,6 +5,7 @@ import { type Beside, besideOf, errorFrom, withMask } from "./error_kind.ts";
 import { headerFacts, joinFacts } from "./facts.ts";
 import type { RecordedAxis } from "./recorded_axis.ts";
 import type { RecordedExposure } from "./recorded_exposure.ts";
+import { unknownName } from "./require_keys.ts";
 import { tableRowFacts } from "./table_facts.ts";
 import { angstromIn, unitBySize } from "./wavelength_units.ts";
 
@@ -31,12 +32,28 @@ interface Columns {
 const FLUX_NAMES =
   /^(FLUX(_?(REDUCED|CAL|DENSITY|LAMBDA|NU))?|SPEC|SPECTRUM|COUNTS|INTENSITY|FLAM|FNU|F_?LAMBDA|DATA|SCI)$/i;
 
+/** What columns may be named for. */
+export const COLUMN_ROLES: readonly string[] = [
+  "wavelength",
+  "flux",
+  "error",
+  "inverse_variance",
+  "mask",
+];
+
+const bears = (name: string) => (head: ColumnHead) =>
+  head.name.toUpperCase() === name.toUpperCase();
+
+// Roles of columns whose names none of these columns bears.
+function missing(heads: readonly ColumnHead[], keys: Readonly<Record<string, string>>) {
+  return COLUMN_ROLES.filter((role) => keys[role] !== undefined && !heads.some(bears(keys[role])));
+}
+
 function columnsOf(hdu: Hdu, keys: Readonly<Record<string, string>>): Columns | null {
   const heads = hdu.columns;
+  if (missing(heads, keys).length > 0) return null;
   const named = (role: string) =>
-    keys[role] === undefined
-      ? undefined
-      : heads.find((h) => h.name.toUpperCase() === keys[role]!.toUpperCase());
+    keys[role] === undefined ? undefined : heads.find(bears(keys[role]));
   const kinds = heads.map((head) => besideOf(head.name));
   const first = (kind: Beside) => heads[kinds.indexOf(kind)];
   const linear = named("wavelength") ?? first("wavelength");
@@ -158,6 +175,11 @@ export function readTable(fits: FitsFile, options: TableOptions = {}): RecordedE
   const hdu = spectrumTable(fits, options);
   if (hdu === undefined) {
     const seen = fits.hdus.flatMap((h) => h.columns.map((c) => c.name));
+    const [role] = missing(fits.hdus.flatMap((h) => h.columns), keys);
+    if (role !== undefined) {
+      const where = "the table of every file";
+      throw unknownName(role, { name: keys[role]!, known: seen, where, file });
+    }
     throw new InputError({
       action: "read spectrum",
       rule:

@@ -5,10 +5,12 @@ import type { OneDecision } from "./decision.ts";
 import { EXPOSURE_KEYS, findDuration } from "./find_duration.ts";
 import { findFrame, findMedium } from "./find_frame.ts";
 import { findResolution } from "./find_resolution.ts";
-import { findTime, type RecordedTime, TIME_KEYS } from "./find_time.ts";
+import { requireTime } from "./find_time.ts";
 import type { ReadExposuresOptions } from "./read_options.ts";
 import type { RecordedExposure } from "./recorded_exposure.ts";
+import { requireKeys } from "./require_keys.ts";
 import { momentOf, sightOf, statedFactor } from "./sight_line.ts";
+import { sought } from "./sought.ts";
 import type { Spectrum } from "./spectrum.ts";
 
 /** An exposure settled. */
@@ -24,20 +26,6 @@ export interface SettledExposure {
 }
 
 const F_NU = /\bm?jy\b|jansky|hz/i;
-
-function timeOf(recorded: RecordedExposure, options: ReadExposuresOptions): RecordedTime {
-  const time = findTime(recorded.times, options);
-  if (time !== null) return time;
-  throw new InputError({
-    action: "read time of exposure",
-    rule: `the file or its log must give one; ${
-      TIME_KEYS.slice(0, 8).join(", ")
-    }, BJD, HJD, JD, MJD and their variants were tried`,
-    value: "none of them",
-    file: recorded.file,
-    remedy: "name the key by keys.mid or keys.start",
-  });
-}
 
 function durationOf(recorded: RecordedExposure, options: ReadExposuresOptions) {
   const duration = findDuration(recorded.facts, options.keys ?? {});
@@ -81,6 +69,16 @@ function assumptions(decisions: readonly OneDecision[]): Warning[] {
       code: "time-scale-assumed",
       text:
         `times are taken as ${scale.value.toUpperCase()}, ${scale.from} (UTC and TDB differ by about 69 s): state time_scale`,
+    });
+  }
+  const place = of("time place");
+  const form = decisions.find((d) => d.what === "time")?.value;
+  // A calendar date is the observatory's clock; a Julian date is as often brought to the barycentre.
+  if (place !== undefined && form !== "iso" && !/(DATE|MJD)[-_]/.test(place.from)) {
+    warnings.push({
+      code: "time-place-assumed",
+      text:
+        `times are taken as they passed at the observatory, ${place.from} (barycentric and heliocentric dates differ by up to 8.3 min): state time_place, or name the column as in mid_bjd_tdb`,
     });
   }
   const mark = of("time marks");
@@ -152,8 +150,9 @@ export function settleExposure(
     wavelength_angstrom: typical,
   });
   const frame = inFile(() => findFrame(facts, wavelength_frame));
-  const time = inFile(() => timeOf(recorded, options));
-  const duration = durationOf(recorded, options);
+  requireKeys(recorded, options.keys ?? {});
+  const time = inFile(() => requireTime(recorded.times, options));
+  const duration = inFile(() => durationOf(recorded, options));
   const needed = frame.frame !== "barycentric"
     ? `bringing ${frame.frame} wavelengths to the barycentre`
     : time.place !== "barycentric"
@@ -161,7 +160,7 @@ export function settleExposure(
       time.place === "observatory" ? "times of the observatory" : "heliocentric times"
     } to BJD`
     : null;
-  const sight = sightOf(recorded, { ...options, needed });
+  const sight = inFile(() => sightOf(recorded, { ...options, needed }));
   decisions.push(medium.decision, frame.decision, ...time.decisions, duration.decision);
   decisions.push(...sight.decisions);
 
@@ -198,8 +197,13 @@ export function settleExposure(
   const density = (values: Float64Array) =>
     perFrequency ? values.map((v, i) => v * (typical / samples.wavelength[i]!) ** 2) : values;
   const wavelength_angstrom = vacuum.map((w) => w * applied);
-  const resolution = findResolution(facts, { ...options, wavelength_angstrom });
-  if (resolution !== null) decisions.push(resolution.decision);
+  const { found: resolution, decisions: ofResolution } = inFile(() =>
+    sought(() => findResolution(facts, { ...options, wavelength_angstrom }), {
+      what: "resolution",
+      needed: options.keys?.["resolution"] !== undefined,
+    })
+  );
+  decisions.push(...ofResolution);
   return {
     spectrum: {
       source,

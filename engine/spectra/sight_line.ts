@@ -18,6 +18,7 @@ import type { RecordedTime } from "./find_time.ts";
 import { numberOf } from "./number_text.ts";
 import type { ReadExposuresOptions } from "./read_options.ts";
 import type { RecordedExposure } from "./recorded_exposure.ts";
+import { sought } from "./sought.ts";
 
 /** Where the observer stood and looked. */
 export interface Sight {
@@ -35,8 +36,14 @@ export function sightOf(
   options: ReadExposuresOptions & { readonly needed: string | null },
 ): Sight {
   const { needed, keys = {} } = options;
-  const site = findSite(recorded.facts, { site: options.site, keys });
-  const target = findDirection(recorded.facts, { target: options.target, keys });
+  const site = sought(
+    () => findSite(recorded.facts, { site: options.site, keys }),
+    { what: "site", needed: needed !== null },
+  );
+  const target = sought(
+    () => findDirection(recorded.facts, { target: options.target, keys }),
+    { what: "target", needed: needed !== null },
+  );
   const refuse = (what: string, tried: readonly string[], remedy: string) => {
     throw new InputError({
       action: "correct to the barycentre",
@@ -46,19 +53,19 @@ export function sightOf(
       remedy,
     });
   };
-  if (needed !== null && target === null) {
+  if (needed !== null && target.found === null) {
     const tried = [...DIRECTION_KEYS.ra.slice(0, 5), ...DIRECTION_KEYS.dec.slice(0, 5)];
     refuse("the target's coordinates", tried, "state ra_deg and dec_deg under [sky]");
   }
-  if (needed !== null && site === null) {
+  if (needed !== null && site.found === null) {
     const { latitude, longitude } = SITE_KEYS;
     const tried = ["OBSGEO-X", "OBSGEO-L", ...latitude.slice(0, 3), ...longitude.slice(0, 3)];
     refuse("the observatory's place", tried, "state site under [sky]");
   }
   return {
-    site: site?.site ?? null,
-    target: target?.target ?? null,
-    decisions: [site, target].flatMap((found) => found === null ? [] : [found.decision]),
+    site: site.found?.site ?? null,
+    target: target.found?.target ?? null,
+    decisions: [...site.decisions, ...target.decisions],
   };
 }
 

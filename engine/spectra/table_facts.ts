@@ -44,5 +44,6 @@ export function tableRowFacts(hdu: Hdu, row: number): Facts {
       known.set(id, fact);
       return fact;
     },
+    names: () => heads.map((column) => column.name),
   };
 }

@@ -46,10 +46,10 @@ export function placeOf(
 ): Reason & { readonly place: TimePlace } {
   if (asked !== "auto") return { place: asked, from: "time_place", assumed: false };
   const words = `${fact.key} ${fact.comment}`;
-  if (/BJD|barycent/i.test(words)) {
+  if (/BM?JD|BARY/i.test(words)) {
     return { place: "barycentric" as const, from: fact.key, assumed: false };
   }
-  if (/HJD|heliocent/i.test(words)) {
+  if (/HM?JD|HELIO/i.test(words)) {
     return { place: "heliocentric" as const, from: fact.key, assumed: false };
   }
   const reference = facts.find("TREFPOS");
@@ -60,7 +60,14 @@ export function placeOf(
     if (text.startsWith("HELIO")) return { place: "heliocentric" as const, from, assumed: false };
     if (/^(TOPO|GEO)/.test(text)) return { place: "observatory" as const, from, assumed: false };
   }
-  return { place: "observatory" as const, from: `custom for ${fact.key}`, assumed: true };
+  const unknown = reference !== undefined && /^(DATE|MJD)[-_]/i.test(fact.key)
+    ? ` (TREFPOS = '${reference.text}' is not known)`
+    : "";
+  return {
+    place: "observatory" as const,
+    from: `custom for ${fact.key}${unknown}`,
+    assumed: true,
+  };
 }
 
 const SCALES: Readonly<Record<string, TimeScale>> = {

@@ -11,6 +11,7 @@ import {
   findTime,
   namedFacts,
   numberOf,
+  requireTime,
   sexagesimalOf,
   splitDateOf,
   writtenTime,
@@ -29,6 +30,7 @@ function facts(entries: Record<string, string | [string, string]>): Facts {
         ? fact
         : { ...fact, comment: entry[1] };
     },
+    names: plain.names,
   };
 }
 
@@ -205,7 +207,12 @@ Deno.test("findDirection() tells hours from degrees", () => {
   assertEquals(of({ RA: "05:32:24", DEC: "-12:24:00" })!.ra_deg.toFixed(9), "83.100000000");
   assertEquals(of({ RA: ["5.54", "hours"], DEC: "-12.4" })!.ra_deg.toFixed(9), "83.100000000");
   assertEquals(of({ RA: ["83.1", "[deg] 05:32:24 h:m:s"], DEC: "-12.4" })!.ra_deg, 83.1);
-  assertEquals(of({ RA: "400", DEC: "-12.4" }), null);
+  assertEquals(of({ OBJECT: "x" }), null);
+  // A first key that cannot be read gives way to another that can.
+  assertEquals(
+    of({ RA: "N/A", OBJCTRA: "05 32 24", DEC: "-12.4" })!.ra_deg.toFixed(6),
+    "83.100000",
+  );
   assertEquals(of({ RA: "83.1" }), null);
   // Precession of 50 years: 0.64 degrees near the equator (Capitaine et al. 2003).
   assertAlmostEquals(of({ RA: "0", DEC: "0", EQUINOX: "B1950.0" })!.ra_deg, 0.6406, 1e-3);
@@ -242,6 +249,79 @@ Deno.test("findResolution() tells widths from powers", () => {
   assertEquals(of({}, { resolving_power: 1000 }), Float64Array.of(5, 6));
   assertAlmostEquals(of({}, { resolution_kms: 60 })![0]!, 1.000692, 1e-5);
   assertEquals(of({}), null);
+});
+
+Deno.test("what is there and cannot be read is shown with its key, and is not called missing", () => {
+  const cases: [() => unknown, string, string][] = [
+    [() => findDirection(facts({ RA: "400", DEC: "-12.4" })), "400", "RA"],
+    [() => findDirection(facts({ RA: "83.1", DEC: "south" })), "south", "DEC"],
+    [() => findDirection(facts({ RA: ["25.1", "hours"], DEC: "-12.4" })), "25.1", "RA"],
+    [() => findSite(facts({ LATITUDE: "abc", LONGITUD: "10" })), "abc", "LATITUDE"],
+    [() => findSite(facts({ LATITUDE: "95", LONGITUD: "10" })), "95", "LATITUDE"],
+    [
+      () => findSite(facts({ "OBSGEO-X": "six", "OBSGEO-Y": "0", "OBSGEO-Z": "0" })),
+      "six",
+      "OBSGEO-X",
+    ],
+    // Kilometres.
+    [
+      () => findSite(facts({ "OBSGEO-X": "1920.4", "OBSGEO-Y": "-5000", "OBSGEO-Z": "-3000" })),
+      "1920.4",
+      "OBSGEO-X",
+    ],
+    [() => findDuration(facts({ EXPTIME: "abc" }), {}), "abc", "EXPTIME"],
+    [() => requireTime(facts({ "DATE-OBS": "yesterday" })), "yesterday", "DATE-OBS"],
+    [() => requireTime(facts({ "DATE-OBS": "2024-01-02", UT: "25:00:00" })), "25:00:00", "UT"],
+    [() => requireTime(facts({ "DATE-OBS": "2024-01-02" })), "2024-01-02", "DATE-OBS"],
+    [
+      () =>
+        findResolution(facts({ SPEC_RES: "0" }), { wavelength_angstrom: Float64Array.of(5000) }),
+      "0",
+      "SPEC_RES",
+    ],
+  ];
+  for (const [work, value, key] of cases) {
+    const error = assertThrows(work, InputError);
+    assertEquals([error.value, error.key], [value, key]);
+  }
+  // Where another key gives it, the decision tells what was passed over.
+  const passed = findTime(facts({ "DATE-OBS": "yesterday", "MJD-OBS": "60311.5" }));
+  assertEquals(passed?.decisions[0]?.from, "MJD-OBS (DATE-OBS = 'yesterday' cannot be read)");
+  assertEquals(
+    findDuration(facts({ XPOSURE: "abc", EXPTIME: "60" }), {})?.decision.from,
+    "EXPTIME, s (XPOSURE = 'abc' cannot be read)",
+  );
+  assertEquals(
+    findDirection(facts({ RA: "83.1", DEC: "-12.4", EQUINOX: "current" }))?.decision.from,
+    "RA (degrees), DEC (EQUINOX = current is no equinox: taken as 2000)",
+  );
+  const medium = findMedium(facts({ AIRORVAC: "helium" }), {
+    asked: "auto",
+    axis: null,
+    wavelength_angstrom: 5000,
+  });
+  assertEquals(
+    medium.decision.from,
+    "AIRORVAC = 'helium' is neither air nor vacuum: air in the optical by custom",
+  );
+  // A key that the user names is never passed over.
+  assertEquals(findTime(facts({ T: "noon", "MJD-OBS": "60311.5" }), { keys: { mid: "T" } }), null);
+});
+
+Deno.test("findTime() tells place and scale from the name of a column", () => {
+  const of = (key: string, value = "2460312.1") => {
+    const { place, scale, date } = findTime(namedFacts([[key, value]]), { keys: { mid: key } })!;
+    return [place, scale, date[0] + date[1]];
+  };
+  assertEquals(of("BJD"), ["barycentric", "tdb", 2460312.1]);
+  assertEquals(of("BJD_TDB"), ["barycentric", "tdb", 2460312.1]);
+  assertEquals(of("BJD_UTC"), ["barycentric", "utc", 2460312.1]);
+  assertEquals(of("BMJD", "60311.6"), ["barycentric", "tdb", 2460312.1]);
+  assertEquals(of("t_bary"), ["barycentric", "tdb", 2460312.1]);
+  assertEquals(of("HJD"), ["heliocentric", "utc", 2460312.1]);
+  assertEquals(of("HMJD_TT", "60311.6"), ["heliocentric", "tt", 2460312.1]);
+  assertEquals(of("MJD", "60311.6"), ["observatory", "utc", 2460312.1]);
+  assertEquals(of("MJD_TT", "60311.6"), ["observatory", "tt", 2460312.1]);
 });
 
 Deno.test("findTime() refuses a time scale that it does not know", () => {

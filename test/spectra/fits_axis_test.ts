@@ -148,6 +148,16 @@ Deno.test("fitsAxis() refuses clearly what it does not read", () => {
     ],
     [{ CTYPE1: "LINEAR", CRVAL1: 1, CDELT1: 1 }, "the axis must be a wavelength in a known unit"],
     [
+      { CRVAL1: 5000, CDELT1: 0 },
+      "the step from pixel to pixel must not be 0: current value is 0 (a.fits, key CDELT1)",
+    ],
+    [{ CRVAL1: 5000, CD1_1: 0 }, "current value is 0 (a.fits, key CD1_1)"],
+    [{ CRVAL1: 5000, CDELT1: 2, PC1_1: 0 }, "current value is 0 (a.fits, key PC1_1)"],
+    [
+      { CRVAL1: 5000, CDELT1: "two" },
+      'as a number (HDU 0, byte 480): current value is "two" (key CDELT1)',
+    ],
+    [
       { OBJECT: "star" },
       "CTYPE1, CRVAL1, CDELT1, CD1_1, WAT cards and an HDU of wavelengths were tried",
     ],

@@ -5,6 +5,7 @@ import { randomStream } from "../../engine/numerics/mod.ts";
 import {
   encodeExposures,
   findTime,
+  namedFacts,
   readImage,
   readStack,
   readTable,
@@ -202,16 +203,7 @@ Deno.test("settleExposure() brings fluxes per frequency to fluxes per wavelength
     { name: "FLUX", unit: "mJy", data: Float64Array.of(1, 1, 1) },
     { name: "ERR", unit: "mJy", data: Float64Array.of(0.1, 0.1, 0.1) },
   ]));
-  const facts = {
-    find: (key: string) =>
-      ({ BJD_TDB: "2460311.5", EXPTIME: "60", SPECSYS: "BARYCENT" } as Record<string, string>)[key],
-  };
-  const found = {
-    find(key: string) {
-      const text = facts.find(key);
-      return text === undefined ? undefined : { key, text, comment: "" };
-    },
-  };
+  const found = namedFacts([["BJD_TDB", "2460311.5"], ["EXPTIME", "60"], ["SPECSYS", "BARYCENT"]]);
   const { spectrum, decisions } = settleExposure({ ...recorded!, times: found, facts: found });
   // F_lambda falls as the square of the wavelength.
   assertAlmostEquals(spectrum.flux[0]! / spectrum.flux[2]!, 2.25, 1e-12);
