@@ -11,6 +11,12 @@ export interface LineCoverage {
   readonly partly: readonly string[];
   /** Sources of those that do not cover the line. */
   readonly without: readonly string[];
+  /**
+   * Sources of those among them that are missed: others of their group cover the line, and no other
+   * spectrum of the same moment does. An arm that shows other lines, and orders beside the line's
+   * own, are not missed.
+   */
+  readonly missed: readonly string[];
 }
 
 function usableRange(spectrum: Spectrum): readonly [number, number] {
@@ -21,6 +27,8 @@ function usableRange(spectrum: Spectrum): readonly [number, number] {
   while (last > first && !Number.isFinite(flux[last]!)) last--;
   return [wavelength_angstrom[first] ?? NaN, wavelength_angstrom[last] ?? NaN];
 }
+
+const momentOf = ({ group, mid: [whole, fraction] }: Spectrum) => `${group} ${whole} ${fraction}`;
 
 function described(ranges: readonly (readonly [number, number])[]): string {
   const merged: [number, number][] = [];
@@ -70,14 +78,14 @@ export function lineCoverage(
   const high = lineWavelength(reach_kms, line);
   const covering: Spectrum[] = [];
   const partly: string[] = [];
-  const without: string[] = [];
+  const without: Spectrum[] = [];
   const ranges = spectra.map(usableRange);
   spectra.forEach((spectrum, i) => {
     const [from, to] = ranges[i]!;
     const covered = (Math.min(high, to) - Math.max(low, from)) / (high - low);
     const rest = line.vacuum_angstrom;
     if (!(covered >= 0.5 && from <= rest && to >= rest)) {
-      without.push(spectrum.source);
+      without.push(spectrum);
       return;
     }
     covering.push(spectrum);
@@ -93,5 +101,9 @@ export function lineCoverage(
       remedy: "name a line within what is covered",
     });
   }
-  return { covering, partly, without };
+  const groups = new Set(covering.map((one) => one.group));
+  const moments = new Set(covering.map(momentOf));
+  const missed = without.filter((one) => groups.has(one.group) && !moments.has(momentOf(one)));
+  const sources = (of: readonly Spectrum[]) => of.map((one) => one.source);
+  return { covering, partly, without: sources(without), missed: sources(missed) };
 }

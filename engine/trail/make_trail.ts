@@ -37,7 +37,12 @@ function chooseExposures(
   if (spectra.length === 0) {
     throw nothingLeft("at least one exposure must hold a spectrum", warnings, line.name);
   }
-  const { covering, partly } = lineCoverage(spectra, { line, reach_kms });
+  const { covering, partly, missed } = lineCoverage(spectra, { line, reach_kms });
+  warnings.about(
+    "line-not-covered",
+    `${missed.length} exposures do not cover the line, as others of their group do, and are left out`,
+    missed,
+  );
   warnings.about("line-partly-covered", `hold only part of ±${reach_kms} km/s`, partly);
   const open = covering.filter((s) =>
     !inPhaseRanges(foldExposure(s, ephemeris).phase, skip_phases)
@@ -81,7 +86,7 @@ function profileWidths(
  *
  * Exposures are used when they cover the line; blank ones and copies are dropped, and so are those
  * whose continuum cannot be fitted or, where it is to be divided out, is not seen at 3σ: each with a
- * warning.
+ * warning, as where some exposures of a group cover the line and others do not.
  *
  * @param spectra Exposures on barycentric vacuum wavelengths and BJD(TDB), in any order.
  * @param options Line, ephemeris and how to proceed.

@@ -23,3 +23,16 @@ Deno.test("lineCoverage() does not count what is not a number", () => {
   const { covering } = lineCoverage([spectrum!, gone], { line: H_BETA, reach_kms: 2500 });
   assertEquals(covering.map((s) => s.group), [0]);
 });
+
+Deno.test("lineCoverage() misses exposures whose group covers the line at other moments", () => {
+  const night = madeSpectra({ count: 3 });
+  const elsewhere = { low_angstrom: 6400, high_angstrom: 6700 };
+  const of = (spectra: ReturnType<typeof madeSpectra>) =>
+    lineCoverage(spectra, { line: H_BETA, reach_kms: 2500 }).missed;
+  // The second exposure of a night taken at another angle of the grating.
+  const turned = madeSpectra({ count: 3, ...elsewhere })[1]!;
+  assertEquals(of([night[0]!, { ...turned, source: "turned.fits" }, night[2]!]), ["turned.fits"]);
+  // Another arm in a group of its own, and other orders of the same exposures in one file.
+  assertEquals(of([...night, ...madeSpectra({ count: 3, ...elsewhere, group: 1 })]), []);
+  assertEquals(of([...night, ...madeSpectra({ count: 3, ...elsewhere })]), []);
+});

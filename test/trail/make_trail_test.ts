@@ -409,3 +409,19 @@ Deno.test("makeTrail() leaves out exposures that show less than half of the line
   assertEquals(codes(trail).includes("line-partly-covered"), true);
   assertEquals(codes(trail).includes("continuum-one-sided"), true);
 });
+
+Deno.test("makeTrail() says which exposures do not cover the line", () => {
+  const spectra = madeSpectra({ count: 20 }).map((one, i) =>
+    i % 8 === 3 ? { ...one, wavelength_angstrom: one.wavelength_angstrom.map((w) => w + 900) } : one
+  );
+  const trail = makeTrail(spectra, {
+    line: H_BETA,
+    ephemeris: EPHEMERIS,
+    continuum_kms: WINDOWS,
+  });
+  assertEquals(trail.sampling.count, 17);
+  assertEquals(
+    trail.warnings.find(({ code }) => code === "line-not-covered")?.text,
+    "3 exposures do not cover the line, as others of their group do, and are left out: night-0/003.fits, night-0/011.fits, night-0/019.fits",
+  );
+});
