@@ -38,6 +38,20 @@ export function mapAxisCards(map: VelocityMap): CardSpec[] {
   return [...axis(1, "VX"), ...axis(2, "VY")];
 }
 
+/** What the inversion aimed for, where it aimed for anything. */
+function goalCards({ goal, multiplier, method }: MappedLine): CardSpec[] {
+  return [
+    ...(goal === null ? [] : [
+      { keyword: "GOAL", value: goal, comment: "chi-square / samples aimed for" },
+    ]),
+    ...(multiplier === null ? [] : [{
+      keyword: "MULTIPL",
+      value: multiplier,
+      comment: method === "entropy" ? "multiplier of the entropy" : "weight of the variation",
+    }]),
+  ];
+}
+
 function mapHdus(mapped: MappedLine): HduSpec[] {
   const { map, trail } = mapped;
   return [
@@ -53,6 +67,8 @@ function mapHdus(mapped: MappedLine): HduSpec[] {
         { keyword: "METHOD", value: mapped.method },
         { keyword: "SYSTEMIC", value: mapped.systemic_kms, comment: "[km/s] systemic velocity" },
         { keyword: "REDCHISQ", value: mapped.reduced_chi_square, comment: "chi-square / samples" },
+        ...goalCards(mapped),
+        { keyword: "SIGN", value: mapped.sign, comment: "how the line was inverted" },
         { keyword: "SCALE", value: mapped.scale, comment: "factor on the predicted trail" },
       ],
     },

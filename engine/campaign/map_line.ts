@@ -3,10 +3,12 @@ import type { Warning } from "../errors.ts";
 import { median } from "../numerics/mod.ts";
 import {
   featurePeaks,
+  type InversionRecipe,
   type MapFeature,
   mapFeatures,
   type MapPeak,
   mapPeak,
+  type MapPlace,
   partFinder,
   resampleMaps,
   type VelocityMap,
@@ -17,7 +19,9 @@ import type { Progress } from "../workers/mod.ts";
 import { gridModel } from "./grid_model.ts";
 import { blendsOf } from "./blends_of.ts";
 import { invertTrail } from "./invert.ts";
+import type { LineSign } from "./inversion/inverted.ts";
 import { priorOf } from "./prior_of.ts";
+import { signOf, turned } from "./sign_of.ts";
 import type { SystemicVelocity } from "./systemic_of.ts";
 import type { Target } from "./target.ts";
 import type { MapSettings } from "./schema/map_section.ts";
@@ -34,12 +38,18 @@ export interface MappedLine {
   readonly method: MapSettings["method"];
   /** Systemic velocity taken out, km/s. */
   readonly systemic_kms: number;
-  /** Factor on the map's projection that fits the data best: 1 where the inversion fits them itself. */
+  /** Whether the line was inverted as it is, with its sign turned, or with either sign allowed. */
+  readonly sign: LineSign;
+  /** Factor on the map's projection that fits the data best: ±1 where the inversion fits them itself. */
   readonly scale: number;
   /** χ² over the number of samples. */
   readonly reduced_chi_square: number;
   /** Number of unmasked samples. */
   readonly sample_count: number;
+  /** χ² per sample that was aimed for in the end; null where there was no such goal. */
+  readonly goal: number | null;
+  /** Multiplier of the entropy or weight of the variation; null for back-projection. */
+  readonly multiplier: number | null;
   /** Iterations; 1 for a direct inversion. */
   readonly iterations: number;
   /** Whether the iteration met its goal. */
@@ -56,6 +66,14 @@ export interface MappedLine {
   readonly model: Float64Array;
   /** Data less model on the display grid, standard deviations. */
   readonly residual: Float64Array;
+  /** How it is made again from other data, with the multiplier held. */
+  readonly recipe: InversionRecipe;
+  /** The map's data on native pixels, sign as in the trail, scaled to fit. */
+  readonly samples: Float64Array;
+  /** Resolution (FWHM) that features are measured at, km/s. */
+  readonly resolution_kms: number;
+  /** Centre of the axisymmetric part that features stand out of: the accretor where it is known. */
+  readonly centre: MapPlace;
   /** What a user should know. */
   readonly warnings: readonly Warning[];
 }
@@ -101,18 +119,24 @@ export async function mapLine(
   // On a map that is rotated by an unknown angle only the centre of mass is known to be where it is.
   const placed = binary !== null && ephemeris.zero_marks !== "emission-crossing";
   const centre = { vx_kms: 0, vy_kms: placed ? -binary.k_accretor_kms : 0 };
-  const inverted = await invertTrail(trail, {
+  const sign = signOf(trail, { target });
+  // The linear inversion takes the data as they come: those of absorption with their sign turned.
+  const data = settings.method === "back-projection" && sign === "absorption"
+    ? turned(trail)
+    : trail;
+  const inverted = await invertTrail(data, {
     settings,
     pixels,
     systemic_kms,
     prior: await priorOf(target, { line, resolution_kms, centre_kms: centre.vy_kms, pixels }),
     blends: blendsOf(trail.line, { target }),
+    sign,
     force: options.force ?? false,
     progress,
     signal,
   });
   const { map } = inverted;
-  const spread = settings.resamples < 2 ? null : await resampleMaps(trail, {
+  const spread = settings.resamples < 2 ? null : await resampleMaps(data, {
     recipe: inverted.recipe,
     count: settings.resamples,
     seed: target.settings.seed + stream,
@@ -129,6 +153,7 @@ export async function mapLine(
     resolution_kms,
     centre,
     spread,
+    alternatives: spread === null ? [] : inverted.alternatives,
     systemic_error_kms: systemic.error_kms ?? 0,
     phase_error: phaseError(ephemeris, options.epoch),
     find_part: placed ? partFinder(binary) : null,
@@ -141,9 +166,12 @@ export async function mapLine(
     map,
     method: settings.method,
     systemic_kms,
+    sign,
     scale: inverted.scale,
     reduced_chi_square: inverted.reduced_chi_square,
     sample_count: inverted.sample_count,
+    goal: inverted.goal,
+    multiplier: inverted.multiplier,
     iterations: inverted.iterations,
     converged: inverted.converged,
     misalignment: inverted.misalignment,
@@ -151,8 +179,17 @@ export async function mapLine(
     features,
     spread: spread?.deviation ?? null,
     ...gridModel(map, { trail, systemic_kms, scale: inverted.scale }),
+    recipe: inverted.recipe,
+    samples: inverted.model,
+    resolution_kms,
+    centre,
     warnings: [
       ...inverted.warnings,
+      ...(sign !== "absorption" ? [] : [{
+        code: "absorption-turned",
+        line,
+        text: "the line is in absorption: it is mapped with its sign turned",
+      }]),
       ...(ephemeris.zero_marks !== "emission-crossing" ? [] : [{
         code: "map-rotated",
         line,

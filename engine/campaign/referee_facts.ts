@@ -6,6 +6,7 @@ import { backProject, type MapFeature, mapFeatures, type VelocityMap } from "../
 import { FWHM_OVER_SIGMA } from "../trail/mod.ts";
 import type { MappedLine } from "./map_line.ts";
 import type { Session } from "./session.ts";
+import { uprightTrail } from "./sign_of.ts";
 import type { LineLimit } from "./subject/limit_subject.ts";
 import { featureOptions, halvesSubject, nightMaps } from "./subject/map_subject.ts";
 import { searchedSystemic } from "./subject/scan_subject.ts";
@@ -86,7 +87,8 @@ function strongestFacts(
 
   const searched = options.systemic_error_kms === null ? searchedSystemic(mapped) : null;
   const sigma_kms = options.systemic_error_kms ?? searched?.error_kms ?? null;
-  const { trail, map: { pixels, half_width_kms }, systemic_kms } = mapped;
+  const { map: { pixels, half_width_kms }, systemic_kms } = mapped;
+  const trail = uprightTrail(mapped);
   const moved = (by_kms: number) =>
     away(backProject(trail, { pixels, half_width_kms, systemic_kms: systemic_kms + by_kms }));
   const { vx_error_kms, vy_error_kms } = strongest;

@@ -9,6 +9,7 @@ import { refereeFacts } from "./referee_facts.ts";
 import { resultRows } from "./result_rows.ts";
 import type { LineSettings } from "./schema/lines_section.ts";
 import type { Session } from "./session.ts";
+import { uprightTrail } from "./sign_of.ts";
 import type { LineLimit } from "./subject/limit_subject.ts";
 import { featureOptions } from "./subject/map_subject.ts";
 import { VERSION } from "./version.ts";
@@ -96,7 +97,7 @@ function backProjected(session: Session, mapped: MappedLine): ReportSubject["map
   const { trail, systemic_kms } = mapped;
   const { pixels, half_width_kms } = mapped.map;
   const shape = { pixels, half_width_kms, systemic_kms };
-  const map = backProject(trail, shape);
+  const map = backProject(uprightTrail(mapped), shape);
   const model = makeProjector(trail.sampling, shape).forward(map.intensity);
   const { scale, reduced_chi_square } = fitOfMap(trail, { model, scale: "fitted" });
   return {

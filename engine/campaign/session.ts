@@ -14,8 +14,8 @@ import { measureTargetOrbit, type TargetOrbit } from "./steps/run_orbit.ts";
 import { systemicOf, type SystemicVelocity } from "./systemic_of.ts";
 import { trailOf } from "./trail_of.ts";
 
-/** Simulations of the test of a line's core: its probability is then good to a fortieth. */
-const SIMULATIONS = 40;
+/** Simulations of the test of a line's core: its probability is then good to a twentieth. */
+const SIMULATIONS = 20;
 
 /**
  * One target at work: what several commands need is made once, when it is first asked for.

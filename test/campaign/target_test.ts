@@ -56,7 +56,7 @@ const WRONG: readonly (readonly [name: string, text: string, message: string])[]
   [
     "an unknown word",
     GOOD + '\n[map]\nmethod = "entrpy"\n',
-    'Cannot read target file as method must be one of "back-projection", "entropy": current value is "entrpy" (star.toml:15:1, key map.method); the nearest is "entropy"',
+    'Cannot read target file as method must be one of "back-projection", "entropy", "total-variation": current value is "entrpy" (star.toml:15:1, key map.method); the nearest is "entropy"',
   ],
   [
     "an even number of pixels",
@@ -92,6 +92,21 @@ const WRONG: readonly (readonly [name: string, text: string, message: string])[]
     "a duplicate key",
     GOOD.replace("[[exposures]]", "period_d = 0.1\n\n[[exposures]]"),
     "Cannot read target file as it is not valid TOML: defining a key multiple times is invalid (star.toml:8:1)",
+  ],
+  [
+    "a baseline that no fit frees",
+    GOOD + "\n[map]\nbaseline = true\n",
+    "Cannot read target file as baseline must not be free in a back-projection, which is no fit: set map.method to entropy or total-variation: current value is true (star.toml:15:1, key map.baseline)",
+  ],
+  [
+    "a weight of another inversion",
+    GOOD + '\n[map]\nmethod = "entropy"\nweight = "noise"\n',
+    'Cannot read target file as weight is for map.method = "total-variation" alone: current value is "noise" (star.toml:16:1, key map.weight)',
+  ],
+  [
+    "a sign that is none",
+    GOOD.replace('name = "H beta"', 'name = "H beta"\nsign = "both"'),
+    'Cannot read target file as sign must be one of "auto", "emission", "absorption", "mixed": current value is "both" (star.toml:13:1, key lines[0].sign); the nearest is "auto"',
   ],
 ];
 

@@ -45,6 +45,8 @@ export interface LineSettings {
   readonly resolving_power?: number;
   /** Lines mapped with it. */
   readonly blends: readonly BlendSettings[];
+  /** Whether it is inverted as it is, with its sign turned, or with either sign allowed. */
+  readonly sign: "auto" | "emission" | "absorption" | "mixed";
   /** Star with which the line moves. */
   readonly traces: "accretor" | "donor";
   /** "none", or one or several template spectra. */
@@ -65,6 +67,7 @@ export const linesSection: z.ZodType<LineSettings> = z.strictObject({
   resolution_kms: positive.optional(),
   resolving_power: positive.optional(),
   blends: z.array(blend).default([]),
+  sign: z.enum(["auto", "emission", "absorption", "mixed"]).default("auto"),
   traces: z.enum(["accretor", "donor"]).default("accretor"),
   template: z.union([text, z.array(text)]).default("none"),
   model: modelSection.optional(),

@@ -3,8 +3,10 @@ import type { AnyMap, MapFeature, MapPeak } from "../../tomography/mod.ts";
 import { jsonText, type OutputHead, outputHead } from "../output_head.ts";
 import { mappedLines } from "../line_of.ts";
 import { mapFits } from "../map_fits.ts";
+import type { LineSign } from "../inversion/inverted.ts";
 import type { MappedLine } from "../map_line.ts";
 import type { Session } from "../session.ts";
+import type { Target } from "../target.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
 /** `map.json`. */
@@ -31,6 +33,14 @@ export interface MapSummary {
   readonly reduced_chi_square: number;
   /** Number of unmasked samples. */
   readonly sample_count: number;
+  /** χ² per sample asked for; null where the inversion has no such goal. */
+  readonly goal_asked: number | null;
+  /** χ² per sample aimed for in the end: higher where what was asked for was out of reach. */
+  readonly goal_used: number | null;
+  /** Multiplier of the entropy or weight of the variation; null for back-projection. */
+  readonly multiplier: number | null;
+  /** Whether the line was inverted as it is, with its sign turned, or with either sign allowed. */
+  readonly sign: LineSign;
   /** Factor on the predicted trail that fits the data best. */
   readonly scale: number;
   /** Iterations. */
@@ -88,7 +98,7 @@ export async function runMap(
   ]);
   const document: MapDocument = {
     ...outputHead(session.target, { schema: "map/1", inputs, warnings }),
-    maps: maps.map((mapped, i) => summary(mapped, tests[i]!)),
+    maps: maps.map((mapped, i) => summary(session.target, { mapped, any: tests[i]! })),
   };
   const files = await writeStep([
     ["map.fits", mapFits(session.target, { maps })],
@@ -97,7 +107,10 @@ export async function runMap(
   return { document, files, warnings };
 }
 
-function summary(mapped: MappedLine, any: AnyMap): MapSummary {
+function summary(
+  target: Target,
+  { mapped, any }: { readonly mapped: MappedLine; readonly any: AnyMap },
+): MapSummary {
   const { trail, map } = mapped;
   return {
     line: trail.line.name,
@@ -108,6 +121,10 @@ function summary(mapped: MappedLine, any: AnyMap): MapSummary {
     systemic_kms: mapped.systemic_kms,
     reduced_chi_square: mapped.reduced_chi_square,
     sample_count: mapped.sample_count,
+    goal_asked: mapped.goal === null ? null : target.settings.map.reduced_chi_square,
+    goal_used: mapped.goal,
+    multiplier: mapped.multiplier,
+    sign: mapped.sign,
     scale: mapped.scale,
     iterations: mapped.iterations,
     converged: mapped.converged,

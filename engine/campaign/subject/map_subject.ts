@@ -9,6 +9,7 @@ import { FWHM_OVER_SIGMA } from "../../trail/mod.ts";
 import type { PlateSubject } from "../../figures/mod.ts";
 import type { Binary } from "../../binary/mod.ts";
 import type { MappedLine } from "../map_line.ts";
+import { uprightTrail } from "../sign_of.ts";
 import { nightsOf, rowsOf } from "./nights.ts";
 
 /** What plates show of a map. */
@@ -107,9 +108,9 @@ function rowNights({ trail }: MappedLine, options: { period_d: number }): number
 }
 
 function partMap(mapped: MappedLine, keep: (row: number) => boolean): VelocityMap {
-  const { trail, map, systemic_kms } = mapped;
+  const { map, systemic_kms } = mapped;
   return backProject(
-    { grid: rowsOf(trail.grid, keep) },
+    { grid: rowsOf(uprightTrail(mapped).grid, keep) },
     { pixels: map.pixels, half_width_kms: map.half_width_kms, systemic_kms },
   );
 }

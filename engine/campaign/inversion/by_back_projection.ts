@@ -1,0 +1,52 @@
+import { InputError } from "../../errors.ts";
+import { type InversionRecipe, makeInverter } from "../../tomography/mod.ts";
+import type { Trail } from "../../trail/mod.ts";
+import { pause } from "../pause.ts";
+import type { Inverted, InvertOptions } from "./inverted.ts";
+
+/**
+ * Back-projects a trail. A line in absorption must come with its sign turned already.
+ *
+ * @param trail The trail.
+ * @param options How.
+ * @returns The map and its fit.
+ * @throws {InputError} When the line has blends, which only a fit can tell apart.
+ */
+export async function byBackProjection(trail: Trail, options: InvertOptions): Promise<Inverted> {
+  const { settings, pixels, systemic_kms, blends, sign, force, signal } = options;
+  if (blends.length > 0) {
+    throw new InputError({
+      action: `map ${trail.line.name} with its blends`,
+      rule: "blends can be told apart by a fit alone",
+      value: settings.method,
+      key: "map.method",
+      remedy: 'use map.method = "entropy"',
+    });
+  }
+  const recipe: InversionRecipe = {
+    inversion: "back-projection",
+    pixels,
+    half_width_kms: settings.half_width_kms,
+    systemic_kms,
+    force,
+  };
+  // The native exposures are inverted: phase bins are for display.
+  const turn = sign === "absorption" ? -1 : 1;
+  const { map, model, scale, reduced_chi_square } = makeInverter(trail, recipe)(trail);
+  await pause(signal);
+  return {
+    map,
+    scale: turn * scale,
+    model: turn === 1 ? model : model.map((m) => -m),
+    reduced_chi_square,
+    sample_count: trail.error.reduce((n, error) => n + (Number.isFinite(error) ? 1 : 0), 0),
+    goal: null,
+    multiplier: null,
+    iterations: 1,
+    converged: true,
+    misalignment: null,
+    warnings: [],
+    recipe,
+    alternatives: [],
+  };
+}
