@@ -1,13 +1,12 @@
 import { gaussLegendre } from "../numerics/mod.ts";
 
-/** Largest smear over σ per panel, and the number of Gauss–Legendre points it takes for 1e-4. */
-const ORDERS: readonly (readonly [number, number])[] = [
-  [0.02, 1],
-  [0.3, 2],
-  [1, 3],
-  [3, 5],
-  [5, 7],
-  [8, 15],
+/**
+ * Largest L/σ for which 1, 2, 3… Gauss–Legendre points keep within 1e-4 of the smeared profile's peak, at
+ * the corners of the map too, where the smear is √2 L.
+ */
+const LIMITS: readonly number[] = [
+  ...[0.03, 0.43, 1.08, 1.81, 2.52, 3.24, 3.93, 4.62],
+  ...[5.31, 5.99, 6.66, 7.33, 8, 8.67, 9.33, 9.99],
 ];
 
 /** Offsets in phase and weights that stand for one exposure; the weights add up to one. */
@@ -19,12 +18,12 @@ export interface SmearingRule {
 }
 
 /**
- * Instants within an exposure whose mean stands for the whole exposure to 1e-4 of a profile's peak.
- * The number of Gauss–Legendre points grows with L/σ, the largest smear over the width of the
- * instrumental profile; exposures with L/σ > 8 are cut into equal panels.
+ * Instants within an exposure whose mean stands for the whole exposure to 1e-4 of the profile's peak,
+ * as few of them as that takes. The number of Gauss–Legendre points grows with L/σ, the smear over the
+ * width of the instrumental profile; exposures with L/σ > 10 are cut into equal panels.
  *
  * @param phase_width Duration of the exposure, cycles.
- * @param smear_over_sigma L/σ: 2π × duration in cycles × largest speed in the map, over σ.
+ * @param smear_over_sigma L/σ: 2π × duration in cycles × half-width of the map, over σ.
  * @returns Offsets and weights.
  *
  * @example A short exposure is one instant
@@ -33,13 +32,13 @@ export interface SmearingRule {
  * import { assertEquals } from "@std/assert";
  *
  * assertEquals(smearingRule(0, 0).offset, Float64Array.of(0));
- * assertEquals(smearingRule(0.01, 4).offset.length, 7);
+ * assertEquals(smearingRule(0.01, 4).offset.length, 8);
  * ```
  */
 export function smearingRule(phase_width: number, smear_over_sigma: number): SmearingRule {
-  const largest = ORDERS[ORDERS.length - 1]?.[0] ?? 8;
+  const largest = LIMITS[LIMITS.length - 1]!;
   const panels = Math.max(1, Math.ceil(smear_over_sigma / largest));
-  const order = ORDERS.find(([limit]) => smear_over_sigma / panels <= limit)?.[1] ?? 15;
+  const order = 1 + LIMITS.findIndex((limit) => smear_over_sigma / panels <= limit);
   return panelled(phase_width, { panels, order });
 }
 
