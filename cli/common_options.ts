@@ -1,4 +1,5 @@
 import { Command, InvalidArgumentError } from "@commander-js/extra-typings";
+import { InputError } from "../engine/errors.ts";
 
 /** Options that every command takes. */
 export type CommonOptions = ReturnType<ReturnType<typeof commandWith>["opts"]>;
@@ -18,6 +19,30 @@ export function commandWith(name: string, summary: string) {
       "override one setting (repeatable)",
       (value: string, before: string[] | undefined) => [...before ?? [], value],
     );
+}
+
+/**
+ * Refuses options that every command takes and that one has no use for: what would have no effect is
+ * not passed over in silence.
+ *
+ * @param options The options of the call.
+ * @param refused What is done instead, by option, and the command's action.
+ */
+export function refuseOptions(
+  options: CommonOptions,
+  refused: { readonly action: string; readonly out?: string; readonly set?: string },
+): void {
+  const { action, out, set } = refused;
+  const refuse = (rule: string, value: string) => {
+    throw new InputError({ action, rule, value, remedy: "leave it out" });
+  };
+  if (out !== undefined && options.out !== undefined) {
+    refuse(`${out}, so --out has no meaning`, options.out);
+  }
+  const [assigned] = options.set ?? [];
+  if (set !== undefined && assigned !== undefined) {
+    refuse(`${set}, so --set has no meaning`, assigned);
+  }
 }
 
 /** Reads a whole number, zero or above. */

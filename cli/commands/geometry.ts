@@ -8,7 +8,7 @@ import {
   streamVelocities,
 } from "../../engine/binary/mod.ts";
 import { VERSION } from "../../engine/campaign/mod.ts";
-import { commandWith, decimalNumber } from "../common_options.ts";
+import { commandWith, decimalNumber, refuseOptions } from "../common_options.ts";
 import { runCommand } from "../run_command.ts";
 import { plainNumber, tableLines } from "../terminal/table.ts";
 import { scatterLines } from "../terminal/scatter.ts";
@@ -32,6 +32,11 @@ export function geometryCommand(finish: (status: number) => void) {
     .action(async (options) => {
       finish(
         await runCommand(options, () => {
+          refuseOptions(options, {
+            action: "describe geometry",
+            out: "it writes to the terminal alone",
+            set: "the binary is given by options such as --mass-ratio, not by a target file",
+          });
           const given = {
             mass_ratio: options.massRatio,
             k_donor_kms: options.kDonorKms,

@@ -1,6 +1,5 @@
-import { InputError } from "../../engine/errors.ts";
 import { newTarget, VERSION } from "../../engine/campaign/mod.ts";
-import { commandWith } from "../common_options.ts";
+import { commandWith, refuseOptions } from "../common_options.ts";
 import { runCommand } from "../run_command.ts";
 import { tableLines } from "../terminal/table.ts";
 
@@ -16,13 +15,11 @@ export const newCommand = (finish: (status: number) => void) =>
     .action(async (dir, options) => {
       finish(
         await runCommand(options, async () => {
-          if (options.out !== undefined) {
-            throw new InputError({
-              action: "start a target file",
-              rule: "it stands in the folder of the spectra, so --out has no meaning",
-              value: options.out,
-            });
-          }
+          refuseOptions(options, {
+            action: "start a target file",
+            out: "it stands in the folder of the spectra",
+            set: "its settings are filled in by hand",
+          });
           const made = await newTarget(dir, { overwrite: options.overwrite });
           return {
             document: {

@@ -24,6 +24,20 @@ export function ephemerisOf(
 ): Ephemeris {
   const { orbit } = target.settings;
   const action = "fold the exposures on the orbit";
+  if (orbit.period_d === undefined && orbit.period_range_d !== undefined) {
+    const key = "orbit.period_range_d";
+    throw new InputError({
+      action,
+      rule: "orbit.period_d must be known: a range is searched by `orbit` alone",
+      value: orbit.period_range_d,
+      unit: "d",
+      file: target.file,
+      line: target.places.get(key)?.line,
+      key,
+      remedy:
+        `run millrace orbit --refine ${target.file}, then go on with ${target.name}-refined.toml, which it writes`,
+    });
+  }
   const period_d = needed(target, { value: orbit.period_d, key: "orbit.period_d", action });
   const written = needed(target, {
     value: orbit.zero_bjd_tdb ?? orbit.zero_hjd_utc ?? orbit.zero_hjd_tt,

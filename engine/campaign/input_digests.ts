@@ -1,6 +1,7 @@
 import { relative, resolve } from "@std/path";
 import { InputError } from "../errors.ts";
 import { expandGlob, readBytes, sha256 } from "../files/mod.ts";
+import { exposureFiles } from "./exposure_files.ts";
 import type { InputDigest } from "./output_head.ts";
 import { pause } from "./pause.ts";
 import type { Target } from "./target.ts";
@@ -15,6 +16,7 @@ export interface NamedFile {
 
 /**
  * All files that a target names: exposures, logs, tables beside them, templates, prior images.
+ * Results of Millrace are no exposures.
  *
  * @param target The target.
  * @returns The files in the order of the target file; each one once.
@@ -24,9 +26,10 @@ export async function namedFiles(target: Target): Promise<NamedFile[]> {
   const found = new Map<string, NamedFile>();
   for (const [key, pattern] of patterns(target)) {
     try {
-      for (const path of await expandGlob(pattern, { base: target.folder, key })) {
-        if (!found.has(path)) found.set(path, { path, key });
-      }
+      const paths = key.includes(".files")
+        ? await exposureFiles(target, { pattern, key })
+        : await expandGlob(pattern, { base: target.folder, key });
+      for (const path of paths) if (!found.has(path)) found.set(path, { path, key });
     } catch (error) {
       if (!(error instanceof InputError)) throw error;
       throw error.at({ file: target.file, line: target.places.get(key)?.line, key });

@@ -3,6 +3,7 @@ import { InputError, type Warning } from "../errors.ts";
 import { expandGlob, readBytes, writeFileAtomically } from "../files/mod.ts";
 import { lineNamed } from "../sky/mod.ts";
 import { type ExposuresRead, readExposures, recordedIn } from "../spectra/mod.ts";
+import { withoutResults } from "./exposure_files.ts";
 
 const SPECTRA = "*.{fits,fit,fts,fits.gz,fit.gz,txt,dat,ascii,asc}";
 
@@ -131,9 +132,7 @@ async function groupsIn(folder: string): Promise<{ pattern: string; paths: strin
       if (!(error instanceof InputError)) throw error;
     }
   }
-  // Outputs of an earlier run are no spectra.
-  const own = new Set(["map.fits", "trail.fits", "model.fits", "plate.txt"]);
-  const spectra = found.filter((path) => !own.has(basename(path)) && !/-plate\.txt$/.test(path));
+  const spectra = await withoutResults(found);
   const groups = Map.groupBy(spectra, (path) => {
     const name = relative(folder, path);
     const extension = /\.(fits|fit|fts|txt|dat|ascii|asc)(\.gz)?$/.exec(name)![0];

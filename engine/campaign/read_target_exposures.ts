@@ -1,10 +1,11 @@
 import { join, relative } from "@std/path";
 import { InputError, type Warning } from "../errors.ts";
-import { expandGlob, readBytes, sha256 } from "../files/mod.ts";
+import { readBytes, sha256 } from "../files/mod.ts";
 import type { Direction } from "../sky/mod.ts";
 import { type Decision, readExposures, type Spectrum } from "../spectra/mod.ts";
 import type { Photometry } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
+import { exposureFiles } from "./exposure_files.ts";
 import { groupPhotometry } from "./group_photometry.ts";
 import type { InputDigest } from "./output_head.ts";
 import { pause } from "./pause.ts";
@@ -30,7 +31,7 @@ export interface TargetExposures {
 }
 
 /**
- * Reads every `[[exposures]]` group of a target.
+ * Reads every `[[exposures]]` group of a target. Results of Millrace among the files are left out.
  *
  * @param target The target.
  * @param options Progress and interrupt.
@@ -64,12 +65,7 @@ export async function readTargetExposures(
     const paths: string[] = [];
     for (const [index, pattern] of settings.files.entries()) {
       const key = `exposures[${group}].files[${index}]`;
-      try {
-        paths.push(...await expandGlob(pattern, { base: target.folder, key }));
-      } catch (error) {
-        if (!(error instanceof InputError)) throw error;
-        throw error.at({ file: target.file, line: target.places.get(key)?.line, key });
-      }
+      paths.push(...await exposureFiles(target, { pattern, key }));
     }
     const log = settings.log === undefined ? undefined : join(target.folder, settings.log);
     for (const [done, path] of [...new Set(paths), ...(log === undefined ? [] : [log])].entries()) {

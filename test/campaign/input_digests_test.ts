@@ -1,9 +1,13 @@
-import { assertEquals, assertRejects } from "@std/assert";
+import { assert, assertEquals, assertRejects } from "@std/assert";
 import { join } from "@std/path";
 import { InputError } from "@millrace/millrace/errors";
-import { sha256 } from "@millrace/millrace/files";
-import { inputDigests, namedFiles, parseTarget } from "@millrace/millrace/campaign";
+import { formatEcsv, sha256 } from "@millrace/millrace/files";
+import { inputDigests, namedFiles, parseTarget, runTrail } from "@millrace/millrace/campaign";
+import { captionText } from "../../engine/campaign/caption_text.ts";
+import { exposureFiles } from "../../engine/campaign/exposure_files.ts";
 import { inFolder } from "../files/support.ts";
+import { madeExposures } from "../spectra/made_exposures.ts";
+import { writeCampaign } from "./campaign_fixture.ts";
 
 const TARGET = `format = 1
 [[exposures]]
@@ -71,3 +75,43 @@ Deno.test("namedFiles() takes words for words, and says where a file is missing"
     );
     assertEquals([error.line, error.key, error.value], [16, "lines[0].template[0]", "k5.txt"]);
   }));
+
+Deno.test("results of Millrace among the exposures are left out, and refused by name", async () => {
+  const raw = madeExposures({ count: 4 });
+  const campaign = await writeCampaign([{ raw }], {
+    exposures: '[[exposures]]\nfiles = ["night/*"]\n',
+  });
+  const night = join(campaign.folder, "night");
+  const before = [...Deno.readDirSync(night)].map(({ name }) => name);
+  const runAll = async () => {
+    const session = await campaign.open();
+    const output = { folder: night };
+    const { document } = await runTrail(session, output);
+    await Deno.writeTextFile(join(night, "plate.txt"), captionText("a caption"));
+    const table = {
+      meta: { creator: "Millrace" },
+      columns: [{ name: "phase", datatype: "float64" as const, values: [0.5] }],
+    };
+    await Deno.writeTextFile(join(night, "journal.ecsv"), formatEcsv(table));
+    return { document, digests: await inputDigests(session.target) };
+  };
+  const first = await runAll();
+  assert([...Deno.readDirSync(night)].length > before.length + 1);
+  // The second run finds what the first one found, so that its outputs are the same.
+  assertEquals(await runAll(), first);
+  assertEquals(
+    first.digests.map(({ file }) => file),
+    before.toSorted().map((name) => `night/${name}`),
+  );
+  const { target } = await campaign.open();
+  await assertRejects(
+    () => exposureFiles(target, { pattern: "night/trail.fits", key: "exposures[0].files[0]" }),
+    InputError,
+    'an exposure must not be a result of Millrace: current value is "night/trail.fits"',
+  );
+  await assertRejects(
+    () => exposureFiles(target, { pattern: "night/trail*", key: "exposures[0].files[0]" }),
+    InputError,
+    "a pattern must match a file that is no result of Millrace",
+  );
+});

@@ -32,6 +32,23 @@ Deno.test("millrace geometry draws a picture and refuses what is not enough", as
   );
 });
 
+Deno.test("millrace geometry and new refuse the common options that they have no use for", async () => {
+  const cases: [string[], string][] = [
+    [
+      ["geometry", "--mass-ratio", "0.2", "--set", "binary.mass_ratio=0.5"],
+      'millrace: Cannot describe geometry as the binary is given by options such as --mass-ratio, not by a target file, so --set has no meaning: current value is "binary.mass_ratio=0.5"; leave it out\n',
+    ],
+    [
+      ["new", ".", "--set", "seed=2"],
+      'millrace: Cannot start a target file as its settings are filled in by hand, so --set has no meaning: current value is "seed=2"; leave it out\n',
+    ],
+  ];
+  for (const [args, message] of cases) {
+    const { code, stdout, stderr } = await runMillrace(args);
+    assertEquals([code, stdout, stderr], [2, "", message]);
+  }
+});
+
 Deno.test("millrace names the nearest command and prints help", async () => {
   const wrong = await runMillrace(["geometri"]);
   assertEquals(wrong.code, 2);
