@@ -3,6 +3,7 @@ import { commandWith } from "../common_options.ts";
 import { runInParts } from "../part_options.ts";
 import { runCommand } from "../run_command.ts";
 import { openTarget, recorded } from "../target_command.ts";
+import { anyMapText } from "../terminal/any_map_text.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 
 /**
@@ -43,7 +44,7 @@ export function mapLines(document: MapDocument): string[] {
       plainNumber(map.reduced_chi_square, 3)
     }, ` +
     `peak at (${plainNumber(map.peak.vx_kms, 0)}, ${plainNumber(map.peak.vy_kms, 0)}) km/s`,
-    anyMapLine(map),
+    `    can any map fit? ${anyMapText(map.any_map)}`,
     ...(map.features.length === 0
       ? ["    no compact excess over the axisymmetric part"]
       : tableLines([
@@ -64,18 +65,4 @@ export function mapLines(document: MapDocument): string[] {
         align: ["right", "right", "right", "right", "right", "left"],
       })),
   ]);
-}
-
-function anyMapLine({ any_map }: MapDocument["maps"][number]): string {
-  const p = (name: string, value: number | null) =>
-    `${name} ${value === null ? "not tested" : `p = ${value.toPrecision(2)}`}`;
-  const { systemic_kms, systemic_error_kms } = any_map;
-  const parity = systemic_kms === null
-    ? ""
-    : `; γ by parity ${withError(systemic_kms, systemic_error_kms)} km/s`;
-  return `    can any map fit? ${p("moments", any_map.moments_p)}, ${
-    p("mirror", any_map.mirror_p)
-  }, ${p("core", any_map.core_p)}; best positive map χ²/N = ${
-    plainNumber(any_map.best_reduced_chi_square, 3)
-  }${parity}`;
 }

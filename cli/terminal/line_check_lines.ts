@@ -1,4 +1,5 @@
 import type { CheckedContent, LineCheck } from "../../engine/campaign/mod.ts";
+import { anyMapText } from "./any_map_text.ts";
 import { phaseStrip } from "./phase_strip.ts";
 import { plainNumber, tableLines } from "./table.ts";
 
@@ -24,6 +25,7 @@ export function lineCheckLines(line: LineCheck): string[] {
       ...sharpnessRows(line),
       ...noiseRows(line),
       ...profileRows(line),
+      ...(line.any_map === null ? [] : [["can any map fit?", anyMapText(line.any_map)]]),
       ...contentRows(line.contents),
     ], { indent: 4 }),
   ];

@@ -46,6 +46,7 @@ export * from "./steps/run_trail.ts";
 export * from "./steps/run_weigh.ts";
 export * from "./steps/step.ts";
 export * from "./systemic_of.ts";
+export type { LineTestsSummary } from "./test_line.ts";
 export * from "./batch/batch_jobs.ts";
 export * from "./batch/gather_batch.ts";
 export * from "./batch/gather_job.ts";

@@ -1,5 +1,4 @@
 import type { Binary, Ephemeris } from "../binary/mod.ts";
-import { type AnyMap, canAnyMapFit } from "../tomography/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
@@ -11,11 +10,10 @@ import { readTargetExposures, type TargetExposures } from "./read_target_exposur
 import type { LineSettings } from "./schema/lines_section.ts";
 import type { Target } from "./target.ts";
 import { measureTargetOrbit, type TargetOrbit } from "./steps/run_orbit.ts";
+import { signOf } from "./sign_of.ts";
 import { systemicOf, type SystemicVelocity } from "./systemic_of.ts";
+import { type LineTests, testLine } from "./test_line.ts";
 import { trailOf } from "./trail_of.ts";
-
-/** Simulations of the test of a line's core: its probability is then good to a twentieth. */
-const SIMULATIONS = 20;
 
 /**
  * One target at work: what several commands need is made once, when it is first asked for.
@@ -34,7 +32,7 @@ export interface Session {
   /** The map of a line. */
   readonly map: (line: LineSettings) => Promise<MappedLine>;
   /** Whether any map can have made a line's trail. */
-  readonly anyMap: (line: LineSettings) => Promise<AnyMap>;
+  readonly anyMap: (line: LineSettings) => Promise<LineTests>;
   /** The orbit as measured. */
   readonly orbit: () => Promise<TargetOrbit>;
   /** The lines, at least one. */
@@ -106,23 +104,18 @@ export function openSession(
       signal,
     });
   };
-  const anyMap = perLine((line) => keep(`tests of ${line.name}`, () => testLine(line)));
-  const testLine = async (line: LineSettings) => {
+  const anyMap = perLine((line) => keep(`tests of ${line.name}`, () => makeTests(line)));
+  const makeTests = async (line: LineSettings) => {
     const made = await trail(line);
     const { kms } = await systemic();
     await pause(signal);
-    const { half_width_kms } = target.settings.map;
-    const found = canAnyMapFit(made, {
-      pixels: 3,
-      half_width_kms,
+    return testLine(made, {
+      sign: signOf(made, { target }),
       systemic_kms: kms,
+      half_width_kms: target.settings.map.half_width_kms,
       seed: target.settings.seed,
-      simulations: SIMULATIONS,
-      continuum_error: made.continuum_error,
       force,
     });
-    const warnings = found.warnings.map((warning) => ({ ...warning, line: line.name }));
-    return { ...found, warnings };
   };
   const session: Session = {
     target,

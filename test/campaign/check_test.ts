@@ -376,7 +376,7 @@ Deno.test("runCheck() asks of each line whether any map can fit, and says why wh
   const [map] = (await campaign.map()).maps;
   assertEquals(JSON.parse(JSON.stringify(line!.any_map)), map!.any_map);
   // A night that covers too little of the half orbit.
-  const short = await writeCampaign([{ raw: madeExposures({ count: 6 }) }]);
+  const short = await writeCampaign([{ raw: madeExposures({ count: 3 }) }]);
   const document = await short.check();
   assertEquals(document.lines[0]!.any_map, null);
   const warning = document.warnings.find(({ code }) => code === "cannot-be-mapped")!;

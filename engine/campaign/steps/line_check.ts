@@ -5,6 +5,7 @@ import type {
   Spread,
   TrailNoise,
 } from "../../trail/mod.ts";
+import type { LineTestsSummary } from "../test_line.ts";
 import type { CheckedContent } from "./check_contents.ts";
 
 /** One line as an observer checks it before inverting. */
@@ -53,6 +54,8 @@ export interface LineCheck {
   readonly noise: TrailNoise;
   /** Noise within the line from repeats and mirrored pairs. */
   readonly pairs: { readonly repeat: PairNoise | null; readonly mirror: PairNoise | null };
+  /** Whether any map can fit; null for lines that are not mapped and data that cannot be. */
+  readonly any_map: LineTestsSummary | null;
   /** What else falls into the windows. */
   readonly contents: readonly CheckedContent[];
 }

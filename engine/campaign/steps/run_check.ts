@@ -1,10 +1,13 @@
 import { formatEcsv } from "../../files/mod.ts";
 import type { Decision } from "../../spectra/mod.ts";
 import { describeTrail, type JournalEntry, journalOf, widthInAngstrom } from "../../trail/mod.ts";
-import type { Warning } from "../../errors.ts";
+import { InputError, type Warning } from "../../errors.ts";
 import { identifiedGroups } from "../identified_groups.ts";
 import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
+import { mappedLines } from "../line_of.ts";
+import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
+import { type LineTests, testsSummary } from "../test_line.ts";
 import { checkedContents, contentWarnings, unseenWarnings } from "./check_contents.ts";
 import { checkEphemeris, type EphemerisCheck } from "./check_ephemeris.ts";
 import { checkZeros, type ZeroCheck } from "./check_zeros.ts";
@@ -87,6 +90,7 @@ export async function runCheck(
       line.traces === "accretor" ? measures.full_width_kms / 2 || velocity_kms : 0
     ),
   );
+  const mapped = mappedLines(described.map(({ line }) => line));
   for (const { line, trail, description } of described) {
     const own = description.measures.full_width_kms / 2 || description.velocity_kms;
     const contents = checkedContents(trail, {
@@ -112,6 +116,8 @@ export async function runCheck(
       ...rest
     } = description;
     const { phase_error } = known.check;
+    const tests = mapped.includes(line) ? await testsOrReason(session, line) : null;
+    warnings.push(...(tests?.warnings ?? []));
     lines.push({
       ...rest,
       phase_error,
@@ -121,6 +127,7 @@ export async function runCheck(
         widthInAngstrom(description.measures.equivalent_width_kms, trail.line.vacuum_angstrom),
       noise_scale: trail.noise_scale,
       noise: trail.noise,
+      any_map: tests === null || tests.found === null ? null : testsSummary(tests.found),
       contents,
     });
   }
@@ -141,4 +148,19 @@ export async function runCheck(
     ["journal.ecsv", formatEcsv(journalTable(journal, { title: target.title }))],
   ], output);
   return { document, files, warnings: all };
+}
+
+/** The tests of a line; the reason among the warnings where it cannot be mapped at all. */
+async function testsOrReason(
+  session: Session,
+  line: LineSettings,
+): Promise<{ readonly found: LineTests | null; readonly warnings: readonly Warning[] }> {
+  try {
+    const found = await session.anyMap(line);
+    return { found, warnings: found.warnings };
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    const text = `no map could be made: ${error.message}`;
+    return { found: null, warnings: [{ code: "cannot-be-mapped", line: line.name, text }] };
+  }
 }

@@ -1,5 +1,5 @@
 import { uniqueWarnings } from "../output_head.ts";
-import type { AnyMap, MapFeature, MapPeak } from "../../tomography/mod.ts";
+import type { MapFeature, MapPeak } from "../../tomography/mod.ts";
 import { jsonText, type OutputHead, outputHead } from "../output_head.ts";
 import { mappedLines } from "../line_of.ts";
 import { mapFits } from "../map_fits.ts";
@@ -7,6 +7,7 @@ import type { LineSign } from "../inversion/inverted.ts";
 import type { MappedLine } from "../map_line.ts";
 import type { Session } from "../session.ts";
 import type { Target } from "../target.ts";
+import { type LineTests, type LineTestsSummary, testsSummary } from "../test_line.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
 /** `map.json`. */
@@ -56,20 +57,7 @@ export interface MapSummary {
   /** Compact excesses over the part that is axisymmetric about the accretor. */
   readonly features: readonly MapFeature[];
   /** Whether any map can fit: probabilities of the tests, null where the data do not allow one. */
-  readonly any_map: {
-    /** Moments of the profiles against trigonometric polynomials. */
-    readonly moments_p: number | null;
-    /** Profiles half an orbit apart. */
-    readonly mirror_p: number | null;
-    /** The middle of the line against positive maps. */
-    readonly core_p: number | null;
-    /** Reduced chi-square of the best positive map. */
-    readonly best_reduced_chi_square: number;
-    /** γ by the parity of the moments, km/s. */
-    readonly systemic_kms: number | null;
-    /** Its standard deviation, km/s. */
-    readonly systemic_error_kms: number | null;
-  };
+  readonly any_map: LineTestsSummary;
 }
 
 /**
@@ -84,7 +72,7 @@ export async function runMap(
   output: StepOutput,
 ): Promise<StepResult<MapDocument>> {
   const maps: MappedLine[] = [];
-  const tests: AnyMap[] = [];
+  const tests: LineTests[] = [];
   for (const line of mappedLines(session.lines("make the velocity map"))) {
     tests.push(await session.anyMap(line));
     maps.push(await session.map(line));
@@ -109,7 +97,7 @@ export async function runMap(
 
 function summary(
   target: Target,
-  { mapped, any }: { readonly mapped: MappedLine; readonly any: AnyMap },
+  { mapped, any }: { readonly mapped: MappedLine; readonly any: LineTests },
 ): MapSummary {
   const { trail, map } = mapped;
   return {
@@ -132,13 +120,6 @@ function summary(
     noise_scale: trail.noise_scale,
     peak: mapped.peak,
     features: mapped.features,
-    any_map: {
-      moments_p: any.moments?.p_value ?? null,
-      mirror_p: any.mirror?.p_value ?? null,
-      core_p: any.core?.p_value ?? null,
-      best_reduced_chi_square: any.best_reduced_chi_square,
-      systemic_kms: any.systemic?.systemic_kms ?? null,
-      systemic_error_kms: any.systemic?.error_kms ?? null,
-    },
+    any_map: testsSummary(any),
   };
 }
