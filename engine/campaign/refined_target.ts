@@ -3,7 +3,9 @@ import type { Target } from "./target.ts";
 
 /**
  * A target file's text with the orbit as measured: period, zero, systemic velocity and orbital
- * speeds replaced where they were measured, everything else and all comments kept.
+ * speeds replaced where they were measured, everything else and all comments kept. What was known of
+ * period and zero before goes to `[orbit.before]`, from which `orbit` starts: measured again, the
+ * refined file gives the same, as no exposure counts twice.
  *
  * @param target The target.
  * @param report What was measured.
@@ -12,13 +14,19 @@ import type { Target } from "./target.ts";
 export function refinedTarget(target: Target, report: OrbitReport): string {
   const { accretor, donor } = report;
   const star = donor?.systemic_kms == null ? accretor : donor;
-  const orbit: Record<string, number | null | undefined> = {
-    ...(report.period_from === "fitted"
-      ? { period_d: report.period_d, period_error_d: report.period_error_d }
+  const periodFound = report.period_from === "fitted" || report.period_from === "searched";
+  // A new period with the old zero would move the phase at the data.
+  const ephemerisFound = periodFound || report.zero_from !== "target";
+  const orbit: Record<string, number | string | null | undefined> = {
+    ...(periodFound ? { period_d: report.period_d, period_error_d: report.period_error_d } : {}),
+    ...(ephemerisFound
+      ? {
+        zero_bjd_tdb: report.zero_bjd_tdb,
+        zero_error_d: report.zero_error_d,
+        zero_period_covariance_d2: report.zero_period_covariance_d2,
+        zero_marks: report.zero_marks,
+      }
       : {}),
-    ...(report.zero_from === "target"
-      ? {}
-      : { zero_bjd_tdb: report.zero_bjd_tdb, zero_error_d: report.zero_error_d }),
     systemic_kms: star?.systemic_kms,
     systemic_error_kms: star?.systemic_error_kms,
   };
@@ -29,17 +37,33 @@ export function refinedTarget(target: Target, report: OrbitReport): string {
     k_donor_error_kms: donor?.k_centre_error_kms,
   };
   let text = target.text;
-  if (report.zero_from !== "target") {
+  if (ephemerisFound) {
     // The old zero, in whatever scale, must not stand beside the new one.
-    text = removeKeys(text, "orbit", ["zero_hjd_utc", "zero_hjd_tt", "zero_marks"]);
+    text = removeKeys(text, "orbit", ["zero_hjd_utc", "zero_hjd_tt"]);
   }
-  if (report.period_from === "fitted") text = removeKeys(text, "orbit", ["period_range_d"]);
+  if (periodFound) text = removeKeys(text, "orbit", ["period_range_d"]);
   if (binary.k_accretor_kms != null && binary.k_donor_kms != null) {
     text = removeKeys(text, "binary", ["mass_ratio", "mass_ratio_error"]);
   }
   text = setKeys(text, "orbit", orbit);
   text = setKeys(text, "binary", binary);
+  if (ephemerisFound && target.settings.orbit.before === undefined) {
+    text = `${text.trimEnd()}\n\n${beforeTable(target)}`;
+  }
   return `# written by Millrace: ${target.name}.toml with the orbit as measured\n${text}`;
+}
+
+function beforeTable(target: Target): string {
+  const { systemic_kms: _kms, systemic_error_kms: _error, before: _before, ...known } =
+    target.settings.orbit;
+  const lines = Object.entries(known).flatMap(([key, value]) =>
+    value === undefined ? [] : [`${key} = ${tomlValue(value)}`]
+  );
+  return `# What was known before these exposures: \`orbit\` starts from it, so that none of them counts twice.
+# Where [orbit] is to be prior knowledge for other exposures, delete this table.
+[orbit.before]
+${lines.join("\n")}
+`;
 }
 
 function removeKeys(text: string, section: string, keys: readonly string[]): string {
@@ -54,17 +78,17 @@ function removeKeys(text: string, section: string, keys: readonly string[]): str
 function setKeys(
   text: string,
   section: string,
-  values: Readonly<Record<string, number | null | undefined>>,
+  values: Readonly<Record<string, number | string | null | undefined>>,
 ): string {
-  const known = Object.entries(values).filter((entry): entry is [string, number] =>
-    typeof entry[1] === "number" && Number.isFinite(entry[1])
+  const known = Object.entries(values).filter((entry): entry is [string, number | string] =>
+    typeof entry[1] === "number" ? Number.isFinite(entry[1]) : typeof entry[1] === "string"
   );
   if (known.length === 0) return text;
   return inSection(text, section, (lines) => {
     const result = [...lines];
     for (const [key, value] of known) {
       const at = result.findIndex((line) => new RegExp(`^\\s*${key}\\s*=`).test(line));
-      const line = `${key} = ${tomlNumber(value)}`;
+      const line = `${key} = ${tomlValue(value)}`;
       if (at >= 0) {
         const comment = /\s+#.*$/.exec(result[at]!)?.[0] ?? "";
         result[at] = line + comment;
@@ -98,7 +122,9 @@ function inSection(
   ].join("\n");
 }
 
-function tomlNumber(value: number): string {
+function tomlValue(value: number | string | readonly number[]): string {
+  if (Array.isArray(value)) return `[${value.map(tomlValue).join(", ")}]`;
+  if (typeof value === "string") return JSON.stringify(value);
   const text = String(value);
   return /[.e]/.test(text) ? text : `${text}.0`;
 }

@@ -27,10 +27,14 @@ export interface OrbitSettings {
   readonly systemic_kms?: number | "search";
   /** Its standard deviation, km/s. */
   readonly systemic_error_kms?: number;
+  /**
+   * What was known before the rest was measured from the exposures: `orbit` starts from it, so that
+   * measuring again counts no exposure twice.
+   */
+  readonly before?: Omit<OrbitSettings, "systemic_kms" | "systemic_error_kms" | "before">;
 }
 
-/** Schema of OrbitSettings. */
-export const orbitSection: z.ZodType<OrbitSettings> = z.strictObject({
+const ephemeris = {
   period_d: positive.optional(),
   period_range_d: range.refine(([low]) => low > 0, { error: "must be positive" }).optional(),
   period_error_d: nonNegative.optional(),
@@ -43,11 +47,15 @@ export const orbitSection: z.ZodType<OrbitSettings> = z.strictObject({
     "donor-conjunction",
   ),
   period_derivative: number.default(0),
-  systemic_kms: z.union([number, z.literal("search")], {
-    error: 'must be a number or "search"',
-  }).optional(),
-  systemic_error_kms: nonNegative.optional(),
-}).superRefine((orbit, context) => {
+};
+
+function onceEach(
+  orbit: Pick<
+    OrbitSettings,
+    "period_d" | "period_range_d" | "zero_bjd_tdb" | "zero_hjd_utc" | "zero_hjd_tt"
+  >,
+  context: z.RefinementCtx,
+): void {
   const zeros = (["zero_bjd_tdb", "zero_hjd_utc", "zero_hjd_tt"] as const)
     .filter((key) => orbit[key] !== undefined);
   if (zeros.length > 1) {
@@ -64,4 +72,14 @@ export const orbitSection: z.ZodType<OrbitSettings> = z.strictObject({
       message: "must not stand beside period_d: give one of them",
     });
   }
-});
+}
+
+/** Schema of OrbitSettings. */
+export const orbitSection: z.ZodType<OrbitSettings> = z.strictObject({
+  ...ephemeris,
+  systemic_kms: z.union([number, z.literal("search")], {
+    error: 'must be a number or "search"',
+  }).optional(),
+  systemic_error_kms: nonNegative.optional(),
+  before: z.strictObject(ephemeris).superRefine(onceEach).optional(),
+}).superRefine(onceEach);

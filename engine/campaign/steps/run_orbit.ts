@@ -12,6 +12,7 @@ import type { PanelName } from "../../figures/mod.ts";
 import type { Warning } from "../../errors.ts";
 import { airToVacuum, type SpectralLine } from "../../sky/mod.ts";
 import { FWHM_OVER_SIGMA } from "../../trail/mod.ts";
+import { ephemerisOf } from "../ephemeris_of.ts";
 import { figureFiles } from "../figure_files.ts";
 import { inclinationOf } from "../inclination_of.ts";
 import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
@@ -46,12 +47,12 @@ export interface TargetOrbit extends OrbitMeasurement {
  */
 export async function measureTargetOrbit(session: Session): Promise<TargetOrbit> {
   const { target, signal } = session;
-  const provisional = await provisionalEphemeris(session);
-  const ephemeris = provisional ?? await session.ephemeris();
   const { spectra, photometry } = await session.exposures();
+  const known = await knownBefore(session);
+  const ephemeris = known ?? await session.ephemeris();
   const lines: OrbitLine[] = [];
   for (const settings of session.lines("measure the orbit")) {
-    const trail = provisional === null
+    const trail = known === null
       ? await session.trail(settings)
       : trailOf(spectra, { target, line: settings, ephemeris, photometry });
     const resolution_kms = FWHM_OVER_SIGMA * median(trail.sampling.profile_sigma_kms);
@@ -69,7 +70,7 @@ export async function measureTargetOrbit(session: Session): Promise<TargetOrbit>
   const measurement = measureOrbit(lines, {
     ephemeris,
     random: randomStream(target.settings.seed, STREAM),
-    period_range_d: target.settings.orbit.period_range_d,
+    period_range_d: (target.settings.orbit.before ?? target.settings.orbit).period_range_d,
     inclination: inclinationOf(target),
     disc_shadow_deg: target.settings.binary.disc_shadow_deg ?? null,
     superhump_excess: superhump(session),
@@ -83,13 +84,18 @@ export async function measureTargetOrbit(session: Session): Promise<TargetOrbit>
 }
 
 /**
- * Where only a range of periods is known, an ephemeris by which the trails tell time: the middle of
- * the range, from the zero of the target file or the first exposure.
+ * The ephemeris to start from where it is not that of `[orbit]`: what was known before it was
+ * measured from exposures, or, where only a range of periods is known, an ephemeris by which the
+ * trails tell time: the middle of the range, from the zero that is given or the first exposure.
  */
-async function provisionalEphemeris(session: Session): Promise<Ephemeris | null> {
-  const { orbit } = session.target.settings;
-  if (orbit.period_d !== undefined || orbit.period_range_d === undefined) return null;
-  const { spectra } = await session.exposures();
+async function knownBefore(session: Session): Promise<Ephemeris | null> {
+  const { target } = session;
+  const { before } = target.settings.orbit;
+  const orbit = before ?? target.settings.orbit;
+  const { spectra, direction } = await session.exposures();
+  if (orbit.period_d !== undefined || orbit.period_range_d === undefined) {
+    return before === undefined ? null : ephemerisOf(target, { direction, before: true });
+  }
   const [low, high] = orbit.period_range_d;
   const zero = orbit.zero_bjd_tdb;
   return {
