@@ -30,6 +30,7 @@ const nights = [
 const sections = (orbit: string) => ({
   orbit: `[orbit]\n${orbit}`,
   exposures: '[[exposures]]\nfiles = ["night/*.fits", "later/*.fits"]\n',
+  plate: '[plate]\nformats = ["svg"]\n',
   lines: SECTIONS.lines!.replace("reach_kms = 2000", 'reach_kms = 2000\ntraces = "donor"'),
 });
 
