@@ -1,4 +1,5 @@
 import { randomStream } from "../numerics/mod.ts";
+import type { Pause } from "../workers/mod.ts";
 import { blockBootstrap } from "./block_bootstrap.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { type Excess, mapExcess } from "./map_excess.ts";
@@ -51,6 +52,7 @@ export interface ReplicaSums {
   readonly height: Float64Array;
 }
 
+const REPLICAS_BETWEEN_PAUSES = 8;
 const prepared = new WeakMap<ReplicaShared, Inverter>();
 
 /**
@@ -58,6 +60,7 @@ const prepared = new WeakMap<ReplicaShared, Inverter>();
  *
  * @param task Which replicas.
  * @param shared Trail, recipe, seed.
+ * @param pause Awaited after every few replicas.
  * @returns Sums of the maps, and the features in each.
  *
  * @example
@@ -68,7 +71,11 @@ const prepared = new WeakMap<ReplicaShared, Inverter>();
  * assertEquals(typeof runTask, "function");
  * ```
  */
-export function runTask(task: ReplicaTask, shared: ReplicaShared): ReplicaSums {
+export async function runTask(
+  task: ReplicaTask,
+  shared: ReplicaShared,
+  pause: Pause,
+): Promise<ReplicaSums> {
   const { trail, recipe, seed, block, follow } = shared;
   let invert = prepared.get(shared);
   if (invert === undefined) prepared.set(shared, invert = makeInverter(trail, recipe));
@@ -78,6 +85,7 @@ export function runTask(task: ReplicaTask, shared: ReplicaShared): ReplicaSums {
   const vx_kms = new Float64Array(places).fill(NaN), vy_kms = new Float64Array(places).fill(NaN);
   const height = new Float64Array(places);
   for (let r = task.from; r < task.to; r++) {
+    if ((r - task.from) % REPLICAS_BETWEEN_PAUSES === 0) await pause();
     const random = randomStream(seed, r);
     const data = block > 0
       ? blockBootstrap(trail, { random, block })

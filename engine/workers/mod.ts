@@ -5,5 +5,5 @@
  */
 export * from "./progress.ts";
 export * from "./run_tasks.ts";
-export type { TaskModule } from "./task_module.ts";
+export type { Pause, TaskModule } from "./task_module.ts";
 export * from "./task_store.ts";

@@ -45,7 +45,7 @@ export interface RunTasksOptions<Shared, Result = unknown> {
    */
   readonly what?: string;
   /**
-   * Ends the work: at once with several workers, between two tasks with one.
+   * Ends the work: at once with several workers; with one between two tasks, or where a task pauses.
    *
    * @default None
    */
@@ -148,10 +148,13 @@ async function runHere<Task, Result, Shared>(
   const { runTask } = await loadTaskModule<Task, Result, Shared>(module.href);
   const shared = structuredClone(options.shared) as Shared;
   const results: Result[] = [];
-  for (const [index, task] of tasks.entries()) {
+  const pause = async () => {
     await turn();
     signal?.throwIfAborted();
-    const result = structuredClone(await runTask(structuredClone(task), shared));
+  };
+  for (const [index, task] of tasks.entries()) {
+    await pause();
+    const result = structuredClone(await runTask(structuredClone(task), shared, pause));
     results.push(result);
     onDone(results.length, index, result);
   }

@@ -1,5 +1,8 @@
 import { WorkError } from "../errors.ts";
 
+/** A place in a long task where it may be ended. */
+export type Pause = () => Promise<void>;
+
 /**
  * What a module must export so that {@linkcode runTasks} can run it, on this thread or on another.
  * Tasks, results and what is shared cross by structured clone: plain data and typed arrays.
@@ -16,8 +19,10 @@ export interface TaskModule<Task, Result, Shared = undefined> {
    * @param task A copy of the task.
    * @param shared A copy of what is shared: the same object for all tasks on one thread, so that
    * what is prepared from it can be kept in a `WeakMap`.
+   * @param pause To be awaited now and then in a long task: lets an interrupt be heard, and throws
+   * once the work is to end.
    */
-  runTask(task: Task, shared: Shared): Result | Promise<Result>;
+  runTask(task: Task, shared: Shared, pause: Pause): Result | Promise<Result>;
   /**
    * Array buffers in a result that may be moved instead of copied: those made for it, and kept nowhere.
    *

@@ -9,6 +9,10 @@ interface WorkerScope {
 }
 const scope = globalThis as unknown as WorkerScope;
 
+// A worker is ended from outside, at once: its tasks need not listen.
+const unheard = Promise.resolve();
+const pause = () => unheard;
+
 let module: TaskModule<unknown, unknown, unknown>;
 let shared: unknown;
 
@@ -24,7 +28,7 @@ async function answer(message: ToWorker): Promise<[FromWorker, ArrayBuffer[]]> {
   }
   const { index } = message;
   try {
-    const result = await module.runTask(message.task, shared);
+    const result = await module.runTask(message.task, shared, pause);
     return [{ kind: "done", index, result }, module.transfer?.(result) ?? []];
   } catch (error) {
     return [{ kind: "failed", index, error: packError(error) }, []];

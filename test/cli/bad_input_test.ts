@@ -223,7 +223,7 @@ Deno.test("millrace is stopped by an interrupt with status 130 and leaves nothin
     stdout: "null",
     stderr: "null",
   }).spawn();
-  await new Promise((resolve) => setTimeout(resolve, 2500));
+  while (!await isThere(`${folder}/star`)) await new Promise((r) => setTimeout(r, 50));
   child.kill("SIGINT");
   const { code } = await child.status;
   assertEquals(code, 130);
@@ -239,6 +239,15 @@ Deno.test("millrace is stopped by an interrupt with status 130 and leaves nothin
   ]);
   await Deno.remove(folder, { recursive: true });
 });
+
+async function isThere(path: string): Promise<boolean> {
+  try {
+    await Deno.stat(path);
+    return true;
+  } catch {
+    return false;
+  }
+}
 
 // A disc of its own can be mounted by root alone.
 const canMount = Deno.build.os === "linux" && Deno.uid() === 0 &&

@@ -1,7 +1,7 @@
 // A task module for the tests: each behaviour of a task is one kind.
 import { InputError, NotConverged, WorkError } from "@millrace/millrace/errors";
 import { randomStream } from "@millrace/millrace/numerics";
-import { insideWorker, runTasks } from "@millrace/millrace/workers";
+import { insideWorker, type Pause, runTasks } from "@millrace/millrace/workers";
 
 export type Kind =
   | "noise"
@@ -14,6 +14,7 @@ export type Kind =
   | "uncloneable"
   | "crash"
   | "forever"
+  | "patient"
   | "nested"
   | "greedy";
 
@@ -28,8 +29,14 @@ export interface Shared {
 
 const seen = new WeakSet<Shared>();
 
-export async function runTask({ kind, k }: Task, shared: Shared): Promise<unknown> {
+export async function runTask(
+  { kind, k }: Task,
+  shared: Shared,
+  pause: Pause,
+): Promise<unknown> {
   switch (kind) {
+    case "patient":
+      for (;;) await pause();
     case "slow":
       await new Promise((resolve) => setTimeout(resolve, 150));
       return k;

@@ -141,6 +141,12 @@ Deno.test("runTasks() lets the abort of a timer through when tasks never wait on
   await assertRejects(() => run(kinds, 1, { signal: control.signal }), Error, "timer");
 });
 
+Deno.test("runTasks() stops within a task on one thread, where the task pauses", async () => {
+  const control = new AbortController();
+  setTimeout(() => control.abort(new Error("timer")), 5);
+  await assertRejects(() => run(["patient"], 1, { signal: control.signal }), Error, "timer");
+});
+
 Deno.test("runTasks() ends at once when aborted while a worker never returns", async () => {
   const control = new AbortController();
   setTimeout(() => control.abort(), 300);
