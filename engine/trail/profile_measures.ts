@@ -10,13 +10,19 @@ export interface ProfileMeasures {
   readonly fwhm_kms: number;
   /** Full width at a tenth of the highest peak, km/s: "near zero". */
   readonly full_width_kms: number;
-  /** Velocity of the blue peak, km/s; with one peak alone, its velocity. */
+  /**
+   * Velocity of the blue peak, km/s: the highest maximum blueward of the middle of the half width;
+   * with one peak alone, its velocity.
+   */
   readonly blue_peak_kms: number;
-  /** Velocity of the red peak, km/s; NaN with one peak alone. */
+  /** Velocity of the red peak, km/s, likewise redward; NaN with one peak alone. */
   readonly red_peak_kms: number;
   /** Separation of the two peaks, km/s; NaN with one peak alone. */
   readonly peak_separation_kms: number;
-  /** Height of the blue over that of the red peak, above the continuum; NaN with one peak alone. */
+  /**
+   * V/R: highest flux blueward of the middle of the half width over the highest redward, above the
+   * continuum. While a peak crosses the middle it is 1. NaN with one peak alone.
+   */
   readonly blue_over_red: number;
 }
 
@@ -89,30 +95,50 @@ function peakAt(profile: UniformProfile, i: number): { v: number; height: number
   return { v: v[i]! + offset * (v[1]! - v[0]!), height: b - 0.25 * (a - c) * offset };
 }
 
-function twoPeaks(profile: UniformProfile, dip: number): readonly [number, number] | null {
-  const { flux } = profile;
-  const tops: number[] = [];
+/** The two sides of a profile about its centre. */
+interface Sides {
+  /** Bins of the two peaks: the highest local maxima on either side. */
+  readonly peaks: readonly [blue: number, red: number];
+  /** Highest flux on the blue side over the highest on the red side. */
+  readonly blue_over_red: number;
+}
+
+// Peaks on one side each: of the three maxima of a disc with a bright spot, two that lie on one side
+// are no pair, and which of them is higher is a matter of noise.
+function sidesOf(
+  profile: UniformProfile,
+  centre: number,
+  options: { readonly dip: number; readonly highest: number },
+): Sides | null {
+  const { velocity_kms: v, flux } = profile;
+  const { dip, highest } = options;
+  const step = v[1]! - v[0]!;
+  const place = (centre - v[0]!) / step;
+  const below = Math.floor(place);
+  if (!(below >= 0 && below + 1 < flux.length)) return null;
+  let blue = -1, red = -1;
+  // Flux at the centre belongs to both sides, so that the ratio is 1 when the highest flux is there
+  // and does not jump when it passes.
+  const middle = flux[below]! + (place - below) * (flux[below + 1]! - flux[below]!);
+  let left = Number.isFinite(middle) ? middle : 0;
+  let right = left;
   for (let i = 1; i + 1 < flux.length; i++) {
-    if (flux[i]! > 0 && flux[i]! >= flux[i - 1]! && flux[i]! > flux[i + 1]!) tops.push(i);
-  }
-  const highest = Math.max(...tops.map((i) => flux[i]!));
-  let best: readonly [number, number] | null = null;
-  let score = 0;
-  for (const a of tops) {
-    for (const b of tops) {
-      if (b <= a) continue;
-      const lower = Math.min(flux[a]!, flux[b]!);
-      let valley = Infinity;
-      for (let k = a; k <= b; k++) valley = Math.min(valley, flux[k]!);
-      if (lower - valley < dip * lower || lower < 0.25 * highest) continue;
-      // Two peaks of a disc are the two that are both high: their lower one decides.
-      if (lower > score) {
-        score = lower;
-        best = [a, b];
-      }
+    if (!(flux[i]! > 0)) continue;
+    const top = flux[i]! >= flux[i - 1]! && flux[i]! > flux[i + 1]!;
+    if (i <= below) {
+      left = Math.max(left, flux[i]!);
+      if (top && (blue < 0 || flux[i]! > flux[blue]!)) blue = i;
+    } else {
+      right = Math.max(right, flux[i]!);
+      if (top && (red < 0 || flux[i]! > flux[red]!)) red = i;
     }
   }
-  return best;
+  if (blue < 0 || red < 0) return null;
+  const lower = Math.min(flux[blue]!, flux[red]!);
+  let valley = Infinity;
+  for (let k = blue; k <= red; k++) valley = Math.min(valley, flux[k]!);
+  if (lower - valley < dip * lower || lower < 0.25 * highest) return null;
+  return { peaks: [blue, red], blue_over_red: left / right };
 }
 
 /**
@@ -156,30 +182,28 @@ export function measureProfile(
     moment += flux[j]! * v * step;
   });
   const smooth = { velocity_kms, flux: smoothed(profile, smooth_kms) };
-  const pair = twoPeaks(smooth, dip);
   let highest = 0;
   smooth.flux.forEach((f, j) =>
     highest = f > smooth.flux[highest]! || Number.isNaN(smooth.flux[highest]!) ? j : highest
   );
   const top = peakAt(smooth, highest);
-  const [blue, red] = pair === null
+  const crossing = (level: number, from: "low" | "high") =>
+    top.height > 0 ? outerCrossing(smooth, level * top.height, from) : NaN;
+  const half = [crossing(0.5, "low"), crossing(0.5, "high")] as const;
+  const sides = sidesOf(smooth, (half[0] + half[1]) / 2, { dip, highest: top.height });
+  const [blue, red] = sides === null
     ? [top, null]
-    : pair.map((i) => peakAt(smooth, i)) as [typeof top, typeof top];
-  const widthAt = (level: number) =>
-    top.height > 0
-      ? outerCrossing(smooth, level * top.height, "high") -
-        outerCrossing(smooth, level * top.height, "low")
-      : NaN;
+    : sides.peaks.map((i) => peakAt(smooth, i)) as [typeof top, typeof top];
   return {
     // A gap cannot be integrated over: a profile with more than a tenth missing has no width.
     equivalent_width_kms: missing > 0.1 * bins ? NaN : width * bins / (bins - missing),
     centroid_kms: moment / width,
-    fwhm_kms: widthAt(0.5),
-    full_width_kms: widthAt(0.1),
+    fwhm_kms: half[1] - half[0],
+    full_width_kms: crossing(0.1, "high") - crossing(0.1, "low"),
     blue_peak_kms: blue.v,
     red_peak_kms: red?.v ?? NaN,
     peak_separation_kms: red === null ? NaN : red.v - blue.v,
-    blue_over_red: red === null ? NaN : blue.height / red.height,
+    blue_over_red: sides?.blue_over_red ?? NaN,
   };
 }
 

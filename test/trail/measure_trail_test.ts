@@ -42,6 +42,32 @@ Deno.test("measureProfile() separates two peaks when the dip is deep enough, and
   assert(Number.isNaN(two(150).peak_separation_kms));
 });
 
+Deno.test("measureProfile() takes V/R without a jump while an S-wave crosses the middle of a disc", () => {
+  const steps = 200;
+  const found = Array.from({ length: steps }, (_, k) => {
+    const orbit = 2 * Math.PI * k / steps;
+    const centre = -60 * Math.sin(orbit);
+    const spot = 600 * Math.sin(orbit + 0.6);
+    const flux = V.map((v) =>
+      gauss(centre - 600, 350)(v) + gauss(centre + 600, 350)(v) + 0.5 * gauss(spot, 80)(v)
+    );
+    return { ...measureProfile({ velocity_kms: V, flux }, { smooth_kms: 100 }), centre };
+  });
+  // The S-wave is as high as the disc's peaks when it is between them: three maxima, two of which may
+  // lie on one side. V/R goes round once an orbit; a choice among them would jump.
+  const ratios = found.map((m) => m.blue_over_red);
+  const steps_taken = ratios.map((ratio, k) =>
+    Math.abs(Math.log(ratio / ratios[(k + 1) % steps]!))
+  );
+  assert(Math.min(...ratios) < 0.75 && Math.max(...ratios) > 1.3, `${Math.min(...ratios)}`);
+  // A sine of this amplitude changes by 0.01 a step; peaks that merge make it twice as steep.
+  assertLess(Math.max(...steps_taken), 0.04);
+  // The middle of the half width is the disc's centre to a tenth of its half width.
+  for (const { blue_peak_kms, red_peak_kms, centre } of found) {
+    assert(blue_peak_kms < centre + 90 && red_peak_kms > centre - 90, `${blue_peak_kms}`);
+  }
+});
+
 Deno.test("measureProfile() gives no width over a gap and none to an empty profile", () => {
   const flux = V.map((v, i) => i > 100 && i < 180 ? NaN : gauss(0, 200)(v));
   assert(
