@@ -25,6 +25,12 @@ import { checkLines } from "./check.ts";
 import { mapLines } from "./map.ts";
 import { orbitLines } from "./orbit.ts";
 
+/** Inversions that fit the data, shown beside the one of the target file. */
+const FITTED = ["entropy", "total-variation"] as const;
+
+/** Few resamples show the size of an error: most of it here is that of the zero of phase. */
+const RESAMPLES = "map.resamples=8";
+
 /**
  * `millrace demo`: an invented night, from raw exposures to the figure.
  *
@@ -57,12 +63,32 @@ export const demoCommand = (finish: (status: number) => void) =>
           const check = await runCheck(session, output);
           const trail = await runTrail(session, output);
           const map = await runMap(session, output);
+          const fitted: { method: string; map: Awaited<ReturnType<typeof runMap>> }[] = [];
+          for (const method of FITTED) {
+            const set = [...(options.set ?? []), `map.method="${method}"`, RESAMPLES];
+            const other = openSession(await readTarget(campaign.target_file, { set }), {
+              from: session,
+              workers: options.workers,
+              progress,
+              signal,
+            });
+            const own = { ...output, folder: `${output.folder}-${method}` };
+            fitted.push({ method, map: await runMap(other, own) });
+          }
           const orbit = await runOrbit(session, output);
           const plate = await runPlate(session, output);
           const truth = binaryOf(campaign.recipe);
-          const warnings = uniqueWarnings([...orbit.warnings, ...plate.warnings]);
-          const spots = map.document.maps.map(({ line, features }) => ({
+          const warnings = uniqueWarnings([
+            ...fitted.flatMap(({ map }) => map.warnings),
+            ...orbit.warnings,
+            ...plate.warnings,
+          ]);
+          const all = [map, ...fitted.map(({ map }) => map)];
+          const spots = all.flatMap(({ document }) => document.maps).map((
+            { line, method, features },
+          ) => ({
             line,
+            method,
             found: features[0] ?? null,
             truth: trueSpot(campaign.recipe, { line }),
           }));
@@ -81,15 +107,15 @@ export const demoCommand = (finish: (status: number) => void) =>
             lines: [
               ...checkLines(check.document),
               "",
-              ...mapLines(map.document),
-              "",
+              ...all.flatMap(({ document }) => [...mapLines(document), ""]),
               ...orbitLines(orbit.document),
               "",
               "  the bright spot, found and true",
               ...tableLines([
-                ["line", "Vx / km/s", "true", "Vy / km/s", "true", "off by"],
-                ...spots.map(({ line, found, truth }) => [
+                ["line", "map", "Vx / km/s", "true", "Vy / km/s", "true", "off by"],
+                ...spots.map(({ line, method, found, truth }) => [
                   line,
+                  method,
                   found === null ? "–" : withError(found.vx_kms, found.vx_error_kms),
                   plainNumber(truth?.vx_kms, 1),
                   found === null ? "–" : withError(found.vy_kms, found.vy_error_kms),
@@ -103,7 +129,7 @@ export const demoCommand = (finish: (status: number) => void) =>
                 ]),
               ], {
                 heading: true,
-                align: ["left", "right", "right", "right", "right", "right"],
+                align: ["left", "left", "right", "right", "right", "right", "right"],
               }),
               "",
               "  the binary, found and true",
@@ -114,7 +140,7 @@ export const demoCommand = (finish: (status: number) => void) =>
               "",
               `  target file ${campaign.target_file}, raw exposures in ${folder}/blue and ${folder}/red`,
             ],
-            files: [check, trail, map, orbit, plate].flatMap(({ files }) => files),
+            files: [check, trail, ...all, orbit, plate].flatMap(({ files }) => files),
             warnings,
           };
         }),

@@ -56,6 +56,8 @@ export interface Session {
  * @param options.force Whether maps are made in spite of a large gap in phase. @default false
  * @param options.keep Gives a costly result that was kept under a name, or makes and keeps it.
  * @default Makes it
+ * @param options.from A session on the same target that differs in how maps are made alone: its
+ * exposures, trails and tests are taken.
  * @param options.progress Told how far the work has come.
  * @param options.signal Aborts the work.
  * @returns The session.
@@ -66,12 +68,15 @@ export function openSession(
     workers?: number;
     force?: boolean;
     keep?: <T>(name: string, make: () => Promise<T>) => Promise<T>;
+    from?: Session;
     progress?: Progress;
     signal?: AbortSignal;
   } = {},
 ): Session {
   const { workers = 1, force = false, keep = (_name, make) => make(), progress, signal } = options;
-  const exposures = once(() => readTargetExposures(target, { progress, signal }));
+  const { from } = options;
+  const exposures = from?.exposures ??
+    once(() => readTargetExposures(target, { progress, signal }));
   const ephemeris = once(async () => ephemerisOf(target, { direction: await directionOf() }));
   const directionOf = async () => {
     const { sky: { ra_deg, dec_deg }, exposures: groups } = target.settings;
@@ -79,14 +84,20 @@ export function openSession(
     return groups.length > 0 && hasHeliocentricZero(target) ? (await exposures()).direction : null;
   };
   const binary = () => binaryOf(target);
-  const trail = perLine(async (line) => {
+  const there = ({ name }: LineSettings) =>
+    from!.target.settings.lines.find((line) => line.name === name)!;
+  const trail = from === undefined
+    ? perLine((line) => makeTrail(line))
+    : (line: LineSettings) => from.trail(there(line));
+  const makeTrail = async (line: LineSettings) => {
     const [{ spectra, photometry }, folded] = [await exposures(), await ephemeris()];
     await pause(signal);
     return trailOf(spectra, { target, line, ephemeris: folded, photometry });
-  });
-  const systemic = once(() =>
-    systemicOf(target, () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))
-  );
+  };
+  const systemic = from?.systemic ??
+    once(() =>
+      systemicOf(target, () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))
+    );
   const map = perLine((line) => keep(`map of ${line.name}`, () => makeMap(line)));
   const makeMap = async (line: LineSettings) => {
     const made = await trail(line);
@@ -104,7 +115,9 @@ export function openSession(
       signal,
     });
   };
-  const anyMap = perLine((line) => keep(`tests of ${line.name}`, () => makeTests(line)));
+  const anyMap = from === undefined
+    ? perLine((line) => keep(`tests of ${line.name}`, () => makeTests(line)))
+    : (line: LineSettings) => from.anyMap(there(line));
   const makeTests = async (line: LineSettings) => {
     const made = await trail(line);
     const { kms } = await systemic();

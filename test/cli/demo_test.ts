@@ -31,12 +31,18 @@ Deno.test("millrace demo runs twice without complaint to the same bytes", () => 
   assertEquals(first.stdout, second.stdout);
 });
 
-Deno.test("millrace demo finds the bright spot where it was put", () => {
+Deno.test("millrace demo finds the bright spot where it was put, by each inversion", () => {
   const { spots, exposures } = JSON.parse(first.stdout);
   assertEquals(exposures, 120);
+  assertEquals(
+    spots.map(({ method, line }: { method: string; line: string }) => `${method} ${line}`),
+    ["back-projection", "entropy", "total-variation"].flatMap((method) =>
+      ["H beta", "He II 4686"].map((line) => `${method} ${line}`)
+    ),
+  );
   for (const { found, truth } of spots) {
     assertEquals(found.nearest, "rim-impact");
-    // Noise errors leave out what back-projection smears: 4 km/s is a twentieth of the resolution.
+    // Noise errors leave out what inversions smear: 4 km/s is a twentieth of the resolution.
     const off = Math.hypot(found.vx_kms - truth.vx_kms, found.vy_kms - truth.vy_kms);
     assertLess(off, 4 + 3 * Math.hypot(found.vx_error_kms, found.vy_error_kms));
     assertAlmostEquals(found.flux_fraction, truth.flux_fraction, 0.05);
@@ -76,9 +82,9 @@ Deno.test("millrace orbit --refine writes a better target file and keeps its com
 });
 
 Deno.test("millrace demo writes outputs that say how they were made", async () => {
-  for (const name of ["check", "map"]) {
-    const document = JSON.parse(await Deno.readTextFile(`${out}/${name}.json`));
-    assertEquals(document.schema, `${name}/1`);
+  for (const name of ["/check", "/map", "-entropy/map", "-total-variation/map"]) {
+    const document = JSON.parse(await Deno.readTextFile(`${out}${name}.json`));
+    assertEquals(document.schema, `${name.split("/")[1]}/1`);
     assertEquals(document.inputs.length, 120);
     assertEquals(document.settings_digest.length, 64);
     assert(Array.isArray(document.warnings));
@@ -95,7 +101,9 @@ Deno.test({
   name: "millrace demo writes FITS that fitsverify accepts without a warning",
   ignore: !fitsverify,
   fn: async () => {
-    const names = [`${out}/trail.fits`, `${out}/map.fits`];
+    const names = ["/trail", "/map", "-entropy/map", "-total-variation/map"].map((name) =>
+      `${out}${name}.fits`
+    );
     for (let k = 1; k <= 60; k++) {
       for (const arm of ["blue", "red"]) {
         names.push(`${folder}/demo-run/${arm}/${arm}-${String(k).padStart(3, "0")}.fits`);
