@@ -15,7 +15,10 @@ export interface NoiseBank {
   readonly residual: Float64Array;
   /** Velocity of each sample in the accretor's frame, N values, km/s: structure of the line moves with it. */
   readonly velocity_kms: Float64Array;
-  /** Relative excess of each exposure's line, P values, of the variance that was measured. */
+  /**
+   * Relative excess of each exposure's line, P values. Where residuals are resampled, as it was
+   * measured, noise included: residuals have no share of it.
+   */
   readonly excess: Float64Array;
   /** Exposures in a block. */
   readonly block: number;
@@ -82,12 +85,11 @@ export function noiseBank(
   const moved = new Float64Array(residual.length);
   for (let i = 0; i < count; i++) {
     const from = start[i]!, to = start[i + 1]!;
-    const lost = hard.parameters / count;
-    const factor = inflate * Math.sqrt((to - from) / Math.max(1, to - from - lost));
     const accretor = systemic_kms -
       binary.k_accretor_kms * Math.sin(2 * Math.PI * (phase[i]! + shift));
     for (let n = from; n < to; n++) {
-      residual[n]! *= factor;
+      // What baselines took away they would take from trials, too: that is not made up for.
+      residual[n]! *= inflate;
       moved[n] = velocity_kms[n]! - accretor;
     }
   }
@@ -95,16 +97,19 @@ export function noiseBank(
   const groups = new Map<number, number>();
   for (const group of data.group) groups.set(group, (groups.get(group) ?? 0) + 1);
   const enough = Math.min(...groups.values()) >= LEAST_EXPOSURES;
+  const kind = options.kind ?? (enough ? "resampled" : "white");
   return {
     residual,
     velocity_kms: moved,
     excess: excess.map((value, i) => {
+      if (kind === "resampled") return inflate * value;
+      // White noise brings its own share.
       const total = rms * rms + excess_error[i]! ** 2;
       return rms === 0 ? 0 : value * rms / Math.sqrt(total);
     }),
     block: blockLength(excess, { count, rms }),
     structured: !isAdequate(residualTests(problem, fit)),
-    kind: options.kind ?? (enough ? "resampled" : "white"),
+    kind,
   };
 }
 

@@ -2,15 +2,25 @@ import { randomStream } from "@millrace/millrace/numerics";
 import {
   blockBootstrap,
   fitHypothesis,
+  lineOf,
   makeProblem,
+  makeWhitening,
   noiseBank,
   prepareProblem,
   weighingData,
 } from "@millrace/millrace/weighing";
-import { assert, assertAlmostEquals, assertEquals, assertLess, assertNotEquals } from "@std/assert";
+import {
+  assert,
+  assertAlmostEquals,
+  assertEquals,
+  assertGreater,
+  assertLess,
+  assertNotEquals,
+} from "@std/assert";
 import { addNoise, drawNoise } from "../../engine/weighing/draw_noise.ts";
 import { fitErrors } from "../../engine/weighing/fit_errors.ts";
 import { fittedValues } from "../../engine/weighing/fitted_values.ts";
+import { measureLineScale } from "../../engine/weighing/line_scale.ts";
 import { binary, quick, rms, spotted } from "./made.ts";
 
 const sets = [["disc"], ["disc", "spot"]] as const;
@@ -74,6 +84,29 @@ Deno.test("noiseBank() keeps unit variance, and drawNoise() whole blocks of expo
   );
   const breaks = source.filter((j, i) => i > 0 && j !== (source[i - 1]! + 1) % source.length);
   assertEquals(breaks.length <= Math.ceil(source.length / bank.block), true);
+});
+
+Deno.test("drawNoise() leaves the line's brightness as uncertain as the noise of the data does", () => {
+  const { problem, richest, line_scale } = prepare({ seed: 4 });
+  const { data } = problem;
+  const line = lineOf(problem, richest);
+  const whitening = makeWhitening(data);
+  for (const kind of ["resampled", "white"] as const) {
+    const bank = noiseBank(problem, richest, { line_scale, kind });
+    let square = 0;
+    for (let k = 0; k < 10; k++) {
+      const noise = drawNoise(bank, { data, random: randomStream(3, k) });
+      const flux = addNoise(line, { data, noise });
+      const { excess, excess_error } = measureLineScale(line, {
+        data: { ...data, flux },
+        whitening,
+      });
+      excess.forEach((value, i) => square += (value / excess_error[i]!) ** 2 / excess.length / 10);
+    }
+    // Drawn from the 30 values of the data: a variance of 1 ± 0.26; three of that.
+    assertAlmostEquals(square, 1, 0.78);
+    assertGreater(square, 0.5);
+  }
 });
 
 Deno.test("addNoise() scales the line and leaves its argument alone", () => {
