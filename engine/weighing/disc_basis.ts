@@ -3,6 +3,7 @@ import { type CompleteModel, type Model, synthesizeParts } from "../synthesis/mo
 import { panelled, systemFrame } from "../tomography/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
 import { blurHarmonic, discHarmonics } from "./disc_harmonics.ts";
+import { type RingTable, ringTable } from "./ring_table.ts";
 
 /** What a part's templates are made for. */
 export interface TemplateContext {
@@ -14,12 +15,23 @@ export interface TemplateContext {
   readonly systemic_kms: number;
   /** Highest order m of the disc's asymmetry, 0 to 2. */
   readonly asymmetry: 0 | 1 | 2;
+  /**
+   * Tables of rings, kept from call to call by their grid: a fit uses the same ones over and over.
+   *
+   * @default None are kept
+   */
+  readonly rings?: Map<string, RingTable>;
 }
 
 /** Grid points to a standard deviation: cubic interpolation is then good to 5e-5 of a Gaussian's peak, and a disc to 1e-3 of its own. */
 const BINS_PER_SIGMA = 6;
 /** Widths of instrumental profiles that differ by less than this are taken as one. */
 const SAME_SIGMA = 2e-3;
+/** Grids are made to these steps, so that a little change of geometry keeps a grid: in velocity, and relative. */
+const REACH_STEP_KMS = 50;
+const GRID_STEP = 0.01;
+/** Grids that are kept. */
+const KEPT = 3;
 
 /**
  * Templates of a disc of unit equivalent width: the axisymmetric one, then those whose surface
@@ -89,13 +101,11 @@ export function thinDiscBasis(
     fastest = Math.max(fastest, Math.abs(frame.offset_kms + frame.factor * velocity[n]!));
   }
   const finest = sigmas.reduce((a, b) => Math.min(a, b));
-  const step_kms = finest / BINS_PER_SIGMA;
-  const harmonics = discHarmonics(shape, {
-    step_kms,
-    reach_kms: fastest + k1 + 6 * sigmas.reduce((a, b) => Math.max(a, b)),
-    sigma_kms: finest,
-    orders: asymmetry,
-  });
+  const grid = Math.floor(Math.log(finest / BINS_PER_SIGMA) / GRID_STEP);
+  const widest = sigmas.reduce((a, b) => Math.max(a, b));
+  const reach = Math.ceil((fastest + k1 + 6 * widest) / REACH_STEP_KMS);
+  const step_kms = Math.exp(grid * GRID_STEP);
+  const harmonics = discHarmonics(shape, ringsFor(context, { grid, reach }));
 
   const tables = new Map<number, ReturnType<typeof blurAll>>();
   const blurAll = (sigma: number) => {
@@ -153,6 +163,26 @@ export function thinDiscBasis(
     }
   }
   return trails;
+}
+
+/** The table of a grid, from those that are kept where it is among them. */
+function ringsFor(
+  { asymmetry, rings = new Map() }: TemplateContext,
+  { grid, reach }: { readonly grid: number; readonly reach: number },
+): RingTable {
+  const key = `${grid}/${reach}/${asymmetry}`;
+  const known = rings.get(key);
+  if (known !== undefined) return known;
+  if (rings.size >= KEPT) rings.clear();
+  const step_kms = Math.exp(grid * GRID_STEP);
+  const made = ringTable({
+    step_kms,
+    reach_kms: reach * REACH_STEP_KMS,
+    sigma_kms: BINS_PER_SIGMA * step_kms,
+    orders: asymmetry,
+  });
+  rings.set(key, made);
+  return made;
 }
 
 /** One instant for an exposure during which patterns hardly turn, several for a longer one. */

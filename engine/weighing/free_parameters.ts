@@ -1,4 +1,4 @@
-import { closestApproach, lagrangePoints, lobeRadiusEggleton } from "../binary/mod.ts";
+import { type Binary, closestApproach, lagrangePoints, lobeRadiusEggleton } from "../binary/mod.ts";
 import { InputError } from "../errors.ts";
 import { completeModel, modelParameters, type PartName } from "../synthesis/mod.ts";
 import type { FitSetup } from "./fit_setup.ts";
@@ -96,7 +96,7 @@ export function freeParameters(hypothesis: Hypothesis, setup: FitSetup): readonl
   // By Eggleton's formula, as models are checked, and a little less for rounding.
   const lobe = 0.999 * lobeRadiusEggleton(1 / setup.binary.mass_ratio) /
     (1 + model.disc.eccentricity);
-  const closest = hypothesis.includes("spot") ? closestApproach(setup.binary.mass_ratio) : 0;
+  const closest = hypothesis.includes("spot") ? approachOf(setup.binary) : 0;
   const found: FreeParameter[] = [];
   const add = (
     section: PartName,
@@ -170,4 +170,13 @@ export function freeParameters(hypothesis: Hypothesis, setup: FitSetup): readonl
     });
   }
   return found;
+}
+
+/** A stream is followed for this: the answer is kept with the binary. */
+const approaches = new WeakMap<Binary, number>();
+
+function approachOf(binary: Binary): number {
+  const known = approaches.get(binary) ?? closestApproach(binary.mass_ratio);
+  approaches.set(binary, known);
+  return known;
 }

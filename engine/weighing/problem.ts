@@ -3,6 +3,7 @@ import { dot, productsOf, solveBrightnesses } from "./brightnesses.ts";
 import type { FitSetup } from "./fit_setup.ts";
 import type { Hypothesis } from "./hypothesis.ts";
 import type { ParameterState } from "./parameter_state.ts";
+import type { RingTable } from "./ring_table.ts";
 import { type TemplateStore, templateStore } from "./templates.ts";
 import type { WeighingData } from "./weighing_data.ts";
 import { makeWhitening, type SoftDirection, type Whitening } from "./whitening.ts";
@@ -21,11 +22,23 @@ export interface Problem {
   readonly templates: TemplateStore;
   /** Candidates of a scan, kept because they do not depend on the data. */
   readonly scans: Map<PartName, readonly ScanCandidate[]>;
+  /** The same before whitening: they do not depend on nuisances either. */
+  readonly places: Map<PartName, readonly ScanPlace[]>;
+  /** Rings of discs, by their grid. */
+  readonly rings: Map<string, RingTable>;
   /** Options it was made with. */
   readonly options: ProblemOptions;
 }
 
-/** One place of a part's parameters, with its whitened trail. */
+/** One place of a part's parameters, with its trail of unit equivalent width. */
+export interface ScanPlace {
+  /** Values of the part's parameters by path. */
+  readonly values: ReadonlyMap<string, number>;
+  /** The trail, N values. */
+  readonly trail: Float64Array;
+}
+
+/** The same with its whitened trail. */
 export interface ScanCandidate {
   /** Values of the part's parameters by path. */
   readonly values: ReadonlyMap<string, number>;
@@ -75,16 +88,31 @@ export function makeProblem(
   setup: FitSetup,
   options: ProblemOptions = {},
 ): Problem {
+  const rings = new Map<string, RingTable>();
+  return problemWith({ data, setup, rings, places: new Map() }, options);
+}
+
+function problemWith(
+  kept: Pick<Problem, "data" | "setup" | "rings" | "places">,
+  options: ProblemOptions,
+): Problem {
+  const { data, setup, rings } = kept;
   const whitening = makeWhitening(data, options);
+  const asymmetry = setup.asymmetry ?? 2;
   return {
-    data,
-    setup,
+    ...kept,
     whitening,
     observed: whitening.apply(data.flux),
-    templates: templateStore(data.sampling, { whitening, asymmetry: setup.asymmetry ?? 2 }),
+    templates: templateStore(data.sampling, { whitening, asymmetry, rings }),
     scans: new Map(),
     options,
   };
+}
+
+/** The same problem with other nuisances: what is made before whitening is shared. */
+export function withNuisances(problem: Problem, options: ProblemOptions): Problem {
+  const { data, setup, rings, places } = problem;
+  return problemWith({ data, setup, rings, places }, options);
 }
 
 /** The same problem with other data on the same samples: templates and scans are shared. */

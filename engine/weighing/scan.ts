@@ -2,7 +2,13 @@ import type { PartName } from "../synthesis/mod.ts";
 import { cholesky, dot, productsOf, solveLower } from "./brightnesses.ts";
 import { type FreeParameter, freeParameters } from "./free_parameters.ts";
 import { stateOf } from "./parameter_state.ts";
-import { type Evaluation, type Problem, type ScanCandidate, sumOfSquares } from "./problem.ts";
+import {
+  type Evaluation,
+  type Problem,
+  type ScanCandidate,
+  type ScanPlace,
+  sumOfSquares,
+} from "./problem.ts";
 
 /**
  * Places at which a part is tried before it is fitted, as values from 0 to 1 between a parameter's
@@ -34,23 +40,32 @@ export function isScanned(part: PartName): boolean {
 function candidatesOf(problem: Problem, part: PartName): readonly ScanCandidate[] {
   const known = problem.scans.get(part);
   if (known !== undefined) return known;
+  const candidates = placesOf(problem, part).map(({ values, trail }) => {
+    const column = problem.whitening.apply(trail);
+    return { values, column, length_squared: sumOfSquares(column) };
+  });
+  problem.scans.set(part, candidates);
+  return candidates;
+}
+
+function placesOf(problem: Problem, part: PartName): readonly ScanPlace[] {
+  const known = problem.places.get(part);
+  if (known !== undefined) return known;
   const { setup } = problem;
   const parameters = freeParameters([part], { ...setup, errors: {} });
   const state = stateOf([part], { setup, parameters });
   const at = parameters.map((parameter) => valuesAlong(parameter, GRIDS[part]![parameter.path]));
-  const candidates: ScanCandidate[] = [];
+  const places: ScanPlace[] = [];
   for (const values of product(at)) {
     const made = problem.templates.raw(part, state(values));
     if (made === null) continue;
-    const column = problem.whitening.apply(made[0]!);
-    candidates.push({
+    places.push({
       values: new Map(parameters.map(({ path }, j) => [path, values[j]!])),
-      column,
-      length_squared: sumOfSquares(column),
+      trail: made[0]!,
     });
   }
-  problem.scans.set(part, candidates);
-  return candidates;
+  problem.places.set(part, places);
+  return places;
 }
 
 function valuesAlong(parameter: FreeParameter, grid?: readonly number[]): readonly number[] {

@@ -3,6 +3,7 @@ import { type PartName, synthesizeParts } from "../synthesis/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
 import { discBasis } from "./disc_basis.ts";
 import type { ParameterState } from "./parameter_state.ts";
+import type { RingTable } from "./ring_table.ts";
 import type { Whitening } from "./whitening.ts";
 
 /** Whitened trails of one part of unit equivalent width. */
@@ -28,7 +29,12 @@ const KEPT = 3;
  */
 export function templateStore(
   sampling: Sampling,
-  { whitening, asymmetry }: { readonly whitening: Whitening; readonly asymmetry: 0 | 1 | 2 },
+  { whitening, asymmetry, rings }: {
+    readonly whitening: Whitening;
+    readonly asymmetry: 0 | 1 | 2;
+    /** Rings of discs that are kept by whoever makes the store. */
+    readonly rings: Map<string, RingTable>;
+  },
 ): TemplateStore {
   const kept = new Map<PartName, { readonly key: string; readonly made: PartTemplates | null }[]>();
   const shifted = new Map<number, Sampling>();
@@ -55,7 +61,7 @@ export function templateStore(
       if (part === "disc") {
         // Hardly a disc any more, and at last none: the fit keeps away.
         if (model.disc.inner_radius_over_a > 0.97 * model.disc.outer_radius_over_a) return null;
-        return discBasis(model, { ...context, asymmetry });
+        return discBasis(model, { ...context, asymmetry, rings });
       }
       const own: Record<string, unknown> = { ...model[part], equivalent_width_kms: 1 };
       // A trough is a share of its pedestal: it scales with it.
