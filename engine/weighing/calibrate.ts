@@ -55,8 +55,8 @@ export interface CalibrateOptions {
   readonly signal?: AbortSignal;
 }
 
-/** Trials in a task: few enough to spread well, many enough that making templates does not count. */
-const CHUNK = 10;
+/** Trials in a task: few enough to spread well, and for an interrupt to be heard between two tasks. */
+const CHUNK = 4;
 /** A stretch of trials, at whose end the run may stop. */
 const STRETCH = 100;
 /** That many exceeding trials make the answer clear: the hypothesis in question is not needed. */

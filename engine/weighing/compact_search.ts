@@ -7,6 +7,7 @@ import { lineOf } from "./line_of.ts";
 import { addNoise, drawNoise } from "./draw_noise.ts";
 import type { NoiseBank } from "./noise_bank.ts";
 import type { Problem } from "./problem.ts";
+import type { Steps } from "./work_in_steps.ts";
 
 /** A square of places in the map. */
 export interface SearchGrid {
@@ -66,18 +67,56 @@ export interface SearchOptions {
 }
 
 /** The matched filter of each place; rows of increasing Vy, columns of increasing Vx. */
-export function searchCells(problem: Problem, options: SearchOptions): SearchCell[] {
+export function* searchCells(problem: Problem, options: SearchOptions): Steps<SearchCell[]> {
   const { cells, half_width_kms } = options.grid;
   const step = 2 * half_width_kms / (cells - 1);
-  return Array.from({ length: cells * cells }, (_, k) =>
-    searchCell(problem, {
-      ...options,
-      source: {
-        vx_kms: (k % cells) * step - half_width_kms,
-        vy_kms: Math.floor(k / cells) * step - half_width_kms,
-        sigma_kms: options.sigma_kms,
-      },
-    }));
+  const found: SearchCell[] = [];
+  for (let k = 0; k < cells * cells; k++) {
+    if (k % cells === 0) yield;
+    const source = {
+      vx_kms: (k % cells) * step - half_width_kms,
+      vy_kms: Math.floor(k / cells) * step - half_width_kms,
+      sigma_kms: options.sigma_kms,
+    };
+    found.push(searchCell(problem, { ...options, source }));
+  }
+  return found;
+}
+
+const TRIALS_IN_STEP = 20;
+/** Steps by which place (km/s) and width (relative) are changed for derivatives. */
+const STEP_KMS = 5;
+const STEP_WIDTH = 0.1;
+
+/**
+ * Directions in which a source's trail changes with its place and width, of unit length and at right
+ * angles to its matched filter and to each other: noise along them is what fitting place and width
+ * gains.
+ */
+export function refitDirections(
+  problem: Problem,
+  { cell, sigma_kms, fit, tangent }: Pick<SearchOptions, "fit" | "tangent" | "sigma_kms"> & {
+    readonly cell: SearchCell;
+  },
+): Float64Array[] {
+  const { vx_kms, vy_kms, strength, filter } = cell;
+  const changed = [
+    { vx_kms: vx_kms + STEP_KMS, vy_kms, sigma_kms },
+    { vx_kms, vy_kms: vy_kms + STEP_KMS, sigma_kms },
+    { vx_kms, vy_kms, sigma_kms: sigma_kms * (1 + STEP_WIDTH) },
+  ];
+  const directions: Float64Array[] = [];
+  for (const source of changed) {
+    const there = searchCell(problem, { source, fit, tangent });
+    const change = there.filter.map((value, n) => there.strength * value - strength * filter[n]!);
+    for (const other of [filter, ...directions]) {
+      const along = dot(change, other);
+      for (let n = 0; n < change.length; n++) change[n]! -= along * other[n]!;
+    }
+    const length = Math.sqrt(dot(change, change));
+    if (length > 0) directions.push(change.map((value) => value / length));
+  }
+  return directions;
 }
 
 /** The matched filter of one place. */
@@ -100,7 +139,7 @@ export function searchCell(
 /**
  * Whitened noise of trials of a fitted model, flickering included, without what the model absorbs.
  */
-export function searchNoise(
+export function* searchNoise(
   problem: Problem,
   { fit, bank, tangent, trials, seed }: {
     readonly fit: HypothesisFit;
@@ -109,12 +148,15 @@ export function searchNoise(
     readonly trials: number;
     readonly seed: number;
   },
-): Float64Array[] {
+): Steps<Float64Array[]> {
   const { data } = problem;
   const line = lineOf(problem, fit);
-  return Array.from({ length: trials }, (_, k) => {
+  const found: Float64Array[] = [];
+  for (let k = 0; k < trials; k++) {
+    if (k % TRIALS_IN_STEP === 0) yield;
     const drawn = drawNoise(bank, { data, random: randomStream(seed, k) });
     const noise = addNoise(line, { data, noise: drawn }).map((value, n) => value - line[n]!);
-    return tangent.without(problem.whitening.apply(noise));
-  });
+    found.push(tangent.without(problem.whitening.apply(noise)));
+  }
+  return found;
 }

@@ -2,13 +2,14 @@ import type { Warning } from "../errors.ts";
 import { informationCriteria } from "../numerics/mod.ts";
 import { dot } from "./brightnesses.ts";
 import { type FitErrors, fitErrors } from "./fit_errors.ts";
-import { fitHypothesis, type HypothesisFit, total, valuesOf } from "./fit_hypothesis.ts";
+import { fitInSteps, type HypothesisFit, total, valuesOf } from "./fit_hypothesis.ts";
 import { type FittedValues, fittedValues } from "./fitted_values.ts";
 import { type Hypothesis, hypothesisName, isNested } from "./hypothesis.ts";
 import { lineOf } from "./line_of.ts";
 import type { PreparedProblem } from "./prepare_problem.ts";
 import type { Problem } from "./problem.ts";
 import { isAdequate, type ResidualTests, residualTests } from "./residual_tests.ts";
+import { atOnce, type Steps } from "./work_in_steps.ts";
 
 /** One hypothesis, fitted and tested. */
 export interface WeighedHypothesis extends FittedValues {
@@ -88,20 +89,29 @@ const DISAGREE = 0.5;
 export function compareHypotheses(
   prepared: PreparedProblem,
   sets: readonly Hypothesis[],
-  { starts = 2, seed = 1 }: { readonly starts?: number; readonly seed?: number } = {},
+  options: { readonly starts?: number; readonly seed?: number } = {},
 ): Comparison {
+  return atOnce(compareInSteps(prepared, sets, options));
+}
+
+/** The same, piece by piece. */
+export function* compareInSteps(
+  prepared: PreparedProblem,
+  sets: readonly Hypothesis[],
+  { starts = 2, seed = 1 }: { readonly starts?: number; readonly seed?: number } = {},
+): Steps<Comparison> {
   const { problem, richest } = prepared;
   const fits: HypothesisFit[] = [];
   const warm = valuesOf(richest);
   for (const hypothesis of [...sets].sort((a, b) => a.length - b.length)) {
-    let best = fitHypothesis(problem, { hypothesis, warm, starts, seed });
+    let best = yield* fitInSteps(problem, { hypothesis, warm, starts, seed });
     const inner = fits.filter((fit) => isNested(fit.hypothesis, hypothesis));
     const base = inner.reduce<HypothesisFit | null>(
       (a, b) => a === null || total(b) < total(a) ? b : a,
       null,
     );
     if (base !== null && total(best) > total(base) - LEFT_BEHIND) {
-      const other = fitHypothesis(problem, { hypothesis, base });
+      const other = yield* fitInSteps(problem, { hypothesis, base });
       const reached = [...best.starts, ...other.starts].sort((a, b) => a - b);
       best = { ...total(other) < total(best) ? other : best, starts: reached };
     }
@@ -113,7 +123,11 @@ export function compareHypotheses(
     richest.evaluation.active.length;
   const dof = Math.max(1, problem.observed.length - spent);
   const noise_scale = Math.sqrt(all / dof);
-  const hypotheses = fits.map((fit) => weighed(problem, { fit, noise_scale }));
+  const hypotheses: WeighedHypothesis[] = [];
+  for (const fit of fits) {
+    yield;
+    hypotheses.push(weighed(problem, { fit, noise_scale }));
+  }
   return {
     hypotheses: hypotheses.sort((a, b) => a.aicc - b.aicc),
     noise_scale,

@@ -1,6 +1,7 @@
 import { median, normalQuantile } from "../numerics/mod.ts";
 import { dot } from "./brightnesses.ts";
 import {
+  refitDirections,
   type SearchCell,
   searchCells,
   type SearchGrid,
@@ -11,6 +12,7 @@ import type { FitErrors } from "./fit_errors.ts";
 import type { HypothesisFit } from "./fit_hypothesis.ts";
 import type { NoiseBank } from "./noise_bank.ts";
 import type { Problem } from "./problem.ts";
+import { atOnce, type Steps } from "./work_in_steps.ts";
 
 /** What a compact source would need in order to be found, place by place. */
 export interface DetectionLimit extends SearchGrid {
@@ -67,6 +69,13 @@ export interface DetectionLimitOptions {
    * @default What `false_alarm` of a blind search of the square asks for
    */
   readonly threshold?: number;
+  /**
+   * Whether place and width are fitted when the source is looked for, as a calibrated test of a spot
+   * does: what that gains helps to pass the threshold.
+   *
+   * @default {false}
+   */
+  readonly refit?: boolean;
   /**
    * Trials of noise.
    *
@@ -133,6 +142,14 @@ export function detectionLimit(
   problem: Problem,
   options: DetectionLimitOptions,
 ): DetectionSearch {
+  return atOnce(limitInSteps(problem, options));
+}
+
+/** The same, piece by piece. */
+export function* limitInSteps(
+  problem: Problem,
+  options: DetectionLimitOptions,
+): Steps<DetectionSearch> {
   const { fit, bank, sigma_kms = 60, false_alarm = 0.01, trials = 200, seed = 1 } = options;
   const { k_accretor_kms, k_donor_kms } = fit.state.binary;
   const grid = options.grid ?? {
@@ -140,16 +157,26 @@ export function detectionLimit(
     half_width_kms: Math.min(0.8 * problem.data.reach_kms, 2.5 * (k_accretor_kms + k_donor_kms)),
   };
   const tangent = tangentOf(options.fit_errors);
-  const cells = searchCells(problem, { grid, sigma_kms, fit, tangent });
-  const noise = searchNoise(problem, { fit, bank, tangent, trials, seed });
+  const cells = yield* searchCells(problem, { grid, sigma_kms, fit, tangent });
+  const noise = yield* searchNoise(problem, { fit, bank, tangent, trials, seed });
   const largest = new Float64Array(trials);
-  const found = cells.map(({ filter }) =>
-    Float64Array.from(noise, (white, k) => {
-      const signal = dot(filter, white);
-      largest[k] = Math.max(largest[k]!, signal);
-      return signal;
-    })
-  );
+  const { refit = false } = options;
+  // Signal to noise of each trial's noise at each place, and what fitting the place gains there.
+  const found: { readonly signal: Float64Array; readonly gain: Float64Array }[] = [];
+  for (const cell of cells) {
+    if (found.length % grid.cells === 0) yield;
+    const directions = refit ? refitDirections(problem, { cell, sigma_kms, fit, tangent }) : [];
+    const signal = Float64Array.from(noise, (white, k) => {
+      const here = dot(cell.filter, white);
+      largest[k] = Math.max(largest[k]!, here);
+      return here;
+    });
+    const gain = Float64Array.from(
+      noise,
+      (white) => directions.reduce((sum, direction) => sum + dot(direction, white) ** 2, 0),
+    );
+    found.push({ signal, gain });
+  }
   const blind = upperQuantile(largest, false_alarm);
   const threshold = options.threshold === undefined ? blind.value : Math.sqrt(options.threshold);
   const threshold_error = options.threshold === undefined ? blind.error : 0;
@@ -160,12 +187,17 @@ export function detectionLimit(
   const power = normalQuantile(0.95);
   const limits = cells.map(({ strength }, c) => {
     if (!(strength > BLIND) || !(light > 0)) return { half: null, most: null, error: null };
-    const middle = median(found[c]!);
-    const spread = deviation(found[c]!, middle);
+    // The signal that each trial lacks to be found: its noise may help or hinder.
+    const { signal, gain } = found[c]!;
+    const lacking = signal.map((value, k) =>
+      Math.sqrt(Math.max(0, threshold ** 2 - gain[k]!)) - value
+    );
+    const middle = median(lacking);
+    const spread = deviation(lacking, middle);
     const own = spread * Math.sqrt((1 + power ** 2 / 2) / trials);
-    const most = (threshold - middle + power * spread) / strength;
+    const most = (middle + power * spread) / strength;
     return {
-      half: share((threshold - middle) / strength),
+      half: share(middle / strength),
       most: share(most),
       error: Math.hypot(own, threshold_error) / strength * light / (light + most) ** 2,
     };

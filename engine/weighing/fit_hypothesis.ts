@@ -12,6 +12,7 @@ import {
   withGeometryHeld,
 } from "./problem.ts";
 import { isScanned, scan } from "./scan.ts";
+import { atOnce, type Steps } from "./work_in_steps.ts";
 
 /** A hypothesis fitted to a problem's data. */
 export interface HypothesisFit {
@@ -99,9 +100,14 @@ const MAX_ITERATIONS = 40;
  * ```
  */
 export function fitHypothesis(problem: Problem, options: FitOptions): HypothesisFit {
+  return atOnce(fitInSteps(problem, options));
+}
+
+/** The same, piece by piece. */
+export function* fitInSteps(problem: Problem, options: FitOptions): Steps<HypothesisFit> {
   const { hypothesis, starts = 1, seed = 1 } = options;
   const parameters = freeParameters(hypothesis, problem.setup);
-  const base = options.base ?? fitSteady(problem, options);
+  const base = options.base ?? (yield* fitSteady(problem, options));
   const settled = base === null ? new Map<string, number>() : valuesOf(base);
   const best: ReadonlyMap<string, number>[] = [settled];
   const scanned = hypothesis.filter((part) => isScanned(part) && !base?.hypothesis.includes(part));
@@ -110,6 +116,7 @@ export function fitHypothesis(problem: Problem, options: FitOptions): Hypothesis
     const before = hypothesis.filter((name) =>
       !scanned.includes(name) || scanned.indexOf(name) < scanned.indexOf(part)
     );
+    yield;
     const found = scan(problem, { part, base: evaluateAt(problem, before, head) });
     if (found.length === 0) continue;
     const [first, ...rest] = found;
@@ -127,9 +134,15 @@ export function fitHypothesis(problem: Problem, options: FitOptions): Hypothesis
 
   const from = (start: ReadonlyMap<string, number>) =>
     fitFrom(problem, { hypothesis, parameters, start });
-  let fits = best.map(from).filter((fit) => fit !== null).sort((a, b) => total(a) - total(b));
+  const fits: HypothesisFit[] = [];
   // Where the disc went to alone, another part may be impossible: then from what the model gives.
-  if (fits.length === 0) fits = [from(new Map())].filter((fit) => fit !== null);
+  for (const start of [...best, new Map<string, number>()]) {
+    if (start.size === 0 && fits.length > 0) break;
+    yield;
+    const fit = from(start);
+    if (fit !== null) fits.push(fit);
+  }
+  fits.sort((a, b) => total(a) - total(b));
   if (fits.length === 0) {
     throw new WorkError({
       action: `fit ${hypothesisName(hypothesis)}`,
@@ -154,12 +167,16 @@ export function total(fit: Pick<HypothesisFit, "chi_square" | "prior_chi_square"
  * The fit of parts that are not looked for on a grid; the disc's numbers may be. The geometry is
  * held, or a disc alone would bend it to take what is another part's.
  */
-function fitSteady(problem: Problem, { hypothesis, warm }: FitOptions): HypothesisFit | null {
+function* fitSteady(
+  problem: Problem,
+  { hypothesis, warm }: FitOptions,
+): Steps<HypothesisFit | null> {
   const steady = hypothesis.filter((part) => !isScanned(part));
   if (steady.length === 0) return null;
   const held = withGeometryHeld(problem);
   const parameters = freeParameters(steady, held.setup);
   const start = warm ?? coarseStart(held, { hypothesis: steady, parameters });
+  yield;
   return fitFrom(held, { hypothesis: steady, parameters, start });
 }
 

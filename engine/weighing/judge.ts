@@ -5,8 +5,9 @@ import { type HypothesisFit, valuesOf } from "./fit_hypothesis.ts";
 import { type Hypothesis, hypothesisName } from "./hypothesis.ts";
 import type { NoiseBank } from "./noise_bank.ts";
 import type { NullTable } from "./null_table.ts";
-import { fitPair, trialJob } from "./pair_trials.ts";
+import { fitPairInSteps, trialJob } from "./pair_trials.ts";
 import type { Problem } from "./problem.ts";
+import { inTurns } from "./work_in_steps.ts";
 
 /** False-alarm rate above which a part is not taken as found. */
 export const NEEDED = 0.01;
@@ -134,11 +135,8 @@ async function weighPair(
   against: Hypothesis,
   { problem, bankFor, seed, what, ...options }: JudgeOptions & { readonly what: string },
 ): Promise<Calibration> {
-  const { statistic } = fitPair(problem, {
-    first: from.parts,
-    second: against,
-    warm: valuesOf(from.fit),
-  });
+  const pair = { first: from.parts, second: against, warm: valuesOf(from.fit) };
+  const { statistic } = await inTurns(fitPairInSteps(problem, pair), options.signal);
   const { progress } = options;
   return await calibrate(
     trialJob(problem, { fit: from.fit, second: against, bank: bankFor(from.fit), seed }),

@@ -14,7 +14,12 @@ export {
 export type { SearchCell, SearchGrid } from "./compact_search.ts";
 export * from "./compact_source.ts";
 export * from "./compact_trail.ts";
-export * from "./detection_limit.ts";
+export {
+  type DetectionLimit,
+  detectionLimit,
+  type DetectionLimitOptions,
+  type DetectionSearch,
+} from "./detection_limit.ts";
 export type { FitErrors } from "./fit_errors.ts";
 export { fitHypothesis, type FitOptions, type HypothesisFit } from "./fit_hypothesis.ts";
 export * from "./fit_setup.ts";
@@ -28,7 +33,7 @@ export { type NoiseBank, noiseBank } from "./noise_bank.ts";
 export * from "./null_table.ts";
 export type { ParameterState } from "./parameter_state.ts";
 export { fitPair, type PairFit, type TrialJob, trialJob } from "./pair_trials.ts";
-export * from "./prepare_problem.ts";
+export { type PreparedProblem, type PrepareOptions, prepareProblem } from "./prepare_problem.ts";
 export {
   type Evaluation,
   makeProblem,

@@ -1,5 +1,5 @@
 import { randomStream } from "../numerics/mod.ts";
-import { fitHypothesis, type HypothesisFit, total, valuesOf } from "./fit_hypothesis.ts";
+import { fitInSteps, type HypothesisFit, total, valuesOf } from "./fit_hypothesis.ts";
 import { type Hypothesis, hypothesisName } from "./hypothesis.ts";
 import { lineOf } from "./line_of.ts";
 import { addNoise, drawNoise } from "./draw_noise.ts";
@@ -13,6 +13,7 @@ import {
   withGeometryHeld,
 } from "./problem.ts";
 import type { WeighingData } from "./weighing_data.ts";
+import { atOnce, type Steps } from "./work_in_steps.ts";
 
 /** Two hypotheses fitted to the same data. */
 export interface PairFit {
@@ -63,16 +64,25 @@ export function fitPair(
     readonly warm: ReadonlyMap<string, number>;
   },
 ): PairFit {
+  return atOnce(fitPairInSteps(problem, { first, second, warm }));
+}
+
+/** The same, piece by piece. */
+export function* fitPairInSteps(
+  problem: Problem,
+  { first, second, warm }: Pick<TrialJob, "first" | "second" | "warm">,
+): Steps<PairFit> {
   const shared = first.filter((part) => second.includes(part));
   const base = shared.length === 0
     ? undefined
-    : fitHypothesis(withGeometryHeld(problem), { hypothesis: shared, warm });
+    : yield* fitInSteps(withGeometryHeld(problem), { hypothesis: shared, warm });
   const free = Object.values(problem.setup.errors ?? {}).some((error) => error > 0);
-  const go = (hypothesis: Hypothesis) =>
-    base !== undefined && !free && hypothesis.length === shared.length
+  const go = function* (hypothesis: Hypothesis): Steps<HypothesisFit> {
+    return base !== undefined && !free && hypothesis.length === shared.length
       ? base
-      : fitHypothesis(problem, { hypothesis, ...(base ? { base } : { warm }) });
-  const fits = { first: go(first), second: go(second) };
+      : yield* fitInSteps(problem, { hypothesis, ...(base ? { base } : { warm }) });
+  };
+  const fits = { first: yield* go(first), second: yield* go(second) };
   return { ...fits, statistic: total(fits.first) - total(fits.second) };
 }
 
@@ -166,6 +176,9 @@ export function trialFlux(job: TrialJob, k: number): Float64Array {
   return addNoise(line, { data, noise: drawNoise(bank, { data, random: randomStream(seed, k) }) });
 }
 
+/** Templates of a scan are made once for a pair, however its trials are cut into tasks. */
+const problems = new WeakMap<TrialJob, Problem>();
+
 /**
  * Statistics of some trials of a pair. Trial k is the same whichever run it is in.
  *
@@ -177,7 +190,8 @@ export function runTrials(
   job: TrialJob,
   { from, to }: { readonly from: number; readonly to: number },
 ): Float64Array {
-  const problem = makeProblem(job.data, job.setup, job.options);
+  const problem = problems.get(job) ?? makeProblem(job.data, job.setup, job.options);
+  problems.set(job, problem);
   const statistics = new Float64Array(to - from);
   for (let k = from; k < to; k++) {
     statistics[k - from] = fitPair(withFlux(problem, trialFlux(job, k)), job).statistic;

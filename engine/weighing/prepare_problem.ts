@@ -1,11 +1,12 @@
-import { fitHypothesis, type HypothesisFit, total, valuesOf } from "./fit_hypothesis.ts";
+import { fitInSteps, type HypothesisFit, total } from "./fit_hypothesis.ts";
 import { type FitSetup, fitSetup } from "./fit_setup.ts";
 import { type Hypothesis, hypothesisOf } from "./hypothesis.ts";
 import { lineOf } from "./line_of.ts";
 import { type LineScale, measureLineScale } from "./line_scale.ts";
-import { makeProblem, type Problem } from "./problem.ts";
+import { makeProblem, type Problem, withNuisances } from "./problem.ts";
 import type { WeighingData } from "./weighing_data.ts";
 import { makeWhitening, type SoftDirection } from "./whitening.ts";
+import { atOnce, type Steps } from "./work_in_steps.ts";
 
 /** Options of {@linkcode prepareProblem}. */
 export interface PrepareOptions {
@@ -79,13 +80,22 @@ export function prepareProblem(
   setup: FitSetup,
   options: PrepareOptions,
 ): PreparedProblem {
+  return atOnce(prepareInSteps(data, setup, options));
+}
+
+/** The same, piece by piece. */
+export function* prepareInSteps(
+  data: WeighingData,
+  setup: FitSetup,
+  options: PrepareOptions,
+): Steps<PreparedProblem> {
   const { sets, line_scale = "measured", shift_kms = 0 } = options;
   const order = { baseline_order: options.baseline_order ?? 1 };
   const hypothesis = hypothesisOf([...new Set(sets.flat())]);
   const plain = makeWhitening(data, order);
   const own = fitSetup(setup);
   let problem = makeProblem(data, own, order);
-  let richest = fitHypothesis(problem, { hypothesis, starts: 2 });
+  let richest = yield* fitInSteps(problem, { hypothesis });
   let line = lineOf(problem, richest);
   let measured = measureLineScale(line, { data, whitening: plain });
   const priorOf = ({ rms }: LineScale) =>
@@ -99,8 +109,8 @@ export function prepareProblem(
       const there = lineOf(problem, richest, { state: moved });
       soft.push({ pattern: there.map((value, n) => value - line[n]!), sigma: shift_kms });
     }
-    const next = makeProblem(data, own, { ...order, soft });
-    const fit = fitHypothesis(next, { hypothesis, warm: valuesOf(richest) });
+    const next = withNuisances(problem, { ...order, soft });
+    const fit = yield* fitInSteps(next, { hypothesis, base: richest });
     if (unlikelihood(next, fit) > unlikelihood(problem, richest)) break;
     const settled = Math.abs(prior - applied) <= SAME_RMS * prior;
     problem = next;

@@ -1,17 +1,18 @@
 import type { Warning } from "../errors.ts";
 import type { Progress } from "../workers/mod.ts";
-import { compareHypotheses, type Comparison } from "./compare_hypotheses.ts";
+import { compareInSteps, type Comparison } from "./compare_hypotheses.ts";
 import { type StrongestSource, strongestSource } from "./compact_source.ts";
-import { type DetectionLimit, detectionLimit } from "./detection_limit.ts";
+import { type DetectionLimit, limitInSteps } from "./detection_limit.ts";
 import type { HypothesisFit } from "./fit_hypothesis.ts";
 import type { FitSetup } from "./fit_setup.ts";
 import { judge, type Judgement, NEEDED } from "./judge.ts";
 import { noiseBank } from "./noise_bank.ts";
 import type { NullTable } from "./null_table.ts";
-import { type PreparedProblem, type PrepareOptions, prepareProblem } from "./prepare_problem.ts";
+import { type PreparedProblem, prepareInSteps, type PrepareOptions } from "./prepare_problem.ts";
 import { type StructureProbabilities, structureProbabilities } from "./structure_probabilities.ts";
 import { setsToWeigh } from "./sets_to_weigh.ts";
 import { type Verdict, verdictOf } from "./verdict.ts";
+import { inTurns } from "./work_in_steps.ts";
 import { type WeighableTrail, weighingData, type WeighingDataOptions } from "./weighing_data.ts";
 
 /** Options of {@linkcode weighTrail}. */
@@ -123,9 +124,9 @@ export async function weighTrail(
     options;
   const data = weighingData(trail, options);
   const sets = setsToWeigh(options, data);
-  const prepared = prepareProblem(data, options, { ...options, sets });
+  const prepared = await inTurns(prepareInSteps(data, options, { ...options, sets }), signal);
   const { problem, richest, line_scale } = prepared;
-  const comparison = compareHypotheses(prepared, sets, { seed });
+  const comparison = await inTurns(compareInSteps(prepared, sets, { seed }), signal);
   const bank = noiseBank(problem, richest, { line_scale });
   const bankFor = (fit: HypothesisFit) =>
     bank.structured ? noiseBank(problem, fit, { line_scale }) : bank;
@@ -142,13 +143,10 @@ export async function weighTrail(
 
   const simplest = comparison.hypotheses.reduce((a, b) => b.parts.length < a.parts.length ? b : a);
   const { fit, fit_errors } = simplest;
-  const search = options.limit === false ? null : detectionLimit(problem, {
-    fit,
-    fit_errors,
-    bank: bankFor(fit),
-    trials,
-    seed,
-  });
+  const looked = { fit, fit_errors, bank: bankFor(fit), trials, seed };
+  const search = options.limit === false
+    ? null
+    : await inTurns(limitInSteps(problem, looked), signal);
   const found = search === null ? null : strongestSource(problem, { fit, search });
   let source: SeatedSource | null = null;
   if (found !== null && search !== null) {

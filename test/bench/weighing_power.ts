@@ -14,6 +14,7 @@ import { binary, pairOf, row, trailOf } from "./weighing_data.ts";
 
 const sets = Number(Deno.args[0] ?? 40);
 const TRIALS = 200;
+const CELLS = 27;
 const pair = { first: ["disc"], second: ["disc", "spot"] } as const;
 const { vx_kms, vy_kms } = spotPlace(spotted(0.1), binary);
 const reach = Math.max(Math.abs(vx_kms), Math.abs(vy_kms));
@@ -33,14 +34,15 @@ for (const signal_to_noise of [25, 8]) {
       fit_errors,
       bank: none.bank,
       threshold,
+      refit: true,
       trials: TRIALS,
       sigma_kms: 60,
       // Fine enough that the place nearest to the spot's stands for it.
-      grid: { cells: 41, half_width_kms: reach },
+      grid: { cells: CELLS, half_width_kms: reach },
     });
-    const step = 2 * reach / 40;
+    const step = 2 * reach / (CELLS - 1);
     const index = (v: number) => Math.round((v + reach) / step);
-    const cell = index(vy_kms) * 41 + index(vx_kms);
+    const cell = index(vy_kms) * CELLS + index(vx_kms);
     const guess = limit.fraction_95[cell]!;
 
     const shares = [0.3, 0.5, 0.7, 0.85, 1, 1.2].map((factor) => factor * guess);

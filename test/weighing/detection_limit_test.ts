@@ -76,6 +76,16 @@ Deno.test("detectionLimit() takes a threshold that a calibration gave", () => {
   assertEquals([limit.threshold, limit.threshold_error], [5, 0]);
 });
 
+Deno.test("detectionLimit() asks for less when place and width are fitted", () => {
+  const held = search({ seed: 1 }, { threshold: 18 }).found.limit;
+  const free = search({ seed: 1 }, { threshold: 18, refit: true }).found.limit;
+  // Noise along three more directions: chi-square grows by 3 on average, and √18 − √15 = 0.37 of a
+  // signal of some 5.9 is 6 %; its scatter, ± √6, takes part of that back at 95 %.
+  const ratio = free.fraction_95.map((value, c) => value! / held.fraction_95[c]!);
+  const mean = ratio.reduce((sum, value) => sum + value, 0) / ratio.length;
+  assertAlmostEquals(mean, 0.955, 0.025);
+});
+
 Deno.test("strongestSource() finds a source where it was put, with its light", () => {
   const trail = quick(spotted(0), { seed: 7 });
   const source = { vx_kms: 530, vy_kms: -410, sigma_kms: 80 };
