@@ -44,8 +44,8 @@ export function pdfBytes(picture: Picture, options: PdfOptions = {}): Promise<Ui
     tagged: true,
     displayTitle: true,
     lang: "en",
-    // A font here keeps pdfkit from reading its built-in ones from the disc.
-    font: Buffer.from(fontFace("regular").bytes) as unknown as string,
+    // None to begin with: pdfkit would read a built-in one from the disc, or parse ours twice.
+    font: null as unknown as string,
     info: {
       Title: picture.title,
       Subject: facts,

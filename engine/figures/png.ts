@@ -1,12 +1,13 @@
-import { initWasm, Resvg } from "@resvg/resvg-wasm";
-import { resampleCells } from "./cells.ts";
-import { type Picture } from "./display_list.ts";
-import { TEXT_FAMILY } from "./font_names.ts";
+import { paintCells, resampleCells } from "./cells.ts";
+import type { Picture } from "./display_list.ts";
+import { type FaceName, TEXT_FAMILY } from "./font_names.ts";
 import { faceNames, fontFace } from "./fonts.ts";
-import { packageFile } from "./package_file.ts";
+import { type LowestImage, lowestImages } from "./lowest_images.ts";
 import type { Metadata } from "./marks.ts";
-import { pngFile, type Raster } from "./png_file.ts";
-import { svgText } from "./svg.ts";
+import { packageFile } from "./package_file.ts";
+import { pathCoverage } from "./path_coverage.ts";
+import { blankLines, pngOfLines, type Raster, type ScanLines } from "./png_file.ts";
+import { svgText, usedCharacters } from "./svg.ts";
 
 /** How a picture is made into pixels. */
 export interface PngOptions {
@@ -16,18 +17,23 @@ export interface PngOptions {
   readonly metadata?: Metadata;
 }
 
-let ready: Promise<void> | undefined;
+let ready: Promise<typeof import("@resvg/resvg-wasm")> | undefined;
 
-async function renderer(svg: string, scale: number): Promise<InstanceType<typeof Resvg>> {
+async function startRenderer() {
+  const library = await import("@resvg/resvg-wasm");
+  await library.initWasm(packageFile(import.meta.resolve("@resvg/resvg-wasm/index_bg.wasm")));
+  return library;
+}
+
+async function renderer(svg: string, options: { scale: number; faces: readonly FaceName[] }) {
   // The module may be started once in a process.
-  ready ??= initWasm(packageFile(import.meta.resolve("@resvg/resvg-wasm/index_bg.wasm")));
-  await ready;
+  ready ??= startRenderer();
+  const { Resvg } = await ready;
   return new Resvg(svg, {
-    background: "#ffffff",
-    fitTo: { mode: "zoom", value: scale },
+    fitTo: { mode: "zoom", value: options.scale },
     imageRendering: 1, // cells are already at the resolution of the output
     font: {
-      fontBuffers: faceNames.map((name) => fontFace(name).bytes),
+      fontBuffers: options.faces.map((name) => fontFace(name).bytes),
       defaultFontFamily: TEXT_FAMILY,
       serifFamily: TEXT_FAMILY,
     },
@@ -54,39 +60,78 @@ async function renderer(svg: string, scale: number): Promise<InstanceType<typeof
  * ```
  */
 export async function pictureRaster(picture: Picture, options: PngOptions = {}): Promise<Raster> {
-  const { dpi = 300 } = options;
+  const { columns, rows, lines } = await drawLines(picture, options.dpi ?? 300);
+  const rgb = new Uint8Array(rows * columns * 3);
+  for (let row = 0, at = 1; row < rows; row++, at += 1 + 3 * columns) {
+    rgb.set(lines.subarray(at, at + 3 * columns), row * 3 * columns);
+  }
+  return { columns, rows, rgb };
+}
+
+async function drawLines(picture: Picture, dpi: number): Promise<ScanLines> {
   const scale = dpi / 72;
-  const svg = svgText(picture, {
+  // Pixels of large images are copied here many times faster than in the renderer.
+  const { images, rest } = lowestImages(picture);
+  const svg = svgText(rest, {
     embed_fonts: false, // the renderer has them
     rasterise(image) {
       const columns = Math.max(1, Math.round(image.width * scale));
       const rows = Math.max(1, Math.round(image.height * scale));
-      const rgb = resampleCells(image, { columns, rows });
-      return pngFile({ columns, rows, rgb }, { level: 1 });
+      return pngOfLines(resampleCells(image, { columns, rows }), { level: 1 });
     },
   });
+  // Before the renderer runs: it keeps the compiler's thread busy for a while.
+  const paper = (columns: number, rows: number): ScanLines => {
+    const canvas = blankLines({ columns, rows });
+    for (const one of images) paintImage(canvas, one, scale);
+    return canvas;
+  };
+  let canvas = paper(Math.round(picture.width * scale), Math.round(picture.height * scale));
+  const used = usedCharacters(rest.items);
+  const faces = faceNames.filter((name) => used[name] !== "");
   // The renderer takes a point in the size attributes as 96/72 pixels; state user units instead.
-  const resvg = await renderer(svg.replace(/(width|height)="([\d.]+)pt"/g, '$1="$2"'), scale);
+  const units = svg.replace(/(width|height)="([\d.]+)pt"/g, '$1="$2"');
+  const resvg = await renderer(units, { scale, faces });
   try {
-    const image = resvg.render();
-    const { width: columns, height: rows } = image;
-    const rgb = withoutAlpha(image.pixels);
-    image.free();
-    return { columns, rows, rgb };
+    const drawn = resvg.render();
+    const { width, height } = drawn;
+    if (canvas.columns !== width || canvas.rows !== height) canvas = paper(width, height);
+    layOver(canvas, drawn.pixels);
+    drawn.free();
+    return canvas;
   } finally {
     resvg.free();
   }
 }
 
-/** Red, green, blue of each pixel: the paper under the picture is opaque. */
-function withoutAlpha(rgba: Uint8Array): Uint8Array {
-  const rgb = new Uint8Array(rgba.length / 4 * 3);
-  for (let i = 0, j = 0; i < rgba.length; i += 4) {
-    rgb[j++] = rgba[i]!;
-    rgb[j++] = rgba[i + 1]!;
-    rgb[j++] = rgba[i + 2]!;
+function paintImage(canvas: ScanLines, { image, clip }: LowestImage, scale: number): void {
+  const place = {
+    x: image.x * scale,
+    y: image.y * scale,
+    width: image.width * scale,
+    height: image.height * scale,
+  };
+  if (clip === null) return paintCells(canvas, image, place);
+  const [left, top] = [Math.floor(place.x), Math.floor(place.y)];
+  const columns = Math.ceil(place.x + place.width) - left;
+  const rows = Math.ceil(place.y + place.height) - top;
+  const cover = pathCoverage(clip.d, { left, top, columns, rows, scale, shift: clip.shift });
+  paintCells(canvas, image, { ...place, cover });
+}
+
+/** Lays pixels with transparency, their colours multiplied by it, over opaque ones. */
+function layOver({ columns, rows, lines }: ScanLines, rgba: Uint8Array): void {
+  for (let row = 0, i = 0, j = 0; row < rows; row++) {
+    j++;
+    for (let column = 0; column < columns; column++, i += 4, j += 3) {
+      const alpha = rgba[i + 3]!;
+      if (alpha === 0) continue;
+      const through = (255 - alpha) / 255;
+      lines[j] = rgba[i]! + through * lines[j]! + 0.5;
+      lines[j + 1] = rgba[i + 1]! + through * lines[j + 1]! + 0.5;
+      lines[j + 2] = rgba[i + 2]! + through * lines[j + 2]! + 0.5;
+    }
   }
-  return rgb;
 }
 
 /**
@@ -108,9 +153,9 @@ function withoutAlpha(rgba: Uint8Array): Uint8Array {
  */
 export async function pngBytes(picture: Picture, options: PngOptions = {}): Promise<Uint8Array> {
   const { dpi = 300, metadata = {} } = options;
-  const raster = await pictureRaster(picture, options);
+  const raster = await drawLines(picture, dpi);
   const facts = { Title: picture.title, Description: picture.description, ...metadata };
-  return pngFile(raster, { dpi, metadata: facts });
+  return pngOfLines(raster, { dpi, metadata: facts });
 }
 
 /**
@@ -136,7 +181,7 @@ export async function outlinedSvg(
   options: { readonly metadata?: Metadata } = {},
 ): Promise<string> {
   const svg = svgText(picture, { ...options, embed_fonts: false });
-  const resvg = await renderer(svg, 1);
+  const resvg = await renderer(svg, { scale: 1, faces: faceNames });
   try {
     const kept = svg.match(/<title[\s\S]*?<\/metadata>/)?.[0] ?? "";
     return resvg.toString().replace(/(<svg[^>]*>)/, `$1\n${kept}`);

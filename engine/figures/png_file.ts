@@ -1,6 +1,6 @@
 import { crc32, deflateSync } from "node:zlib";
-import type { RasterSize } from "./cells.ts";
 import { type Metadata, SOFTWARE } from "./marks.ts";
+import type { RasterSize } from "./raster_size.ts";
 
 /** A raster of colours. */
 export interface Raster extends RasterSize {
@@ -35,6 +35,56 @@ export interface PngFileOptions {
  * ```
  */
 export function pngFile(raster: Raster, options: PngFileOptions = {}): Uint8Array {
+  return pngOfLines(scanLines(raster), options);
+}
+
+/** A raster as a PNG file has it. */
+export interface ScanLines extends RasterSize {
+  /**
+   * rows × (1 + 3 columns) bytes: each row behind a zero, which says that its bytes are as they are.
+   * Flat cells pack best so.
+   */
+  readonly lines: Uint8Array;
+}
+
+/**
+ * White paper, to be painted on.
+ *
+ * @param size Its size.
+ * @returns Its rows.
+ *
+ * @example
+ * ```ts
+ * import { blankLines } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * assertEquals([...blankLines({ columns: 1, rows: 2 }).lines], [0, 255, 255, 255, 0, 255, 255, 255]);
+ * ```
+ */
+export function blankLines({ columns, rows }: RasterSize): ScanLines {
+  const pitch = 1 + 3 * columns;
+  const lines = new Uint8Array(rows * pitch).fill(255);
+  for (let row = 0; row < rows; row++) lines[row * pitch] = 0;
+  return { columns, rows, lines };
+}
+
+/**
+ * Writes rows that are laid out already as a PNG file (RGB, 8 bits).
+ *
+ * @param raster The rows.
+ * @param options Resolution, metadata, compression.
+ * @returns The bytes of the file.
+ *
+ * @example
+ * ```ts
+ * import { blankLines, pngOfLines } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const bytes = pngOfLines(blankLines({ columns: 1, rows: 1 }));
+ * assertEquals([...bytes.subarray(1, 4)], [0x50, 0x4e, 0x47]);
+ * ```
+ */
+export function pngOfLines(raster: ScanLines, options: PngFileOptions = {}): Uint8Array {
   const { dpi, metadata = {}, level = 6 } = options;
   const facts = Object.entries({ Software: SOFTWARE, ...metadata });
   return concat([
@@ -42,13 +92,13 @@ export function pngFile(raster: Raster, options: PngFileOptions = {}): Uint8Arra
     headerChunk(raster),
     ...(dpi === undefined ? [] : [resolutionChunk(dpi)]),
     ...facts.map(([key, value]) => textChunk(key, value)),
-    chunk("IDAT", deflateSync(scanLines(raster), { level })),
+    chunk("IDAT", deflateSync(raster.lines, { level })),
     chunk("IEND", new Uint8Array(0)),
   ]);
 }
 
 /** Size, 8 bits a colour, three colours a pixel. */
-function headerChunk({ columns, rows }: Raster): Uint8Array {
+function headerChunk({ columns, rows }: RasterSize): Uint8Array {
   const data = new Uint8Array(13);
   const view = new DataView(data.buffer);
   view.setUint32(0, columns);
@@ -57,14 +107,13 @@ function headerChunk({ columns, rows }: Raster): Uint8Array {
   return chunk("IHDR", data);
 }
 
-/** Each row behind a zero, which says that its bytes are as they are: flat cells pack best so. */
-function scanLines({ columns, rows, rgb }: Raster): Uint8Array {
+function scanLines({ columns, rows, rgb }: Raster): ScanLines {
   const stride = 3 * columns;
   const lines = new Uint8Array(rows * (stride + 1));
   for (let row = 0; row < rows; row++) {
     lines.set(rgb.subarray(row * stride, (row + 1) * stride), row * (stride + 1) + 1);
   }
-  return lines;
+  return { columns, rows, lines };
 }
 
 function resolutionChunk(dpi: number): Uint8Array {

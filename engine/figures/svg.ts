@@ -5,7 +5,7 @@ import type { FaceName } from "./font_names.ts";
 import { fontRules } from "./font_rules.ts";
 import { facePieces, fontFace } from "./fonts.ts";
 import type { Metadata } from "./marks.ts";
-import { pngFile } from "./png_file.ts";
+import { pngOfLines } from "./png_file.ts";
 import { drawSvg, type SvgTools } from "./svg_draw.ts";
 
 /** How an SVG is written. */
@@ -47,8 +47,22 @@ export function svgText(picture: Picture, options: SvgOptions = {}): string {
   return drawSvg(picture, { ...fontTools, ...rest, ...style, image_url });
 }
 
-/** Characters of all text, by the face that writes them. */
-function usedCharacters(items: readonly Item[]): Record<FaceName, string> {
+/**
+ * Characters of all text, by the face that writes them.
+ *
+ * @param items The items of a picture.
+ * @returns For each face its characters, each once and in order; empty for a face that is not used.
+ *
+ * @example
+ * ```ts
+ * import { plainRuns, usedCharacters } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const text = { kind: "text", x: 0, y: 9, size_pt: 8, runs: plainRuns("abba") } as const;
+ * assertEquals(usedCharacters([text]), { regular: "ab", italic: "", fallback: "" });
+ * ```
+ */
+export function usedCharacters(items: readonly Item[]): Record<FaceName, string> {
   const used: Record<FaceName, Set<string>> = {
     regular: new Set(),
     italic: new Set(),
@@ -82,5 +96,5 @@ function url(png: Uint8Array): string {
 function repeatCells(image: ImageItem): Uint8Array {
   const times = Math.max(1, Math.min(4, Math.round(800 / Math.max(image.columns, image.rows))));
   const size = { columns: image.columns * times, rows: image.rows * times };
-  return pngFile({ ...size, rgb: resampleCells(image, size) });
+  return pngOfLines(resampleCells(image, size));
 }

@@ -42,16 +42,25 @@ export function exampleContent(options: ExampleOptions = {}): PlateContent {
   const stream = randomStream(7);
   const step = 2 * half_width_kms / (pixels - 1);
   const intensity = new Float64Array(pixels * pixels);
+  const gauss = (at: number, sigma: number) =>
+    Math.exp(-at * at / (2 * sigma ** 2)) / (Math.sqrt(2 * Math.PI) * sigma);
   for (const { vx, vy, sigma, flux } of blobs) {
-    for (let row = 0; row < pixels; row++) {
-      const dy = -half_width_kms + row * step - vy;
-      if (Math.abs(dy) > 6 * sigma) continue;
-      for (let column = 0; column < pixels; column++) {
-        const dx = -half_width_kms + column * step - vx;
-        intensity[row * pixels + column]! += flux / (2 * Math.PI * sigma ** 2) *
-          Math.exp(-(dx * dx + dy * dy) / (2 * sigma ** 2));
-      }
-    }
+    const reach = Math.ceil(6 * sigma / step);
+    const near = (v: number) => {
+      const middle = Math.round((v + half_width_kms) / step);
+      const from = Math.max(0, middle - reach);
+      const count = Math.max(0, Math.min(pixels, middle + reach + 1) - from);
+      const profile = Float64Array.from(
+        { length: count },
+        (_, i) => gauss(-half_width_kms + (from + i) * step - v, sigma),
+      );
+      return { from, profile };
+    };
+    const [x, y] = [near(vx), near(vy)];
+    y.profile.forEach((down, j) => {
+      const at = (y.from + j) * pixels + x.from;
+      x.profile.forEach((across, i) => intensity[at + i]! += flux * down * across);
+    });
   }
   const columns = 163;
   const step_kms = 30;

@@ -1,7 +1,6 @@
 import type { Box, ImageItem } from "../display_list.ts";
 import { COLOUR_COUNT, type ColourMapName, colourTable } from "./colour_map.ts";
-import type { Rgb } from "./lab.ts";
-import { stretched, type StretchOptions } from "./stretch.ts";
+import { stretchBy, type StretchOptions } from "./stretch.ts";
 
 /** How values become colours. */
 export interface ColourScale extends StretchOptions {
@@ -18,9 +17,6 @@ export interface Grid {
   /** R × C values, row-major, stride C; NaN where there is none. Row 0 is the lowest on the page. */
   readonly values: ArrayLike<number>;
 }
-
-/** Colour of a cell without a value: bare paper. */
-const BLANK: Rgb = [255, 255, 255];
 
 /**
  * Paints a grid: row 0 at the bottom, column 0 at the left, cells without a value left blank.
@@ -45,17 +41,16 @@ export function paintGrid(grid: Grid, options: PaintOptions): ImageItem {
   const { rows, columns, values } = grid;
   const { box, scale } = options;
   const table = colourTable(scale.map ?? "ink");
+  const placeOf = stretchBy(scale);
   const rgb = new Uint8Array(rows * columns * 3);
   for (let row = 0; row < rows; row++) {
     let out = (rows - 1 - row) * columns * 3;
     for (let column = 0; column < columns; column++, out += 3) {
-      const place = stretched(values[row * columns + column]!, scale);
-      if (Number.isNaN(place)) {
-        rgb.set(BLANK, out);
-        continue;
-      }
-      const i = Math.round(Math.min(1, Math.max(0, place)) * (COLOUR_COUNT - 1));
-      rgb.set(table.subarray(3 * i, 3 * i + 3), out);
+      const place = placeOf(values[row * columns + column]!);
+      // A cell without a value is bare paper.
+      const blank = Number.isNaN(place);
+      const from = blank ? 0 : 3 * Math.round(Math.min(1, Math.max(0, place)) * (COLOUR_COUNT - 1));
+      for (let k = 0; k < 3; k++) rgb[out + k] = blank ? 255 : table[from + k]!;
     }
   }
   return { kind: "image", ...box, columns, rows, rgb };

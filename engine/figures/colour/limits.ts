@@ -21,7 +21,12 @@ export function robustLimits(
   options: LimitOptions = {},
 ): [low: number, high: number] {
   const { part = 0.997, symmetric = false } = options;
-  const sorted = Float64Array.from(values).filter(Number.isFinite).sort();
+  const finite = new Float64Array(values.length);
+  let count = 0;
+  for (let i = 0; i < values.length; i++) {
+    if (Number.isFinite(values[i])) finite[count++] = values[i]!;
+  }
+  const sorted = finite.subarray(0, count).sort();
   if (sorted.length === 0) return symmetric ? [-1, 1] : [0, 1];
   const at = (p: number) => sorted[Math.round(p * (sorted.length - 1))]!;
   let low = at(1 - part);

@@ -25,11 +25,31 @@ const SOFTENING = 10;
  * ```
  */
 export function stretched(value: number, options: StretchOptions): number {
+  return stretchBy(options)(value);
+}
+
+/**
+ * {@linkcode stretched} for many values of one scale.
+ *
+ * @param options Limits and stretch.
+ * @returns The place of a value.
+ *
+ * @example
+ * ```ts
+ * import { stretchBy } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const place = stretchBy({ limits: [-1, 1] });
+ * assertEquals([-1, 0, 1].map(place), [0, 0.5, 1]);
+ * ```
+ */
+export function stretchBy(options: StretchOptions): (value: number) => number {
   const { limits: [low, high], stretch = "linear" } = options;
   const unit = Math.max(Math.abs(low), Math.abs(high)) || 1;
   const bend = bends[stretch];
   const from = bend(low / unit);
-  return (bend(value / unit) - from) / (bend(high / unit) - from);
+  const length = bend(high / unit) - from;
+  return (value) => (bend(value / unit) - from) / length;
 }
 
 /** Limits and stretch of a colour scale. */
