@@ -100,20 +100,27 @@ function depositFour<T>(
   const wa = v128.splat<T>(pa), wb = v128.splat<T>(pb);
   const wc = v128.splat<T>(pc), wd = v128.splat<T>(pd);
   const end = address<T>(sum, count);
-  b -= a;
-  c -= a;
-  d -= a;
-  part -= sum;
-  for (; sum < end; sum += 16, a += 16) {
-    const fa = v128.load(a), fb = v128.load(a + b), fc = v128.load(a + c), fd = v128.load(a + d);
+  // Two vectors a turn: what overshoots are the zeros after the lines.
+  for (; sum < end; sum += 32, part += 32, a += 32, b += 32, c += 32, d += 32) {
+    const fa = v128.load(a), fb = v128.load(b), fc = v128.load(c), fd = v128.load(d);
     let s = v128.add<T>(v128.load(sum), fa);
     s = v128.add<T>(s, fb);
     s = v128.add<T>(s, fc);
     v128.store(sum, v128.add<T>(s, fd));
-    let q = v128.add<T>(v128.load(sum + part), v128.mul<T>(wa, fa));
+    let q = v128.add<T>(v128.load(part), v128.mul<T>(wa, fa));
     q = v128.add<T>(q, v128.mul<T>(wb, fb));
     q = v128.add<T>(q, v128.mul<T>(wc, fc));
-    v128.store(sum + part, v128.add<T>(q, v128.mul<T>(wd, fd)));
+    v128.store(part, v128.add<T>(q, v128.mul<T>(wd, fd)));
+    const ga = v128.load(a, 16), gb = v128.load(b, 16);
+    const gc = v128.load(c, 16), gd = v128.load(d, 16);
+    s = v128.add<T>(v128.load(sum, 16), ga);
+    s = v128.add<T>(s, gb);
+    s = v128.add<T>(s, gc);
+    v128.store(sum, v128.add<T>(s, gd), 16);
+    q = v128.add<T>(v128.load(part, 16), v128.mul<T>(wa, ga));
+    q = v128.add<T>(q, v128.mul<T>(wb, gb));
+    q = v128.add<T>(q, v128.mul<T>(wc, gc));
+    v128.store(part, v128.add<T>(q, v128.mul<T>(wd, gd)), 16);
   }
 }
 
@@ -301,13 +308,30 @@ function gatherFour<T>(plan: Plan, lines: usize): void {
     const end = address<T>(g, n);
     let a = strandOf<T>(plan, plan.sum, 0, l), b = strandOf<T>(plan, plan.sum, 1, l);
     let c = strandOf<T>(plan, plan.sum, 2, l), d = strandOf<T>(plan, plan.sum, 3, l);
-    for (; g < end; g += 16, a += 16, b += 16, c += 16, d += 16) {
+    let qa = a + apart, qb = b + apart, qc = c + apart, qd = d + apart;
+    // Two vectors a turn: what overshoots goes to the zeros after the line, which are not read.
+    while (g < end) {
       let f = v128.load(g);
-      f = v128.add<T>(f, v128.add<T>(v128.load(a), v128.mul<T>(pa, v128.load(a + apart))));
-      f = v128.add<T>(f, v128.add<T>(v128.load(b), v128.mul<T>(pb, v128.load(b + apart))));
-      f = v128.add<T>(f, v128.add<T>(v128.load(c), v128.mul<T>(pc, v128.load(c + apart))));
-      f = v128.add<T>(f, v128.add<T>(v128.load(d), v128.mul<T>(pd, v128.load(d + apart))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(a), v128.mul<T>(pa, v128.load(qa))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(b), v128.mul<T>(pb, v128.load(qb))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(c), v128.mul<T>(pc, v128.load(qc))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(d), v128.mul<T>(pd, v128.load(qd))));
       v128.store(g, f);
+      f = v128.load(g, 16);
+      f = v128.add<T>(f, v128.add<T>(v128.load(a, 16), v128.mul<T>(pa, v128.load(qa, 16))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(b, 16), v128.mul<T>(pb, v128.load(qb, 16))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(c, 16), v128.mul<T>(pc, v128.load(qc, 16))));
+      f = v128.add<T>(f, v128.add<T>(v128.load(d, 16), v128.mul<T>(pd, v128.load(qd, 16))));
+      v128.store(g, f, 16);
+      g += 32;
+      a += 32;
+      b += 32;
+      c += 32;
+      d += 32;
+      qa += 32;
+      qb += 32;
+      qc += 32;
+      qd += 32;
     }
   }
 }
