@@ -44,6 +44,7 @@ export function mapLines(document: MapDocument): string[] {
       plainNumber(map.reduced_chi_square, 3)
     }, ` +
     `peak at (${plainNumber(map.peak.vx_kms, 0)}, ${plainNumber(map.peak.vy_kms, 0)}) km/s`,
+    ...map.blends.map(blendLine),
     `    can any map fit? ${anyMapText(map.any_map)}`,
     ...(map.features.length === 0
       ? ["    no compact excess over the axisymmetric part"]
@@ -65,4 +66,15 @@ export function mapLines(document: MapDocument): string[] {
         align: ["right", "right", "right", "right", "right", "left"],
       })),
   ]);
+}
+
+function blendLine(blend: MapDocument["maps"][number]["blends"][number]): string {
+  const { name, ratio, ratio_error, peak } = blend;
+  return peak === null
+    ? `    with ${name} on the same map, ${withError(ratio, ratio_error)} as strong${
+      ratio_error === null ? "" : " (fitted)"
+    }`
+    : `    with ${name} on a map of its own, ${plainNumber(ratio, 2)} as strong, peak at (${
+      plainNumber(peak.vx_kms, 0)
+    }, ${plainNumber(peak.vy_kms, 0)}) km/s`;
 }

@@ -1,4 +1,9 @@
-import { makeProjector, type VelocityMap } from "../tomography/mod.ts";
+import {
+  type BlendMember,
+  blendProjector,
+  makeProjector,
+  type VelocityMap,
+} from "../tomography/mod.ts";
 import type { Sampling, Trail } from "../trail/mod.ts";
 
 /**
@@ -10,20 +15,31 @@ import type { Sampling, Trail } from "../trail/mod.ts";
  * @param options.trail The trail.
  * @param options.systemic_kms Systemic velocity, km/s.
  * @param options.scale Factor on the model.
+ * @param options.blends Lines that share the map. @default none
+ * @param options.own Maps of lines that have their own, with their rest wavelength ratios. @default none
  * @returns Model and residual in standard deviations, R × C row-major as `trail.grid.flux`.
  */
 export function gridModel(
   map: VelocityMap,
-  options: { trail: Trail; systemic_kms: number; scale: number },
+  options: {
+    trail: Trail;
+    systemic_kms: number;
+    scale: number;
+    blends?: readonly BlendMember[];
+    own?: readonly { readonly map: VelocityMap; readonly rest_ratio: number }[];
+  },
 ): { model: Float64Array; residual: Float64Array } {
-  const { trail, systemic_kms, scale } = options;
+  const { trail, systemic_kms, scale, blends = [], own = [] } = options;
   const { grid } = trail;
-  const projector = makeProjector(gridSampling(trail), {
-    pixels: map.pixels,
-    half_width_kms: map.half_width_kms,
-    systemic_kms,
-  });
-  const model = projector.forward(map.intensity).map((value) => value * scale);
+  const { pixels, half_width_kms } = map;
+  const shape = { pixels, half_width_kms, systemic_kms };
+  const sampling = gridSampling(trail);
+  const model = blendProjector(sampling, { ...shape, members: blends }).forward(map.intensity)
+    .map((value) => value * scale);
+  for (const { map: other, rest_ratio } of own) {
+    makeProjector(sampling, { ...shape, rest_ratio }).forward(other.intensity)
+      .forEach((value, k) => model[k] = model[k]! + scale * value);
+  }
   const residual = model.map((value, k) =>
     Number.isFinite(grid.error[k]!) ? (grid.flux[k]! - value) / grid.error[k]! : NaN
   );

@@ -1,4 +1,4 @@
-import { type CardSpec, encodeFits, type HduSpec } from "../fits/mod.ts";
+import { type CardSpec, encodeFits, type HduSpec, type ImageSpec } from "../fits/mod.ts";
 import type { VelocityMap } from "../tomography/mod.ts";
 import { fitsHead, hduName } from "./fits_head.ts";
 import type { MappedLine } from "./map_line.ts";
@@ -53,17 +53,14 @@ function goalCards({ goal, multiplier, method }: MappedLine): CardSpec[] {
 }
 
 function mapHdus(mapped: MappedLine): HduSpec[] {
-  const { map, trail } = mapped;
+  const { map, trail, own_maps, baselines } = mapped;
+  const line = trail.line.name;
   return [
     {
-      kind: "image",
-      name: hduName(trail.line.name),
-      shape: [map.pixels, map.pixels],
-      data: map.intensity,
-      unit: "s/km",
+      ...mapImage(map, hduName(line)),
       cards: [
         ...mapAxisCards(map),
-        { keyword: "LINENAME", value: trail.line.name },
+        { keyword: "LINENAME", value: line },
         { keyword: "METHOD", value: mapped.method },
         { keyword: "SYSTEMIC", value: mapped.systemic_kms, comment: "[km/s] systemic velocity" },
         { keyword: "REDCHISQ", value: mapped.reduced_chi_square, comment: "chi-square / samples" },
@@ -74,10 +71,38 @@ function mapHdus(mapped: MappedLine): HduSpec[] {
     },
     {
       kind: "image",
-      name: hduName(trail.line.name, "predicted"),
+      name: hduName(line, "predicted"),
       shape: [trail.grid.columns, trail.grid.rows],
       data: mapped.model,
       cards: velocityAxisCards(trail),
     },
+    ...own_maps.map(({ blend: { name, rest_air_angstrom }, map: own }) => ({
+      ...mapImage(own, hduName(line, `with ${name}`)),
+      cards: [
+        ...mapAxisCards(own),
+        { keyword: "LINENAME", value: name, comment: "the map of this blend" },
+        { keyword: "RESTAIR", value: rest_air_angstrom * 1e-10, comment: "[m] rest, air" },
+      ],
+    })),
+    ...(baselines === null ? [] : [{
+      kind: "table" as const,
+      name: hduName(line, "baselines"),
+      columns: [
+        { name: "PHASE", data: trail.sampling.phase, description: "phase at mid-exposure, cycles" },
+        { name: "LEVEL", data: baselines.level, description: "at zero velocity" },
+        { name: "SLOPE", data: baselines.slope, description: "per 1000 km/s" },
+      ],
+    }]),
   ];
+}
+
+/** A map as an image HDU, its axes to be added. */
+export function mapImage(map: VelocityMap, name: string): ImageSpec {
+  return {
+    kind: "image",
+    name,
+    shape: [map.pixels, map.pixels],
+    data: map.intensity,
+    unit: "s/km",
+  };
 }

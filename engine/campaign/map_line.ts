@@ -2,8 +2,8 @@ import { type Binary, type Ephemeris, keplerianSpeed, phaseError } from "../bina
 import type { Warning } from "../errors.ts";
 import { median } from "../numerics/mod.ts";
 import {
+  type BlendMember,
   featurePeaks,
-  type InversionRecipe,
   type MapFeature,
   mapFeatures,
   type MapPeak,
@@ -17,11 +17,8 @@ import type { SplitDate } from "../sky/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { gridModel } from "./grid_model.ts";
-import { blendsOf } from "./blends_of.ts";
-import { invertTrail } from "./invert.ts";
-import type { LineSign } from "./inversion/inverted.ts";
+import { type InvertedLine, invertLine } from "./inversion/invert_line.ts";
 import { priorOf } from "./prior_of.ts";
-import { signOf, turned } from "./sign_of.ts";
 import type { SystemicVelocity } from "./systemic_of.ts";
 import type { Target } from "./target.ts";
 import type { MapSettings } from "./schema/map_section.ts";
@@ -29,33 +26,31 @@ import type { MapSettings } from "./schema/map_section.ts";
 const FWHM_PER_SIGMA = Math.sqrt(8 * Math.LN2);
 
 /** The map of one line and how well it meets the trail. */
-export interface MappedLine {
+export interface MappedLine extends
+  Pick<
+    InvertedLine,
+    | "map"
+    | "scale"
+    | "reduced_chi_square"
+    | "sample_count"
+    | "goal"
+    | "multiplier"
+    | "iterations"
+    | "converged"
+    | "misalignment"
+    | "sign"
+    | "data"
+    | "recipe"
+    | "blends"
+    | "own_maps"
+    | "baselines"
+  > {
   /** The trail it was made from. */
   readonly trail: Trail;
-  /** The map. */
-  readonly map: VelocityMap;
   /** Inversion. */
   readonly method: MapSettings["method"];
   /** Systemic velocity taken out, km/s. */
   readonly systemic_kms: number;
-  /** Whether the line was inverted as it is, with its sign turned, or with either sign allowed. */
-  readonly sign: LineSign;
-  /** Factor on the map's projection that fits the data best: ±1 where the inversion fits them itself. */
-  readonly scale: number;
-  /** χ² over the number of samples. */
-  readonly reduced_chi_square: number;
-  /** Number of unmasked samples. */
-  readonly sample_count: number;
-  /** χ² per sample that was aimed for in the end; null where there was no such goal. */
-  readonly goal: number | null;
-  /** Multiplier of the entropy or weight of the variation; null for back-projection. */
-  readonly multiplier: number | null;
-  /** Iterations; 1 for a direct inversion. */
-  readonly iterations: number;
-  /** Whether the iteration met its goal. */
-  readonly converged: boolean;
-  /** How far the gradients of entropy and misfit are from parallel; null for other inversions. */
-  readonly misalignment: number | null;
   /** Brightest place. */
   readonly peak: MapPeak;
   /** Compact excesses over the axisymmetric part. */
@@ -66,8 +61,6 @@ export interface MappedLine {
   readonly model: Float64Array;
   /** Data less model on the display grid, standard deviations. */
   readonly residual: Float64Array;
-  /** How it is made again from other data, with the multiplier held. */
-  readonly recipe: InversionRecipe;
   /** The map's data on native pixels, sign as in the trail, scaled to fit. */
   readonly samples: Float64Array;
   /** Resolution (FWHM) that features are measured at, km/s. */
@@ -119,23 +112,17 @@ export async function mapLine(
   // On a map that is rotated by an unknown angle only the centre of mass is known to be where it is.
   const placed = binary !== null && ephemeris.zero_marks !== "emission-crossing";
   const centre = { vx_kms: 0, vy_kms: placed ? -binary.k_accretor_kms : 0 };
-  const sign = signOf(trail, { target });
-  // The linear inversion takes the data as they come: those of absorption with their sign turned.
-  const data = settings.method === "back-projection" && sign === "absorption"
-    ? turned(trail)
-    : trail;
-  const inverted = await invertTrail(data, {
+  const inverted = await invertLine(trail, {
+    target,
     settings,
     pixels,
     systemic_kms,
     prior: await priorOf(target, { line, resolution_kms, centre_kms: centre.vy_kms, pixels }),
-    blends: blendsOf(trail.line, { target }),
-    sign,
     force: options.force ?? false,
     progress,
     signal,
   });
-  const { map } = inverted;
+  const { map, data, sign } = inverted;
   const spread = settings.resamples < 2 ? null : await resampleMaps(data, {
     recipe: inverted.recipe,
     count: settings.resamples,
@@ -161,26 +148,23 @@ export async function mapLine(
       ? null
       : keplerianSpeed(disc.outer_radius_over_a, binary),
   });
+  const { alternatives: _others, model: samples, straight, ...rest } = inverted;
   return {
+    ...rest,
     trail,
-    map,
     method: settings.method,
     systemic_kms,
-    sign,
-    scale: inverted.scale,
-    reduced_chi_square: inverted.reduced_chi_square,
-    sample_count: inverted.sample_count,
-    goal: inverted.goal,
-    multiplier: inverted.multiplier,
-    iterations: inverted.iterations,
-    converged: inverted.converged,
-    misalignment: inverted.misalignment,
     peak: mapPeak(map),
     features,
     spread: spread?.deviation ?? null,
-    ...gridModel(map, { trail, systemic_kms, scale: inverted.scale }),
-    recipe: inverted.recipe,
-    samples: inverted.model,
+    ...gridModel(map, {
+      trail: straight,
+      systemic_kms,
+      scale: inverted.scale,
+      blends: membersOf(inverted),
+      own: inverted.own_maps.map(({ map, blend: { rest_ratio } }) => ({ map, rest_ratio })),
+    }),
+    samples,
     resolution_kms,
     centre,
     warnings: [
@@ -203,6 +187,11 @@ export async function mapLine(
       }]),
     ],
   };
+}
+
+/** The blends that share the map. */
+export function membersOf({ recipe }: Pick<MappedLine, "recipe">): readonly BlendMember[] {
+  return "blends" in recipe ? recipe.blends ?? [] : [];
 }
 
 /** Pixels that sample the sharpest profile of the trail twice per full width at half maximum. */

@@ -124,6 +124,7 @@ export function openSession(
     await pause(signal);
     return testLine(made, {
       sign: signOf(made, { target }),
+      blended: line.blends.length > 0,
       systemic_kms: kms,
       half_width_kms: target.settings.map.half_width_kms,
       seed: target.settings.seed,

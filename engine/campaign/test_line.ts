@@ -17,11 +17,12 @@ export type LineTests =
 
 /**
  * Asks whether any map can have made a line's trail. A line of either sign has no positive map to be
- * compared with: only the moments of its profiles are tested.
+ * compared with: only the moments of its profiles are tested. One with blends is not tested.
  *
  * @param trail The trail.
  * @param options How it will be mapped.
  * @param options.sign Sign of the line.
+ * @param options.blended Whether other lines are mapped with it.
  * @param options.systemic_kms Systemic velocity, km/s.
  * @param options.half_width_kms Half-width of the map, km/s.
  * @param options.seed Seed of the simulations.
@@ -33,6 +34,7 @@ export function testLine(
   trail: Trail,
   options: {
     sign: LineSign;
+    blended: boolean;
     systemic_kms: number;
     half_width_kms: number;
     seed: number;
@@ -41,14 +43,18 @@ export function testLine(
 ): LineTests {
   const { sign, systemic_kms, half_width_kms, seed, force } = options;
   const { continuum_error } = trail;
+  const none = { mirror: null, core: null, best_reduced_chi_square: null };
+  if (options.blended) {
+    const text = "whether any map can fit was not tested, as the tests know of one line alone";
+    const warnings = [{ code: "blends-not-tested", line: trail.line.name, text }];
+    return { ...none, moments: null, systemic: null, warnings };
+  }
   if (sign === "mixed") {
     const range = { systemic_kms, half_range_kms: half_width_kms, continuum_error };
     return {
+      ...none,
       moments: orNull(() => momentTest(trail, range)),
       systemic: orNull(() => systemicByParity(trail, range)),
-      mirror: null,
-      core: null,
-      best_reduced_chi_square: null,
       warnings: [],
     };
   }

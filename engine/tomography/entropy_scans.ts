@@ -150,7 +150,8 @@ export function scanPeriod(
  * does the systemic velocity.
  *
  * @param trail Exposures, data, errors.
- * @param options Options of the map, the member's rest wavelength ratio, and the flux ratios to try.
+ * @param options Options of the map, the member's rest wavelength ratio, and the flux ratios to try;
+ * `blends` are other members, held.
  * @returns The curve and its minimum.
  * @throws {InputError} When the data cannot be mapped, or the default image follows the map.
  *
@@ -184,13 +185,13 @@ export function scanPeriod(
  */
 export function scanBlendRatio(
   trail: TrailSamples,
-  options: Omit<MaximumEntropyOptions, "projector" | "blends"> & {
+  options: Omit<MaximumEntropyOptions, "projector"> & {
     readonly member_rest_ratio: number;
     readonly flux_ratios: readonly number[];
   },
 ): ParameterScan {
-  const { member_rest_ratio: rest_ratio, flux_ratios } = options;
-  const blend = (flux_ratio: number) => ({ blends: [{ rest_ratio, flux_ratio }] });
+  const { member_rest_ratio: rest_ratio, flux_ratios, blends = [] } = options;
+  const blend = (flux_ratio: number) => ({ blends: [...blends, { rest_ratio, flux_ratio }] });
   const middle = flux_ratios[Math.floor(flux_ratios.length / 2)] ?? 1;
   const fixed = held(trail, { ...options, ...blend(middle) });
   return scanParameter((ratio) => objectiveOf(trail, { ...fixed, ...blend(ratio) }), flux_ratios);

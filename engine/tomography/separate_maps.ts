@@ -88,6 +88,8 @@ export interface SeparateMaps {
   readonly model: Float64Array;
   /** Chi-square over the number of unmasked samples. */
   readonly reduced_chi_square: number;
+  /** Chi-square per sample aimed for: higher than asked for when it was raised; null with a fixed multiplier. */
+  readonly goal: number | null;
   /** Half the squared difference of the unit gradients of entropy and chi-square. */
   readonly misalignment: number;
   /** Multiplier α of the objective χ² − α S. */
@@ -177,6 +179,7 @@ export function separateMaps(trail: TrailSamples, options: SeparateMapsOptions):
     })),
     model: state.model,
     reduced_chi_square: state.reduced_chi_square,
+    goal: state.goal,
     misalignment: state.misalignment,
     multiplier: state.multiplier,
     iterations: state.iterations,

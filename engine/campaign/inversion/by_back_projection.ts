@@ -1,4 +1,3 @@
-import { InputError } from "../../errors.ts";
 import { type InversionRecipe, makeInverter } from "../../tomography/mod.ts";
 import type { Trail } from "../../trail/mod.ts";
 import { pause } from "../pause.ts";
@@ -10,19 +9,9 @@ import type { Inverted, InvertOptions } from "./inverted.ts";
  * @param trail The trail.
  * @param options How.
  * @returns The map and its fit.
- * @throws {InputError} When the line has blends, which only a fit can tell apart.
  */
 export async function byBackProjection(trail: Trail, options: InvertOptions): Promise<Inverted> {
-  const { settings, pixels, systemic_kms, blends, sign, force, signal } = options;
-  if (blends.length > 0) {
-    throw new InputError({
-      action: `map ${trail.line.name} with its blends`,
-      rule: "blends can be told apart by a fit alone",
-      value: settings.method,
-      key: "map.method",
-      remedy: 'use map.method = "entropy"',
-    });
-  }
+  const { settings, pixels, systemic_kms, sign, force, signal } = options;
   const recipe: InversionRecipe = {
     inversion: "back-projection",
     pixels,

@@ -9,6 +9,15 @@ const blend = z.strictObject({
   vacuum_angstrom: positive.optional(),
   ratio: z.union([positive, z.literal("free")], { error: 'must be a positive number or "free"' })
     .default(1),
+  map: z.enum(["shared", "own"]).default("shared"),
+}).superRefine((one, context) => {
+  if (one.map === "own" && one.ratio !== 1) {
+    context.addIssue({
+      code: "custom",
+      path: ["ratio"],
+      message: 'must not stand beside map = "own": the two maps say how strong each line is',
+    });
+  }
 });
 
 /** A line blended with the mapped one. */
@@ -21,6 +30,8 @@ export interface BlendSettings {
   readonly vacuum_angstrom?: number;
   /** Strength relative to the mapped line, or "free". */
   readonly ratio: number | "free";
+  /** Whether it shares the line's map, or has its own. */
+  readonly map: "shared" | "own";
 }
 
 /** One `[[lines]]` table. */

@@ -1,8 +1,9 @@
 import { uniqueWarnings } from "../output_head.ts";
-import type { MapFeature, MapPeak } from "../../tomography/mod.ts";
+import { type MapFeature, type MapPeak, mapPeak } from "../../tomography/mod.ts";
 import { jsonText, type OutputHead, outputHead } from "../output_head.ts";
 import { mappedLines } from "../line_of.ts";
 import { mapFits } from "../map_fits.ts";
+import type { MappedBlend } from "../inversion/fit_ratios.ts";
 import type { LineSign } from "../inversion/inverted.ts";
 import type { MappedLine } from "../map_line.ts";
 import type { Session } from "../session.ts";
@@ -42,6 +43,15 @@ export interface MapSummary {
   readonly multiplier: number | null;
   /** Whether the line was inverted as it is, with its sign turned, or with either sign allowed. */
   readonly sign: LineSign;
+  /** The lines mapped with it. */
+  readonly blends: readonly BlendSummary[];
+  /** The straight baselines fitted with the map; null when they were held at zero. */
+  readonly baseline: {
+    /** Root mean square of their levels, parts of the continuum. */
+    readonly level_rms: number;
+    /** Root mean square of their slopes, parts of the continuum per 1000 km/s. */
+    readonly slope_rms: number;
+  } | null;
   /** Factor on the predicted trail that fits the data best. */
   readonly scale: number;
   /** Iterations. */
@@ -58,6 +68,22 @@ export interface MapSummary {
   readonly features: readonly MapFeature[];
   /** Whether any map can fit: probabilities of the tests, null where the data do not allow one. */
   readonly any_map: LineTestsSummary;
+}
+
+/** A line mapped together with another, in numbers. */
+export interface BlendSummary {
+  /** Its name, or its wavelength where it has none. */
+  readonly name: string;
+  /** Rest wavelength in air, Å. */
+  readonly rest_air_angstrom: number;
+  /** Whether it shares the line's map, or has its own. */
+  readonly map: "shared" | "own";
+  /** Flux over that of the line: given, fitted, or that of the two maps. */
+  readonly ratio: number;
+  /** One standard deviation of a fitted ratio; null for another. */
+  readonly ratio_error: number | null;
+  /** Brightest place of its own map; null where it shares the line's. */
+  readonly peak: MapPeak | null;
 }
 
 /**
@@ -113,6 +139,11 @@ function summary(
     goal_used: mapped.goal,
     multiplier: mapped.multiplier,
     sign: mapped.sign,
+    blends: mapped.blends.map((blend) => blendSummary(mapped, blend)),
+    baseline: mapped.baselines === null ? null : {
+      level_rms: rootMeanSquare(mapped.baselines.level),
+      slope_rms: rootMeanSquare(mapped.baselines.slope),
+    },
     scale: mapped.scale,
     iterations: mapped.iterations,
     converged: mapped.converged,
@@ -122,4 +153,21 @@ function summary(
     features: mapped.features,
     any_map: testsSummary(any),
   };
+}
+
+function blendSummary(mapped: MappedLine, blend: MappedBlend): BlendSummary {
+  const { name, rest_air_angstrom, map, ratio, ratio_error } = blend;
+  const own = mapped.own_maps.find(({ blend: { rest_ratio } }) => rest_ratio === blend.rest_ratio);
+  return {
+    name,
+    rest_air_angstrom,
+    map,
+    ratio: own?.flux_ratio ?? ratio ?? NaN,
+    ratio_error,
+    peak: own === undefined ? null : mapPeak(own.map),
+  };
+}
+
+function rootMeanSquare(values: Float64Array): number {
+  return Math.sqrt(values.reduce((sum, value) => sum + value * value, 0) / values.length);
 }
