@@ -3,6 +3,7 @@ import { randomStream, studentTail } from "../numerics/mod.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { type BestPositiveMap, bestPositiveMap } from "./best_positive_map.ts";
 import { coreMiss } from "./core_miss.ts";
+import type { LinearOperator } from "./linear_operator.ts";
 import { type MapShape, mapStep } from "./map_shape.ts";
 import type { MaximumEntropyOptions } from "./maximum_entropy.ts";
 import { noiseReplica } from "./noise_replica.ts";
@@ -115,6 +116,54 @@ const FAILS_BELOW = 1e-3;
  * ```
  */
 export function canAnyMapFit(trail: TrailSamples, options: AnyMapOptions): AnyMap {
+  const steps = anyMapSteps(trail, options);
+  for (;;) {
+    const step = steps.next();
+    if (step.done === true) return step.value;
+  }
+}
+
+/**
+ * The tests of {@linkcode canAnyMapFit} as a generator that yields the number of simulations done after
+ * each of them and returns the results, so that a caller may listen for an interrupt in between.
+ *
+ * @param trail Exposures, data, errors.
+ * @param options As for `canAnyMapFit`.
+ * @returns A generator that returns the tests.
+ * @throws {InputError} When the data cannot be mapped (see {@linkcode checkTrail}).
+ *
+ * @example
+ * ```ts
+ * import { anyMapSteps } from "@millrace/millrace/tomography";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const count = 16, bins = 61;
+ * const sampling = {
+ *   count,
+ *   phase: Float64Array.from({ length: count }, (_, i) => i / count),
+ *   cycle: new Float64Array(count),
+ *   phase_width: new Float64Array(count),
+ *   start: Uint32Array.from({ length: count + 1 }, (_, i) => i * bins),
+ *   velocity_kms: Float64Array.from({ length: count * bins }, (_, k) => 20 * (k % bins - 30)),
+ *   pixel_kms: new Float64Array(count * bins).fill(20),
+ *   profile_sigma_kms: new Float64Array(count).fill(40),
+ * };
+ * const flux = sampling.velocity_kms.map((v) => Math.exp(-0.5 * (v / 100) ** 2));
+ * const trail = { sampling, flux, error: flux.map(() => 0.01) };
+ * const steps = anyMapSteps(trail, {
+ *   pixels: 21,
+ *   half_width_kms: 400,
+ *   systemic_kms: 0,
+ *   seed: 1,
+ *   simulations: 3,
+ * });
+ * assertEquals([...steps], [1, 2, 3]);
+ * ```
+ */
+export function* anyMapSteps(
+  trail: TrailSamples,
+  options: AnyMapOptions,
+): Generator<number, AnyMap, void> {
   const { half_width_kms, systemic_kms, continuum_error = null } = options;
   const widest = trail.sampling.profile_sigma_kms.reduce((a, b) => Math.max(a, b), 0);
   const sharpest = trail.sampling.profile_sigma_kms.reduce((a, b) => Math.min(a, b), Infinity);
@@ -123,13 +172,20 @@ export function canAnyMapFit(trail: TrailSamples, options: AnyMapOptions): AnyMa
     commonReach(trail, systemic_kms),
   );
   const pixels = 2 * Math.ceil(half_width_kms / (Math.sqrt(2 * Math.LN2) * sharpest)) + 1;
-  const mapped = { ...options, pixels, prior: { kind: "uniform" }, max_iterations: 60 } as const;
+  const mapped = {
+    ...options,
+    pixels,
+    prior: { kind: "uniform" },
+    max_iterations: 60,
+    // All maps of the tests share their sampling.
+    projector: makeProjector(trail.sampling, { ...options, pixels }),
+  } as const;
   const best = bestPositiveMap(trail, mapped);
 
   const range = { systemic_kms, half_range_kms, continuum_error };
   const moments = orNull(() => momentTest(trail, range));
   const systemic = orNull(() => systemicByParity(trail, range));
-  const { mirror, core } = simulatedTests(trail, { ...mapped, ...range, best });
+  const { mirror, core } = yield* simulatedTests(trail, { ...mapped, ...range, best });
 
   const warnings: Warning[] = [];
   const say = (code: string, p: number | undefined, text: string) => {
@@ -185,16 +241,17 @@ export function canAnyMapFit(trail: TrailSamples, options: AnyMapOptions): AnyMa
  * positive map nearest to failing. Mapping takes up a little of what is antisymmetric where phases do
  * not match; how much is measured against the same data's residuals from the map that made them.
  */
-function simulatedTests(
+function* simulatedTests(
   trail: TrailSamples,
   options: MaximumEntropyOptions & {
+    readonly projector: LinearOperator;
     readonly half_range_kms: number;
     readonly best: BestPositiveMap;
     readonly seed: number;
     readonly simulations?: number;
   },
-): { mirror: MirrorTest | null; core: CoreTest } {
-  const { best: { found }, seed, simulations = 20 } = options;
+): Generator<number, { mirror: MirrorTest | null; core: CoreTest }, void> {
+  const { best: { found }, seed, simulations = 20, projector } = options;
   const { miss, core_kms, peak } = coreMiss(trail, { ...options, map: found.map });
   const { pixels, half_width_kms } = options;
   const step = mapStep(options);
@@ -203,7 +260,7 @@ function simulatedTests(
     const vy = Math.floor(k / pixels) * step - half_width_kms;
     return Math.hypot(vx, vy) < core_kms ? 0 : f;
   });
-  const truth = makeProjector(trail.sampling, options).forward(intensity);
+  const truth = projector.forward(intensity);
   const misses: number[] = [];
   let left = 0, made = 0;
   for (let s = 0; s < simulations; s++) {
@@ -215,6 +272,7 @@ function simulatedTests(
     misses.push(coreMiss(simulated, { ...options, map: again.map, core_kms }).miss);
     left += mirrorTest(simulated, { ...options, model: again.model })?.chi_square ?? 0;
     made += mirrorTest(simulated, { ...options, model: truth })?.chi_square ?? 0;
+    yield s + 1;
   }
   const mean = misses.reduce((a, b) => a + b, 0) / simulations;
   const square = misses.reduce((sum, m) => sum + (m - mean) ** 2, 0);

@@ -3,6 +3,7 @@ import { nonNegativeLeastSquares } from "../numerics/mod.ts";
 import { axisymmetricPart } from "./axisymmetric_part.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { halfOrbitIntervals } from "./half_orbit.ts";
+import type { LinearOperator } from "./linear_operator.ts";
 import { makeProjector } from "./projector.ts";
 import { ringKernels } from "./ring_profile.ts";
 import { shiftVelocities, systemFrame } from "./system_frame.ts";
@@ -32,6 +33,12 @@ export interface CoreMissOptions {
    * @default {half the speed of the mean profile's peak}
    */
   readonly core_kms?: number;
+  /**
+   * Projector of the trail's sampling from maps of this shape, where there is one already.
+   *
+   * @default {one is made}
+   */
+  readonly projector?: LinearOperator;
 }
 
 /**
@@ -105,7 +112,8 @@ function meanProfile(trail: TrailSamples, options: CoreMissOptions): MeanProfile
     centre: { vx_kms: 0, vy_kms: 0 },
     statistic: "mean",
   });
-  const uneven = makeProjector(sampling, { ...map, systemic_kms })
+  const { projector = makeProjector(sampling, { ...map, systemic_kms }) } = options;
+  const uneven = projector
     .forward(map.intensity.map((f, k) => f - round.intensity[k]!));
   const narrowest = sampling.profile_sigma_kms.reduce((a, b) => Math.min(a, b), Infinity);
   const bins = Math.max(8, Math.min(MOST_BINS, Math.floor(half_range_kms / narrowest)));
