@@ -114,8 +114,10 @@ const HOPELESS_LOOKS = 3;
  * The positive image of least total variation for its chi-square, step by step: a primal-dual splitting
  * (Condat 2013, J. Optim. Theory Appl. 158, 460; Vũ 2013; after Chambolle & Pock 2011, J. Math.
  * Imaging Vis. 40, 120) whose primal steps are taken in a metric that is diagonal in frequency: the
- * operator's own response, exp(−(2πkσ)²)/k, plus the Laplacian. Isotropic variation by forward
- * differences; positivity is dual, too. Two calls of the operator a step.
+ * operator's own response, exp(−(2πkσ)²)/k, plus the Laplacian. The variation is the root of half the
+ * sum of squares of the four differences around each corner of four pixels, which is the same in a mirror and
+ * after a quarter turn: forward differences alone would move features along the diagonal. Positivity is
+ * dual, too. Two calls of the operator a step.
  *
  * @param problem Operator, data, start.
  * @param options Goal or weight, tolerances.
@@ -204,8 +206,8 @@ export function* variationSteps(
 
   let g = problem.start.map((f) => f / level);
   const model = forward(g, new Float64Array(count)).slice();
-  const across = new Float64Array(size), down = new Float64Array(size);
-  const below = new Float64Array(size), ahead = new Float64Array(size);
+  const around = new Float64Array(EDGES * size), below = new Float64Array(size);
+  const ahead = new Float64Array(size);
   const symbol = new Float64Array(seen.length);
   let held = 0;
   let stride = FIRST_DUAL, kept = g, misses: number[] = [];
@@ -219,7 +221,7 @@ export function* variationSteps(
       bound *= 2;
       g = kept.slice();
       forward(g, model);
-      for (const variable of [across, down, below]) variable.fill(0);
+      for (const variable of [around, below]) variable.fill(0);
       chi_square = pull(model);
     }
     least = Math.min(least, chi_square);
@@ -260,14 +262,14 @@ export function* variationSteps(
     for (let i = 0; i < symbol.length; i++) {
       symbol[i] = 0.5 * bound * seen[i]! + dual * (bend[i]! + POSITIVITY);
     }
-    addDivergence(slope, { across, down, below, pixels });
+    addDivergence(slope, { around, below, pixels });
     const step = metric.solve(slope, symbol);
     const next = new Float64Array(size);
     for (let i = 0; i < size; i++) {
       next[i] = g[i]! - step[i]!;
       ahead[i] = next[i]! - step[i]!;
     }
-    climbDual(ahead, { across, down, below, pixels, beta, dual });
+    climbDual(ahead, { around, below, pixels, beta, dual });
     g = next;
     forward(g, model);
   }
@@ -317,26 +319,12 @@ function largestRatio(
   return ROOM * ratio;
 }
 
-/** slope += the transpose of (forward differences, identity) on the dual variables. */
-function addDivergence(
-  slope: Float64Array,
-  { across, down, below, pixels }: Omit<Dual, "beta" | "dual">,
-): void {
-  for (let r = 0, k = 0; r < pixels; r++) {
-    for (let c = 0; c < pixels; c++, k++) {
-      let sum = below[k]! - across[k]! - down[k]!;
-      if (c > 0) sum += across[k - 1]!;
-      if (r > 0) sum += down[k - pixels]!;
-      slope[k] = slope[k]! + sum;
-    }
-  }
-}
+/** Differences around a corner: along its two rows, then along its two columns. */
+const EDGES = 4;
 
 interface Dual {
-  /** Dual of the difference to the next column; zero in the last. */
-  readonly across: Float64Array;
-  /** Dual of the difference to the next row; zero in the last. */
-  readonly down: Float64Array;
+  /** Duals of the four differences around the corner after each pixel, over √2; zero in the last row and column. */
+  readonly around: Float64Array;
   /** Dual of positivity, not positive. */
   readonly below: Float64Array;
   readonly pixels: number;
@@ -344,27 +332,56 @@ interface Dual {
   readonly dual: number;
 }
 
-function climbDual(ahead: Float64Array, { across, down, below, pixels, beta, dual }: Dual): void {
-  for (let r = 0, k = 0; r < pixels; r++) {
-    for (let c = 0; c < pixels; c++, k++) {
-      const a = c + 1 < pixels ? across[k]! + dual * (ahead[k + 1]! - ahead[k]!) : 0;
-      const d = r + 1 < pixels ? down[k]! + dual * (ahead[k + pixels]! - ahead[k]!) : 0;
-      const length = Math.sqrt(a * a + d * d);
+/** slope += the transpose of (differences around corners, identity) on the dual variables. */
+function addDivergence(
+  slope: Float64Array,
+  { around, below, pixels }: Omit<Dual, "beta" | "dual">,
+): void {
+  for (let k = 0; k < slope.length; k++) slope[k] = slope[k]! + below[k]!;
+  for (let r = 0; r + 1 < pixels; r++) {
+    for (let c = 0; c + 1 < pixels; c++) {
+      const k = r * pixels + c, e = EDGES * k;
+      const upper = Math.SQRT1_2 * around[e]!, lower = Math.SQRT1_2 * around[e + 1]!;
+      const left = Math.SQRT1_2 * around[e + 2]!, right = Math.SQRT1_2 * around[e + 3]!;
+      slope[k] = slope[k]! - upper - left;
+      slope[k + 1] = slope[k + 1]! + upper - right;
+      slope[k + pixels] = slope[k + pixels]! + left - lower;
+      slope[k + pixels + 1] = slope[k + pixels + 1]! + lower + right;
+    }
+  }
+}
+
+function climbDual(ahead: Float64Array, { around, below, pixels, beta, dual }: Dual): void {
+  const factor = Math.SQRT1_2 * dual;
+  for (let k = 0; k < ahead.length; k++) {
+    below[k] = Math.min(0, below[k]! + POSITIVITY * dual * ahead[k]!);
+  }
+  for (let r = 0; r + 1 < pixels; r++) {
+    for (let c = 0; c + 1 < pixels; c++) {
+      const k = r * pixels + c, e = EDGES * k;
+      const f = ahead[k]!, fx = ahead[k + 1]!, fy = ahead[k + pixels]!;
+      const fxy = ahead[k + pixels + 1]!;
+      const upper = around[e]! + factor * (fx - f), lower = around[e + 1]! + factor * (fxy - fy);
+      const left = around[e + 2]! + factor * (fy - f), right = around[e + 3]! + factor * (fxy - fx);
+      const length = Math.sqrt(upper * upper + lower * lower + left * left + right * right);
       const shrink = length > beta ? beta / length : 1;
-      across[k] = a * shrink;
-      down[k] = d * shrink;
-      below[k] = Math.min(0, below[k]! + POSITIVITY * dual * ahead[k]!);
+      around[e] = upper * shrink;
+      around[e + 1] = lower * shrink;
+      around[e + 2] = left * shrink;
+      around[e + 3] = right * shrink;
     }
   }
 }
 
 function variationOf(g: Float64Array, pixels: number): number {
   let sum = 0;
-  for (let r = 0, k = 0; r < pixels; r++) {
-    for (let c = 0; c < pixels; c++, k++) {
-      const a = c + 1 < pixels ? g[k + 1]! - g[k]! : 0;
-      const d = r + 1 < pixels ? g[k + pixels]! - g[k]! : 0;
-      sum += Math.sqrt(a * a + d * d);
+  for (let r = 0; r + 1 < pixels; r++) {
+    for (let c = 0; c + 1 < pixels; c++) {
+      const k = r * pixels + c;
+      const f = g[k]!, fx = g[k + 1]!, fy = g[k + pixels]!, fxy = g[k + pixels + 1]!;
+      sum += Math.sqrt(
+        0.5 * ((fx - f) ** 2 + (fxy - fy) ** 2 + (fy - f) ** 2 + (fxy - fx) ** 2),
+      );
     }
   }
   return sum;

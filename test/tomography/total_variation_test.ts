@@ -15,6 +15,7 @@ import {
   totalVariation,
   totalVariationSteps,
   type VariationMap,
+  variationSteps,
 } from "@millrace/millrace/tomography";
 import { benchProblem } from "./bench_problem.ts";
 import { gaussianTrail, plainSampling } from "./samplings.ts";
@@ -108,6 +109,44 @@ Deno.test("totalVariation() is at most 0.6 times as far from the truth as entrop
   const smooth = maximumEntropy(trail, { ...shape, prior: { kind: "uniform" } });
   assert(flat.converged);
   assertLess(mapError(flat.map.intensity, truth), 0.6 * mapError(smooth.map.intensity, truth));
+});
+
+Deno.test("variationSteps() treats all corners alike: the image of a mirrored or turned one is that image mirrored or turned", () => {
+  const pixels = 9, random = randomStream(4);
+  const flux = Float64Array.from({ length: 81 }, () => 1 + random.uniform());
+  const moved = (f: Float64Array, where: (x: number, y: number) => [number, number]) =>
+    f.map((_, k) => {
+      const [x, y] = where(k % pixels, Math.floor(k / pixels));
+      return f[y * pixels + x]!;
+    });
+  const identity = (x: Float64Array, into: Float64Array = new Float64Array(81)) => {
+    into.set(x);
+    return into;
+  };
+  const smooth = (f: Float64Array) => {
+    let last;
+    for (
+      last of variationSteps({
+        operator: { image_size: 81, sample_count: 81, forward: identity, adjoint: identity },
+        samples: { flux: f, error: f.map(() => 0.3) },
+        ...{ pixels, level: 1, profile_pixels: 0.5, start: f },
+      }, { weight: 1, settled: 1e-6, max_iterations: 4000 })
+    );
+    return last!.image;
+  };
+  const straight = smooth(flux);
+  for (
+    const where of [
+      (x: number, y: number) => [8 - x, y],
+      (x: number, y: number) => [x, 8 - y],
+      (x: number, y: number) => [y, x],
+      (x: number, y: number) => [8 - y, x],
+    ] as ((x: number, y: number) => [number, number])[]
+  ) {
+    const expected = moved(straight, where);
+    // The steps stop at 1e-6 of the image; what is left of each solution is some hundred times that.
+    smooth(moved(flux, where)).forEach((f, k) => assertAlmostEquals(f, expected[k]!, 1e-4));
+  }
 });
 
 Deno.test("totalVariation() is settled: going on for long changes it by less than 3 %", () => {
