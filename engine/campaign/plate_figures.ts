@@ -35,7 +35,7 @@ export function plateFigures(
   const gas = mappedLines(lines);
   if (plate.rows === undefined) {
     return gas.map((line, i) => ({
-      name: i === 0 ? "plate" : `plate-${fileName(line)}`,
+      name: plateName("plate", { line: line.name, first: i === 0 }),
       lines: [line],
       description: styleOf(plate),
       panels: [STANDARD],
@@ -90,6 +90,15 @@ function unknownLine(
   });
 }
 
-function fileName(line: LineSettings): string {
-  return hduName(line.name).toLowerCase().replace(/[^a-z0-9]+/g, "-");
+/**
+ * Name of a figure's files: the first one has the plain name, further ones that of their line, too.
+ *
+ * @param name The plain name.
+ * @param options Which line, and whether it is the first.
+ * @returns Name without extension, as in "plate-he-ii-4686".
+ */
+export function plateName(name: string, options: { line: string; first: boolean }): string {
+  const { line, first } = options;
+  if (first) return name;
+  return `${name}-${hduName(line).toLowerCase().replace(/[^a-z0-9]+/g, "-")}`;
 }

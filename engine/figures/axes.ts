@@ -9,6 +9,8 @@ export interface Axis {
   readonly range: readonly [from: number, to: number];
   /** Label in the markup of {@linkcode labelRuns}; none when absent. */
   readonly label?: string;
+  /** Place of the middle of a horizontal axis' label, pt; that of the frame when absent. */
+  readonly label_x?: number;
   /** Values with ticks, or about how many there should be. @default {5} */
   readonly ticks?: readonly number[] | number;
   /** Writes a tick's value; null writes none. */
@@ -196,7 +198,7 @@ export function drawAxes(frame: Box, options: AxesOptions): Item[] {
   items.unshift({ kind: "path", d, stroke: QUIET, stroke_pt: HAIRLINE_PT });
   if (options.x.label !== undefined) {
     const y = bottom + TICK_LENGTH + TICK_PT + 1.2 * LABEL_PT;
-    const x = frame.x + frame.width / 2;
+    const x = options.x.label_x ?? frame.x + frame.width / 2;
     text({ x, y, size_pt: LABEL_PT, anchor: "middle" }, options.x.label);
   }
   if (options.y.label !== undefined) {

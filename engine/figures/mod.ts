@@ -39,6 +39,7 @@ export * from "./panels/map_panel.ts";
 export * from "./panels/map_profile.ts";
 export * from "./panels/map_profile_panel.ts";
 export * from "./panels/map_window.ts";
+export * from "./panels/null_distribution_panel.ts";
 export * from "./panels/phase_curve_panel.ts";
 export * from "./panels/plane_panel.ts";
 export * from "./panels/plot_panel.ts";

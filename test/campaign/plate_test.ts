@@ -27,16 +27,18 @@ function plateOf(rows: string): string {
 }
 
 Deno.test("runPlate() makes every panel from the demo's target file", async () => {
-  const rows = panelNames.map((panel) => `  { panels = ["${panel}"], height_mm = 20 },`);
+  // The last one is drawn by weigh, on a plate of its own: weigh_figures_test.ts.
+  const drawn = panelNames.filter((panel) => panel !== "null-distribution");
+  const rows = drawn.map((panel) => `  { panels = ["${panel}"], height_mm = 20 },`);
   const session = await night.open({ plate: plateOf(rows.join("\n")) });
   const { document, files } = await runPlate(session, out("all"));
-  assertEquals(panelNames.length, 27);
+  assertEquals(drawn.length, 27);
   const [caption] = document.captions;
   // Each panel has its letter: (a) to (z) and (aa).
   assertEquals([...caption!.matchAll(/\(([a-z]{1,2})\) [A-Zχ]/g)].length, 27, caption);
   assert(!/NaN|undefined|null|Infinity/.test(caption!), caption);
   const svg = await Deno.readTextFile(files[0]!);
-  for (const panel of panelNames) assertStringIncludes(svg, `data-name="${panel}"`);
+  for (const panel of drawn) assertStringIncludes(svg, `data-name="${panel}"`);
 });
 
 Deno.test("runPlate() tells the same numbers as map.json and orbit.json", async () => {

@@ -57,6 +57,12 @@ export function exampleSubject(): PlateSubject {
   );
   return {
     ...content,
+    null_distribution: {
+      null_name: "disc",
+      against_name: "disc + spot",
+      gains: Array.from({ length: 200 }, (_, i) => 8 * Math.abs(wobble(i)) ** 3),
+      observed: 412,
+    },
     rims: [{ speed_kms: 500, name: "outer rim" }, { speed_kms: 1400, name: "inner rim" }],
     contour_parts: [0.1, 0.3],
     halves: {

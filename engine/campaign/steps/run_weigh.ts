@@ -4,6 +4,7 @@ import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output
 import { pause } from "../pause.ts";
 import type { LineSettings } from "../schema/lines_section.ts";
 import type { Session } from "../session.ts";
+import { weighFigures } from "../weigh_figures.ts";
 import { weighOptionsOf } from "../weigh_options.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
@@ -28,7 +29,7 @@ export async function weighLine(session: Session, line: LineSettings): Promise<W
 }
 
 /**
- * Makes `weigh.json`: hypotheses against each other.
+ * Makes `weigh.json`, hypotheses against each other, and a plate for each line.
  *
  * @param session The target at work.
  * @param output Where to write.
@@ -53,6 +54,9 @@ export async function runWeigh(
     ...outputHead(target, { schema: "weigh/1", inputs, warnings }),
     lines: weighed.map(weighRecord),
   };
-  const files = await writeStep([["weigh.json", jsonText(document)]], output);
+  const files = await writeStep([
+    ["weigh.json", jsonText(document)],
+    ...await weighFigures(session, weighed),
+  ], output);
   return { document, files, warnings };
 }

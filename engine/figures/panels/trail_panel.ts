@@ -26,6 +26,8 @@ export interface TrailPanelOptions {
   readonly x_label?: boolean;
   /** Width that the name may take, pt: it is shorter where there is little. @default {the frame's width} */
   readonly x_room_pt?: number;
+  /** Place of the middle of the name, pt. @default {that of the frame} */
+  readonly x_label_x?: number;
   /** False to leave out the phases: a neighbour shows them. @default {true} */
   readonly y_labels?: boolean;
   /** Systemic velocity, marked at the top; null for no mark. @default {null} */
@@ -70,6 +72,7 @@ export function trailPanel(grid: DisplayGrid, options: TrailPanelOptions): Group
       length_pt: frame.width,
       room_pt: options.x_room_pt ?? frame.width,
       named: x_label,
+      label_x: options.x_label_x,
     }),
     y: {
       range: [0, cycles] as const,
@@ -113,7 +116,7 @@ function velocityRange(grid: DisplayGrid): [low: number, high: number] {
 /** A velocity axis; a short one counts in thousands, so that its values fit. */
 function velocityAxis(
   range: readonly [number, number],
-  options: { length_pt: number; room_pt: number; named: boolean },
+  options: { length_pt: number; room_pt: number; named: boolean; label_x?: number },
 ): Axis {
   const thousands = options.length_pt < 110 && range[1] - range[0] > 1500;
   const unit = thousands ? `10^{3} ${KMS_LABEL}` : KMS_LABEL;
@@ -122,6 +125,7 @@ function velocityAxis(
     ticks: Math.max(3, Math.round(options.length_pt / (thousands ? 18 : 30))),
     ...(thousands ? { format: (value) => String(value / 1000).replace("-", "−") } : {}),
     ...(options.named ? { label: `${options.room_pt < 90 ? "*V*" : "velocity"} (${unit})` } : {}),
+    ...(options.label_x === undefined ? {} : { label_x: options.label_x }),
   };
 }
 

@@ -1,8 +1,9 @@
 import { InputError } from "../../errors.ts";
 import { colourBar } from "../colour/colour_bar.ts";
-import type { Item, Picture } from "../display_list.ts";
+import type { Item, Picture, Run } from "../display_list.ts";
 import { enlargePicture } from "../enlarge_picture.ts";
-import { plainRuns } from "../runs.ts";
+import { textWidth } from "../fonts.ts";
+import { plainRuns, SMALLEST_TEXT_PT } from "../runs.ts";
 import { INK, LABEL_PT } from "../style.ts";
 import type { PanelKind, PanelScale } from "./panel_kind.ts";
 import { panelKinds } from "./panel_kinds.ts";
@@ -70,11 +71,12 @@ export function drawPlate(
   const layout = plateLayout(
     rows.map((row) => ({
       ...row,
-      panels: row.panels.map((entry) => ({
-        kind: panelKinds[entry.panel],
-        subject: entry.subject,
-        named: letters || entry.name !== undefined,
-      })),
+      panels: row.panels.map((entry) => {
+        const kind = panelKinds[entry.panel];
+        const axis = kind.axis?.(subjects[entry.subject]!);
+        const named = letters || entry.name !== undefined;
+        return { kind, named, ...(axis === undefined ? {} : { axis }) };
+      }),
     })),
     width,
   );
@@ -131,9 +133,10 @@ class ScaleBook {
   ) {}
 
   of(kind: PanelKind, subject: number): PanelScale | undefined {
-    const { scale, scale_family = "" } = kind;
+    const { scale, scale_family = "", scale_is_common = false } = kind;
     if (scale === undefined) return undefined;
-    const shared = this.description.share?.some((family) => family === scale_family) ?? false;
+    const shared = scale_is_common ||
+      (this.description.share?.some((family) => family === scale_family) ?? false);
     const key = `${scale_family} ${shared ? "all" : subject}`;
     const known = this.#known.get(key);
     if (known) return known;
@@ -144,35 +147,44 @@ class ScaleBook {
 }
 
 function drawRow(row: readonly Piece[], description: PlateDescription): Item[] {
+  const name_pt = Math.min(...row.map(nameSize));
   return row.flatMap((piece, i): Item[] => {
     const { kind, subject, box, scale } = piece;
     const { from, count } = box.group;
+    const left = row[from]!.box.frame.x;
+    const last = row[from + count - 1]!.box.frame;
+    const right = last.x + last.width;
     const drawing = {
       frame: box.frame,
       first: box.first,
-      names_axis: i === from + Math.floor((count - 1) / 2),
-      axis_room_pt: row[from + count - 1]!.box.frame.x + row[from + count - 1]!.box.frame.width -
-        row[from]!.box.frame.x,
+      names_axis: i === from,
+      axis_name_x: (left + right) / 2,
+      axis_room_pt: right - left,
       style: description,
       ...(scale ? { scale } : {}),
     };
     const drawn = withKey(piece.key, () => kind.draw(subject, drawing));
-    return [drawn, ...nameItems(piece), ...barItems(row, i)];
+    return [drawn, ...nameItems(piece, name_pt), ...barItems(row, i)];
   });
 }
 
-function nameItems({ box, scale, letter, name }: Piece): Item[] {
-  const words = [letter, name].filter((word) => word !== "").join(" ");
-  if (words === "") return [];
-  const y = box.frame.y - (scale ? NAME_RISE_PT : 5);
-  return [{
-    kind: "text",
-    x: box.frame.x,
-    y,
-    size_pt: LABEL_PT,
-    fill: INK,
-    runs: plainRuns(words),
-  }];
+function nameRuns({ letter, name }: Piece): Run[] {
+  return plainRuns([letter, name].filter((word) => word !== "").join(" "));
+}
+
+/** A long name over a narrow panel is set smaller, so that it keeps clear of the next one. */
+function nameSize(piece: Piece): number {
+  const width = textWidth(nameRuns(piece), LABEL_PT);
+  const fitting = width === 0 ? LABEL_PT : LABEL_PT * (piece.box.frame.width + 4) / width;
+  return Math.max(SMALLEST_TEXT_PT, Math.min(LABEL_PT, fitting));
+}
+
+function nameItems(piece: Piece, size_pt: number): Item[] {
+  const runs = nameRuns(piece);
+  if (runs.length === 0) return [];
+  const { frame } = piece.box;
+  const y = frame.y - (piece.scale ? NAME_RISE_PT : 5);
+  return [{ kind: "text", x: frame.x, y, size_pt, fill: INK, runs }];
 }
 
 /** A colour bar over neighbours of one scale together. */

@@ -166,7 +166,13 @@ function tellMarks(subject: PlateSubject): string {
   return told.join(" ");
 }
 
-const frameShape = { aspect: 1, weight: 3, height_pt: 200, axis: "map" } as const;
+/** Maps side by side share their axes where they show the same velocities. */
+function mapAxis({ map, detection_limit }: PlateSubject): string {
+  const { pixels, half_width_kms } = map ?? detection_limit ?? { pixels: 0, half_width_kms: 0 };
+  return `map ${pixels} ${half_width_kms}`;
+}
+
+const frameShape = { aspect: 1, weight: 3, height_pt: 200, axis: mapAxis } as const;
 
 /** Which of the two halves a panel shows. */
 function halfKind(panel: "half-one" | "half-two"): PanelKind {

@@ -20,8 +20,10 @@ export interface PanelDrawing {
   readonly scale?: PanelScale;
   /** False when the neighbour at the left shows the same vertical axis. */
   readonly first: boolean;
-  /** True when this panel names the horizontal axis for its neighbours. */
+  /** True when this panel names the horizontal axis for itself and its neighbours. */
   readonly names_axis: boolean;
+  /** Place of the middle of that name, pt. */
+  readonly axis_name_x: number;
   /** Width that the name of the horizontal axis may take, pt. */
   readonly axis_room_pt: number;
   /** The plate's style. */
@@ -36,14 +38,16 @@ export interface PanelKind {
   readonly weight: number;
   /** Height of its frame when nothing else sets it, pt. */
   readonly height_pt: number;
-  /** Neighbours with the same axis share it. */
-  readonly axis?: string;
+  /** The vertical axis: neighbours with the same one share it. */
+  readonly axis?: (subject: PlateSubject) => string;
   /** Name above the panel. */
   readonly name: (subject: PlateSubject) => string;
   /** Colours, over all subjects that share them. */
   readonly scale?: (subjects: readonly PlateSubject[], style: PlateStyle) => PanelScale;
   /** Kinds with the same word have their scale in common within a subject. */
   readonly scale_family?: string;
+  /** True where all subjects have the scale in common: it does not come from the data. @default {false} */
+  readonly scale_is_common?: boolean;
   /** Draws it. */
   readonly draw: (subject: PlateSubject, drawing: PanelDrawing) => Group;
   /** One or two sentences with the numbers used. */

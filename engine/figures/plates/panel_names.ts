@@ -27,6 +27,7 @@ export const panelNames = [
   "inclination-plane",
   "disc-in-space",
   "coverage",
+  "null-distribution",
 ] as const;
 
 /** Name of a panel. */

@@ -5,8 +5,8 @@ import type { PanelKind } from "./panel_kind.ts";
 export interface LaidPanel {
   /** Its kind. */
   readonly kind: PanelKind;
-  /** Which subject it shows: neighbours share an axis within one subject only. */
-  readonly subject: number;
+  /** Its vertical axis: neighbours with the same one share it; a panel without one has its own. */
+  readonly axis?: string;
   /** True when a name or letter stands above it. */
   readonly named: boolean;
 }
@@ -62,7 +62,7 @@ export const NAME_RISE_PT = 18.5;
  * import { panelKinds, plateLayout } from "@millrace/millrace/figures";
  * import { assertEquals } from "@std/assert";
  *
- * const map = { kind: panelKinds.map, subject: 0, named: false };
+ * const map = { kind: panelKinds.map, named: false };
  * const { rows } = plateLayout([{ panels: [map] }], 244);
  * assertEquals(rows[0]?.[0]?.frame.width, 200); // 244 pt less 36 at the left and 8 at the right
  * ```
@@ -132,6 +132,5 @@ function tallest(panels: readonly LaidPanel[]): number {
 }
 
 function sharesAxis(left: LaidPanel | undefined, panel: LaidPanel): boolean {
-  if (left === undefined || panel.kind.axis === undefined) return false;
-  return left.kind.axis === panel.kind.axis && left.subject === panel.subject;
+  return left?.axis !== undefined && left.axis === panel.axis;
 }

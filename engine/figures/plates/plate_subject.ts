@@ -9,6 +9,7 @@ import type { DisplayGrid } from "../panels/folded_grid.ts";
 import type { LightCentre } from "../panels/light_centre_panel.ts";
 import type { DiscRim, ResolutionEllipse } from "../panels/map_marks.ts";
 import type { MarkedFeature } from "../panels/map_overlay.ts";
+import type { NullDistribution } from "../panels/null_distribution_panel.ts";
 import type { PhaseCurve } from "../panels/phase_curve_panel.ts";
 import type { Plane } from "../panels/plane_panel.ts";
 import type { Scan } from "../panels/scan_panel.ts";
@@ -60,6 +61,8 @@ export interface PlateSubject {
   };
   /** The map projected again, or another model, R × C on the trail's grid. */
   readonly model?: Float64Array;
+  /** What the model is, as in "disc + spot"; the map projected again when absent. */
+  readonly model_name?: string;
   /** Data less model in standard deviations, R × C on the trail's grid. */
   readonly residual?: Float64Array;
   /** Features found in the map, the strongest first. @default {[]} */
@@ -117,4 +120,6 @@ export interface PlateSubject {
   readonly disc?: DiscInSpace;
   /** Which phases were observed in each night. */
   readonly coverage?: readonly CoverageRow[];
+  /** Gains of χ² in trials of a null hypothesis, and in the data. */
+  readonly null_distribution?: NullDistribution;
 }

@@ -4,6 +4,7 @@ import { diagnosticPanel } from "../panels/diagnostic_panel.ts";
 import { discSpacePanel } from "../panels/disc_space_panel.ts";
 import { lightCentrePanel } from "../panels/light_centre_panel.ts";
 import { azimuthProfilePanel, radialProfilePanel } from "../panels/map_profile_panel.ts";
+import { nullDistributionPanel } from "../panels/null_distribution_panel.ts";
 import { phaseCurvePanel } from "../panels/phase_curve_panel.ts";
 import { inclinationPlanePanel, massPlanePanel, type Plane } from "../panels/plane_panel.ts";
 import type { PanelPlace } from "../panels/plot_panel.ts";
@@ -221,5 +222,18 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
     tell: (rows) =>
       "Phases observed: " +
       rows.map((row) => `${row.name}, ${row.phase.length} exposures`).join("; ") + ".",
+  }),
+  "null-distribution": plotKind({
+    panel: "null-distribution",
+    field: "null_distribution",
+    remedy: "millrace weigh draws it on a plate of its own",
+    draw: nullDistributionPanel,
+    tell: ({ null_name, against_name, gains, observed }) => {
+      const trials = Array.from(gains).filter(Number.isFinite);
+      const as_much = trials.filter((gain) => gain >= observed).length;
+      return `Gain of χ² of ${against_name} over ${null_name}: in ${trials.length} trials of ` +
+        `${null_name} (grey), ${as_much} of which gain as much as the data do, ` +
+        `${captionNumber(observed)}.`;
+    },
   }),
 };

@@ -49,12 +49,24 @@ function drawTrail(
     y_labels: drawing.first,
     x_label: drawing.names_axis,
     x_room_pt: drawing.axis_room_pt,
+    x_label_x: drawing.axis_name_x,
     systemic_kms: subject.systemic_kms,
     ...options,
   });
 }
 
-const shape = { weight: 1, height_pt: 150, axis: "phase" } as const;
+/** Trails side by side share their axes where they show the same velocities. */
+function phaseAxis({ trail }: PlateSubject): string {
+  if (trail === undefined) return "phase";
+  const { first_kms, step_kms, columns } = trail.grid;
+  return `phase ${first_kms} ${step_kms * columns}`;
+}
+
+const shape = { weight: 1, height_pt: 150, axis: phaseAxis } as const;
+
+function ofParts({ model_name }: PlateSubject): string {
+  return model_name === undefined ? "" : ` of ${model_name}`;
+}
 
 /** The panels of velocity against phase. */
 export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
@@ -74,17 +86,21 @@ export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
   },
   model: {
     ...shape,
-    name: () => "from the map",
+    name: ({ model_name }) => model_name ?? "from the map",
     scale_family: "trail",
     scale: fluxScale,
     draw: (subject, drawing) =>
       drawTrail(subject, drawing, { name: "model", values: need(subject, "model", "model") }),
-    tell: () => "The map projected again, colours as for the trail.",
+    tell: ({ model_name }) =>
+      model_name === undefined
+        ? "The map projected again, colours as for the trail."
+        : `Model of ${model_name}, colours as for the trail.`,
   },
   residual: {
     ...shape,
-    name: () => "residual",
+    name: ({ model_name }) => model_name === undefined ? "residual" : `less ${model_name}`,
     scale_family: "residual",
+    scale_is_common: true,
     scale: (_, style) => {
       const { signed_colour_map: map = "tide", residual_limit_sigma: limit = 5 } = style;
       return { map, limits: [-limit, limit], unit: "*σ*", divide_by: 1 };
@@ -94,7 +110,8 @@ export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
         name: "residual",
         values: need(subject, "residual", "residual"),
       }),
-    tell: (_, scale) => `Data less model in standard deviations; ${tellScale(scale)}.`,
+    tell: ({ model_name = "model" }, scale) =>
+      `Data less ${model_name} in standard deviations; ${tellScale(scale)}.`,
   },
   "stacked-profiles": {
     weight: 1.4,
@@ -107,6 +124,6 @@ export const trailKinds: Readonly<Record<TrailPanelName, PanelKind>> = {
       }),
     tell: (subject) =>
       "Profiles averaged in 12 bins of phase, each standing on the level of its phase" +
-      `${subject.model ? "; grey underneath, the model" : ""}.`,
+      (subject.model ? `; grey underneath, the model${ofParts(subject)}.` : "."),
   },
 };

@@ -1,4 +1,10 @@
-import { assert, assertEquals, assertStringIncludes, assertThrows } from "@std/assert";
+import {
+  assert,
+  assertAlmostEquals,
+  assertEquals,
+  assertStringIncludes,
+  assertThrows,
+} from "@std/assert";
 import { InputError } from "../../../engine/errors.ts";
 import {
   type ColourMapName,
@@ -79,6 +85,7 @@ const fields: Partial<Record<PanelName, [field: keyof PlateSubject, remedy: stri
   "mass-plane": ["mass_plane", "K2 must be measured"],
   "disc-in-space": ["binary", "let [binary] fix K1 and K2"],
   coverage: ["coverage", "millrace trail makes it"],
+  "null-distribution": ["null_distribution", "millrace weigh draws it"],
 };
 
 for (const [panel, [field, remedy]] of Object.entries(fields)) {
@@ -158,8 +165,8 @@ const wrong: [string, PlateDescription, string][] = [
     "a panel must be one of map, trail, model, residual, asymmetric, half-one, half-two, spread, " +
     "significance, resolution, detection-limit, radial-profile, azimuth-profile, stacked-profiles, " +
     "spectrum, equivalent-width, violet-red, continuum, velocity-curve, diagnostic, light-centre, " +
-    "periodogram, systemic-scan, mass-plane, inclination-plane, disc-in-space, coverage: current " +
-    'value is "mapp" (key plate.rows[0].panels[0]); the nearest is "map"',
+    "periodogram, systemic-scan, mass-plane, inclination-plane, disc-in-space, coverage, null-distribution: " +
+    'current value is "mapp" (key plate.rows[0].panels[0]); the nearest is "map"',
   ],
   [
     "a row is empty",
@@ -217,4 +224,39 @@ Deno.test("drawPlate() tells in the caption the name that a panel is given", () 
     drawPlate({ rows: [{ panels: ["spectrum"] }] }, [subject]).caption,
     "Mean spectrum.",
   );
+});
+
+Deno.test("drawPlate() shares axes of neighbours that show the same velocities, whoever they are", () => {
+  const panels = [{ panel: "residual", subject: 0 }, { panel: "residual", subject: 1 }] as const;
+  const labels = (other: PlateSubject) => {
+    const { picture } = drawPlate({ rows: [{ panels }] }, [subject, other]);
+    const found = texts(picture.items).filter(({ runs }) => runsText(runs).startsWith("velocity"));
+    const phases = words(picture.items).filter((word) => word === "orbital phase");
+    return { phases: phases.length, x: found.map(({ x }) => x), width: picture.width };
+  };
+  const same = labels({ ...subject, title: "VX-0418" });
+  assertEquals(same.phases, 1);
+  assertEquals(same.x.length, 1);
+  // Between the two frames: 36 pt stand free at the left of them and 8 pt at the right.
+  assertAlmostEquals(same.x[0]!, (36 + same.width - 8) / 2, 1e-9);
+  const { trail } = subject;
+  const grid = { ...trail!.grid, step_kms: 1.5 * trail!.grid.step_kms };
+  const apart = labels({ ...subject, trail: { ...trail!, grid } });
+  assertEquals([apart.phases, apart.x.length], [2, 2]);
+});
+
+Deno.test("drawPlate() draws one bar over residuals of several subjects", () => {
+  const panels = [{ panel: "residual", subject: 0 }, { panel: "residual", subject: 1 }] as const;
+  const { picture } = drawPlate({ rows: [{ panels }] }, [subject, { ...subject, title: "b" }]);
+  assertEquals(words(picture.items).filter((word) => word === "5 σ").length, 1);
+});
+
+Deno.test("drawPlate() sets long names smaller, those of a row alike, and none under 6 pt", () => {
+  const long = "everything that was left of the data, in words";
+  const panels = ["trail", { panel: "residual", name: long }, "model"] as const;
+  const { picture } = drawPlate({ width: "one-column", rows: [{ panels }] }, [subject]);
+  const sizes = texts(picture.items).filter(({ runs }) =>
+    ["observed", long, "from the map"].includes(runsText(runs))
+  ).map(({ size_pt }) => size_pt);
+  assertEquals(sizes, [6, 6, 6]);
 });
