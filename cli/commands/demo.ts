@@ -29,7 +29,7 @@ import { orbitLines } from "./orbit.ts";
 const FITTED = ["entropy", "total-variation"] as const;
 
 /** Few resamples show the size of an error: most of it here is that of the zero of phase. */
-const RESAMPLES = "map.resamples=8";
+const SOONER = ["map.resamples=8", "map.structures=false"];
 
 /**
  * `millrace demo`: an invented night, from raw exposures to the figure.
@@ -65,7 +65,7 @@ export const demoCommand = (finish: (status: number) => void) =>
           const map = await runMap(session, output);
           const fitted: { method: string; map: Awaited<ReturnType<typeof runMap>> }[] = [];
           for (const method of FITTED) {
-            const set = [...(options.set ?? []), `map.method="${method}"`, RESAMPLES];
+            const set = [...(options.set ?? []), `map.method="${method}"`, ...SOONER];
             const other = openSession(await readTarget(campaign.target_file, { set }), {
               from: session,
               workers: options.workers,

@@ -4,6 +4,7 @@ import { runInParts } from "../part_options.ts";
 import { runCommand } from "../run_command.ts";
 import { openTarget, recorded } from "../target_command.ts";
 import { anyMapText } from "../terminal/any_map_text.ts";
+import { mapStudyLines } from "../terminal/map_study_lines.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
 
 /**
@@ -65,6 +66,7 @@ export function mapLines(document: MapDocument): string[] {
         indent: 4,
         align: ["right", "right", "right", "right", "right", "left"],
       })),
+    ...mapStudyLines(map),
   ]);
 }
 

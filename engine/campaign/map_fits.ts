@@ -2,6 +2,7 @@ import { type CardSpec, encodeFits, type HduSpec, type ImageSpec } from "../fits
 import type { VelocityMap } from "../tomography/mod.ts";
 import { fitsHead, hduName } from "./fits_head.ts";
 import type { MappedLine } from "./map_line.ts";
+import type { StudiedLine } from "./studies/studies_of.ts";
 import type { Target } from "./target.ts";
 import { velocityAxisCards } from "./trail_fits.ts";
 
@@ -11,16 +12,23 @@ import { velocityAxisCards } from "./trail_fits.ts";
  * @param target The target.
  * @param options What to write.
  * @param options.maps One map a line.
+ * @param options.studies What else was made of each line.
  * @returns The file's bytes.
  */
-export function mapFits(target: Target, options: { maps: readonly MappedLine[] }): Uint8Array {
+export function mapFits(
+  target: Target,
+  options: { maps: readonly MappedLine[]; studies: readonly StudiedLine[] },
+): Uint8Array {
   return encodeFits([
     fitsHead(target, {
       content:
         "Velocity maps: normalised flux x km/s per (km/s)^2; the sum times the pixel's area " +
         "is the equivalent width in km/s. Donor at (0, +K2), accretor at (0, -K1).",
     }),
-    ...options.maps.flatMap(mapHdus),
+    ...options.maps.flatMap((
+      mapped,
+      i,
+    ) => [...mapHdus(mapped), ...studyHdus(mapped, options.studies[i]!)]),
   ]);
 }
 
@@ -106,3 +114,37 @@ export function mapImage(map: VelocityMap, name: string): ImageSpec {
     unit: "s/km",
   };
 }
+
+/** Maps beside the map: scatter, structures of the sampling, other χ², modulation. */
+function studyHdus(mapped: MappedLine, studies: StudiedLine): HduSpec[] {
+  const { structures, sensitivity, modulation } = studies;
+  const made: (readonly [name: string, map: VelocityMap | null | undefined])[] = [
+    ["spread", mapped.spread],
+    ["sampling", structures?.sampling],
+    ["closer", sensitivity?.closer.map],
+    ["looser", sensitivity?.looser.map],
+    ["average", modulation?.average],
+    ["cosine", modulation?.cosine],
+    ["sine", modulation?.sine],
+  ];
+  return made.flatMap(([name, map]) =>
+    map === null || map === undefined ? [] : [{
+      ...mapImage(map, hduName(mapped.trail.line.name, name)),
+      cards: [
+        ...mapAxisCards(map),
+        { keyword: "LINENAME", value: mapped.trail.line.name },
+        { keyword: "CONTENT", value: WHAT[name]! },
+      ],
+    }]
+  );
+}
+
+const WHAT: Readonly<Record<string, string>> = {
+  spread: "one standard deviation among resamples",
+  sampling: "what the sampling makes of a round disc",
+  closer: "map at a lower chi-square",
+  looser: "map at a higher chi-square",
+  average: "average over the orbit",
+  cosine: "part that goes as cos 2 pi phase",
+  sine: "part that goes as sin 2 pi phase",
+};

@@ -11,9 +11,27 @@ import type { LineSettings } from "./schema/lines_section.ts";
 import type { Target } from "./target.ts";
 import { measureTargetOrbit, type TargetOrbit } from "./steps/run_orbit.ts";
 import { signOf } from "./sign_of.ts";
+import { type Modulation, modulationStudy } from "./studies/modulation_study.ts";
+import { periodStudy, type ScanStudy, systemicStudy } from "./studies/scan_study.ts";
+import { type Sensitivity, sensitivityStudy } from "./studies/sensitivity_study.ts";
+import { type Structures, structuresStudy } from "./studies/structures_study.ts";
 import { systemicOf, type SystemicVelocity } from "./systemic_of.ts";
 import { type LineTests, testLine } from "./test_line.ts";
 import { trailOf } from "./trail_of.ts";
+
+/** What is asked of a line's map beside the map itself. */
+export interface MapStudies {
+  /** What sampling and inversion alone do to it. */
+  readonly structures: (line: LineSettings) => Promise<Structures>;
+  /** Maps at χ² a little lower and higher. */
+  readonly sensitivity: (line: LineSettings) => Promise<Sensitivity>;
+  /** Emission that varies with the orbit. */
+  readonly modulation: (line: LineSettings) => Promise<Modulation>;
+  /** γ, searched with maps. */
+  readonly systemicScan: (line: LineSettings) => Promise<ScanStudy>;
+  /** The period, searched with maps. */
+  readonly periodScan: (line: LineSettings) => Promise<ScanStudy>;
+}
 
 /**
  * One target at work: what several commands need is made once, when it is first asked for.
@@ -31,6 +49,8 @@ export interface Session {
   readonly trail: (line: LineSettings) => Promise<Trail>;
   /** The map of a line. */
   readonly map: (line: LineSettings) => Promise<MappedLine>;
+  /** What is asked of a line's map beside the map itself. */
+  readonly studies: MapStudies;
   /** Whether any map can have made a line's trail. */
   readonly anyMap: (line: LineSettings) => Promise<LineTests>;
   /** The orbit as measured. */
@@ -131,6 +151,22 @@ export function openSession(
       force,
     });
   };
+  const study = <T>(name: string, make: (mapped: MappedLine) => Promise<T>) =>
+    perLine((line) => keep(`${name} of ${line.name}`, async () => make(await map(line))));
+  const studies: MapStudies = {
+    structures: study("structures", (mapped) => structuresStudy(mapped, { signal })),
+    sensitivity: study("sensitivity", (mapped) => sensitivityStudy(mapped, { signal })),
+    modulation: study("modulation", (mapped) => modulationStudy(mapped, { target, signal })),
+    systemicScan: study(
+      "systemic scan",
+      async (mapped) =>
+        systemicStudy(mapped, { target, error_kms: (await systemic()).error_kms, signal }),
+    ),
+    periodScan: study("period scan", async (mapped) => {
+      const { period_d, period_error_d } = await ephemeris();
+      return periodStudy(mapped, { target, period_d, error_d: period_error_d, signal });
+    }),
+  };
   const session: Session = {
     target,
     exposures,
@@ -138,6 +174,7 @@ export function openSession(
     binary,
     trail,
     map,
+    studies,
     anyMap,
     orbit: once(() => keep("orbit", () => measureTargetOrbit(session))),
     lines: (action) => linesOf(target, { action }),

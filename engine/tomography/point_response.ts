@@ -1,8 +1,8 @@
 import type { MapPlace } from "./axisymmetric_part.ts";
+import { blendProjector } from "./blend_projector.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { type Inversion, type InversionRecipe, makeInverter } from "./invert_trail.ts";
 import { mapStep } from "./map_shape.ts";
-import { makeProjector } from "./projector.ts";
 
 /** How an inversion shows a point source at a place. */
 export interface PointResponse extends MapPlace {
@@ -79,7 +79,8 @@ export function pointResponses(
   const { recipe, found, places, strength = 0.02 } = options;
   const { pixels, half_width_kms } = recipe;
   const step = mapStep(recipe);
-  const projector = makeProjector(trail.sampling, recipe);
+  const members = "blends" in recipe ? recipe.blends ?? [] : [];
+  const projector = blendProjector(trail.sampling, { ...recipe, members });
   const invert = makeInverter(trail, recipe);
   const clean = projector.forward(found.map.intensity).slice();
   const sum = found.map.intensity.reduce((a, b) => a + b, 0);

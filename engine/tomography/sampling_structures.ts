@@ -1,8 +1,8 @@
 import { axisymmetricPart, type MapPlace } from "./axisymmetric_part.ts";
+import { blendProjector } from "./blend_projector.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { type Inversion, type InversionRecipe, makeInverter } from "./invert_trail.ts";
 import { mapExcess } from "./map_excess.ts";
-import { makeProjector } from "./projector.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
 /** Options of {@linkcode samplingStructures} and {@linkcode featureBias}. */
@@ -105,6 +105,8 @@ function reinverted(
 ): VelocityMap {
   const { recipe, intensity } = options;
   const sign = "absorption" in recipe && recipe.absorption === true ? -1 : 1;
-  const flux = makeProjector(trail.sampling, recipe).forward(intensity).map((f) => sign * f);
+  const members = "blends" in recipe ? recipe.blends ?? [] : [];
+  const projector = blendProjector(trail.sampling, { ...recipe, members });
+  const flux = projector.forward(intensity).map((f) => sign * f);
   return makeInverter(trail, recipe)({ ...trail, flux }).map;
 }

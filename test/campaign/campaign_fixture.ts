@@ -56,12 +56,12 @@ export interface Folder {
 export interface Campaign {
   /** Its folder. */
   readonly folder: string;
-  /** Opens the target file, with overrides. */
-  readonly open: (set?: readonly string[]) => Promise<Session>;
+  /** Opens the target file, with overrides; with the trails and tests of another session of it. */
+  readonly open: (set?: readonly string[], from?: Session) => Promise<Session>;
   /** Runs `check`. */
   readonly check: (set?: readonly string[]) => Promise<CheckDocument>;
   /** Runs `map`, and reads what it wrote. */
-  readonly map: (set?: readonly string[]) => Promise<MapDocument>;
+  readonly map: (set?: readonly string[], from?: Session) => Promise<MapDocument>;
 }
 
 const written: string[] = [];
@@ -84,15 +84,15 @@ export async function writeCampaign(
   }
   const text = Object.values({ ...SECTIONS, ...sections }).join("\n");
   await Deno.writeTextFile(join(folder, "star.toml"), text);
-  const open = async (set: readonly string[] = []) =>
-    openSession(await readTarget(join(folder, "star.toml"), { set }));
+  const open = async (set: readonly string[] = [], from?: Session) =>
+    openSession(await readTarget(join(folder, "star.toml"), { set }), { from });
   return {
     folder,
     open,
     check: async (set) =>
       (await runCheck(await open(set), { folder: join(folder, "star") })).document,
-    map: async (set) => {
-      await runMap(await open(set), { folder: join(folder, "star") });
+    map: async (set, from) => {
+      await runMap(await open(set, from), { folder: join(folder, "star") });
       return JSON.parse(await Deno.readTextFile(join(folder, "star", "map.json")));
     },
   };

@@ -18,6 +18,7 @@ import { codes, SECTIONS, SOURCE, writeCampaign } from "./campaign_fixture.ts";
 const exposures = (making: Parameters<typeof madeExposures>[0] = {}) =>
   madeExposures({ resolution_angstrom: 2.4, ...making });
 const night = await writeCampaign([{ raw: exposures() }]);
+const base = await night.open();
 
 async function mapOf(set: readonly string[], campaign = night) {
   const session = await campaign.open(["map.pixels=41", ...set]);
@@ -31,7 +32,7 @@ function assertInPlace({ features: [first] }: Pick<MappedLine, "features">): voi
 }
 
 Deno.test("map.method = total-variation meets its goal, and map.json says how", async () => {
-  const document = await night.map(['map.method="total-variation"', "map.pixels=41"]);
+  const document = await night.map(['map.method="total-variation"', "map.pixels=41"], base);
   const [map] = document.maps;
   assertEquals([map!.method, map!.converged, map!.sign], ["total-variation", true, "emission"]);
   assertEquals([map!.goal_asked, map!.goal_used], [1, 1]);
@@ -61,7 +62,7 @@ Deno.test("map.weight chooses by the noise or by exposures left out, without a g
 Deno.test("a goal that no map reaches is raised, and what was asked and used is said", async () => {
   for (const method of ["entropy", "total-variation"]) {
     const set = [`map.method="${method}"`, "map.reduced_chi_square=0.5", "map.pixels=41"];
-    const document = await night.map([...set, "map.resamples=2"]);
+    const document = await night.map([...set, "map.resamples=2"], base);
     const [map] = document.maps;
     assertEquals(map!.goal_asked, 0.5, method);
     assert(map!.goal_used! > 0.8 && map!.goal_used! < 1.1, `${map!.goal_used}`);

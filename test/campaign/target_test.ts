@@ -104,6 +104,21 @@ const WRONG: readonly (readonly [name: string, text: string, message: string])[]
     'Cannot read target file as weight is for map.method = "total-variation" alone: current value is "noise" (star.toml:16:1, key map.weight)',
   ],
   [
+    "a sensitivity of what is not fitted",
+    GOOD + "\n[map]\nsensitivity = true\n",
+    "Cannot read target file as sensitivity needs a map that is fitted to a χ²: set map.method to entropy or total-variation: current value is true (star.toml:15:1, key map.sensitivity)",
+  ],
+  [
+    "coordinates of another inversion",
+    GOOD + '\n[map]\ncoordinates = "inside-out"\n',
+    'Cannot read target file as coordinates is for map.method = "entropy" alone: current value is "inside-out" (star.toml:15:1, key map.coordinates)',
+  ],
+  [
+    "a region without a radius",
+    GOOD + "\n[map]\nregions = [{ vx_kms = 0, vy_kms = 300 }]\n",
+    "Cannot read target file as radius_kms must be given (star.toml:15:12, key map.regions[0].radius_kms)",
+  ],
+  [
     "a sign that is none",
     GOOD.replace('name = "H beta"', 'name = "H beta"\nsign = "both"'),
     'Cannot read target file as sign must be one of "auto", "emission", "absorption", "mixed": current value is "both" (star.toml:13:1, key lines[0].sign); the nearest is "auto"',

@@ -10,6 +10,9 @@ import type { Trail } from "../../trail/mod.ts";
 import { pause } from "../pause.ts";
 import type { Inverted, InvertOptions } from "./inverted.ts";
 
+/** A replica that does not settle would end the whole run: it is given time. */
+const REPLICA_ITERATIONS = 1000;
+
 /** A recipe of maximum entropy. */
 export type EntropyRecipe = Extract<InversionRecipe, { readonly inversion: "entropy" }>;
 
@@ -31,6 +34,7 @@ export function entropyOptions(options: InvertOptions): MaximumEntropyOptions {
     absorption: sign === "absorption",
     signed: sign === "mixed",
     free_baselines: settings.baseline,
+    inside_out: settings.coordinates === "inside-out",
     force,
   };
 }
@@ -81,6 +85,7 @@ export async function byEntropy(trail: Trail, options: InvertOptions): Promise<I
       multiplier: found.multiplier,
       start: found.map,
       level: found.level,
+      max_iterations: REPLICA_ITERATIONS,
     },
     alternatives: [],
   };

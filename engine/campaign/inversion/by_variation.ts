@@ -17,6 +17,9 @@ import type { Inverted, InvertOptions } from "./inverted.ts";
 /** Weights tried by leaving out exposures, over the one that the noise gives. */
 const TRIED = [0.25, 0.5, 1, 2, 4];
 
+/** A replica that does not settle would end the whole run: it is given time. */
+const REPLICA_ITERATIONS = 2000;
+
 /** A goal missed by less was not out of reach: the iterations ran out. */
 const NEAR = 1.01;
 
@@ -77,6 +80,7 @@ export async function byVariation(trail: Trail, options: InvertOptions): Promise
     weight: found.weight,
     start: found.map,
     level: found.level,
+    max_iterations: REPLICA_ITERATIONS,
   };
   return {
     map: found.map,

@@ -1,5 +1,24 @@
 import { z } from "zod";
-import { nonNegative, positive, text } from "./common.ts";
+import { nonNegative, number, positive, text } from "./common.ts";
+
+/** A circle on the map. */
+export interface RegionSettings {
+  /** Its name. */
+  readonly name?: string;
+  /** Its centre, km/s. */
+  readonly vx_kms: number;
+  /** The same along Vy. */
+  readonly vy_kms: number;
+  /** Its radius, km/s. */
+  readonly radius_kms: number;
+}
+
+const region = z.strictObject({
+  name: text.optional(),
+  vx_kms: number,
+  vy_kms: number,
+  radius_kms: positive,
+});
 
 /** `[map]`: the velocity map and how it is made. */
 export interface MapSettings {
@@ -17,6 +36,20 @@ export interface MapSettings {
   readonly weight: "chi-square" | "cross-validation" | "noise";
   /** Whether each exposure's straight baseline is free. */
   readonly baseline: boolean;
+  /** Whether maps at χ² 5 % lower and higher are made too. */
+  readonly sensitivity: boolean;
+  /** Whether emission that varies with the orbit is mapped too. */
+  readonly modulation: boolean;
+  /** Regions, beside the features, over which its amplitude is told. */
+  readonly regions: readonly RegionSettings[];
+  /** Whether γ is searched with maps. */
+  readonly systemic_scan: boolean;
+  /** Whether the period is searched with maps. */
+  readonly period_scan: boolean;
+  /** Whether map.json tells what sampling and inversion alone do to the features. */
+  readonly structures: boolean;
+  /** Whether speeds are turned inside out while the map is solved for. */
+  readonly coordinates: "usual" | "inside-out";
   /** Number of resamples for the errors. */
   readonly resamples: number;
   /** "noise" of the stated errors put on once more, or a "bootstrap" of blocks of exposures. */
@@ -35,6 +68,13 @@ export const mapSection: z.ZodType<MapSettings> = z.strictObject({
   reduced_chi_square: positive.default(1),
   weight: z.enum(["chi-square", "cross-validation", "noise"]).default("chi-square"),
   baseline: z.boolean().default(false),
+  sensitivity: z.boolean().default(false),
+  modulation: z.boolean().default(false),
+  regions: z.array(region).default([]),
+  systemic_scan: z.boolean().default(false),
+  period_scan: z.boolean().default(false),
+  structures: z.boolean().default(true),
+  coordinates: z.enum(["usual", "inside-out"]).default("usual"),
   resamples: nonNegative.int().default(50),
   resampling: z.enum(["noise", "bootstrap"]).default("noise"),
 }).superRefine((map, context) => {
@@ -46,6 +86,15 @@ export const mapSection: z.ZodType<MapSettings> = z.strictObject({
       "baseline",
       "must not be free in a back-projection, which is no fit: set map.method to entropy or total-variation",
     );
+  }
+  if (map.sensitivity && !fitted) {
+    wrong(
+      "sensitivity",
+      "needs a map that is fitted to a χ²: set map.method to entropy or total-variation",
+    );
+  }
+  if (map.coordinates !== "usual" && map.method !== "entropy") {
+    wrong("coordinates", 'is for map.method = "entropy" alone');
   }
   if (map.weight !== "chi-square" && map.method !== "total-variation") {
     wrong("weight", 'is for map.method = "total-variation" alone');

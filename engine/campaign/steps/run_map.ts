@@ -7,6 +7,11 @@ import type { MappedBlend } from "../inversion/fit_ratios.ts";
 import type { LineSign } from "../inversion/inverted.ts";
 import type { MappedLine } from "../map_line.ts";
 import type { Session } from "../session.ts";
+import type { RegionStudy } from "../studies/modulation_study.ts";
+import type { ScanStudy } from "../studies/scan_study.ts";
+import type { SensitivityPart } from "../studies/sensitivity_study.ts";
+import type { FeatureStudy } from "../studies/structures_study.ts";
+import { type StudiedLine, studiesOf } from "../studies/studies_of.ts";
 import type { Target } from "../target.ts";
 import { type LineTests, type LineTestsSummary, testsSummary } from "../test_line.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
@@ -65,9 +70,38 @@ export interface MapSummary {
   /** Brightest place. */
   readonly peak: MapPeak;
   /** Compact excesses over the part that is axisymmetric about the accretor. */
-  readonly features: readonly MapFeature[];
+  readonly features: readonly (MapFeature & Partial<FeatureStudy>)[];
+  /** Maps at χ² 5 % lower and higher; null where `map.sensitivity` does not ask for them. */
+  readonly sensitivity: SensitivitySummary | null;
+  /** Emission that varies with the orbit; null where `map.modulation` does not ask for it. */
+  readonly modulation: {
+    /** χ² over the number of samples of average and modulation together. */
+    readonly reduced_chi_square: number;
+    /** Whether the iteration met its goal. */
+    readonly converged: boolean;
+    /** Amplitudes over regions. */
+    readonly regions: readonly RegionStudy[];
+  } | null;
+  /** γ searched with maps; null where `map.systemic_scan` does not ask for it. */
+  readonly systemic_scan: ScanSummary | null;
+  /** The period searched with maps; null where `map.period_scan` does not ask for it. */
+  readonly period_scan: ScanSummary | null;
   /** Whether any map can fit: probabilities of the tests, null where the data do not allow one. */
   readonly any_map: LineTestsSummary;
+}
+
+/** A parameter that was searched with maps, in numbers. */
+export type ScanSummary = Omit<ScanStudy, "warnings">;
+
+/** A map at another χ², in numbers. */
+export type SensitivityPartSummary = Omit<SensitivityPart, "map">;
+
+/** Maps at χ² 5 % lower and higher, in numbers. */
+export interface SensitivitySummary {
+  /** Fits the data more closely. */
+  readonly closer: SensitivityPartSummary;
+  /** Fits the data less closely. */
+  readonly looser: SensitivityPartSummary;
 }
 
 /** A line mapped together with another, in numbers. */
@@ -98,10 +132,12 @@ export async function runMap(
   output: StepOutput,
 ): Promise<StepResult<MapDocument>> {
   const maps: MappedLine[] = [];
+  const studies: StudiedLine[] = [];
   const tests: LineTests[] = [];
   for (const line of mappedLines(session.lines("make the velocity map"))) {
     tests.push(await session.anyMap(line));
     maps.push(await session.map(line));
+    studies.push(await studiesOf(session, line));
   }
   const { inputs, warnings: reading } = await session.exposures();
   const warnings = uniqueWarnings([
@@ -109,13 +145,16 @@ export async function runMap(
     ...(await session.systemic()).warnings,
     ...tests.flatMap((test) => test.warnings),
     ...maps.flatMap((mapped) => [...mapped.trail.warnings, ...mapped.warnings]),
+    ...studies.flatMap((found) => Object.values(found).flatMap((one) => one?.warnings ?? [])),
   ]);
   const document: MapDocument = {
     ...outputHead(session.target, { schema: "map/1", inputs, warnings }),
-    maps: maps.map((mapped, i) => summary(session.target, { mapped, any: tests[i]! })),
+    maps: maps.map((mapped, i) =>
+      summary(session.target, { mapped, any: tests[i]!, studies: studies[i]! })
+    ),
   };
   const files = await writeStep([
-    ["map.fits", mapFits(session.target, { maps })],
+    ["map.fits", mapFits(session.target, { maps, studies })],
     ["map.json", jsonText(document)],
   ], output);
   return { document, files, warnings };
@@ -123,8 +162,13 @@ export async function runMap(
 
 function summary(
   target: Target,
-  { mapped, any }: { readonly mapped: MappedLine; readonly any: LineTests },
+  { mapped, any, studies }: {
+    readonly mapped: MappedLine;
+    readonly any: LineTests;
+    readonly studies: StudiedLine;
+  },
 ): MapSummary {
+  const { structures, sensitivity, modulation, systemic_scan, period_scan } = studies;
   const { trail, map } = mapped;
   return {
     line: trail.line.name,
@@ -150,7 +194,18 @@ function summary(
     misalignment: mapped.misalignment,
     noise_scale: trail.noise_scale,
     peak: mapped.peak,
-    features: mapped.features,
+    features: mapped.features.map((feature, i) => ({ ...feature, ...structures?.features[i] })),
+    sensitivity: sensitivity && {
+      closer: withoutMap(sensitivity.closer),
+      looser: withoutMap(sensitivity.looser),
+    },
+    modulation: modulation && {
+      reduced_chi_square: modulation.reduced_chi_square,
+      converged: modulation.converged,
+      regions: modulation.regions,
+    },
+    systemic_scan: systemic_scan && withoutWarnings(systemic_scan),
+    period_scan: period_scan && withoutWarnings(period_scan),
     any_map: testsSummary(any),
   };
 }
@@ -170,4 +225,12 @@ function blendSummary(mapped: MappedLine, blend: MappedBlend): BlendSummary {
 
 function rootMeanSquare(values: Float64Array): number {
   return Math.sqrt(values.reduce((sum, value) => sum + value * value, 0) / values.length);
+}
+
+function withoutMap({ map: _map, ...rest }: SensitivityPart): SensitivityPartSummary {
+  return rest;
+}
+
+function withoutWarnings({ warnings: _warnings, ...rest }: ScanStudy): ScanSummary {
+  return rest;
 }
