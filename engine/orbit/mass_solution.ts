@@ -1,9 +1,9 @@
-import { keplerMasses, lobeRadius, massFunction } from "../binary/mod.ts";
+import { keplerMasses, massFunction } from "../binary/mod.ts";
 import { InputError } from "../errors.ts";
 import { normalTail, type RandomStream } from "../numerics/mod.ts";
 import { type MassInput, type MeasuredValue, requireMassInput } from "./mass_input.ts";
-import { eclipseTable, tabulated } from "./mass_tables.ts";
-import { massRatioFromSuperhumps, rotationRatio } from "./rotation_ratio.ts";
+import { eclipseTable, lobeTable, rotationTable } from "./mass_tables.ts";
+import { massRatioFromSuperhumps } from "./rotation_ratio.ts";
 import { type DrawSummary, summarise } from "./weighted_summary.ts";
 
 /** Options of {@linkcode solveMasses}. */
@@ -105,10 +105,8 @@ export function solveMasses(input: MassInput, options: MassOptions): MassSolutio
   if (v_sin_i_kms && k2) from.push("rotation");
   if (superhump_excess && (k1 || k2)) from.push("superhumps");
 
-  const rotation = from.includes("rotation")
-    ? tabulated((q) => rotationRatio(q), 0.005, 10, 41)
-    : null;
-  const size = tabulated((q) => lobeRadius(q), 0.005, 10, 31);
+  const rotation = from.includes("rotation") ? rotationTable() : null;
+  const size = lobeTable();
   const superhump_q = superhump_excess ? massRatioFromSuperhumps(superhump_excess.value) : NaN;
   const superhump_error = superhump_excess
     ? Math.hypot(

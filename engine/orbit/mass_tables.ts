@@ -1,5 +1,6 @@
-import { eclipseWidth, inclinationFromEclipse } from "../binary/mod.ts";
+import { eclipseWidth, inclinationFromEclipse, lobeRadius } from "../binary/mod.ts";
 import type { MeasuredValue } from "./mass_input.ts";
+import { rotationRatio } from "./rotation_ratio.ts";
 
 /** A slow function of ln q through a table: linear in the logarithms. */
 export function tabulated(f: (q: number) => number, low: number, high: number, nodes: number) {
@@ -20,6 +21,20 @@ export function tabulated(f: (q: number) => number, low: number, high: number, n
       return Math.exp(from + step * (k + (wanted - values[k]!) / (values[k + 1]! - values[k]!)));
     },
   };
+}
+
+// Each takes longer than all draws: made when it is first asked for, and once.
+let lobes: ReturnType<typeof tabulated> | undefined;
+let rotations: ReturnType<typeof tabulated> | undefined;
+
+/** Volume radius of the donor's lobe over the separation, by mass ratio. */
+export function lobeTable(): ReturnType<typeof tabulated> {
+  return lobes ??= tabulated((q) => lobeRadius(q), 0.005, 10, 31);
+}
+
+/** v sin i over K2 of a donor that fills its lobe, by mass ratio. */
+export function rotationTable(): ReturnType<typeof tabulated> {
+  return rotations ??= tabulated((q) => rotationRatio(q), 0.005, 10, 41);
 }
 
 /** Inclination for an eclipse width, by a table about the likely values. */

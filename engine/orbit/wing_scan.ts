@@ -95,10 +95,24 @@ export function scanWings(profile: LineProfile, sigma_kms: number): WingScan {
   const step = sigma_kms / 5;
   const nodes = Math.ceil((range_kms[1] - range_kms[0]) / step) + 1;
   const values = new Float64Array(nodes), slopes = new Float64Array(nodes);
-  for (let n = 0; n < nodes; n++) {
-    const [value, slope] = smooth(range_kms[0] + n * step);
-    values[n] = value;
-    slopes[n] = slope;
+  // From node to node the exponent u²/2 grows by (u + ½h)h, the next time by h² more: two exponentials
+  // a pixel in place of one for every node that it reaches. 6 σ leave 2e-8, less than interpolation.
+  const h = step / sigma_kms;
+  const shrink = Math.exp(-h * h);
+  for (let k = 0; k < count; k++) {
+    const place = (velocity_kms[k]! - range_kms[0]) / step;
+    const first = Math.max(0, Math.ceil(place - 6 / h));
+    const last = Math.min(nodes - 1, Math.floor(place + 6 / h));
+    let u = (first - place) * h;
+    let part = flux[k]! * pixel_kms[k]! * Math.exp(-0.5 * u * u);
+    let ratio = Math.exp(-(u + 0.5 * h) * h);
+    for (let n = first; n <= last; n++) {
+      values[n]! += part;
+      slopes[n]! -= part * u / sigma_kms;
+      u += h;
+      part *= ratio;
+      ratio *= shrink;
+    }
   }
   return {
     mean_kms: net === 0 ? NaN : moment / net,
