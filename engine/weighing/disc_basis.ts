@@ -2,7 +2,8 @@ import { type Binary, keplerianSpeed } from "../binary/mod.ts";
 import { type CompleteModel, type Model, synthesizeParts } from "../synthesis/mod.ts";
 import { panelled, systemFrame } from "../tomography/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
-import { blurHarmonic, discHarmonics } from "./disc_harmonics.ts";
+import { blurHalfAxis, wholeAxis } from "./blur_half_axis.ts";
+import { discHarmonics } from "./disc_harmonics.ts";
 import { type RingTable, ringTable } from "./ring_table.ts";
 
 /** What a part's templates are made for. */
@@ -23,13 +24,11 @@ export interface TemplateContext {
   readonly rings?: Map<string, RingTable>;
 }
 
-/** Grid points to a standard deviation: cubic interpolation is then good to 5e-5 of a Gaussian's peak, and a disc to 1e-3 of its own. */
-const BINS_PER_SIGMA = 6;
 /** Widths of instrumental profiles that differ by less than this are taken as one. */
 const SAME_SIGMA = 2e-3;
 /** Grids are made to these steps, so that a little change of geometry keeps a grid: in velocity, and relative. */
 const REACH_STEP_KMS = 50;
-const GRID_STEP = 0.01;
+const SIGMA_STEP = 0.01;
 /** Grids that are kept. */
 const KEPT = 3;
 
@@ -100,28 +99,28 @@ export function thinDiscBasis(
   for (let n = 0; n < velocity.length; n++) {
     fastest = Math.max(fastest, Math.abs(frame.offset_kms + frame.factor * velocity[n]!));
   }
-  const finest = sigmas.reduce((a, b) => Math.min(a, b));
-  const grid = Math.floor(Math.log(finest / BINS_PER_SIGMA) / GRID_STEP);
   const widest = sigmas.reduce((a, b) => Math.max(a, b));
-  const reach = Math.ceil((fastest + k1 + 6 * widest) / REACH_STEP_KMS);
-  const step_kms = Math.exp(grid * GRID_STEP);
-  const harmonics = discHarmonics(shape, ringsFor(context, { grid, reach }));
+  const table = ringsFor(context, { reach_kms: fastest + k1 + 6 * widest });
+  const harmonics = discHarmonics(shape, table);
+  const { step_kms } = table;
 
   const tables = new Map<number, ReturnType<typeof blurAll>>();
   const blurAll = (sigma: number) => {
-    // A bin's own width is part of the blur.
-    const sigma_bins = Math.sqrt((sigma / step_kms) ** 2 - 1 / 12);
+    // Rings are blurred with somewhat less than the narrowest profile; the rest is here.
+    const variance = Math.max(0, sigma ** 2 - table.sigma_kms ** 2) / step_kms ** 2;
+    const blur = (values: Float64Array, odd: boolean) =>
+      wholeAxis(blurHalfAxis(values, { variance, odd }), { odd });
     return {
-      even0: blurHarmonic(harmonics.even0, { sigma_bins, odd: false }),
-      odd1: asymmetry >= 1 ? blurHarmonic(harmonics.odd1, { sigma_bins, odd: true }) : null,
-      even2: asymmetry >= 2 ? blurHarmonic(harmonics.even2, { sigma_bins, odd: false }) : null,
+      even0: blur(harmonics.even0, false),
+      odd1: asymmetry >= 1 ? blur(harmonics.odd1, true) : null,
+      even2: asymmetry >= 2 ? blur(harmonics.even2, false) : null,
     };
   };
   const tablesOf = (sigma: number) => {
-    const level = Math.round(Math.log(sigma / finest) / SAME_SIGMA);
+    const level = Math.round(Math.log(sigma) / SAME_SIGMA);
     const known = tables.get(level);
     if (known !== undefined) return known;
-    const made = blurAll(finest * Math.exp(level * SAME_SIGMA));
+    const made = blurAll(sigma);
     tables.set(level, made);
     return made;
   };
@@ -165,30 +164,39 @@ export function thinDiscBasis(
   return trails;
 }
 
-/** The table of a grid, from those that are kept where it is among them. */
+/** The rings of some exposures, from those that are kept where they are among them. */
 function ringsFor(
-  { asymmetry, rings = new Map() }: TemplateContext,
-  { grid, reach }: { readonly grid: number; readonly reach: number },
+  { sampling, asymmetry, rings = new Map() }: TemplateContext,
+  { reach_kms }: { readonly reach_kms: number },
 ): RingTable {
-  const key = `${grid}/${reach}/${asymmetry}`;
+  const narrowest = sampling.profile_sigma_kms.reduce((a, b) => Math.min(a, b));
+  // A step less, so that whatever the frame does to a profile is still to be added.
+  const level = Math.floor(Math.log(narrowest) / SIGMA_STEP) - 1;
+  const reach = Math.ceil(reach_kms / REACH_STEP_KMS);
+  const key = `${level}/${reach}/${asymmetry}`;
   const known = rings.get(key);
   if (known !== undefined) return known;
   if (rings.size >= KEPT) rings.clear();
-  const step_kms = Math.exp(grid * GRID_STEP);
   const made = ringTable({
-    step_kms,
+    sigma_kms: Math.exp(level * SIGMA_STEP),
     reach_kms: reach * REACH_STEP_KMS,
-    sigma_kms: BINS_PER_SIGMA * step_kms,
     orders: asymmetry,
   });
   rings.set(key, made);
   return made;
 }
 
+const UNIT = {
+  1: panelled(1, { panels: 1, order: 1 }),
+  2: panelled(1, { panels: 1, order: 2 }),
+  4: panelled(1, { panels: 1, order: 4 }),
+};
+
 /** One instant for an exposure during which patterns hardly turn, several for a longer one. */
 function instants(phase_width: number): { offset: Float64Array; weight: Float64Array } {
   const order = phase_width < 0.004 ? 1 : phase_width < 0.1 ? 2 : 4;
-  return panelled(phase_width, { panels: 1, order });
+  const { offset, weight } = UNIT[order];
+  return { offset: offset.map((value) => value * phase_width), weight };
 }
 
 /** Adds a table's cubic interpolation, times a factor, to each target. */

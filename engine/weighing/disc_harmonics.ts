@@ -1,5 +1,5 @@
 import { radialLight } from "../synthesis/mod.ts";
-import { addRing, ringsBetween, type RingTable } from "./ring_table.ts";
+import { type RingTable, ringWeights } from "./ring_table.ts";
 
 /** A thin circular disc in velocity: all that its profile about the accretor depends on. */
 export interface DiscInVelocity {
@@ -12,12 +12,10 @@ export interface DiscInVelocity {
 }
 
 /**
- * Profiles of a disc whose surface brightness is 1, cos mθ or sin mθ, before blurring, on a grid of
- * velocity: means over bins of width `step_kms`, the first centred on zero.
+ * Profiles of a disc whose surface brightness is 1, cos mθ or sin mθ, blurred with the Gaussian of
+ * the table of rings, on its grid of velocity from zero on.
  */
 export interface DiscHarmonics {
-  /** Width of a bin, km/s. */
-  readonly step_kms: number;
   /** Share of light per km/s of the smooth disc; even in velocity. */
   readonly even0: Float64Array;
   /** The same weighted with sin ψ; odd. */
@@ -35,52 +33,24 @@ export interface DiscHarmonics {
  */
 export function discHarmonics(disc: DiscInVelocity, table: RingTable): DiscHarmonics {
   const { rim_kms, inner_over_outer, emissivity_index: beta } = disc;
-  const { step_kms, bins, orders } = table;
-  const harmonics = {
-    step_kms,
-    even0: new Float64Array(bins),
-    odd1: new Float64Array(orders >= 1 ? bins : 0),
-    even2: new Float64Array(orders >= 2 ? bins : 0),
+  const size = table.bins;
+  const sums = {
+    even0: new Float64Array(size),
+    odd1: new Float64Array(table.orders >= 1 ? size : 0),
+    even2: new Float64Array(table.orders >= 2 ? size : 0),
   };
   const fastest = rim_kms / Math.sqrt(inner_over_outer);
+  // With r = u^−2 the light r^(1−β) dr is 2 u^(2β−5) du.
   const scale = 2 / rim_kms / radialLight([inner_over_outer, 1], beta);
-  for (const { ring, speed_kms, weight_kms } of ringsBetween(table, [rim_kms, fastest])) {
-    // With r = u^−2 the light r^(1−β) dr is 2 u^(2β−5) du.
-    addRing(harmonics, ring, scale * weight_kms * (speed_kms / rim_kms) ** (2 * beta - 5));
+  const light = (speed: number) => scale * (speed / rim_kms) ** (2 * beta - 5);
+  for (const { ring, weight } of ringWeights(table, { from: rim_kms, to: fastest, light })) {
+    addTo(sums.even0, ring.even0, weight);
+    addTo(sums.odd1, ring.odd1, weight);
+    addTo(sums.even2, ring.even2, weight);
   }
-  return harmonics;
+  return sums;
 }
 
-/**
- * A harmonic blurred with a Gaussian, on the whole axis: values at (k − half) · step for k from 0 to
- * 2 half.
- */
-export function blurHarmonic(
-  values: Float64Array,
-  { sigma_bins, odd }: { readonly sigma_bins: number; readonly odd: boolean },
-): { readonly half: number; readonly values: Float64Array } {
-  const reach = Math.ceil(5.5 * sigma_bins);
-  const weights = Float64Array.from(
-    { length: reach + 1 },
-    (_, j) => Math.exp(-0.5 * (j / sigma_bins) ** 2),
-  );
-  const total = weights.reduce((sum, w, j) => sum + (j === 0 ? w : 2 * w), 0);
-  for (let j = 0; j <= reach; j++) weights[j]! /= total;
-
-  const inner = values.length - 1;
-  const half = inner + reach;
-  const blurred = new Float64Array(2 * half + 1);
-  // The positive side of the kernel's output from both signs of the input.
-  for (let k = -inner; k <= inner; k++) {
-    const value = k < 0 ? (odd ? -values[-k]! : values[-k]!) : values[k]!;
-    if (value === 0) continue;
-    for (let j = Math.max(-reach, -k); j <= reach; j++) {
-      blurred[half + k + j]! += value * weights[j < 0 ? -j : j]!;
-    }
-  }
-  for (let k = 1; k <= half; k++) {
-    blurred[half - k] = odd ? -blurred[half + k]! : blurred[half + k]!;
-  }
-  if (odd) blurred[half] = 0;
-  return { half, values: blurred };
+function addTo(sum: Float64Array, values: Float64Array, weight: number): void {
+  for (let k = 0; k < values.length; k++) sum[k]! += weight * values[k]!;
 }

@@ -3,6 +3,7 @@ import { type FitSetup, fitSetup } from "./fit_setup.ts";
 import { type Hypothesis, hypothesisOf } from "./hypothesis.ts";
 import { lineOf } from "./line_of.ts";
 import { type LineScale, measureLineScale } from "./line_scale.ts";
+import { loneSamples, withoutSamples } from "./lone_samples.ts";
 import { makeProblem, type Problem, withNuisances } from "./problem.ts";
 import type { WeighingData } from "./weighing_data.ts";
 import { makeWhitening, type SoftDirection } from "./whitening.ts";
@@ -44,6 +45,8 @@ export interface PreparedProblem {
   readonly line_scale: LineScale;
   /** Standard deviation that the fits allow the line's brightness. */
   readonly line_scale_prior: number;
+  /** Samples that stood alone far from all others and were left out. */
+  readonly lone_samples: number;
 }
 
 /** Rounds of fit and nuisance; two are enough where flickering is below a quarter of the line. */
@@ -53,7 +56,8 @@ const SAME_RMS = 0.02;
 const LARGEST_RMS = 0.5;
 
 /**
- * Makes data ready to be weighed: fits all parts together, measures how the line's brightness
+ * Makes data ready to be weighed: fits all parts together, leaves out samples that no light of the
+ * star can have made, measures how the line's brightness
  * varies, and makes a whitening that gives such variations no weight, by alternation as long as the
  * likelihood grows.
  *
@@ -85,17 +89,23 @@ export function prepareProblem(
 
 /** The same, piece by piece. */
 export function* prepareInSteps(
-  data: WeighingData,
+  all: WeighingData,
   setup: FitSetup,
   options: PrepareOptions,
 ): Steps<PreparedProblem> {
   const { sets, line_scale = "measured", shift_kms = 0 } = options;
   const order = { baseline_order: options.baseline_order ?? 1 };
   const hypothesis = hypothesisOf([...new Set(sets.flat())]);
-  const plain = makeWhitening(data, order);
   const own = fitSetup(setup);
-  let problem = makeProblem(data, own, order);
+  let problem = makeProblem(all, own, order);
   let richest = yield* fitInSteps(problem, { hypothesis });
+  const lone = loneSamples(richest.evaluation.residual, all);
+  const data = lone.length === 0 ? all : withoutSamples(all, lone);
+  if (data !== all) {
+    problem = makeProblem(data, own, order);
+    richest = yield* fitInSteps(problem, { hypothesis, base: richest });
+  }
+  const plain = makeWhitening(data, order);
   let line = lineOf(problem, richest);
   let measured = measureLineScale(line, { data, whitening: plain });
   const priorOf = ({ rms }: LineScale) =>
@@ -121,7 +131,13 @@ export function* prepareInSteps(
     measured = measureLineScale(line, { data, whitening: plain });
     prior = priorOf(measured);
   }
-  return { problem, richest, line_scale: measured, line_scale_prior: applied };
+  return {
+    problem,
+    richest,
+    line_scale: measured,
+    line_scale_prior: applied,
+    lone_samples: lone.length,
+  };
 }
 
 /** −2 ln likelihood, but for a constant. */

@@ -1,115 +1,117 @@
 import { gaussLegendre } from "../numerics/mod.ts";
+import { blurHalfAxis, blurReach } from "./blur_half_axis.ts";
 import type { DiscHarmonics } from "./disc_harmonics.ts";
 
 /**
- * Profiles of rings of gas on a grid of velocity, kept by the ring's speed: what a disc of any radii
- * and light is summed from.
+ * Blurred profiles of rings of gas on a grid of velocity, at a grid of speeds: what a disc of any
+ * radii and light is summed from. Between two speeds of the grid profiles are interpolated.
  */
 export interface RingTable {
   /** Width of a bin, km/s; the first is centred on zero. */
   readonly step_kms: number;
-  /** Number of bins. */
+  /** Number of bins of a blurred profile. */
   readonly bins: number;
+  /** The same before blurring. */
+  readonly sharp_bins: number;
   /** Highest harmonic, 0 to 2. */
   readonly orders: number;
-  /** Standard deviation of the Gaussian that will blur the result, km/s. */
+  /** Standard deviation of the Gaussian by which profiles are blurred, km/s. */
   readonly sigma_kms: number;
-  /** Rings of whole panels of speed, by the panel's number. */
-  readonly panels: Map<number, readonly WeighedRing[]>;
+  /** Rings that were made, by their place in the grid of speeds. */
+  readonly rings: Map<number, Ring>;
 }
 
 /** Harmonics of one ring of unit light. */
-export interface Ring {
-  /** Of unit brightness: share of light per km/s. */
-  readonly even0: Float64Array;
-  /** Of brightness sin ψ. */
-  readonly odd1: Float64Array;
-  /** Of brightness cos 2ψ. */
-  readonly even2: Float64Array;
-}
+export type Ring = DiscHarmonics;
 
-/** A ring that stands for a range of speeds. */
-export interface WeighedRing {
-  /** The ring. */
-  readonly ring: Ring;
-  /** Its speed of rotation, km/s. */
-  readonly speed_kms: number;
-  /** Width of the range, km/s. */
-  readonly weight_kms: number;
-}
+/** Bins to a σ: cubic interpolation in velocity is then good to 5e-5 of a Gaussian's peak. */
+const BINS_PER_SIGMA = 6;
+/** Speeds to a σ where a ring's edge is within the grid: interpolated to 3e-4 of its peak. */
+const SPEEDS_PER_SIGMA = 3;
+/** Ratio of neighbouring speeds beyond the grid, where profiles change slowly. */
+const SPEED_RATIO = 1.03;
 
-const POINTS = 8;
-/** Widths of the panels of speed: in the blurring Gaussian's σ, and beyond the grid relative to the speed. */
-const PANEL_SIGMA = 6;
-const PANEL_RATIO = 0.35;
-const rule = gaussLegendre(POINTS);
+/** Variance of the blur in bins²: a bin's own width is part of it. */
+const VARIANCE = BINS_PER_SIGMA ** 2 - 1 / 12;
+
+const rule = gaussLegendre(3);
 
 /** An empty table. */
 export function ringTable(
-  { step_kms, reach_kms, sigma_kms, orders }: {
-    readonly step_kms: number;
-    /** Bins go up to here. */
-    readonly reach_kms: number;
+  { sigma_kms, reach_kms, orders }: {
     readonly sigma_kms: number;
+    /** Bins go up to here before blurring. */
+    readonly reach_kms: number;
     readonly orders: number;
   },
 ): RingTable {
-  const bins = Math.ceil(reach_kms / step_kms) + 1;
-  return { step_kms, bins, orders, sigma_kms, panels: new Map() };
+  const step_kms = sigma_kms / BINS_PER_SIGMA;
+  const sharp_bins = Math.ceil(reach_kms / step_kms) + 1;
+  const bins = sharp_bins + blurReach(VARIANCE);
+  return { step_kms, sharp_bins, bins, orders, sigma_kms, rings: new Map() };
 }
 
 /**
- * Rings for integrating over a range of speeds (Gauss & Legendre, panel by panel). Those of panels
- * that the range covers whole are made once; of the two at its ends they are made for it.
+ * What each ring of the grid contributes to the integral of light(speed) × profile(speed) over a
+ * range of speeds.
  */
-export function ringsBetween(
+export function ringWeights(
   table: RingTable,
-  [slowest, fastest]: readonly [number, number],
-): readonly WeighedRing[] {
-  const found: WeighedRing[] = [];
-  for (let number = panelAt(table, slowest); panelEdge(table, number) < fastest; number++) {
-    const low = panelEdge(table, number), high = panelEdge(table, number + 1);
-    if (low >= slowest && high <= fastest) {
-      const kept = table.panels.get(number) ?? ringsOf(table, [low, high]);
-      table.panels.set(number, kept);
-      found.push(...kept);
-    } else {
-      found.push(...ringsOf(table, [Math.max(low, slowest), Math.min(high, fastest)]));
+  { from, to, light }: {
+    readonly from: number;
+    readonly to: number;
+    /** Light per km/s of speed. */
+    readonly light: (speed: number) => number;
+  },
+): { readonly ring: Ring; readonly weight: number }[] {
+  let first = 1;
+  while (speedAt(table, first + 1) <= from) first++;
+  const weights: number[] = [];
+  const speeds = [first - 1, first, first + 1, first + 2].map((k) => speedAt(table, k));
+  for (let i = 0; speeds[1]! < to; i++) {
+    const low = Math.max(from, speeds[1]!);
+    const high = Math.min(to, speeds[2]!);
+    const [a, b, c, d] = speeds as [number, number, number, number];
+    for (let p = 0; p < rule.nodes.length; p++) {
+      const s = low + (high - low) * (1 + rule.nodes[p]!) / 2;
+      const amount = (high - low) / 2 * rule.weights[p]! * light(s);
+      // Lagrange's polynomials of the four nearest.
+      const shares = [
+        (s - b) * (s - c) * (s - d) / ((a - b) * (a - c) * (a - d)),
+        (s - a) * (s - c) * (s - d) / ((b - a) * (b - c) * (b - d)),
+        (s - a) * (s - b) * (s - d) / ((c - a) * (c - b) * (c - d)),
+        (s - a) * (s - b) * (s - c) / ((d - a) * (d - b) * (d - c)),
+      ];
+      for (let j = 0; j < 4; j++) weights[i + j] = (weights[i + j] ?? 0) + amount * shares[j]!;
     }
+    speeds.shift();
+    speeds.push(speedAt(table, first + i + 3));
   }
-  return found;
+  return weights.map((weight, i) => ({ ring: ringAt(table, first - 1 + i), weight }));
 }
 
-/** Adds a ring's harmonics, times a factor. */
-export function addRing(into: DiscHarmonics, ring: Ring, factor: number): void {
-  for (const key of ["even0", "odd1", "even2"] as const) {
-    const sum = into[key], values = ring[key];
-    for (let k = 0; k < values.length; k++) sum[k]! += factor * values[k]!;
-  }
+/** Speeds at equal steps up to the end of the grid, at equal ratios beyond. */
+function speedAt({ step_kms, sharp_bins, sigma_kms }: RingTable, number: number): number {
+  const spacing = sigma_kms / SPEEDS_PER_SIGMA;
+  const equal = Math.ceil(step_kms * sharp_bins / spacing);
+  return (0.5 + Math.min(number, equal)) * spacing * SPEED_RATIO ** Math.max(0, number - equal);
 }
 
-/** Panels of equal width up to the end of the grid; of equal ratio beyond. */
-function panelEdge({ step_kms, bins, sigma_kms }: RingTable, number: number): number {
-  const width = PANEL_SIGMA * sigma_kms;
-  const equal = Math.ceil(step_kms * bins / width);
-  return number <= equal ? number * width : equal * width * (1 + PANEL_RATIO) ** (number - equal);
-}
-
-function panelAt(table: RingTable, speed: number): number {
-  let number = 0;
-  while (panelEdge(table, number + 1) <= speed) number++;
-  return number;
-}
-
-function ringsOf(
-  table: RingTable,
-  [low, high]: readonly [number, number],
-): readonly WeighedRing[] {
-  return Array.from({ length: POINTS }, (_, p) => {
-    const speed_kms = low + (high - low) * (1 + rule.nodes[p]!) / 2;
-    const weight_kms = (high - low) / 2 * rule.weights[p]!;
-    return { ring: ringAt(table, speed_kms), speed_kms, weight_kms };
-  });
+function ringAt(table: RingTable, number: number): Ring {
+  const known = table.rings.get(number);
+  if (known !== undefined) return known;
+  const sharp = sharpRing(table, speedAt(table, number));
+  const made = {
+    even0: blurHalfAxis(sharp.even0, { variance: VARIANCE, odd: false }),
+    odd1: sharp.odd1.length === 0
+      ? sharp.odd1
+      : blurHalfAxis(sharp.odd1, { variance: VARIANCE, odd: true }),
+    even2: sharp.even2.length === 0
+      ? sharp.even2
+      : blurHalfAxis(sharp.even2, { variance: VARIANCE, odd: false }),
+  };
+  table.rings.set(number, made);
+  return made;
 }
 
 /**
@@ -118,7 +120,10 @@ function ringsOf(
  * over π with x = v/s, for brightness 1, sin ψ and cos 2ψ; the others vanish by symmetry (Smak 1981,
  * Acta Astr. 31, 395, for the first).
  */
-function ringAt({ step_kms, bins, orders }: RingTable, speed: number): Ring {
+function sharpRing(
+  { step_kms, sharp_bins: bins, orders }: RingTable,
+  speed: number,
+): Ring {
   const last = Math.min(bins - 1, Math.ceil(speed / step_kms + 0.5));
   const size = Math.min(bins, last + 2);
   const even0 = new Float64Array(size);

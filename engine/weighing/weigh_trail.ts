@@ -195,7 +195,7 @@ export async function weighTrail(
 }
 
 function warningsOf(
-  { problem, line_scale }: PreparedProblem,
+  { problem, line_scale, lone_samples }: PreparedProblem,
   { trials, white, donor }: {
     readonly trials: number;
     readonly white: boolean;
@@ -206,6 +206,14 @@ function warningsOf(
   const warn = (code: string, text: string) => warnings.push({ code, text });
   if (problem.data.sign < 0) {
     warn("absorption-turned", "the line is in absorption: its sign was turned");
+  }
+  if (lone_samples > 0) {
+    warn(
+      "samples-left-out",
+      `${lone_samples} of ${
+        problem.data.flux.length + lone_samples
+      } samples stand alone, more than 6 standard deviations from their neighbours and sharper than the instrument's profile, and were left out: cosmic rays that were not found before?`,
+    );
   }
   if (1 / (trials + 1) > NEEDED) {
     warn("too-few-trials", `${trials} trials cannot show a false-alarm rate of 1 %: 99 can`);
