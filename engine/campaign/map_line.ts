@@ -4,6 +4,7 @@ import { median } from "../numerics/mod.ts";
 import {
   type BlendMember,
   featurePeaks,
+  largestHalfOrbitGap,
   type MapFeature,
   mapFeatures,
   type MapPeak,
@@ -67,6 +68,8 @@ export interface MappedLine extends
   readonly resolution_kms: number;
   /** Centre of the axisymmetric part that features stand out of: the accretor where it is known. */
   readonly centre: MapPlace;
+  /** Largest gap in phase modulo half an orbit, where it is so large that the map had to be forced. */
+  readonly phase_gap: number | null;
   /** What a user should know. */
   readonly warnings: readonly Warning[];
 }
@@ -165,6 +168,9 @@ export async function mapLine(
       own: inverted.own_maps.map(({ map, blend: { rest_ratio } }) => ({ map, rest_ratio })),
     }),
     samples,
+    phase_gap: inverted.warnings.some(({ code }) => code === "phase-gap")
+      ? largestHalfOrbitGap(trail.sampling.phase)
+      : null,
     resolution_kms,
     centre,
     warnings: [

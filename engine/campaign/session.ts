@@ -3,6 +3,7 @@ import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
 import { ephemerisOf, hasHeliocentricZero } from "./ephemeris_of.ts";
+import { inFile } from "./in_file.ts";
 import { linesOf, mappedLines } from "./line_of.ts";
 import { mapLine, type MappedLine } from "./map_line.ts";
 import { pause } from "./pause.ts";
@@ -118,7 +119,9 @@ export function openSession(
     once(() =>
       systemicOf(target, () => trail(mappedLines(linesOf(target, { action: "find γ" }))[0]!))
     );
-  const map = perLine((line) => keep(`map of ${line.name}`, () => makeMap(line)));
+  const map = perLine((line) =>
+    keep(`map of ${line.name}`, () => placed(target, () => makeMap(line)))
+  );
   const makeMap = async (line: LineSettings) => {
     const made = await trail(line);
     await pause(signal);
@@ -136,7 +139,7 @@ export function openSession(
     });
   };
   const anyMap = from === undefined
-    ? perLine((line) => keep(`tests of ${line.name}`, () => makeTests(line)))
+    ? perLine((line) => keep(`tests of ${line.name}`, () => placed(target, () => makeTests(line))))
     : (line: LineSettings) => from.anyMap(there(line));
   const makeTests = async (line: LineSettings) => {
     const made = await trail(line);
@@ -152,7 +155,9 @@ export function openSession(
     });
   };
   const study = <T>(name: string, make: (mapped: MappedLine) => Promise<T>) =>
-    perLine((line) => keep(`${name} of ${line.name}`, async () => make(await map(line))));
+    perLine((line) =>
+      keep(`${name} of ${line.name}`, async () => placed(target, async () => make(await map(line))))
+    );
   const studies: MapStudies = {
     structures: study("structures", (mapped) => structuresStudy(mapped, { signal })),
     sensitivity: study("sensitivity", (mapped) => sensitivityStudy(mapped, { signal })),
@@ -184,6 +189,15 @@ export function openSession(
     signal,
   };
   return session;
+}
+
+/** Says of what goes wrong where in the target file it stands. */
+async function placed<T>(target: Target, make: () => T | Promise<T>): Promise<T> {
+  try {
+    return await make();
+  } catch (error) {
+    throw inFile(target, error);
+  }
 }
 
 function once<T>(make: () => Promise<T>): () => Promise<T> {

@@ -1,4 +1,4 @@
-import { type InversionRecipe, makeInverter } from "../../tomography/mod.ts";
+import { checkTrail, type InversionRecipe, makeInverter } from "../../tomography/mod.ts";
 import type { Trail } from "../../trail/mod.ts";
 import { pause } from "../pause.ts";
 import type { Inverted, InvertOptions } from "./inverted.ts";
@@ -34,7 +34,7 @@ export async function byBackProjection(trail: Trail, options: InvertOptions): Pr
     iterations: 1,
     converged: true,
     misalignment: null,
-    warnings: [],
+    warnings: checkTrail(trail, recipe).map((warning) => ({ ...warning, line: trail.line.name })),
     recipe,
     alternatives: [],
   };

@@ -1,6 +1,6 @@
-import { InputError } from "../../errors.ts";
 import type { PlateSubject } from "../../figures/mod.ts";
 import { figureFiles } from "../figure_files.ts";
+import { inFile } from "../in_file.ts";
 import { mappedLines } from "../line_of.ts";
 import { type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
 import { type PlateFigure, plateFigures } from "../plate_figures.ts";
@@ -40,9 +40,9 @@ export async function runPlate(
   const { plate } = target.settings;
   const lines = session.lines("draw the plate");
   // A word that is wrong is told before hours of work, not after.
-  const figures = inFile(target, () => plateFigures(plate, lines));
+  const figures = placed(target, () => plateFigures(plate, lines));
   for (const { description, lines: shown } of figures) {
-    inFile(target, () => checkPlate(description, shown.length));
+    placed(target, () => checkPlate(description, shown.length));
   }
   const limits = new Map<LineSettings, LineLimit>();
   const limit = async (line: LineSettings) => {
@@ -58,7 +58,7 @@ export async function runPlate(
     for (const [i, line] of shown.entries()) {
       subjects.push(await plateSubject(session, { line, panels: panels[i]!, limit }));
     }
-    const drawn = inFile(target, () => drawPlate(description, subjects));
+    const drawn = placed(target, () => drawPlate(description, subjects));
     captions.push(drawn.caption);
     made.push(...await figureFiles(drawn, { name, plate }));
   }
@@ -82,22 +82,12 @@ export async function runPlate(
 }
 
 /** Says where in the target file an error is. */
-function inFile<T>(target: Target, make: () => T): T {
+function placed<T>(target: Target, make: () => T): T {
   try {
     return make();
   } catch (error) {
-    if (!(error instanceof InputError)) throw error;
-    throw error.at({ file: target.file, ...placeOf(target, error.key ?? "plate") });
+    throw inFile(target, error);
   }
-}
-
-/** Place of a key, or of the nearest table that it stands in. */
-function placeOf(target: Target, key: string): { line: number } | undefined {
-  for (let part = key; part !== ""; part = part.replace(/(\.|\[)?[^.[]*$/, "")) {
-    const place = target.places.get(part);
-    if (place !== undefined) return { line: place.line };
-  }
-  return undefined;
 }
 
 /** Warnings of the lines that the page and the figures show. */

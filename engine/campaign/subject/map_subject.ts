@@ -17,7 +17,7 @@ export function mapSubject(
   mapped: MappedLine,
 ): Pick<
   PlateSubject,
-  "map" | "model" | "residual" | "features" | "reduced_chi_square" | "spread"
+  "map" | "model" | "residual" | "features" | "reduced_chi_square" | "spread" | "phase_gap"
 > {
   return {
     map: mapped.map,
@@ -26,6 +26,7 @@ export function mapSubject(
     features: mapped.features,
     reduced_chi_square: mapped.reduced_chi_square,
     ...(mapped.spread === null ? {} : { spread: mapped.spread }),
+    ...(mapped.phase_gap === null ? {} : { phase_gap: mapped.phase_gap }),
   };
 }
 

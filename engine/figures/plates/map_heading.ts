@@ -27,7 +27,7 @@ import type { PlateSubject } from "./plate_subject.ts";
  * ```
  */
 export function mapHeading(subject: PlateSubject, frame: Box): Item[] {
-  const { title, line, method, systemic_kms, reduced_chi_square: chi = null } = subject;
+  const { title, line, method, systemic_kms, reduced_chi_square: chi = null, phase_gap } = subject;
   const top = frame.y + 5;
   const large = frame.width > 150;
   const left: { runs: Run[]; quiet?: boolean }[] = [];
@@ -40,6 +40,10 @@ export function mapHeading(subject: PlateSubject, frame: Box): Item[] {
     if (chi !== null) right.push(labelRuns(`*χ*^{2}/*N* ${chi.toFixed(2)}`));
     const gamma = String(Number(systemic_kms.toFixed(1))).replace("-", "−");
     right.push(labelRuns(`*γ* ${gamma} ${KMS_LABEL}`));
+  }
+  // What a map was made in spite of is said on small ones, too.
+  if (phase_gap !== undefined) {
+    right.push(plainRuns(`phase gap ${phase_gap.toFixed(2)}`));
   }
   const size = large ? LABEL_PT : NOTE_PT;
   return [

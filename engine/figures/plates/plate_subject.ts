@@ -31,6 +31,16 @@ export interface DetectionMap extends VelocityMap {
   readonly trials: number;
 }
 
+/** A map of another χ². */
+export interface NearMap {
+  /** The map. */
+  readonly map: VelocityMap;
+  /** χ² over the number of samples. */
+  readonly reduced_chi_square: number;
+  /** Whether the χ² that was aimed for could be reached. */
+  readonly reached: boolean;
+}
+
 /**
  * All that plates may show of one object in one line. Each panel needs a few of the fields and says
  * which one is missing.
@@ -52,6 +62,8 @@ export interface PlateSubject {
   readonly binary_range?: readonly [MarkedBinary, MarkedBinary];
   /** The velocity map. */
   readonly map?: VelocityMap;
+  /** Largest gap in phase modulo half an orbit, cycles, where the map was made in spite of it. */
+  readonly phase_gap?: number;
   /** The trail: its display grid and the sampling of the orbit. */
   readonly trail?: {
     /** Uniform grid for display. */
@@ -86,6 +98,33 @@ export interface PlateSubject {
   readonly resolution?: readonly ResolutionEllipse[];
   /** Least flux of a compact source that would have been found, in units of the continuum × km/s. */
   readonly detection_limit?: DetectionMap;
+  /** Maps at χ² a little lower and higher. */
+  readonly sensitivity?: {
+    /** Fits the data more closely. */
+    readonly closer: NearMap;
+    /** Fits the data less closely. */
+    readonly looser: NearMap;
+    /** Half of closer less looser. */
+    readonly half_difference: VelocityMap;
+  };
+  /** What the sampling alone makes of a round map. */
+  readonly sampling_structures?: VelocityMap;
+  /** Emission that goes as cosine and sine of the phase. */
+  readonly modulation?: {
+    /** Goes as cos 2πφ. */
+    readonly cosine: VelocityMap;
+    /** Goes as sin 2πφ. */
+    readonly sine: VelocityMap;
+  };
+  /** The map of a blend that has its own. */
+  readonly blend_map?: {
+    /** Name of the blend. */
+    readonly name: string;
+    /** Its rest wavelength in air, Å. */
+    readonly rest_air_angstrom: number;
+    /** Its map. */
+    readonly map: VelocityMap;
+  };
   /** Mean spectrum and the lines to name in it. */
   readonly spectrum?: MeanSpectrum & {
     /** Lines to identify. */
