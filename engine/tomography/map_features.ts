@@ -53,6 +53,13 @@ export interface MapFeaturesOptions {
    */
   readonly alternatives?: readonly VelocityMap[];
   /**
+   * The map of the map, from {@linkcode remakeMap}: how far the inversion moves a feature once more is
+   * taken off its place. Total variation draws features towards brighter ground and needs it.
+   *
+   * @default {null}
+   */
+  readonly remade?: VelocityMap | null;
+  /**
    * Error of the systemic velocity, km/s: it moves every feature along with the whole data.
    *
    * @default {0}
@@ -136,8 +143,10 @@ export function featurePeaks(
 /**
  * Finds compact excesses over the part of a map that is axisymmetric about the accretor: peaks of the
  * excess smoothed to the resolution. The place is the centroid under a Gaussian window; the flux
- * is twice what lies above half the peak, which is exact for a Gaussian. Errors are the scatter of the same
- * measurement on replicas, what more or less regularisation moves, and those of γ and phase zero. Significance counts the resolution elements searched.
+ * is twice what lies above half the peak, which is exact for a Gaussian. Given the map of the map, the
+ * place has the inversion's bias taken off. Errors are the scatter of the same measurement on replicas, what
+ * more or less regularisation moves, and those of γ and phase zero. Significance counts the resolution
+ * elements searched.
  *
  * @param map The map.
  * @param options Resolution, centre, scatter.
@@ -160,20 +169,23 @@ export function featurePeaks(
  */
 export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapFeature[] {
   const { resolution_kms, spread = null, find_part = null, least_sigma = 3, limit = 8 } = options;
+  const { remade = null } = options;
   const { centre = { vx_kms: 0, vy_kms: 0 }, rim_speed_kms = null } = options;
   const excess = mapExcess(map, { centre, resolution_kms });
   const area = (map.pixels * mapStep(map)) ** 2;
   const places = Math.max(1, area / (Math.PI * (0.5 * resolution_kms) ** 2));
   const others = (options.alternatives ?? []).map((m) => mapExcess(m, { centre, resolution_kms }));
+  const again = remade && mapExcess(remade, { centre, resolution_kms });
   const features: (MapFeature & { readonly rank: number })[] = [];
   featurePeaks(map, options).forEach((peak, f) => {
-    const blob = excess.blobAt(peak);
-    if (blob === null) return;
+    const seen = excess.blobAt(peak);
+    if (seen === null) return;
+    const blob = { ...seen, ...unmoved(seen, again && again.blobAt(again.climb(peak))) };
     const followed = spread?.features[f];
     const moved = others.flatMap((e) => e.blobAt(e.climb(peak)) ?? []);
     const errors = followed === undefined
       ? null
-      : placeErrors(followed, { ...options, blob, moved });
+      : placeErrors(followed, { ...options, blob: seen, moved });
     const significance = followed === undefined
       ? null
       : globalSigma(excess.values[peak]! / deviation(followed.height), places);
@@ -192,6 +204,13 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
   });
   return features.sort((a, b) => b.rank - a.rank).slice(0, limit)
     .map(({ rank: _rank, ...feature }) => feature);
+}
+
+/** A place less what the inversion moved it, judged by how far it moves it once more. */
+function unmoved(seen: MapPlace, again: MapPlace | null): MapPlace {
+  const { vx_kms, vy_kms } = seen;
+  if (again === null) return { vx_kms, vy_kms };
+  return { vx_kms: 2 * vx_kms - again.vx_kms, vy_kms: 2 * vy_kms - again.vy_kms };
 }
 
 /** Scatter among replicas, with γ and phase zero in quadrature. */

@@ -49,6 +49,7 @@ export * from "./profile_filter.ts";
 export * from "./profile_moments.ts";
 export * from "./projector.ts";
 export * from "./reference_projector.ts";
+export * from "./remake_map.ts";
 export * from "./resolution.ts";
 export * from "./ring_profile.ts";
 export * from "./sampling_structures.ts";

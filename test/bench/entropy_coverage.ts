@@ -9,10 +9,10 @@ import {
   makeInverter,
   mapFeatures,
   maximumEntropy,
+  remakeMap,
   resampleMaps,
   systemicByParity,
   totalVariation,
-  type VelocityMap,
 } from "@millrace/millrace/tomography";
 import { coverageProblem, SPOT_SEEN } from "../tomography/coverage_problem.ts";
 
@@ -45,8 +45,11 @@ async function places(method: string, signal_to_noise: number): Promise<void> {
     const look = { resolution_kms };
     const peaks = featurePeaks(map, look);
     const spread = await resampleMaps(trail, { ...look, recipe, count: REPLICAS, seed, peaks });
-    const alternatives = regularised(recipe, trail);
-    const [found] = mapFeatures(map, { ...look, spread, alternatives, least_sigma: 0, limit: 40 })
+    // Total variation moves features; entropy does not, beside its noise.
+    const remade = recipe.inversion === "total-variation"
+      ? remakeMap(trail, { recipe, map })
+      : null;
+    const [found] = mapFeatures(map, { ...look, spread, remade, least_sigma: 0, limit: 40 })
       .filter((f) =>
         Math.hypot(f.vx_kms - SPOT_SEEN.vx_kms, f.vy_kms - SPOT_SEEN.vy_kms) < resolution_kms
       );
@@ -88,19 +91,6 @@ function held(
   } catch {
     return null;
   }
-}
-
-/** Total-variation maps with half and twice the weight: their bias is not small beside their noise. */
-function regularised(recipe: InversionRecipe, trail: Problem["trail"]): VelocityMap[] {
-  if (recipe.inversion !== "total-variation") return [];
-  return [0.5, 2].flatMap((factor) => {
-    try {
-      const weight = factor * (recipe.weight as number);
-      return [makeInverter(trail, { ...recipe, weight })(trail).map];
-    } catch {
-      return [];
-    }
-  });
 }
 
 if (ONLY === "" || ONLY === "places") {
