@@ -10,6 +10,7 @@ import { groupPhotometry } from "./group_photometry.ts";
 import type { InputDigest } from "./output_head.ts";
 import { pause } from "./pause.ts";
 import type { Target } from "./target.ts";
+import { unusedExposures } from "./unused_exposures.ts";
 import { type GroupZero, zeroedGroup } from "./wavelength_zeros.ts";
 
 /** All exposures of a target. */
@@ -111,13 +112,14 @@ export async function readTargetExposures(
   }
   const light = await groupPhotometry(target, { spectra });
   for (const input of light.inputs) inputs.set(input.file, input);
+  const unused = unusedExposures(target, spectra);
   return {
     spectra,
     direction,
     zeros,
     photometry: light.curves,
     decisions: [...decisions, ...light.decisions],
-    warnings: [...warnings, ...light.warnings],
+    warnings: [...warnings, ...light.warnings, ...(unused === null ? [] : [unused])],
     inputs: [...inputs.values()],
   };
 }

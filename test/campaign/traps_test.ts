@@ -394,3 +394,27 @@ Deno.test("trap: exposures of another star among the files are pointed out", asy
   const document = await (await writeCampaign([{ raw }])).check();
   assertStringIncludes(textOf(document, "pointed-elsewhere"), "1 of 8 exposures point elsewhere");
 });
+
+Deno.test("trap: exposures of another grating are left out of a line, and named", async () => {
+  const blue = madeExposures({ count: 12, cadence_s: 570 });
+  const red = asLine(blue, "H alpha");
+  const mixed = blue.map((one, k) => k % 6 === 2 ? red[k]! : one);
+  const document = await (await writeCampaign([{ raw: mixed }])).check();
+  assertEquals(document.lines[0]!.exposures, 10);
+  assertEquals(
+    textOf(document, "line-not-covered"),
+    "2 exposures do not cover the line, as others of their group do, and are left out: night/night-003.fits, night/night-009.fits",
+  );
+  assertEquals(
+    textOf(document, "exposures-unused"),
+    "2 of 12 exposures cover no line of the target file: night/night-003.fits, night/night-009.fits",
+  );
+  // An arm is of use to a line of its own, and missed where it has none.
+  const arms = [{ name: "one", raw: blue }, { name: "two", raw: red.slice(0, 6) }];
+  const read = async (sections: Partial<typeof SECTIONS>) =>
+    await (await (await writeCampaign(arms, { exposures: TWO_GROUPS, ...sections })).open())
+      .exposures();
+  assertEquals(codes(await read({})), ["exposures-unused"]);
+  const lines = `${SECTIONS.lines}\n${SECTIONS.lines!.replace("H beta", "H alpha")}`;
+  assertEquals(codes(await read({ lines })), []);
+});
