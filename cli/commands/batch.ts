@@ -21,7 +21,7 @@ import { type CommandContext, type CommandResult, runCommand } from "../run_comm
 import { durationText } from "../terminal/duration.ts";
 import { tableLines } from "../terminal/table.ts";
 
-type BatchCall = CommonOptions & { part?: string; gather?: true };
+type BatchCall = CommonOptions & { part?: string; gather?: true; force?: true };
 
 /**
  * `millrace batch`: many targets, unattended.
@@ -32,6 +32,7 @@ type BatchCall = CommonOptions & { part?: string; gather?: true };
 export const batchCommand = (finish: (status: number) => void) =>
   commandWith("batch", "many targets, unattended: figures, one table, a page; what is done is kept")
     .argument("<manifest>", "manifest (TOML): targets, commands, settings")
+    .option("--force", "make maps in spite of a large gap in phase; the figures say so")
     .option("--part <i/n>", "do one share of n, as a task of a cluster's array job")
     .option("--gather", "join what the shares have made; name what is missing")
     .action(async (file, options) => {
@@ -58,6 +59,7 @@ async function batch(
     owner,
     set: call.set,
     seed: call.seed,
+    force: call.force,
     overwrite: call.overwrite,
     now: utcNow,
     signal: context.signal,

@@ -288,3 +288,20 @@ Deno.test("provenance.json says from what, when and with what digests a target w
       assert(!new TextDecoder("latin1").decode(bytes).includes("2030-01-01"), name);
     }
   }));
+
+Deno.test("runBatch() maps in spite of a large gap in phase when told to, and keeps what it made", () =>
+  inFolder(async (folder) => {
+    const more =
+      '[[changes]]\ntargets = ["*"]\nset = ["trail.skip_phases=[[0.07, 0.44], [0.57, 0.94]]"]\n';
+    const { manifest } = await smallCampaign(folder, { stars: 1, commands: ["map"], more });
+    const out = join(folder, "out");
+    const refused = await run(manifest, out);
+    assertEquals(refused.result!.document.failed.length, 1);
+    assertStringIncludes(refused.outcomes[0]!.runs[0]!.error!.message, "gap");
+    const forced = await run(manifest, out, { force: true });
+    assertEquals(forced.result!.document.failed, []);
+    assertEquals(statuses(await run(manifest, out, { force: true })), ["vx-2401: kept kept"]);
+    const read = await readManifest(manifest);
+    const jobs = batchJobs(read, { force: true });
+    assertEquals((await gatherBatch(read, { jobs, folder: out })).document.missing, []);
+  }));

@@ -26,6 +26,8 @@ export interface BatchJob {
   readonly path: string;
   /** Seed in place of the target file's. */
   readonly seed?: number;
+  /** Whether maps are made in spite of a large gap in phase. */
+  readonly force: boolean;
   /** Its treatments, the target's own first. */
   readonly runs: readonly JobRun[];
 }
@@ -37,13 +39,14 @@ export interface BatchJob {
  * @param options Changes for all.
  * @param options.set Overrides after those of the manifest.
  * @param options.seed Seed in place of the target files'.
+ * @param options.force Whether maps are made in spite of a large gap in phase. @default false
  * @returns One job a target, sorted by name.
  */
 export function batchJobs(
   manifest: Manifest,
-  options: { set?: readonly string[]; seed?: number } = {},
+  options: { set?: readonly string[]; seed?: number; force?: boolean } = {},
 ): BatchJob[] {
-  const { set = [], seed } = options;
+  const { set = [], seed, force = false } = options;
   const { settings, targets } = manifest;
   return targets.map((target) => {
     const own = [
@@ -57,6 +60,7 @@ export function batchJobs(
       file: target.file,
       path: target.path,
       ...(seed === undefined ? {} : { seed }),
+      force,
       runs: [
         {
           variant: null,

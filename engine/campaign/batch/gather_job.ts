@@ -67,7 +67,11 @@ async function gatherRun(
   const { variant } = run;
   try {
     const target = await jobTarget(job, run);
-    const { key } = openRecord(target, { inputs: await inputDigests(target), folder });
+    const { key } = openRecord(target, {
+      inputs: await inputDigests(target),
+      folder,
+      force: job.force,
+    });
     const known = (await readProvenance(folder))?.runs.find((entry) => entry.key === key)?.steps;
     const steps: GatheredStep[] = [];
     for (const command of run.commands) {

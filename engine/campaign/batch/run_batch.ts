@@ -33,6 +33,8 @@ export interface BatchOptions {
   readonly set?: readonly string[];
   /** Seed in place of the target files'. @default None */
   readonly seed?: number;
+  /** Whether maps are made in spite of a large gap in phase. @default {false} */
+  readonly force?: boolean;
   /** Whether files that Millrace did not write may be replaced. @default {false} */
   readonly overwrite?: boolean;
   /** Who runs it, for the message that another run gets. @default {"millrace batch"} */
@@ -72,9 +74,9 @@ const LOOK_MS = 200;
  * @throws {WorkError} When another run is at work in the folder, or the tables cannot be written.
  */
 export function runBatch(manifest: Manifest, options: BatchOptions): Promise<BatchReport> {
-  const { folder, part, set, seed, owner = "millrace batch", now, signal } = options;
+  const { folder, part, set, seed, force, owner = "millrace batch", now, signal } = options;
   return holdPart(folder, async () => {
-    const jobs = batchJobs(manifest, { set, seed });
+    const jobs = batchJobs(manifest, { set, seed, force });
     const costs: number[] = [];
     for (const job of jobs) costs.push(await expectedCost(job));
     const share = part === undefined ? null : shareByCost(costs, part.count);

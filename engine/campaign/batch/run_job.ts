@@ -82,7 +82,13 @@ export async function runJob(job: BatchJob, options: JobOptions): Promise<JobOut
       runs.push(
         await holdFolder(
           join(folder, run.folder),
-          () => runSteps(target, { ...options, run, folder: join(folder, run.folder) }),
+          () =>
+            runSteps(target, {
+              ...options,
+              run,
+              folder: join(folder, run.folder),
+              force: job.force,
+            }),
           { owner },
         ),
       );
@@ -115,12 +121,13 @@ export async function jobTarget(job: BatchJob, run: JobRun): Promise<Target> {
 
 async function runSteps(
   target: Target,
-  options: JobOptions & { run: JobRun },
+  options: JobOptions & { run: JobRun; force: boolean },
 ): Promise<RunOutcome> {
-  const { run, folder, signal, progress } = options;
-  const record = openRecord(target, { inputs: await inputDigests(target, { signal }), folder });
+  const { run, folder, force, signal, progress } = options;
+  const inputs = await inputDigests(target, { signal });
+  const record = openRecord(target, { inputs, folder, force });
   const keeper = keepResults(folder, record.key);
-  const session = openSession(target, { keep: keeper.keep, signal, progress });
+  const session = openSession(target, { force, keep: keeper.keep, signal, progress });
   const steps: StepOutcome[] = [];
   let provenance = await readProvenance(folder);
   let first: StepError | null = null;
