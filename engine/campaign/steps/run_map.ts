@@ -48,6 +48,8 @@ export interface MapSummary {
   readonly multiplier: number | null;
   /** Whether the line was inverted as it is, with its sign turned, or with either sign allowed. */
   readonly sign: LineSign;
+  /** Largest gap in phase modulo half an orbit that the map was made in spite of; null where there is none. */
+  readonly phase_gap: number | null;
   /** The lines mapped with it. */
   readonly blends: readonly BlendSummary[];
   /** The straight baselines fitted with the map; null when they were held at zero. */
@@ -183,6 +185,7 @@ function summary(
     goal_used: mapped.goal,
     multiplier: mapped.multiplier,
     sign: mapped.sign,
+    phase_gap: mapped.phase_gap,
     blends: mapped.blends.map((blend) => blendSummary(mapped, blend)),
     baseline: mapped.baselines === null ? null : {
       level_rms: rootMeanSquare(mapped.baselines.level),
