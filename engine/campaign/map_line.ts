@@ -143,7 +143,7 @@ export async function mapLine(
     resolution_kms,
     centre,
     spread,
-    alternatives: spread === null ? [] : inverted.alternatives,
+    remade: inverted.remade,
     systemic_error_kms: systemic.error_kms ?? 0,
     phase_error: phaseError(ephemeris, options.epoch),
     find_part: placed ? partFinder(binary) : null,
@@ -151,7 +151,7 @@ export async function mapLine(
       ? null
       : keplerianSpeed(disc.outer_radius_over_a, binary),
   });
-  const { alternatives: _others, model: samples, straight, ...rest } = inverted;
+  const { remade: _again, model: samples, straight, ...rest } = inverted;
   return {
     ...rest,
     trail,

@@ -156,7 +156,7 @@ export function openSession(
   };
   const study = <T>(name: string, make: (mapped: MappedLine) => Promise<T>) =>
     perLine((line) =>
-      keep(`${name} of ${line.name}`, async () => placed(target, async () => make(await map(line))))
+      keep(`${name} of ${line.name}`, () => placed(target, async () => make(await map(line))))
     );
   const studies: MapStudies = {
     structures: study("structures", (mapped) => structuresStudy(mapped, { signal })),

@@ -87,6 +87,6 @@ export async function byEntropy(trail: Trail, options: InvertOptions): Promise<I
       level: found.level,
       max_iterations: REPLICA_ITERATIONS,
     },
-    alternatives: [],
+    remade: null,
   };
 }

@@ -101,7 +101,7 @@ export async function bySeparateMaps(
         multiplier: found.multiplier,
         start: map!,
       },
-      alternatives: [],
+      remade: null,
     },
   };
 }

@@ -4,7 +4,7 @@ import {
   fitOfMap,
   goalRaised,
   type InversionRecipe,
-  makeInverter,
+  remakeMap,
   type TotalVariationOptions,
   totalVariationSteps,
   type VariationMap,
@@ -32,8 +32,8 @@ const RAISED = 1.02;
  *
  * @param trail The trail.
  * @param options How.
- * @returns The map and its fit; maps of half and twice the weight as alternatives, since here what the
- * weight does to places is not small beside the noise.
+ * @returns The map and its fit, and the map of the map: what the inversion does to places is here not
+ * small beside the noise.
  */
 export async function byVariation(trail: Trail, options: InvertOptions): Promise<Inverted> {
   const { settings, pixels, systemic_kms, blends, sign, force } = options;
@@ -74,7 +74,7 @@ export async function byVariation(trail: Trail, options: InvertOptions): Promise
     });
   }
   warnings.push(...found.warnings);
-  const recipe: InversionRecipe & { readonly weight: number } = {
+  const recipe: InversionRecipe = {
     inversion: "total-variation",
     ...asked,
     weight: found.weight,
@@ -95,7 +95,7 @@ export async function byVariation(trail: Trail, options: InvertOptions): Promise
     misalignment: null,
     warnings: warnings.map((warning) => ({ ...warning, line: trail.line.name })),
     recipe,
-    alternatives: await regularised(trail, { ...options, recipe }),
+    remade: remadeMap(trail, { recipe, map: found.map }),
   };
 }
 
@@ -145,21 +145,12 @@ async function predictingWeight(
   return found.weight * TRIED[misses.indexOf(Math.min(...misses))]!;
 }
 
-/** Maps with half and twice the weight; one that does not settle is left out. */
-async function regularised(
-  trail: Trail,
-  options: InvertOptions & { readonly recipe: InversionRecipe & { readonly weight: number } },
-): Promise<VelocityMap[]> {
-  const { recipe, signal } = options;
-  const maps: VelocityMap[] = [];
-  for (const factor of [0.5, 2]) {
-    const changed = { ...recipe, weight: factor * recipe.weight } as InversionRecipe;
-    try {
-      maps.push(makeInverter(trail, changed)(trail).map);
-    } catch (error) {
-      if (!(error instanceof NotConverged)) throw error;
-    }
-    await pause(signal);
+/** The map of the map, from which the inversion's bias is judged; null where it does not settle. */
+function remadeMap(trail: Trail, found: Pick<Inverted, "recipe" | "map">): VelocityMap | null {
+  try {
+    return remakeMap(trail, found);
+  } catch (error) {
+    if (!(error instanceof NotConverged)) throw error;
+    return null;
   }
-  return maps;
 }

@@ -1,7 +1,6 @@
 import type { Warning } from "../../errors.ts";
 import type {
   BlendMember,
-  Inversion,
   InversionRecipe,
   PriorImage,
   VelocityMap,
@@ -38,8 +37,8 @@ export interface Inverted {
   readonly warnings: readonly Warning[];
   /** How maps of resampled data are made: with the multiplier of this one held, where it has one. */
   readonly recipe: InversionRecipe;
-  /** Maps with more and with less regularisation, where what that moves belongs into the errors. */
-  readonly alternatives: readonly VelocityMap[];
+  /** The map of the map, where what the inversion does to places must be taken off; else null. */
+  readonly remade: VelocityMap | null;
 }
 
 /** How a trail is inverted. */
@@ -62,10 +61,4 @@ export interface InvertOptions {
   readonly progress?: Progress;
   /** Aborts the work. */
   readonly signal?: AbortSignal;
-}
-
-/** An inversion as the studies of a map take it. */
-export function inversionOf(inverted: Inverted): Inversion {
-  const { map, model, scale, reduced_chi_square, iterations, multiplier } = inverted;
-  return { map, model, scale: Math.abs(scale), reduced_chi_square, iterations, multiplier };
 }
