@@ -16,7 +16,7 @@ import {
   runPlate,
 } from "../../engine/campaign/mod.ts";
 import { InputError } from "../../engine/errors.ts";
-import { panelNames } from "../../engine/figures/mod.ts";
+import { panelNames, studyKinds } from "../../engine/figures/mod.ts";
 import { demoNight, FEW } from "./plate_fixture.ts";
 
 const night = await demoNight();
@@ -26,9 +26,13 @@ function plateOf(rows: string): string {
   return `[plate]\nletters = true\nrows = [\n${rows}\n]\n`;
 }
 
+/** Panels of what is asked of a map beside it; a blend's map needs one. */
+const studies = [...Object.keys(studyKinds), "period-scan", "sampling"];
+
 Deno.test("runPlate() makes every panel from the demo's target file", async () => {
-  // The last one is drawn by weigh, on a plate of its own: weigh_figures_test.ts.
-  const drawn = panelNames.filter((panel) => panel !== "null-distribution");
+  // One is drawn by weigh, on a plate of its own: weigh_figures_test.ts.
+  const others = [...studies, "blend", "null-distribution"];
+  const drawn = panelNames.filter((panel) => !others.includes(panel));
   const rows = drawn.map((panel) => `  { panels = ["${panel}"], height_mm = 20 },`);
   const session = await night.open({ plate: plateOf(rows.join("\n")) });
   const { document, files } = await runPlate(session, out("all"));
@@ -39,6 +43,26 @@ Deno.test("runPlate() makes every panel from the demo's target file", async () =
   assert(!/NaN|undefined|null|Infinity/.test(caption!), caption);
   const svg = await Deno.readTextFile(files[0]!);
   for (const panel of drawn) assertStringIncludes(svg, `data-name="${panel}"`);
+});
+
+Deno.test("runPlate() makes every panel of studies of a map from the demo's target file", async () => {
+  const rows = studies.map((panel) => `  { panels = ["${panel}"], height_mm = 20 },`);
+  const set = [
+    'map.method="entropy"',
+    "map.pixels=83",
+    "map.resamples=0",
+    'plate.formats=["svg"]',
+  ];
+  const session = await night.open({ plate: plateOf(rows.join("\n")), set });
+  const { document, files } = await runPlate(session, out("studies"));
+  const [caption] = document.captions;
+  assert(!/NaN|undefined|null|Infinity/.test(caption!), caption);
+  assertMatch(
+    caption!,
+    /against the period\. Best value: 0\.08\d+ ± 0\.0\d+ d\. Dotted: the adopted/,
+  );
+  const svg = await Deno.readTextFile(files[0]!);
+  for (const panel of studies) assertStringIncludes(svg, `data-name="${panel}"`);
 });
 
 Deno.test("runPlate() tells the same numbers as map.json and orbit.json", async () => {

@@ -57,6 +57,38 @@ export function exampleSubject(): PlateSubject {
   );
   return {
     ...content,
+    period_scan: {
+      x: Array.from({ length: 11 }, (_, i) => 0.0823714 + 4e-7 * (i - 4)),
+      y: Array.from({ length: 11 }, (_, i) => 1.4 * (i - 5) ** 2),
+      best: 0.0823718,
+      best_error: 3e-7,
+      reference: 0.0823714,
+      label: "excess of *χ*^{2} − *αS*",
+      statistic: "χ² − αS of maps, over its least,",
+    },
+    sensitivity: {
+      closer: {
+        map: scaled(map, (value, i) => value + 0.02 * peak * wobble(i)),
+        reduced_chi_square: 0.96,
+        reached: true,
+      },
+      looser: {
+        map: scaled(map, (value) => 0.97 * value),
+        reduced_chi_square: 1.06,
+        reached: true,
+      },
+      half_difference: scaled(map, (value, i) => 0.015 * value + 0.01 * peak * wobble(i)),
+    },
+    modulation: {
+      cosine: scaled(map, (value, i) => 0.2 * value * Math.sin(i / 900)),
+      sine: scaled(map, (value, i) => 0.1 * value * Math.cos(i / 300)),
+    },
+    sampling_structures: scaled(map, (value, i) => 0.05 * value * Math.sin(i / 500)),
+    blend_map: {
+      name: "He I 4922",
+      rest_air_angstrom: 4921.93,
+      map: scaled(map, (value) => 0.2 * value),
+    },
     null_distribution: {
       null_name: "disc",
       against_name: "disc + spot",

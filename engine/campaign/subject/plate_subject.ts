@@ -7,7 +7,8 @@ import { nightsOf } from "./nights.ts";
 import { orbitSubject } from "./orbit_subject.ts";
 import { overlaySubject } from "./overlay_subject.ts";
 import { phaseCurves, spectrumSubject } from "./profile_subject.ts";
-import { scanSubject } from "./scan_subject.ts";
+import { studySubject } from "./study_subject.ts";
+import { scanByMaps, scanSubject } from "./scan_subject.ts";
 
 const ORBIT: readonly PanelName[] = [
   "velocity-curve",
@@ -81,8 +82,16 @@ export async function plateSubject(
     ...subject,
     ...mapSubject(mapped),
     ...(wants(HALVES) ? { halves: halvesSubject(mapped, { period_d }) } : {}),
-    ...(wants(["systemic-scan"]) ? scanSubject(mapped) : {}),
+    ...(wants(["systemic-scan"])
+      ? target.settings.map.systemic_scan
+        ? { systemic_scan: scanByMaps(await session.studies.systemicScan(line)) }
+        : scanSubject(mapped)
+      : {}),
+    ...(wants(["period-scan"])
+      ? { period_scan: scanByMaps(await session.studies.periodScan(line)) }
+      : {}),
     ...(wants(["resolution"]) ? resolutionSubject(mapped) : {}),
+    ...await studySubject(session, { line, mapped, wants }),
     ...(wants(["detection-limit"]) && binary !== null
       ? { detection_limit: limitMap(await options.limit(line), mapped.map) }
       : {}),

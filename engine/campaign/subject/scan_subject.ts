@@ -2,6 +2,7 @@ import type { PlateSubject } from "../../figures/mod.ts";
 import { InputError } from "../../errors.ts";
 import { parityScan, systemicByParity, type SystemicVelocity } from "../../tomography/mod.ts";
 import type { MappedLine } from "../map_line.ts";
+import type { ScanStudy } from "../studies/scan_study.ts";
 
 /** Points of the scan. */
 const POINTS = 61;
@@ -61,5 +62,32 @@ export function scanSubject(mapped: MappedLine): Pick<PlateSubject, "systemic_sc
       statistic:
         "χ² per degree of freedom of the moments of the profiles, as those of a fixed map,",
     },
+  };
+}
+
+/** What panels say of each shape of a curve. */
+const SHAPES: Readonly<Record<ScanStudy["shape"], string>> = {
+  minimum: "one clear minimum",
+  flat: "flat, so that these data do not tell it",
+  edge: "least at the end of what was tried",
+  several: "more than one minimum",
+};
+
+/**
+ * A parameter that was searched with maps of one multiplier, as a panel shows it.
+ *
+ * @param study What was found.
+ * @returns The scan.
+ */
+export function scanByMaps(study: ScanStudy): NonNullable<PlateSubject["systemic_scan"]> {
+  const { values, excess, best, error, shape, adopted } = study;
+  return {
+    x: values,
+    y: excess,
+    best,
+    best_error: error,
+    reference: adopted,
+    label: "excess of *χ*^{2} − *αS*",
+    statistic: `χ² − αS of entropy maps of one multiplier, over its least (${SHAPES[shape]}),`,
   };
 }

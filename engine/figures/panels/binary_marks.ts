@@ -10,6 +10,8 @@ export type VelocityCurve = readonly (readonly [vx_kms: number, vy_kms: number])
 
 /** Where the parts of a binary stand in its velocity map. */
 export interface BinaryMarks {
+  /** The centre of mass, (0, 0). */
+  readonly centre_of_mass: readonly [vx_kms: number, vy_kms: number];
   /** The accretor, (0, −K1). */
   readonly accretor: readonly [vx_kms: number, vy_kms: number];
   /** The donor's centre, (0, +K2). */
@@ -51,6 +53,7 @@ export function binaryMarks(
   const gas = streamVelocities(path, binary);
   const radii = path.points.map((point) => point.radius_over_a);
   return {
+    centre_of_mass: [0, 0],
     accretor: [0, -binary.k_accretor_kms],
     donor: [0, binary.k_donor_kms],
     donor_lobe: pairs(lobe.vx_kms, lobe.vy_kms),

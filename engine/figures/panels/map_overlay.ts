@@ -92,7 +92,10 @@ export function drawBinaryMarks(
     { kind: "path", d: ticks, stroke: INK, stroke_pt: 0.5 },
     ...cased([
       { d: plus(place.x(marks.accretor[0]), place.y(marks.accretor[1]), 3), width: 0.8 },
-      { d: cross(place.x(0), place.y(0), 1.8), width: 0.6 },
+      {
+        d: cross(place.x(marks.centre_of_mass[0]), place.y(marks.centre_of_mass[1]), 1.8),
+        width: 0.6,
+      },
     ]),
     ...(named ? nameMarks(marks, place) : []),
   ];

@@ -1,6 +1,6 @@
 import type { Sampling } from "../../trail/mod.ts";
 import type { VelocityMap } from "../../tomography/mod.ts";
-import { drawAxes } from "../axes.ts";
+import { axisTicks, drawAxes } from "../axes.ts";
 import { type ColourScale, paintGrid } from "../colour/colour_scale.ts";
 import { type Box, boxPath, ellipsePath, type Group, type Item } from "../display_list.ts";
 import { HAIRLINE_PT, QUIET } from "../style.ts";
@@ -30,6 +30,8 @@ export interface MapPanelOptions {
   readonly y_labels?: boolean;
   /** True to name the parts of the binary. @default {true} */
   readonly named?: boolean;
+  /** True where speeds are turned inside out: the axes count them from the rim. @default {false} */
+  readonly inside_out?: boolean;
   /** Name of the group. @default {"map"} */
   readonly name?: string;
 }
@@ -53,7 +55,7 @@ export interface MapPanelOptions {
  */
 export function mapPanel(map: VelocityMap, options: MapPanelOptions): Group {
   const { frame, scale, shape = "round", sampling, marks = null, features = [] } = options;
-  const { overlay = [], y_labels = true, named = true, name = "map" } = options;
+  const { overlay = [], y_labels = true, named = true, inside_out = false, name = "map" } = options;
   const place = mapWindow(map, frame);
   const { window, reach_kms } = place;
   const centre = [window.x + window.width / 2, window.y + window.height / 2] as const;
@@ -68,11 +70,15 @@ export function mapPanel(map: VelocityMap, options: MapPanelOptions): Group {
     ...drawFeatures(features, place),
   ];
   const range = [-reach_kms, reach_kms] as const;
-  const ticks = Math.max(2, Math.min(5, Math.round(window.width / 45)));
+  const count = Math.max(2, Math.min(5, Math.round(window.width / 45)));
+  const { ticks, format } = inside_out
+    ? speedTicks(map.half_width_kms, count)
+    : { ticks: count, format: undefined };
+  const label = (axis: string) => `${inside_out ? "speed along " : ""}*V*_{${axis}} (${KMS_LABEL})`;
   const axes = drawAxes(window, {
-    x: { range, ticks, label: `*V*_{x} (${KMS_LABEL})` },
+    x: { range, ticks, label: label("x"), ...(format ? { format } : {}) },
     y: y_labels
-      ? { range, ticks, label: `*V*_{y} (${KMS_LABEL})` }
+      ? { range, ticks, label: label("y"), ...(format ? { format } : {}) }
       : { range, ticks, format: null },
     offset_pt: RING_PT,
     boxed: false,
@@ -86,5 +92,15 @@ export function mapPanel(map: VelocityMap, options: MapPanelOptions): Group {
       ...(sampling ? exposureRing(sampling, { window, shape }) : []),
       ...axes,
     ],
+  };
+}
+
+/** Ticks of an axis whose middle is the half-width and whose ends are at rest. */
+function speedTicks(half_width_kms: number, count: number) {
+  const speeds = axisTicks({ range: [0, half_width_kms], ticks: Math.ceil(count / 2) });
+  const places = speeds.map(({ value }) => half_width_kms - value);
+  return {
+    ticks: [...places.map((place) => -place), ...places.toReversed().filter((place) => place > 0)],
+    format: (place: number) => String(Math.round(half_width_kms - Math.abs(place))),
   };
 }

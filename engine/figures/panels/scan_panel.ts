@@ -118,6 +118,51 @@ export function systemicScanPanel(
   return scanPanel(scan, { name: "systemic-scan", x_label: `*γ* (${KMS_LABEL})`, ...options });
 }
 
+/**
+ * Draws a scan of the period, as departures from the adopted period: its own digits would not fit on an axis.
+ *
+ * @param scan Periods in days and the statistic; its reference, or else its middle, is what departures count
+ * from.
+ * @param options Place and the statistic's label.
+ * @returns The panel.
+ *
+ * @example
+ * ```ts
+ * import { periodScanPanel } from "@millrace/millrace/figures";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const options = { frame: { x: 30, y: 10, width: 100, height: 60 }, y_label: "*χ*^{2}" };
+ * const scan = { x: [0.0823, 0.0824, 0.0825], y: [2, 1, 2], best: 0.0824, reference: 0.08241 };
+ * assertEquals(periodScanPanel(scan, options).name, "period-scan");
+ * ```
+ */
+export function periodScanPanel(
+  scan: Scan,
+  options: PanelPlace & {
+    /** Label of the statistic (markup of `labelRuns`). */
+    readonly y_label: string;
+  },
+): Group {
+  const { best = null, best_error = null, reference = null } = scan;
+  const [first, last] = ends(scan.x);
+  const middle = reference ?? (first + last) / 2;
+  const exponent = Math.floor(Math.log10((last - first) / 2));
+  const unit = 10 ** exponent;
+  const from = (period: number | null) => period === null ? null : (period - middle) / unit;
+  const digits = Math.max(0, 1 - exponent);
+  return scanPanel({
+    ...scan,
+    x: Array.from(scan.x, (period) => (period - middle) / unit),
+    best: from(best),
+    best_error: best_error === null ? null : best_error / unit,
+    reference: from(reference),
+  }, {
+    name: "period-scan",
+    x_label: `*P* − ${middle.toFixed(digits)} (10^{${String(exponent).replace("-", "−")}} d)`,
+    ...options,
+  });
+}
+
 /** About how many ticks fit, at this distance or more. */
 function tickCount(length_pt: number, distance_pt: number): number {
   return Math.max(3, Math.round(length_pt / distance_pt));

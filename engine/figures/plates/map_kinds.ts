@@ -1,27 +1,28 @@
 import type { VelocityMap } from "../../tomography/mod.ts";
-import { tidyExponent } from "../colour/colour_bar.ts";
-import { robustLimits } from "../colour/limits.ts";
-import { binaryMarks, type VelocityCurve } from "../panels/binary_marks.ts";
+import type { Item } from "../display_list.ts";
+import { measuredText } from "../measured_text.ts";
 import { mapContours } from "../panels/map_contours.ts";
 import { asymmetricMap, significanceMap } from "../panels/map_family.ts";
-import { discRims, resolutionEllipses, uncertainBand } from "../panels/map_marks.ts";
-import { mapPanel } from "../panels/map_panel.ts";
-import type { MapCentre } from "../panels/map_profile.ts";
+import { resolutionEllipses } from "../panels/map_marks.ts";
 import { mapWindow } from "../panels/map_window.ts";
 import { KMS_LABEL } from "../panels/trail_panel.ts";
-import type { Group, Item } from "../display_list.ts";
-import { measuredText } from "../measured_text.ts";
-import { mapHeading } from "./map_heading.ts";
+import {
+  centreOf,
+  drawMap,
+  INTENSITY_UNIT,
+  intensityScale,
+  limitsOf,
+  MAP_SHAPE,
+  powered,
+} from "./map_drawing.ts";
 import {
   captionNumber,
   type PanelDrawing,
   type PanelKind,
-  type PanelScale,
   requireField,
   tellScale,
 } from "./panel_kind.ts";
 import type { PanelName } from "./panel_names.ts";
-import type { PlateStyle } from "./plate_description.ts";
 import type { PlateSubject } from "./plate_subject.ts";
 
 /** Panels in velocity space. */
@@ -41,7 +42,6 @@ const remedies: Partial<Record<keyof PlateSubject, string>> = {
   spread: "set map.resamples to 2 or more",
   detection_limit: "let [binary] fix K1 and K2, and the zero of phase mark the donor",
 };
-const intensityUnit = `(${KMS_LABEL})^{−1}`;
 
 function need<K extends keyof PlateSubject>(subject: PlateSubject, field: K, panel: MapPanelName) {
   return requireField(subject, {
@@ -49,65 +49,6 @@ function need<K extends keyof PlateSubject>(subject: PlateSubject, field: K, pan
     panel,
     remedy: remedies[field] ?? "millrace map makes it",
   });
-}
-
-function powered(scale: Omit<PanelScale, "unit" | "divide_by">, unit: string): PanelScale {
-  const exponent = tidyExponent(scale.limits);
-  if (exponent === 0) return { ...scale, unit, divide_by: 1 };
-  const power = `× 10^{${String(exponent).replace("-", "−")}}`;
-  return { ...scale, unit: `${power} ${unit}`, divide_by: 10 ** exponent };
-}
-
-/** Limits that keep 99.95 % of the pixels of all maps: a spot of a few pixels stays within. */
-function limitsOf(maps: readonly VelocityMap[], symmetric = false): [number, number] {
-  const ends = maps.map((map) => robustLimits(map.intensity, { part: 0.9995, symmetric }));
-  return [Math.min(...ends.map((end) => end[0])), Math.max(...ends.map((end) => end[1]))];
-}
-
-function intensityScale(maps: readonly VelocityMap[], style: PlateStyle): PanelScale {
-  const { colour_map: map = "ink", stretch, map_limits } = style;
-  return powered({ map, stretch, limits: map_limits ?? limitsOf(maps) }, intensityUnit);
-}
-
-function centreOf(subject: PlateSubject): MapCentre {
-  return { vx_kms: 0, vy_kms: subject.binary ? -subject.binary.k_accretor_kms : 0 };
-}
-
-type StreamEnds = [VelocityCurve, VelocityCurve];
-
-interface MapDrawing extends PanelDrawing {
-  readonly marked?: boolean;
-  readonly name: MapPanelName;
-  readonly overlay?: readonly Item[];
-}
-
-function drawMap(map: VelocityMap, subject: PlateSubject, drawing: MapDrawing): Group {
-  const { frame, scale, style, first, marked = true, name, overlay = [] } = drawing;
-  const { binary, binary_range, features, trail, rims = [] } = subject;
-  const place = mapWindow(map, frame);
-  const streams = binary_range?.map((end) => binaryMarks(end).stream) as StreamEnds | undefined;
-  const accretor = [0, centreOf(subject).vy_kms] as const;
-  // Names stand once among neighbours, and not where they would hide a small map.
-  const named = first && place.window.width > 100;
-  const roomy = named && place.window.width > 160;
-  const unnamed = rims.map(({ speed_kms }) => ({ speed_kms }));
-  const panel = mapPanel(map, {
-    frame,
-    named,
-    scale: scale!,
-    name,
-    y_labels: first,
-    ...(style.shape ? { shape: style.shape } : {}),
-    ...(trail ? { sampling: trail.sampling } : {}),
-    marks: binary && binaryMarks(binary),
-    ...(marked && features ? { features } : {}),
-    overlay: [
-      ...(streams ? uncertainBand(streams, place) : []),
-      ...(rims.length > 0 ? discRims(roomy ? rims : unnamed, { place, accretor }) : []),
-      ...overlay,
-    ],
-  });
-  return { ...panel, items: [...panel.items, ...mapHeading(subject, frame)] };
 }
 
 function contourItems(map: VelocityMap, subject: PlateSubject, drawing: PanelDrawing): Item[] {
@@ -120,6 +61,7 @@ function contourItems(map: VelocityMap, subject: PlateSubject, drawing: PanelDra
 
 function tellMap(subject: PlateSubject): string {
   const { title, line, method, systemic_kms, reduced_chi_square: chi = null, map } = subject;
+  const { phase_gap } = subject;
   const size = map
     ? `, ${map.pixels} × ${map.pixels} pixels out to ${captionNumber(map.half_width_kms)} km/s`
     : "";
@@ -127,6 +69,10 @@ function tellMap(subject: PlateSubject): string {
     `${line.air_angstrom.toFixed(2)} Å in air, V/c = λ/λ0 − 1) by ${method}${size}, systemic ` +
     `velocity ${captionNumber(systemic_kms)} km/s${
       chi === null ? "" : `, χ²/N = ${chi.toFixed(2)}`
+    }${
+      phase_gap === undefined
+        ? ""
+        : `, in spite of a gap of ${captionNumber(phase_gap)} cycles in phase modulo half an orbit`
     }`;
 }
 
@@ -166,19 +112,11 @@ function tellMarks(subject: PlateSubject): string {
   return told.join(" ");
 }
 
-/** Maps side by side share their axes where they show the same velocities. */
-function mapAxis({ map, detection_limit }: PlateSubject): string {
-  const { pixels, half_width_kms } = map ?? detection_limit ?? { pixels: 0, half_width_kms: 0 };
-  return `map ${pixels} ${half_width_kms}`;
-}
-
-const frameShape = { aspect: 1, weight: 3, height_pt: 200, axis: mapAxis } as const;
-
 /** Which of the two halves a panel shows. */
 function halfKind(panel: "half-one" | "half-two"): PanelKind {
   const i = panel === "half-one" ? 0 : 1;
   return {
-    ...frameShape,
+    ...MAP_SHAPE,
     name: (subject) => need(subject, "halves", panel).names[i],
     scale_family: "halves",
     scale: (subjects, style) =>
@@ -205,7 +143,7 @@ function significance(subject: PlateSubject): VelocityMap {
 /** The panels in velocity space. */
 export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
   map: {
-    ...frameShape,
+    ...MAP_SHAPE,
     name: () => "",
     scale_family: "map",
     scale: (subjects, style) =>
@@ -219,7 +157,7 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
       `Velocity map of ${tellMap(subject)}; ${tellScale(scale)} per km/s. ${tellMarks(subject)}`,
   },
   asymmetric: {
-    ...frameShape,
+    ...MAP_SHAPE,
     name: () => "asymmetric part",
     scale_family: "asymmetric",
     scale: (subjects, style) => {
@@ -227,7 +165,7 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
         return asymmetricMap(need(subject, "map", "asymmetric"), { centre: centreOf(subject) });
       });
       const { signed_colour_map: map = "tide" } = style;
-      return powered({ map, limits: limitsOf(maps, true) }, intensityUnit);
+      return powered({ map, limits: limitsOf(maps, true) }, INTENSITY_UNIT);
     },
     draw: (subject, drawing) => {
       const map = need(subject, "map", "asymmetric");
@@ -241,7 +179,7 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
   "half-one": halfKind("half-one"),
   "half-two": halfKind("half-two"),
   spread: {
-    ...frameShape,
+    ...MAP_SHAPE,
     name: () => "spread",
     scale_family: "spread",
     scale: (subjects, style) => {
@@ -260,7 +198,7 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
       } per km/s.`,
   },
   significance: {
-    ...frameShape,
+    ...MAP_SHAPE,
     name: () => "significance",
     scale_family: "significance",
     scale: (subjects, style) => ({
@@ -274,7 +212,7 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
     tell: (_, scale) => `Significance of each pixel; ${tellScale(scale)} standard deviations.`,
   },
   resolution: {
-    ...frameShape,
+    ...MAP_SHAPE,
     name: () => "local resolution",
     scale_family: "map",
     scale: (subjects, style) =>
@@ -294,7 +232,7 @@ export const mapKinds: Readonly<Record<MapPanelName, PanelKind>> = {
       } km/s.`,
   },
   "detection-limit": {
-    ...frameShape,
+    ...MAP_SHAPE,
     name: () => "detection limit",
     scale_family: "detection-limit",
     scale: (subjects, style) => {

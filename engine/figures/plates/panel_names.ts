@@ -28,6 +28,15 @@ export const panelNames = [
   "disc-in-space",
   "coverage",
   "null-distribution",
+  "period-scan",
+  "closer-fit",
+  "looser-fit",
+  "sensitivity",
+  "cosine",
+  "sine",
+  "inside-out",
+  "sampling",
+  "blend",
 ] as const;
 
 /** Name of a panel. */

@@ -151,6 +151,8 @@ export interface PlateSubject {
     /** The same in words for the caption, as in "χ² of the back-projected map". */
     readonly statistic: string;
   };
+  /** The same of the period, d. */
+  readonly period_scan?: NonNullable<PlateSubject["systemic_scan"]>;
   /** Plane of the two masses. */
   readonly mass_plane?: Plane;
   /** Plane of mass ratio and inclination. */

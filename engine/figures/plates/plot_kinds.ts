@@ -8,7 +8,12 @@ import { nullDistributionPanel } from "../panels/null_distribution_panel.ts";
 import { phaseCurvePanel } from "../panels/phase_curve_panel.ts";
 import { inclinationPlanePanel, massPlanePanel, type Plane } from "../panels/plane_panel.ts";
 import type { PanelPlace } from "../panels/plot_panel.ts";
-import { periodogramPanel, type Scan, systemicScanPanel } from "../panels/scan_panel.ts";
+import {
+  periodogramPanel,
+  periodScanPanel,
+  type Scan,
+  systemicScanPanel,
+} from "../panels/scan_panel.ts";
 import { spectrumPanel } from "../panels/spectrum_panel.ts";
 import { type FittedCurve, velocityCurvePanel } from "../panels/velocity_curve_panel.ts";
 import { measuredText } from "../measured_text.ts";
@@ -16,10 +21,15 @@ import { captionNumber, type PanelKind, requireField } from "./panel_kind.ts";
 import type { PanelName } from "./panel_names.ts";
 import type { PlateSubject } from "./plate_subject.ts";
 import type { MapPanelName } from "./map_kinds.ts";
+import type { RealityPanelName } from "./reality_kinds.ts";
+import type { StudyPanelName } from "./study_kinds.ts";
 import type { TrailPanelName } from "./trail_kinds.ts";
 
 /** Panels that are line plots. */
-export type PlotPanelName = Exclude<PanelName, MapPanelName | TrailPanelName>;
+export type PlotPanelName = Exclude<
+  PanelName,
+  MapPanelName | TrailPanelName | StudyPanelName | RealityPanelName
+>;
 
 interface PlotKind<K extends keyof PlateSubject> {
   readonly panel: PlotPanelName;
@@ -58,8 +68,15 @@ function tellBest(scan: Scan, unit: string): string {
   const { best = null, best_error = null, reference = null, levels = [] } = scan;
   const lines = levels.map((level) => `${level.name} at ${captionNumber(level.y)}`);
   return (best === null ? "" : ` Best value: ${measuredText(best, best_error)} ${unit}.`) +
-    (reference === null ? "" : ` Dotted: the adopted ${captionNumber(reference)} ${unit}.`) +
+    (reference === null
+      ? ""
+      : ` Dotted: the adopted ${adoptedText(reference, best_error)} ${unit}.`) +
     (lines.length === 0 ? "" : ` Dashed: ${lines.join(", ")}.`);
+}
+
+/** With the digits that the error of the best value justifies, or as captions write numbers. */
+function adoptedText(value: number, error: number | null): string {
+  return error === null ? captionNumber(value) : measuredText(value, error).replace(/ ±.*/, "");
 }
 
 function tellPlane(plane: Plane): string {
@@ -177,6 +194,13 @@ export const plotKinds: Readonly<Record<PlotPanelName, PanelKind>> = {
     remedy: "exposures must cover the orbit, and map.half_width_kms on either side of γ",
     draw: (scan, place) => systemicScanPanel(scan, { ...place, y_label: scan.label }),
     tell: (scan) => `${scan.statistic} against the systemic velocity.${tellBest(scan, "km/s")}`,
+  }),
+  "period-scan": plotKind({
+    panel: "period-scan",
+    field: "period_scan",
+    remedy: "exposures must span more than one orbit",
+    draw: (scan, place) => periodScanPanel(scan, { ...place, y_label: scan.label }),
+    tell: (scan) => `${scan.statistic} against the period.${tellBest(scan, "d")}`,
   }),
   "mass-plane": plotKind({
     panel: "mass-plane",

@@ -85,6 +85,11 @@ const fields: Partial<Record<PanelName, [field: keyof PlateSubject, remedy: stri
   "mass-plane": ["mass_plane", "K2 must be measured"],
   "disc-in-space": ["binary", "let [binary] fix K1 and K2"],
   coverage: ["coverage", "millrace trail makes it"],
+  "closer-fit": ["sensitivity", 'set map.method to "entropy"'],
+  sine: ["modulation", "the line must be one alone"],
+  "inside-out": ["map", "millrace map makes it"],
+  "period-scan": ["period_scan", "exposures must span"],
+  blend: ["blend_map", 'give a blend of the line map = "own"'],
   "null-distribution": ["null_distribution", "millrace weigh draws it"],
 };
 
@@ -162,11 +167,8 @@ const wrong: [string, PlateDescription, string][] = [
   [
     "the panel is not known",
     { rows: [{ panels: ["mapp" as PanelName] }] },
-    "a panel must be one of map, trail, model, residual, asymmetric, half-one, half-two, spread, " +
-    "significance, resolution, detection-limit, radial-profile, azimuth-profile, stacked-profiles, " +
-    "spectrum, equivalent-width, violet-red, continuum, velocity-curve, diagnostic, light-centre, " +
-    "periodogram, systemic-scan, mass-plane, inclination-plane, disc-in-space, coverage, null-distribution: " +
-    'current value is "mapp" (key plate.rows[0].panels[0]); the nearest is "map"',
+    `a panel must be one of ${panelNames.join(", ")}: current value is "mapp" ` +
+    '(key plate.rows[0].panels[0]); the nearest is "map"',
   ],
   [
     "a row is empty",
