@@ -5,12 +5,16 @@ import {
   type OrbitDocument,
   outputFolder,
   readTarget,
+  recordStep,
   runCheck,
   runMap,
   runOrbit,
   runPlate,
   runTrail,
+  type Session,
   simulateDemo,
+  type StepOutput,
+  type StepResult,
   type Target,
   trueSpot,
   uniqueWarnings,
@@ -18,6 +22,7 @@ import {
 } from "../../engine/campaign/mod.ts";
 import recipe from "../../examples/demo/recipe.toml" with { type: "text" };
 import target from "../../examples/demo/vx-0417.toml" with { type: "text" };
+import { utcNow } from "../clock.ts";
 import { commandWith } from "../common_options.ts";
 import { runCommand } from "../run_command.ts";
 import { plainNumber, tableLines, withError } from "../terminal/table.ts";
@@ -27,6 +32,13 @@ import { orbitLines } from "./orbit.ts";
 
 /** Inversions that fit the data, shown beside the one of the target file. */
 const FITTED = ["entropy", "total-variation"] as const;
+
+/** Runs a step of a target and records it, as the command of its name does. */
+type Recorder = <T>(
+  command: string,
+  run: (session: Session, output: StepOutput) => Promise<StepResult<T>>,
+  where?: { session: Session; output: StepOutput },
+) => Promise<StepResult<T>>;
 
 /** Few resamples show the size of an error: most of it here is that of the zero of phase. */
 const SOONER = ["map.resamples=8", "map.structures=false"];
@@ -60,9 +72,15 @@ export const demoCommand = (finish: (status: number) => void) =>
           const read = await readTarget(campaign.target_file, { set: options.set });
           const session = openSession(read, { workers: options.workers, progress, signal });
           const output = { folder: outputFolder(read), overwrite: options.overwrite };
-          const check = await runCheck(session, output);
-          const trail = await runTrail(session, output);
-          const map = await runMap(session, output);
+          const record: Recorder = (command, run, where = { session, output }) =>
+            recordStep(
+              where.session.target,
+              { command, run: () => run(where.session, where.output) },
+              { output: where.output, now: utcNow, signal },
+            );
+          const check = await record("check", runCheck);
+          const trail = await record("trail", runTrail);
+          const map = await record("map", runMap);
           const fitted: { method: string; map: Awaited<ReturnType<typeof runMap>> }[] = [];
           for (const method of FITTED) {
             const set = [...(options.set ?? []), `map.method="${method}"`, ...SOONER];
@@ -73,10 +91,13 @@ export const demoCommand = (finish: (status: number) => void) =>
               signal,
             });
             const own = { ...output, folder: `${output.folder}-${method}` };
-            fitted.push({ method, map: await runMap(other, own) });
+            fitted.push({
+              method,
+              map: await record("map", runMap, { session: other, output: own }),
+            });
           }
-          const orbit = await runOrbit(session, output);
-          const plate = await runPlate(session, output);
+          const orbit = await record("orbit", runOrbit);
+          const plate = await record("plate", runPlate);
           const truth = binaryOf(campaign.recipe);
           const warnings = uniqueWarnings([
             ...fitted.flatMap(({ map }) => map.warnings),
@@ -140,7 +161,9 @@ export const demoCommand = (finish: (status: number) => void) =>
               "",
               `  target file ${campaign.target_file}, raw exposures in ${folder}/blue and ${folder}/red`,
             ],
-            files: [check, trail, ...all, orbit, plate].flatMap(({ files }) => files),
+            files: [
+              ...new Set([check, trail, ...all, orbit, plate].flatMap(({ files }) => files)),
+            ],
             warnings,
           };
         }),

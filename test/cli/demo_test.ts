@@ -49,6 +49,14 @@ Deno.test("millrace demo finds the bright spot where it was put, by each inversi
   }
 });
 
+Deno.test("millrace demo records what it did, as the commands do", async () => {
+  const { runs } = JSON.parse(await Deno.readTextFile(`${out}/provenance.json`));
+  assertEquals(
+    runs.map(({ steps }: { steps: { command: string }[] }) => steps.map(({ command }) => command)),
+    [["check", "trail", "map", "orbit", "plate"]],
+  );
+});
+
 Deno.test("millrace demo measures the binary that it was made of", () => {
   const { orbit, truth } = JSON.parse(first.stdout);
   const { binary } = truth;
