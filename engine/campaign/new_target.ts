@@ -238,5 +238,9 @@ ${exposures.join("\n")}
 ${lines.join("\n")}
 [map]
 half_width_kms = 2000
+# method = "entropy"                # or total-variation: fitted to the noise; default back-projection
+# resamples = 50                    # for errors and significance
+# sensitivity = true                # of a fitted map: maps at χ² 5 % lower and higher, too
+# systemic_scan = true              # γ searched with maps
 `;
 }

@@ -24,6 +24,11 @@ for (const layout of ["image", "text"] as const) {
       assertEquals(settings.exposures[0]!.log, layout === "text" ? "log.csv" : undefined);
       assertEquals(settings.lines.map(({ name }) => name), ["H beta"]);
       assertStringIncludes(text, "3 files, 4790 to 4934 Å");
+      // What is offered for the map in comments is taken as it stands.
+      const [head, map] = text.split("\n[map]\n");
+      const offered = map!.replaceAll(/^# (?=\w+ = )/gm, "");
+      const taken = parseTarget(`${head}\n[map]\n${offered}`, { file: made.file }).settings.map;
+      assertEquals([taken.method, taken.sensitivity, taken.systemic_scan], ["entropy", true, true]);
       // It is the observer's from now on.
       await assertRejects(() => newTarget(folder), InputError, "must not have one already");
     } finally {
