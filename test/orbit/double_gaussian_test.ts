@@ -8,6 +8,7 @@ import {
   doubleGaussianVelocity,
   type LineProfile,
 } from "@millrace/millrace/orbit";
+import { scanWings } from "../../engine/orbit/wing_scan.ts";
 import { casesOf } from "./reference.ts";
 
 function profileOf(velocity_kms: Float64Array, flux: Float64Array, error = 0.01): LineProfile {
@@ -38,6 +39,16 @@ Deno.test("doubleGaussianVelocity() finds all reference roots and the one by the
     assertEquals(within.length, c.roots_sampled.length, c.id);
     within.forEach((root, k) => assertAlmostEquals(root, c.roots_sampled[k], 1e-6, c.id));
     assertAlmostEquals(found.velocity_kms, c.root_sampled, 1e-6, c.id);
+  }
+});
+
+Deno.test("scanWings() interpolates its sums to a few parts in 1e5", () => {
+  const random = randomStream(5);
+  const flux = gauss(40, 500).map((f) => f + 0.05 * random.normal());
+  const scan = scanWings(profileOf(grid, flux), 100);
+  const highest = scan.smooth(40)[0];
+  for (let at = -2900; at <= 2900; at += 17.3) {
+    assertAlmostEquals(scan.quick(at) / highest, scan.smooth(at)[0] / highest, 5e-5, `${at}`);
   }
 });
 
