@@ -1,4 +1,10 @@
-import { type WeighedLine, type WeighRecord, weighRecord, weighTrail } from "../../weighing/mod.ts";
+import {
+  type WeighedLine,
+  type WeighOptions,
+  type WeighRecord,
+  weighRecord,
+  weighTrail,
+} from "../../weighing/mod.ts";
 import { mappedLines } from "../line_of.ts";
 import { jsonText, type OutputHead, outputHead, uniqueWarnings } from "../output_head.ts";
 import { pause } from "../pause.ts";
@@ -19,13 +25,19 @@ export interface WeighDocument extends OutputHead {
  *
  * @param session The target at work.
  * @param line The line.
+ * @param changes What is to differ from the target file: two sets and 20 trials without a limit give
+ * a verdict in some seconds. Its sentence says how many trials there were. @default Nothing
  * @returns What was found.
  * @throws {InputError} When `[binary]` does not fix the orbital speeds.
  */
-export async function weighLine(session: Session, line: LineSettings): Promise<WeighedLine> {
+export async function weighLine(
+  session: Session,
+  line: LineSettings,
+  changes: Pick<WeighOptions, "sets" | "trials" | "limit"> = {},
+): Promise<WeighedLine> {
   const trail = await session.trail(line);
   await pause(session.signal);
-  return weighTrail(trail, await weighOptionsOf(session, line));
+  return weighTrail(trail, { ...await weighOptionsOf(session, line), ...changes });
 }
 
 /**
