@@ -1,5 +1,7 @@
+import { plateLines } from "../../cli/commands/plate.ts";
 import {
   assert,
+  assertAlmostEquals,
   assertEquals,
   assertMatch,
   assertRejects,
@@ -223,8 +225,21 @@ Deno.test("runPlate() repeats rows for each mapped line, and shows two lines in 
   const pair = await night.open({
     plate: '[plate]\nrows = [{ panels = ["map", { panel = "map", line = "He II 4686" }] }]\n',
   });
-  const { document } = await runPlate(pair, out("pair"));
+  const { document, files } = await runPlate(pair, out("pair"));
   assertMatch(document.captions[0]!, /VX-0417, H beta .*VX-0417, He II 4686 /);
+
+  // What the command tells of them; by hand: two squares of 449 pt, each with 57 pt of axes and bar, 9 pt apart.
+  assertEquals(plateLines(repeated), [
+    "  figure  mm         formats  lines       panels",
+    "  ──────  ─────────  ───────  ──────────  ──────",
+    "  plate   174 × 360  svg txt  H beta      map",
+    "                              He II 4686  map",
+  ]);
+  assertEquals(document.figures.map(({ rows }) => rows), [
+    [{ lines: ["H beta", "He II 4686"], panels: ["map", "map"] }],
+  ]);
+  const [, height] = (await Deno.readTextFile(files[0]!)).match(/height="([\d.]+)pt"/)!;
+  assertAlmostEquals(document.figures[0]!.height_mm, Number(height) / 72 * 25.4, 0.05);
 });
 
 /** A number as it stands in a text. */

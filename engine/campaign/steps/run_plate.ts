@@ -12,12 +12,31 @@ import { plateSubject } from "../subject/plate_subject.ts";
 import type { Target } from "../target.ts";
 import { type StepOutput, type StepResult, writeStep } from "./step.ts";
 
+/** A figure that was drawn. */
+export interface DrawnFigure {
+  /** Name of its files, without extension. */
+  readonly name: string;
+  /** Width, mm. */
+  readonly width_mm: number;
+  /** Height, mm. */
+  readonly height_mm: number;
+  /** Its rows from the top down: the lines shown, and the panels from left to right. */
+  readonly rows: readonly {
+    readonly lines: readonly string[];
+    readonly panels: readonly string[];
+  }[];
+  /** Its files. */
+  readonly files: readonly string[];
+}
+
 /** What `plate --json` prints. */
 export interface PlateDocument extends OutputHead {
   /** Files of the figure, in order of lines and formats. */
   readonly plates: readonly string[];
   /** Captions, one a plate, with every number used. */
   readonly captions: readonly string[];
+  /** The figures, in order. */
+  readonly figures: readonly DrawnFigure[];
 }
 
 /**
@@ -35,7 +54,7 @@ export async function runPlate(
   output: StepOutput,
 ): Promise<StepResult<PlateDocument>> {
   // Fonts and renderer are heavy: they load only here.
-  const { checkPlate, drawPlate } = await import("../../figures/mod.ts");
+  const { checkPlate, drawPlate, plateRows, POINTS_PER_MM } = await import("../../figures/mod.ts");
   const { target } = session;
   const { plate } = target.settings;
   const lines = session.lines("draw the plate");
@@ -53,6 +72,8 @@ export async function runPlate(
   };
   const made: [name: string, data: Uint8Array | string][] = [];
   const captions: string[] = [];
+  const drawings: DrawnFigure[] = [];
+  const mm = (points: number) => Number((points / POINTS_PER_MM).toFixed(1));
   for (const { name, lines: shown, panels, description } of figures) {
     const subjects: PlateSubject[] = [];
     for (const [i, line] of shown.entries()) {
@@ -60,7 +81,18 @@ export async function runPlate(
     }
     const drawn = placed(target, () => drawPlate(description, subjects));
     captions.push(drawn.caption);
-    made.push(...await figureFiles(drawn, { name, plate }));
+    const written = await figureFiles(drawn, { name, plate });
+    made.push(...written);
+    drawings.push({
+      name,
+      width_mm: mm(drawn.picture.width),
+      height_mm: mm(drawn.picture.height),
+      rows: plateRows(description, shown.length).map((row) => ({
+        lines: [...new Set(row.panels.map(({ subject }) => shown[subject]!.name))],
+        panels: row.panels.map(({ panel }) => panel),
+      })),
+      files: written.map(([file]) => file),
+    });
   }
   made.push(["report.html", await reportHtml(session, { limits })]);
   const { inputs, warnings: reading } = await session.exposures();
@@ -75,6 +107,7 @@ export async function runPlate(
       ...outputHead(target, { schema: "plate/1", inputs, warnings }),
       plates: made.map(([name]) => name),
       captions,
+      figures: drawings,
     },
     files,
     warnings,
