@@ -1,6 +1,6 @@
 // Every row of the inversion goals beside its peer (peers.py), interleaved, as a Markdown table:
 //   deno run --allow-read --allow-write --allow-run --allow-env --allow-sys test/bench/entropy_goals.ts
-// Options: --rounds N (3), --replicas N (1000), --skip large,replicas,solve
+// Options: --rounds N (3), --replicas N (1000), --skip large,projector,iradon,solve,calls,memory,replicas
 import {
   backProject,
   makeProjector,
@@ -198,6 +198,23 @@ async function replicas(): Promise<void> {
   );
 }
 
+async function memory(): Promise<void> {
+  const script = new URL("solve_memory.ts", import.meta.url).pathname;
+  for (const [size, must] of [["medium", 200], ["large", 600]] as const) {
+    if (SKIP.includes(size)) continue;
+    const { stdout, success } = await new Deno.Command(Deno.execPath(), {
+      args: ["run", "--no-prompt", "--allow-all", script, size],
+      stderr: "inherit",
+    }).output();
+    if (!success) throw new Error(`solve_memory.ts ${size} failed`);
+    const { megabytes } = JSON.parse(new TextDecoder().decode(stdout)) as { megabytes: number };
+    const verdict = megabytes <= must ? "met" : "missed";
+    const what = `largest resident memory of a ${size} solve, MB`;
+    table.push([what, megabytes.toFixed(0), "", "", `${must}`, "", verdict]);
+    console.error(table[table.length - 1]!.join(" | "));
+  }
+}
+
 if (!SKIP.includes("projector")) {
   for (const size of ["small", "medium", "large"] as const) {
     if (!SKIP.includes(size)) await projectors(size);
@@ -206,6 +223,7 @@ if (!SKIP.includes("projector")) {
 if (!SKIP.includes("iradon")) await backProjection();
 if (!SKIP.includes("solve")) await solve();
 if (!SKIP.includes("calls")) calls();
+if (!SKIP.includes("memory")) await memory();
 if (!SKIP.includes("replicas")) await replicas();
 
 console.log("| what | ours, ms | peer, ms | ratio | must | reach for | |");
