@@ -74,7 +74,7 @@ export function plateFigures(
 /** What a figure takes from `[plate]` whatever it shows. */
 function styleOf(plate: PlateSettings): PlateDescription {
   const { formats: _f, title: _t, png_dpi: _d, contours: _c, rims_over_a: _r, ...rest } = plate;
-  const { rows: _rows, each_line: _each, ...style } = rest;
+  const { rows: _rows, each_line: _each, page_methods: _m, ...style } = rest;
   return style as PlateDescription;
 }
 

@@ -8,7 +8,7 @@ import type { MappedLine } from "./map_line.ts";
 import { refereeFacts } from "./referee_facts.ts";
 import { resultRows } from "./result_rows.ts";
 import type { LineSettings } from "./schema/lines_section.ts";
-import type { Session } from "./session.ts";
+import { openSession, type Session } from "./session.ts";
 import { uprightTrail } from "./sign_of.ts";
 import type { LineLimit } from "./subject/limit_subject.ts";
 import { featureOptions } from "./subject/map_subject.ts";
@@ -32,6 +32,10 @@ export async function reportHtml(
   const lines = mappedLines(session.lines("write the report"));
   const maps: MappedLine[] = [];
   for (const line of lines) maps.push(await session.map(line));
+  const others: MappedLine[][] = lines.map(() => []);
+  for (const other of otherMethods(session)) {
+    for (const [i, line] of lines.entries()) others[i]!.push(await other.map(line));
+  }
   const orbit = await orbitOrNull(session);
   const binary = session.binary();
   const disc = target.settings.model?.disc ?? {};
@@ -46,7 +50,7 @@ export async function reportHtml(
   return reportPage({
     title: target.title,
     version: VERSION,
-    subjects: maps.map((mapped) => reportSubject(session, mapped)),
+    subjects: maps.map((mapped, i) => reportSubject(session, { mapped, others: others[i]! })),
     binary: binary === null ? null : {
       mass_ratio: binary.mass_ratio,
       k_accretor_kms: binary.k_accretor_kms,
@@ -77,16 +81,38 @@ async function orbitOrNull(session: Session): Promise<OrbitReport | null> {
   }
 }
 
-function reportSubject(session: Session, mapped: MappedLine): ReportSubject {
-  const { trail } = mapped;
-  const { map, model, residual, method, reduced_chi_square, features } = mapped;
+/** Sessions whose maps are made by the other methods that `[plate]` asks for. */
+function otherMethods(session: Session): Session[] {
+  const { target, workers, progress, signal } = session;
+  const { plate, map } = target.settings;
+  return plate.page_methods.filter((method) => method !== map.method).map((method) => {
+    // What is for one inversion alone keeps its default; the page shows no errors of pixels.
+    const plain = { weight: "chi-square", coordinates: "usual", resamples: 0 } as const;
+    const settings = { ...target.settings, map: { ...map, ...plain, method } };
+    return openSession({ ...target, settings }, { from: session, workers, progress, signal });
+  });
+}
+
+function reportSubject(
+  session: Session,
+  options: { mapped: MappedLine; others: readonly MappedLine[] },
+): ReportSubject {
+  const { mapped, others } = options;
+  const { trail, method } = mapped;
   return {
     line: trail.line,
     systemic_kms: mapped.systemic_kms,
     grid: trail.grid,
     sources: trail.grid.rows === trail.sampling.count ? trail.sources : [],
     maps: [
-      { method, map, model, residual, reduced_chi_square, features },
+      ...[mapped, ...others].map((one) => ({
+        method: one.method,
+        map: one.map,
+        model: one.model,
+        residual: one.residual,
+        reduced_chi_square: one.reduced_chi_square,
+        features: one.features,
+      })),
       ...(method === "back-projection" ? [] : [backProjected(session, mapped)]),
     ],
   };

@@ -37,6 +37,8 @@ export interface PlateSettings {
   readonly contours: readonly number[];
   /** Radii of rims of the disc that are drawn on the map as circles of Keplerian speed, a. */
   readonly rims_over_a: readonly number[];
+  /** Inversions that the page offers beside that of `[map]` and back-projection. */
+  readonly page_methods: readonly ("entropy" | "total-variation")[];
   /** Resolution of PNG files, dots per inch. */
   readonly png_dpi?: number;
 }
@@ -93,5 +95,6 @@ export const plateSection: z.ZodType<PlateSettings> = z.strictObject({
   share: z.array(z.enum(["map", "trail"])).default([]),
   contours: z.array(positive.lt(1)).default([]),
   rims_over_a: z.array(positive.lte(1)).default([]),
+  page_methods: z.array(z.enum(["entropy", "total-variation"])).default([]),
   png_dpi: nonNegative.gte(50).lte(1200).optional(),
 });
