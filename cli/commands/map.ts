@@ -46,6 +46,9 @@ export function mapLines(document: MapDocument): string[] {
     }, ` +
     `peak at (${plainNumber(map.peak.vx_kms, 0)}, ${plainNumber(map.peak.vy_kms, 0)}) km/s`,
     ...map.blends.map(blendLine),
+    ...map.together.map(({ line, ratio }) =>
+      `    and of ${line}, ${plainNumber(ratio, 2)} as strong, at once`
+    ),
     `    can any map fit? ${anyMapText(map.any_map)}`,
     ...(map.features.length === 0
       ? ["    no compact excess over the axisymmetric part"]

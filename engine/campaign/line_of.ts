@@ -82,6 +82,52 @@ export function linesOf(
 }
 
 /**
+ * The lines of which the same map is made as of a line.
+ *
+ * @param line The line.
+ * @param options Where its table stands.
+ * @param options.target The target.
+ * @returns Their tables, with the flux ratios asked for.
+ * @throws {InputError} When one is not among the target's lines, or is the line itself.
+ */
+export function linesTogether(
+  line: LineSettings,
+  options: { target: Target },
+): { line: LineSettings; ratio: number | "measured" }[] {
+  const { target } = options;
+  const { lines, map } = target.settings;
+  const index = lines.indexOf(line);
+  return line.together.map(({ line: name, ratio }, i) => {
+    const key = `lines[${index}].together[${i}].line`;
+    const other = lines.find((one) => one.name === name && one !== line);
+    const refuse = (rule: string, value: unknown, remedy: string) =>
+      new InputError({
+        action: `map ${line.name} together with other lines`,
+        rule,
+        value,
+        file: target.file,
+        line: target.places.get(key)?.line,
+        key,
+        remedy,
+      });
+    if (other === undefined) {
+      const names = lines.flatMap((one) => one === line ? [] : [one.name]);
+      throw refuse(
+        names.length === 0
+          ? "the target file must have another line"
+          : `the line must be one of ${names.join(", ")}`,
+        name,
+        "give it a [[lines]] table of its own",
+      );
+    }
+    if (map.baseline) {
+      throw refuse("baselines are free for one line alone", name, "set map.baseline = false");
+    }
+    return { line: other, ratio };
+  });
+}
+
+/**
  * The lines of which maps are made: those of the gas. A line that moves with the donor is measured
  * by `orbit`; it is mapped only where the target file has no other.
  *

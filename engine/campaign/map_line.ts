@@ -19,6 +19,7 @@ import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
 import { gridModel } from "./grid_model.ts";
 import { type InvertedLine, invertLine } from "./inversion/invert_line.ts";
+import { type JoinedLine, joinTrails } from "./join_trails.ts";
 import { priorOf } from "./prior_of.ts";
 import type { SystemicVelocity } from "./systemic_of.ts";
 import type { Target } from "./target.ts";
@@ -62,7 +63,9 @@ export interface MappedLine extends
   readonly model: Float64Array;
   /** Data less model on the display grid, standard deviations. */
   readonly residual: Float64Array;
-  /** The map's data on native pixels, sign as in the trail, scaled to fit. */
+  /** Other lines of which it is the map, too. */
+  readonly together: readonly JoinedLine[];
+  /** The map's data on the native pixels of `data`, sign as in the trail, scaled to fit. */
   readonly samples: Float64Array;
   /** Resolution (FWHM) that features are measured at, km/s. */
   readonly resolution_kms: number;
@@ -80,6 +83,7 @@ export interface MappedLine extends
  * @param trail The line's trail.
  * @param options How.
  * @param options.target The target: `[map]` and the seed.
+ * @param options.together Trails of other lines of which the same map is made. @default none
  * @param options.systemic Systemic velocity with its error.
  * @param options.binary Where the parts of the binary are; null when not known.
  * @param options.ephemeris The ephemeris, for what its zero marks.
@@ -95,6 +99,7 @@ export async function mapLine(
   trail: Trail,
   options: {
     target: Target;
+    together?: readonly { readonly trail: Trail; readonly ratio: number | "measured" }[];
     systemic: SystemicVelocity;
     binary: Binary | null;
     ephemeris: Ephemeris;
@@ -110,12 +115,18 @@ export async function mapLine(
   const systemic_kms = systemic.kms;
   const settings = target.settings.map;
   const line = trail.line.name;
-  const pixels = settings.pixels ?? pixelsFor(trail, settings.half_width_kms);
-  const resolution_kms = FWHM_PER_SIGMA * median(trail.sampling.profile_sigma_kms);
+  const { half_width_kms } = settings;
+  const { joint, joined } = joinTrails(trail, {
+    others: options.together ?? [],
+    systemic_kms,
+    half_width_kms,
+  });
+  const pixels = settings.pixels ?? pixelsFor(joint, half_width_kms);
+  const resolution_kms = FWHM_PER_SIGMA * median(joint.sampling.profile_sigma_kms);
   // On a map that is rotated by an unknown angle only the centre of mass is known to be where it is.
   const placed = binary !== null && ephemeris.zero_marks !== "emission-crossing";
   const centre = { vx_kms: 0, vy_kms: placed ? -binary.k_accretor_kms : 0 };
-  const inverted = await invertLine(trail, {
+  const inverted = await invertLine(joint, {
     target,
     settings,
     pixels,
@@ -168,6 +179,7 @@ export async function mapLine(
       own: inverted.own_maps.map(({ map, blend: { rest_ratio } }) => ({ map, rest_ratio })),
     }),
     samples,
+    together: joined,
     phase_gap: inverted.warnings.some(({ code }) => code === "phase-gap")
       ? largestHalfOrbitGap(trail.sampling.phase)
       : null,

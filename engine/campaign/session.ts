@@ -4,7 +4,7 @@ import type { Progress } from "../workers/mod.ts";
 import { binaryOf } from "./binary_of.ts";
 import { ephemerisOf, hasHeliocentricZero } from "./ephemeris_of.ts";
 import { inFile } from "./in_file.ts";
-import { linesOf, mappedLines } from "./line_of.ts";
+import { linesOf, linesTogether, mappedLines } from "./line_of.ts";
 import { mapLine, type MappedLine } from "./map_line.ts";
 import { pause } from "./pause.ts";
 import { readTargetExposures, type TargetExposures } from "./read_target_exposures.ts";
@@ -124,9 +124,14 @@ export function openSession(
   );
   const makeMap = async (line: LineSettings) => {
     const made = await trail(line);
+    const together: { trail: Trail; ratio: number | "measured" }[] = [];
+    for (const { line: other, ratio } of linesTogether(line, { target })) {
+      together.push({ trail: await trail(other), ratio });
+    }
     await pause(signal);
     return mapLine(made, {
       target,
+      together,
       systemic: await systemic(),
       epoch: (await exposures()).spectra[0]!.mid,
       workers,

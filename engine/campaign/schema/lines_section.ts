@@ -34,6 +34,21 @@ export interface BlendSettings {
   readonly map: "shared" | "own";
 }
 
+/** Another line of which the same map is made. */
+export interface TogetherSettings {
+  /** Its name, as another `[[lines]]` table has it. */
+  readonly line: string;
+  /** Its flux over that of this line, or "measured" on the mean fluxes. */
+  readonly ratio: number | "measured";
+}
+
+const together = z.strictObject({
+  line: text,
+  ratio: z.union([positive, z.literal("measured")], {
+    error: 'must be a positive number or "measured"',
+  }).default("measured"),
+});
+
 /** One `[[lines]]` table. */
 export interface LineSettings {
   /** Known name, or any name with its rest wavelength. */
@@ -56,6 +71,8 @@ export interface LineSettings {
   readonly resolving_power?: number;
   /** Lines mapped with it. */
   readonly blends: readonly BlendSettings[];
+  /** Other lines of which the same map is made, at once. */
+  readonly together: readonly TogetherSettings[];
   /** Whether it is inverted as it is, with its sign turned, or with either sign allowed. */
   readonly sign: "auto" | "emission" | "absorption" | "mixed";
   /** Star with which the line moves. */
@@ -78,11 +95,19 @@ export const linesSection: z.ZodType<LineSettings> = z.strictObject({
   resolution_kms: positive.optional(),
   resolving_power: positive.optional(),
   blends: z.array(blend).default([]),
+  together: z.array(together).default([]),
   sign: z.enum(["auto", "emission", "absorption", "mixed"]).default("auto"),
   traces: z.enum(["accretor", "donor"]).default("accretor"),
   template: z.union([text, z.array(text)]).default("none"),
   model: modelSection.optional(),
 }).superRefine((line, context) => {
+  if (line.together.length > 0 && line.blends.length > 0) {
+    context.addIssue({
+      code: "custom",
+      path: ["together"],
+      message: "must not stand beside blends: a blend is in one of the lines alone",
+    });
+  }
   if (line.air_angstrom !== undefined && line.vacuum_angstrom !== undefined) {
     context.addIssue({
       code: "custom",

@@ -1,6 +1,7 @@
 import { uniqueWarnings } from "../output_head.ts";
 import { type MapFeature, type MapPeak, mapPeak } from "../../tomography/mod.ts";
 import { jsonText, type OutputHead, outputHead } from "../output_head.ts";
+import type { JoinedLine } from "../join_trails.ts";
 import { mappedLines } from "../line_of.ts";
 import { mapFits } from "../map_fits.ts";
 import type { MappedBlend } from "../inversion/fit_ratios.ts";
@@ -52,6 +53,8 @@ export interface MapSummary {
   readonly phase_gap: number | null;
   /** The lines mapped with it. */
   readonly blends: readonly BlendSummary[];
+  /** Other lines of which it is the map, too. */
+  readonly together: readonly JoinedLine[];
   /** The straight baselines fitted with the map; null when they were held at zero. */
   readonly baseline: {
     /** Root mean square of their levels, parts of the continuum. */
@@ -187,6 +190,7 @@ function summary(
     sign: mapped.sign,
     phase_gap: mapped.phase_gap,
     blends: mapped.blends.map((blend) => blendSummary(mapped, blend)),
+    together: mapped.together,
     baseline: mapped.baselines === null ? null : {
       level_rms: rootMeanSquare(mapped.baselines.level),
       slope_rms: rootMeanSquare(mapped.baselines.slope),
