@@ -28,6 +28,13 @@ async function launch(): Promise<Browser> {
   return chromium.launch({ executablePath: BROWSER, args });
 }
 
+let usual: string | undefined;
+
+/** The page that most checks open. */
+function usualPage(): string {
+  return usual ??= reportPage(exampleReport());
+}
+
 /** Opens the page in a browser and fails on any error or request. */
 async function withPage(
   html: string,
@@ -117,7 +124,7 @@ function readout(page: Page): Promise<string> {
 check(
   "report page shows the S-wave of a pointed-at pixel on the trail",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       await pointAtVelocity(page, 900, -500);
       assertMatch(
         await readout(page),
@@ -138,7 +145,7 @@ check(
 check(
   "report page shows the line of a pointed-at phase and velocity on the map",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const phase = 0.25;
       const x = TRAIL.left +
         (27 + 600 - TRAIL_LOW_KMS) / TRAIL_WIDE_KMS * (TRAIL.right - TRAIL.left);
@@ -176,7 +183,7 @@ check("report page draws a point source at (Vx, Vy), the right way up", async ()
 check(
   "report page is worked by keyboard alone",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const focused = () =>
         page.evaluate("document.activeElement.id || document.activeElement.name");
       const seen: unknown[] = [];
@@ -206,7 +213,7 @@ check(
 check(
   "report page moves lobe and stream with the sliders, and back",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const marks = () => page.locator("#map-over").innerHTML();
       const start = await marks();
       for (const key of ["mass_ratio", "k_sum_kms", "phase_zero", "outer_radius_over_a"]) {
@@ -228,7 +235,7 @@ check(
 check(
   "report page turns the donor to Vx > 0 when phase zero is a quarter later",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       await page.locator("#slider-phase_zero").evaluate((node) => {
         (node as HTMLInputElement).value = "0.25";
         node.dispatchEvent(new Event("input"));
@@ -243,7 +250,7 @@ check(
 check(
   "report page switches line, method and stretch, and steps through exposures",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const drawings = async () => {
         const ids = ["map-drawing", "trail-drawing", "exposure-drawing"];
         return await Promise.all(ids.map((id) => page.locator(`#${id}`).innerHTML()));
@@ -271,7 +278,7 @@ check(
 check(
   "report page holds a clicked place, and shows the clicked exposure",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const box = (await page.locator("#trail-view .stage").boundingBox())!;
       const y = TRAIL.bottom - 0.5 / 2 * (TRAIL.bottom - TRAIL.top);
       await page.mouse.click(
@@ -289,7 +296,7 @@ check(
 check(
   "report page saves its view as SVG with fonts and as PNG at 300 dots per inch",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const save = async (button: string) => {
         const [download] = await Promise.all([
           page.waitForEvent("download"),
@@ -313,7 +320,7 @@ check(
 check(
   "report page fits a narrow screen, and prints without controls",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const wide = await page.evaluate("document.documentElement.scrollWidth - innerWidth");
       assertEquals(wide, 0);
       await page.emulateMedia({ media: "print" });
@@ -325,7 +332,7 @@ check(
 check(
   "report page has dark paper and light ink when the reader wants it",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       const colour = (property: string) =>
         page.evaluate(`getComputedStyle(document.body).${property}`) as Promise<string>;
       const light = (text: string) =>
@@ -338,7 +345,7 @@ check(
 check(
   "report page sets its text in the family that it brings along",
   () =>
-    withPage(reportPage(exampleReport()), async (page) => {
+    withPage(usualPage(), async (page) => {
       await page.evaluate("document.fonts.ready.then(() => true)");
       const loaded = await page.evaluate("[...document.fonts].map((face) => face.status)");
       assertEquals(loaded, ["loaded", "loaded"]);
