@@ -157,6 +157,8 @@ export function openSession(
       half_width_kms: target.settings.map.half_width_kms,
       seed: target.settings.seed,
       force,
+      progress,
+      signal,
     });
   };
   const study = <T>(name: string, make: (mapped: MappedLine) => Promise<T>) =>

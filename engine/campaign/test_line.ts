@@ -1,7 +1,9 @@
 import { InputError } from "../errors.ts";
-import { type AnyMap, canAnyMapFit, momentTest, systemicByParity } from "../tomography/mod.ts";
+import { type AnyMap, anyMapSteps, momentTest, systemicByParity } from "../tomography/mod.ts";
 import type { Trail } from "../trail/mod.ts";
+import type { Progress } from "../workers/mod.ts";
 import type { LineSign } from "./inversion/inverted.ts";
+import { pause } from "./pause.ts";
 import { turned } from "./sign_of.ts";
 
 /** Simulations of the test of a line's core: its probability is then good to a twentieth. */
@@ -27,10 +29,12 @@ export type LineTests =
  * @param options.half_width_kms Half-width of the map, km/s.
  * @param options.seed Seed of the simulations.
  * @param options.force Whether to go on in spite of a large gap in phase.
+ * @param options.progress Told of each simulation.
+ * @param options.signal Aborts the work.
  * @returns The tests.
  * @throws {InputError} When the data cannot be mapped at all.
  */
-export function testLine(
+export async function testLine(
   trail: Trail,
   options: {
     sign: LineSign;
@@ -39,9 +43,11 @@ export function testLine(
     half_width_kms: number;
     seed: number;
     force: boolean;
+    progress?: Progress;
+    signal?: AbortSignal;
   },
-): LineTests {
-  const { sign, systemic_kms, half_width_kms, seed, force } = options;
+): Promise<LineTests> {
+  const { sign, systemic_kms, half_width_kms, seed, force, progress, signal } = options;
   const { continuum_error } = trail;
   const none = { mirror: null, core: null, best_reduced_chi_square: null };
   if (options.blended) {
@@ -58,7 +64,8 @@ export function testLine(
       warnings: [],
     };
   }
-  const found = canAnyMapFit(sign === "absorption" ? turned(trail) : trail, {
+  const line = trail.line.name;
+  const steps = anyMapSteps(sign === "absorption" ? turned(trail) : trail, {
     pixels: 3,
     half_width_kms,
     systemic_kms,
@@ -67,7 +74,12 @@ export function testLine(
     continuum_error,
     force,
   });
-  const line = trail.line.name;
+  let step = steps.next();
+  for (; step.done !== true; step = steps.next()) {
+    progress?.(step.value, SIMULATIONS, `${line}: can any map fit?`);
+    await pause(signal);
+  }
+  const found = step.value;
   return { ...found, warnings: found.warnings.map((warning) => ({ ...warning, line })) };
 }
 
