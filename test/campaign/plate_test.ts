@@ -52,6 +52,7 @@ Deno.test("runPlate() makes every panel of studies of a map from the demo's targ
   const set = [
     'map.method="entropy"',
     "map.pixels=83",
+    "map.reduced_chi_square=1.3", // soon reached
     "map.resamples=0",
     'plate.formats=["svg"]',
   ];
