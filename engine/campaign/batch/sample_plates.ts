@@ -70,7 +70,12 @@ async function* drawPage(
   // A last row of few targets would be drawn larger: all rows take the height of a full one.
   const full = Array.from(
     { length: columns },
-    (_, subject) => panels.map((panel) => ({ kind: panelKinds[panel], subject, named: false })),
+    (_, i) =>
+      panels.map((panel) => {
+        const kind = panelKinds[panel];
+        const axis = kind.axis?.(subjects[i] ?? subjects[0]!);
+        return { kind, named: false, ...(axis === undefined ? {} : { axis }) };
+      }),
   ).flat();
   const { rows: [boxes] } = plateLayout([{ panels: full }], plateWidth({ width }));
   const height_mm = boxes![0]!.frame.height / figures.POINTS_PER_MM;
