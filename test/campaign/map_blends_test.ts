@@ -59,6 +59,20 @@ Deno.test("a blend shares the map with a fitted ratio, whose error holds the tru
   assertEquals([map!.any_map.moments_p, map!.any_map.core_p], [null, null]);
 });
 
+Deno.test("a fitted ratio serves total variation, and a stated one is taken as it stands", async () => {
+  for (const ratio of ['"free"', "0.4"]) {
+    const campaign = await night(`{ air_angstrom = ${AIR}, ratio = ${ratio} }`);
+    const session = await campaign.open(['map.method="total-variation"', "map.resamples=0"]);
+    const map = await session.map(session.lines("test")[0]!);
+    assertAlmostEquals(map.blends[0]!.ratio!, RATIO, 0.02);
+    assertEquals(map.blends[0]!.ratio_error === null, ratio === "0.4");
+    assertInPlace({ peak: map.features[0]! });
+    // The model that is shown has the blend in it.
+    const kept = map.residual.filter((value) => Number.isFinite(value));
+    assertLess(Math.hypot(...kept) / Math.sqrt(kept.length), 1.15);
+  }
+});
+
 Deno.test("a blend with a map of its own gets it, in map.fits too", async () => {
   const campaign = await night(`{ name = "He I 4922", air_angstrom = ${AIR}, map = "own" }`);
   const document = await campaign.map();
