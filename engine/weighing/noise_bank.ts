@@ -75,7 +75,8 @@ export function noiseBank(
   const { line_scale } = options;
   const { count, start, phase, velocity_kms } = data.sampling;
   const line = lineOf(problem, fit);
-  const order = { baseline_order: problem.options.baseline_order ?? 1 };
+  const { baseline_order = 1, light } = problem.options;
+  const order = { baseline_order, ...(light === undefined ? {} : { light }) };
   // Amplitudes of the line without a prior: what is left has no trace of its brightness.
   const hard = makeWhitening(data, { ...order, soft: [{ pattern: line, sigma: 1e6 }] });
   const residual = hard.apply(data.flux.map((value, n) => value - line[n]!));

@@ -52,12 +52,14 @@ export interface PreparedProblem {
 /** Rounds of fit and nuisance; two are enough where flickering is below a quarter of the line. */
 const ROUNDS = 4;
 const SAME_RMS = 0.02;
+/** Light over continuum that the deepest line is taken to leave. */
+const DARKEST = 0.05;
 /** A line that varies by more than this is another line at every exposure. */
 const LARGEST_RMS = 0.5;
 
 /**
  * Makes data ready to be weighed: fits all parts together, leaves out samples that no light of the
- * star can have made, measures how the line's brightness
+ * star can have made, lets levels and slopes of the continuum multiply the line as well, measures how the line's brightness
  * varies, and makes a whitening that gives such variations no weight, by alternation as long as the
  * likelihood grows.
  *
@@ -94,17 +96,20 @@ export function* prepareInSteps(
   options: PrepareOptions,
 ): Steps<PreparedProblem> {
   const { sets, line_scale = "measured", shift_kms = 0 } = options;
-  const order = { baseline_order: options.baseline_order ?? 1 };
+  const baseline_order = options.baseline_order ?? 1;
   const hypothesis = hypothesisOf([...new Set(sets.flat())]);
   const own = fitSetup(setup);
-  let problem = makeProblem(all, own, order);
+  let problem = makeProblem(all, own, { baseline_order });
   let richest = yield* fitInSteps(problem, { hypothesis });
   const lone = loneSamples(richest.evaluation.residual, all);
   const data = lone.length === 0 ? all : withoutSamples(all, lone);
-  if (data !== all) {
-    problem = makeProblem(data, own, order);
-    richest = yield* fitInSteps(problem, { hypothesis, base: richest });
-  }
+  if (data !== all) problem = makeProblem(data, own, { baseline_order });
+  // What the line is multiplied by where the continuum is wrong; a per cent more or less does not count.
+  const light = lineOf(problem, richest)
+    .map((value) => Math.max(DARKEST, 1 + data.sign * value));
+  const order = { baseline_order, light };
+  problem = withNuisances(problem, order);
+  richest = yield* fitInSteps(problem, { hypothesis, base: richest });
   const plain = makeWhitening(data, order);
   let line = lineOf(problem, richest);
   let measured = measureLineScale(line, { data, whitening: plain });

@@ -57,6 +57,12 @@ export interface ProblemOptions {
    */
   readonly baseline_order?: number;
   /**
+   * Light over continuum, N values: what an error of the continuum multiplies.
+   *
+   * @default 1 everywhere
+   */
+  readonly light?: Float64Array;
+  /**
    * Nuisances with a prior.
    *
    * @default {[]}

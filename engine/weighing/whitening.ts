@@ -33,6 +33,12 @@ export interface WhiteningOptions {
    */
   readonly baseline_order?: number;
   /**
+   * Light over continuum, N values, that the baseline multiplies: data were divided by it.
+   *
+   * @default 1 everywhere
+   */
+  readonly light?: Float64Array;
+  /**
    * Patterns of nuisances with a prior.
    *
    * @default {[]}
@@ -67,7 +73,7 @@ interface Direction {
  * ```
  */
 export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}): Whitening {
-  const { baseline_order = 1, soft = [] } = options;
+  const { baseline_order = 1, light, soft = [] } = options;
   const { start, count, velocity_kms } = data.sampling;
   const weight = data.error.map((error) => 1 / error);
   const directions: Direction[] = [];
@@ -110,7 +116,10 @@ export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}
   };
 
   for (let order = 0; order <= baseline_order; order++) {
-    add(velocity_kms.map((v) => (v / data.reach_kms) ** order), () => [1, 1]);
+    add(
+      velocity_kms.map((v, n) => (light?.[n] ?? 1) * (v / data.reach_kms) ** order),
+      () => [1, 1],
+    );
   }
   const baselines = directions.slice();
   for (const { pattern, sigma } of soft) {

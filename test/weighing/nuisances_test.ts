@@ -7,6 +7,7 @@ import {
   makeWhitening,
   noiseBank,
   prepareProblem,
+  residualTests,
   weighingData,
 } from "@millrace/millrace/weighing";
 import {
@@ -64,6 +65,15 @@ Deno.test("prepareProblem() allows wavelengths to drift when a prior says so", (
   assertLess(loose.richest.chi_square, 1.1 * data.flux.length);
 });
 
+Deno.test("prepareProblem() lets errors of the continuum multiply the line, too", () => {
+  const correlation = (continuum_error: number) => {
+    const { problem, richest } = prepare({ seed: 5, exposures: 60, continuum_error });
+    return residualTests(problem, richest).velocity_correlation.statistic;
+  };
+  // The noise is the same. Slopes that were only added would leave a slope times the line: 5 more.
+  assertAlmostEquals(correlation(0.03), correlation(0), 0.5);
+});
+
 Deno.test("noiseBank() keeps unit variance, and drawNoise() whole blocks of exposures", () => {
   const { problem, richest, line_scale } = prepare({ seed: 4, flicker_rms: 0.05 });
   const bank = noiseBank(problem, richest, { line_scale });
@@ -90,7 +100,7 @@ Deno.test("drawNoise() leaves the line's brightness as uncertain as the noise of
   const { problem, richest, line_scale } = prepare({ seed: 4 });
   const { data } = problem;
   const line = lineOf(problem, richest);
-  const whitening = makeWhitening(data);
+  const whitening = makeWhitening(data, { light: problem.options.light! });
   for (const kind of ["resampled", "white"] as const) {
     const bank = noiseBank(problem, richest, { line_scale, kind });
     let square = 0;

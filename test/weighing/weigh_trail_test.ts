@@ -112,12 +112,28 @@ Deno.test("weighTrail() leaves donor sets out, or refuses them, when the inclina
 });
 
 Deno.test("weighTrail() weighs a line in absorption with its sign turned", async () => {
-  const trail = quick(spotted(0.1), { seed: 1, exposures: 20, pixel_kms: 80 });
+  const deep = spotted(0.1);
+  // Shallow enough to be an absorption line.
+  const shallow = {
+    ...deep,
+    disc: { equivalent_width_kms: 0.27 * WIDTH },
+    spot: { ...deep.spot, equivalent_width_kms: 0.03 * WIDTH },
+  };
+  const trail = quick(shallow, { seed: 1, exposures: 20, pixel_kms: 80 });
   const upside = { ...trail, flux: trail.flux.map((value) => -value) };
   const up = weighRecord(await weighTrail(trail, short));
-  const down = await weighTrail(upside, short);
-  assertEquals({ ...weighRecord(down), absorption: false }, up);
-  assert(down.warnings.some(({ code }) => code === "absorption-turned"));
+  const weighed = await weighTrail(upside, short);
+  const down = weighRecord(weighed);
+  assertEquals([up.absorption, down.absorption], [false, true]);
+  assert(weighed.warnings.some(({ code }) => code === "absorption-turned"));
+  assertEquals(down.preferred, up.preferred);
+  // The same noise; only what an error of the continuum multiplies is less instead of more light.
+  const [left, right] = [down.hypotheses[0]!, up.hypotheses[0]!];
+  assertEquals(left.parts, right.parts);
+  for (const [path, value] of Object.entries(left.fitted)) {
+    const error = right.errors[path] ?? null;
+    if (error !== null) assertLess(Math.abs(value! - right.fitted[path]!), 0.5 * error);
+  }
 });
 
 Deno.test("weighTrail() takes sets without a disc, and any part", async () => {

@@ -45,6 +45,13 @@ Deno.test("makeWhitening() leaves nothing of a baseline of its order when errors
   assertEquals(rms(makeWhitening(data).apply(parabola)) > 1, true);
 });
 
+Deno.test("makeWhitening() lets the baseline multiply the light when it is given", () => {
+  const light = data.sampling.velocity_kms.map((v) => 1 + Math.exp(-0.5 * (v / 500) ** 2));
+  const slope = data.sampling.velocity_kms.map((v, n) => light[n]! * (3 + v / 100));
+  assertLess(rms(makeWhitening(data, { light }).apply(slope)), 1e-9);
+  assertEquals(rms(makeWhitening(data).apply(slope)) > 1, true);
+});
+
 Deno.test("makeWhitening() counts what nuisances take when they are given freely or not at all", () => {
   const pattern = draw();
   const count = (sigma: number) =>
