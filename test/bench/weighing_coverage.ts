@@ -2,7 +2,7 @@
  * Errors of a spot with 10 % of the light, over seeds 1 to N (default 200): share of 68 % intervals that
  * hold the truth, and bias in standard deviations.
  *
- *     deno run --allow-read test/bench/weighing_coverage.ts [N]
+ *     deno run --allow-read test/bench/weighing_coverage.ts [N] [part of a row's name]
  */
 import { spotPlace } from "@millrace/millrace/synthesis";
 import { compareHypotheses, prepareProblem, weighingData } from "@millrace/millrace/weighing";
@@ -10,6 +10,7 @@ import { spotted } from "../weighing/made.ts";
 import { binary, row, trailOf } from "./weighing_data.ts";
 
 const seeds = Number(Deno.args[0] ?? 200);
+const chosen = Deno.args[1];
 const sets = [["disc", "spot"]] as const;
 const model = spotted(0.1);
 const { vx_kms, vy_kms } = spotPlace(model, binary);
@@ -30,6 +31,7 @@ for (
     ["S/N 8, flickering 6 %", 8, 0.06],
   ] as const
 ) {
+  if (chosen !== undefined && !name.includes(chosen)) continue;
   const pulls = new Map<string, number[]>();
   const sizes = new Map<string, number[]>();
   for (let seed = 1; seed <= seeds; seed++) {

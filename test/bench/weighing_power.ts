@@ -14,7 +14,7 @@ import { binary, pairOf, row, trailOf } from "./weighing_data.ts";
 
 const sets = Number(Deno.args[0] ?? 40);
 const TRIALS = 200;
-const CELLS = 27;
+const CELLS = 15;
 const pair = { first: ["disc"], second: ["disc", "spot"] } as const;
 const { vx_kms, vy_kms } = spotPlace(spotted(0.1), binary);
 const reach = Math.max(Math.abs(vx_kms), Math.abs(vy_kms));
@@ -45,7 +45,7 @@ for (const signal_to_noise of [25, 8]) {
     const cell = index(vy_kms) * CELLS + index(vx_kms);
     const guess = limit.fraction_95[cell]!;
 
-    const shares = [0.3, 0.5, 0.7, 0.85, 1, 1.2].map((factor) => factor * guess);
+    const shares = [0.5, 0.75, 1, 1.25].map((factor) => factor * guess);
     const found = shares.map((share, s) => {
       let count = 0;
       for (let k = 1; k <= sets; k++) {
