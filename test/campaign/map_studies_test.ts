@@ -132,7 +132,10 @@ Deno.test("map.period_scan finds the period from two nights, and says that one n
   assertLess(Math.abs(scan.best! - EPHEMERIS.period_d), 4 * scan.error!);
   assertLess(scan.error!, 1e-4 * EPHEMERIS.period_d);
   assertStringIncludes(textOf(document, "period-scan-disagrees"), " d, not 0.08016");
-  const [one] = (await night.map([...ENTROPY, "map.period_scan=true"], base)).maps;
+  assert(!codes(document).includes("period-scan-short"));
+  const short = await night.map([...ENTROPY, "map.period_scan=true"], base);
+  const [one] = short.maps;
+  assertStringIncludes(textOf(short, "period-scan-short"), "the data span 1.0 orbits");
   // 1.04 orbits: a period is told by what is seen twice, a few hundredths of an orbit.
   assertGreater(one!.period_scan!.error ?? Infinity, 20 * scan.error!);
 });

@@ -37,6 +37,9 @@ const REACH = 0.05;
 /** The first look for the period lets phases slip by so much over the data, cycles. */
 const SLIP = 0.2;
 
+/** Over fewer orbits than this a period found by maps is not to be trusted. */
+const FEW_ORBITS = 3;
+
 /** Errors by which best and adopted value may differ in silence. */
 const APART = 3;
 
@@ -77,7 +80,7 @@ export function systemicStudy(
  * @param options The target, the period and its error, d.
  * @returns The curve.
  */
-export function periodStudy(
+export async function periodStudy(
   mapped: MappedLine,
   options: ScanOptions & { readonly period_d: number; readonly error_d: number | null },
 ): Promise<ScanStudy> {
@@ -86,22 +89,33 @@ export function periodStudy(
   const orbits = sampling.phase.map((phase, i) => phase + sampling.cycle[i]!);
   const span = Math.max(...orbits) - Math.min(...orbits);
   const { period_d } = options;
-  return study(mapped, {
+  const found = await study(mapped, {
     ...options,
     parameter: "period_d",
     adopted: period_d,
     adopted_error: options.error_d,
     reach: period_d * SLIP / Math.max(1, span),
     scan: (values) => {
-      const found = scanPeriod(trail, { ...around, ratios: values.map((p) => p / period_d) });
+      const scanned = scanPeriod(trail, { ...around, ratios: values.map((p) => p / period_d) });
       return {
-        ...found,
-        values: found.values.map((ratio) => ratio * period_d),
-        best: found.best && found.best * period_d,
-        error: found.error && found.error * period_d,
+        ...scanned,
+        values: scanned.values.map((ratio) => ratio * period_d),
+        best: scanned.best && scanned.best * period_d,
+        error: scanned.error && scanned.error * period_d,
       };
     },
   });
+  if (span >= FEW_ORBITS) return found;
+  return {
+    ...found,
+    warnings: [...found.warnings, {
+      code: "period-scan-short",
+      line: trail.line.name,
+      text:
+        `the data span ${span.toFixed(1)} orbits: what the source does within one of them goes ` +
+        "into the period by maps, and its error leaves that out",
+    }],
+  };
 }
 
 async function study(
