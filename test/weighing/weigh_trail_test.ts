@@ -89,6 +89,22 @@ Deno.test("weighTrail() widens errors and claims nothing false when 30 % of the 
   assertGreater(await error(21, phases) / await error(30, [0, 1]), Math.sqrt(30 / 21));
 });
 
+Deno.test("weighTrail() hears an interrupt before its first trial, while sets are fitted", async () => {
+  const stop = new AbortController();
+  let trials = 0;
+  setTimeout(() => stop.abort(), 0);
+  await assertRejects(
+    () =>
+      weighTrail(quick(spotted(0.1)), {
+        ...short,
+        signal: stop.signal,
+        progress: () => trials++,
+      }),
+    DOMException,
+  );
+  assertEquals(trials, 0);
+});
+
 Deno.test("weighTrail() names the set that is wrong", async () => {
   await assertRejects(
     () => weighTrail(quick(spotted(0)), { ...short, sets: [["disc", "halo"]] }),
