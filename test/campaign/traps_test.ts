@@ -418,3 +418,13 @@ Deno.test("trap: exposures of another grating are left out of a line, and named"
   const lines = `${SECTIONS.lines}\n${SECTIONS.lines!.replace("H beta", "H alpha")}`;
   assertEquals(codes(await read({ lines })), []);
 });
+
+Deno.test("trap: a map of very few exposures warns that its features are the sampling's", async () => {
+  const warned = async (count: number) => {
+    const raw = madeExposures({ count, cadence_s: 7000 / count });
+    const document = await (await writeCampaign([{ raw }])).map();
+    return textOf(document, "few-exposures-mapped");
+  };
+  assertStringIncludes(await warned(5), "the map is of 5 exposures alone");
+  assertEquals(await warned(12), "");
+});
