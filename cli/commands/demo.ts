@@ -1,6 +1,7 @@
 import { resolve } from "@std/path";
 import {
   binaryOf,
+  mappedLines,
   openSession,
   type OrbitDocument,
   outputFolder,
@@ -19,6 +20,7 @@ import {
   trueSpot,
   uniqueWarnings,
   VERSION,
+  weighLine,
 } from "../../engine/campaign/mod.ts";
 import recipe from "../../examples/demo/recipe.toml" with { type: "text" };
 import target from "../../examples/demo/vx-0417.toml" with { type: "text" };
@@ -41,7 +43,10 @@ type Recorder = <T>(
 ) => Promise<StepResult<T>>;
 
 /** Few resamples show the size of an error: most of it here is that of the zero of phase. */
-const SOONER = ["map.resamples=8", "map.structures=false"];
+const SOONER = ["map.resamples=4", "map.structures=false"];
+
+/** The least that gives a verdict: its sentence says from how few trials it comes. */
+const QUICK_VERDICT = { sets: [["disc"], ["disc", "spot"]], trials: 20, limit: false } as const;
 
 /**
  * `millrace demo`: an invented night, from raw exposures to the figure.
@@ -98,6 +103,15 @@ export const demoCommand = (finish: (status: number) => void) =>
           }
           const orbit = await record("orbit", runOrbit);
           const plate = await record("plate", runPlate);
+          const { verdict, line: weighed } = await quickVerdict(
+            openSession(read, {
+              from: session,
+              workers: options.workers ?? navigator.hardwareConcurrency,
+              progress,
+              signal,
+            }),
+          );
+          const parts = trueParts(campaign.recipe, weighed);
           const truth = binaryOf(campaign.recipe);
           const warnings = uniqueWarnings([
             ...fitted.flatMap(({ map }) => map.warnings),
@@ -122,6 +136,7 @@ export const demoCommand = (finish: (status: number) => void) =>
               maps: map.document.maps,
               spots,
               orbit: orbit.document,
+              verdict: { line: weighed, ...verdict, truth: parts },
               truth: { binary: truth, systemic_kms: campaign.recipe.settings.orbit.systemic_kms },
               warnings,
             },
@@ -159,6 +174,9 @@ export const demoCommand = (finish: (status: number) => void) =>
                 { heading: true, align: ["left", "right", "right"] },
               ),
               "",
+              `  ${weighed}, weighed: ${verdict.sentence}`,
+              `  it was made of: ${parts.join(" + ")}`,
+              "",
               `  target file ${campaign.target_file}, raw exposures in ${folder}/blue and ${folder}/red`,
             ],
             files: [
@@ -169,6 +187,18 @@ export const demoCommand = (finish: (status: number) => void) =>
         }),
       );
     });
+
+/** Weighs a disc against a disc with a spot on the first line of the gas. */
+async function quickVerdict(session: Session) {
+  const [line] = mappedLines(session.lines("weigh hypotheses"));
+  const { verdict } = await weighLine(session, line!, QUICK_VERDICT);
+  return { line: line!.name, verdict };
+}
+
+function trueParts({ settings }: Target, line: string): readonly string[] {
+  const own = settings.lines.find(({ name }) => name === line)?.model;
+  return (own ?? settings.model)!.parts;
+}
 
 function orbitTruth(found: OrbitDocument, recipe: Target): string[][] {
   const truth = binaryOf(recipe)!;

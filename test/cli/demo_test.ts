@@ -57,6 +57,11 @@ Deno.test("millrace demo records what it did, as the commands do", async () => {
   );
 });
 
+Deno.test("millrace demo ends with a verdict beside the truth", () => {
+  const { verdict } = JSON.parse(first.stdout);
+  assertEquals(verdict.preferred, verdict.truth);
+});
+
 Deno.test("millrace demo measures the binary that it was made of", () => {
   const { orbit, truth } = JSON.parse(first.stdout);
   const { binary } = truth;
