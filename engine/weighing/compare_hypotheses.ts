@@ -119,7 +119,7 @@ export function* compareInSteps(
   }
 
   const all = Math.min(richest.chi_square, ...fits.map((fit) => fit.chi_square));
-  const spent = problem.whitening.parameters + richest.parameters.length +
+  const spent = problem.whitening.baseline_parameters + richest.parameters.length +
     richest.evaluation.active.length;
   const dof = Math.max(1, problem.observed.length - spent);
   const noise_scale = Math.sqrt(all / dof);

@@ -67,7 +67,8 @@ export function residualTests(problem: Problem, fit: HypothesisFit): ResidualTes
   const { residual } = fit.evaluation;
   const { sampling, pixels_per_sample } = data;
   const samples = residual.length;
-  const spent = whitening.parameters + fit.parameters.length + fit.evaluation.active.length;
+  const spent = whitening.baseline_parameters + fit.parameters.length +
+    fit.evaluation.active.length;
   const dof = Math.max(1, samples - spent);
   const sum = dot(residual, residual);
   const width = Math.sqrt(
@@ -115,7 +116,7 @@ export function residualTests(problem: Problem, fit: HypothesisFit): ResidualTes
     profile: square(profile, profileFreedom),
     phase: square(change, changeFreedom),
     velocity_correlation: normal(alongVelocity(problem, residual, { lags, noise, spent })),
-    phase_correlation: normal(alongPhase(problem, residual, { noise })),
+    phase_correlation: normal(alongPhase(problem, whitening.bare(residual), { noise })),
   };
 }
 
@@ -224,6 +225,7 @@ function alongVelocity(
   return (sum / noise ** 2 - expected) / Math.sqrt(pairs * data.pixels_per_sample);
 }
 
+/** Of residuals without what flickering may have left, which neighbours share. */
 function alongPhase(
   { data }: Problem,
   residual: Float64Array,

@@ -22,6 +22,10 @@ export interface Whitening {
   readonly log_determinant: number;
   /** Sum over exposures of the parameters spent: baseline terms, and shares of soft amplitudes. */
   readonly parameters: number;
+  /** Baseline terms alone: what whitened noise lacks. Along soft patterns it has unit variance. */
+  readonly baseline_parameters: number;
+  /** Takes from whitened values all that lies along soft patterns. */
+  readonly bare: (values: Float64Array) => Float64Array;
 }
 
 /** Options of {@linkcode makeWhitening}. */
@@ -79,7 +83,10 @@ export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}
   const directions: Direction[] = [];
   let parameters = 0, log_determinant = 0;
 
-  const project = (values: Float64Array, { unit, removed }: Direction) => {
+  const project = (
+    values: Float64Array,
+    { unit, removed }: Pick<Direction, "unit"> & { readonly removed: ArrayLike<number> },
+  ) => {
     for (let i = 0; i < count; i++) {
       const from = start[i]!, to = start[i + 1]!;
       let along = 0;
@@ -122,6 +129,7 @@ export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}
     );
   }
   const baselines = directions.slice();
+  const baseline_parameters = parameters;
   for (const { pattern, sigma } of soft) {
     if (!(sigma > 0)) continue;
     add(pattern, (length) => {
@@ -137,7 +145,16 @@ export function makeWhitening(data: WeighingData, options: WhiteningOptions = {}
       for (const direction of baselines) project(left, direction);
       return values.map((value, n) => value - left[n]!);
     },
+    bare: (values) => {
+      const left = values.slice();
+      const whole = new Float64Array(count).fill(1);
+      for (const { unit } of directions.slice(baselines.length)) {
+        project(left, { unit, removed: whole });
+      }
+      return left;
+    },
     log_determinant,
     parameters,
+    baseline_parameters,
   };
 }
