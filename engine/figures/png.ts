@@ -5,9 +5,10 @@ import { faceNames, fontFace } from "./fonts.ts";
 import { type LowestImage, lowestImages } from "./lowest_images.ts";
 import type { Metadata } from "./marks.ts";
 import { packageFile } from "./package_file.ts";
+import { outlineText } from "./outline_text.ts";
 import { pathCoverage } from "./path_coverage.ts";
 import { blankLines, pngOfLines, type Raster, type ScanLines } from "./png_file.ts";
-import { svgText, usedCharacters } from "./svg.ts";
+import { svgText } from "./svg.ts";
 
 /** How a picture is made into pixels. */
 export interface PngOptions {
@@ -72,8 +73,9 @@ async function drawLines(picture: Picture, dpi: number): Promise<ScanLines> {
   const scale = dpi / 72;
   // Pixels of large images are copied here many times faster than in the renderer.
   const { images, rest } = lowestImages(picture);
-  const svg = svgText(rest, {
-    embed_fonts: false, // the renderer has them
+  // Setting text takes the renderer longer than all the rest, when it has just been started.
+  const svg = svgText(outlineText(rest), {
+    embed_fonts: false,
     rasterise(image) {
       const columns = Math.max(1, Math.round(image.width * scale));
       const rows = Math.max(1, Math.round(image.height * scale));
@@ -87,11 +89,9 @@ async function drawLines(picture: Picture, dpi: number): Promise<ScanLines> {
     return canvas;
   };
   let canvas = paper(Math.round(picture.width * scale), Math.round(picture.height * scale));
-  const used = usedCharacters(rest.items);
-  const faces = faceNames.filter((name) => used[name] !== "");
   // The renderer takes a point in the size attributes as 96/72 pixels; state user units instead.
   const units = svg.replace(/(width|height)="([\d.]+)pt"/g, '$1="$2"');
-  const resvg = await renderer(units, { scale, faces });
+  const resvg = await renderer(units, { scale, faces: [] });
   try {
     const drawn = resvg.render();
     const { width, height } = drawn;
@@ -138,7 +138,7 @@ function layOver({ columns, rows, lines }: ScanLines, rgba: Uint8Array): void {
 }
 
 /**
- * Draws a picture as a PNG file at a stated resolution.
+ * Draws a picture as a PNG file at a stated resolution. Letters are drawn as outlines, without kerning.
  *
  * @param picture The picture.
  * @param options Resolution and metadata.
