@@ -1,5 +1,5 @@
 import { Matrix } from "ml-matrix";
-import { nonNegativeLeastSquares } from "../numerics/mod.ts";
+import { nonNegativeLeastSquares, type RandomStream } from "../numerics/mod.ts";
 import { axisymmetricPart } from "./axisymmetric_part.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { halfOrbitIntervals } from "./half_orbit.ts";
@@ -17,6 +17,10 @@ export interface CoreMiss {
   readonly core_kms: number;
   /** Highest mean flux of the line. */
   readonly peak: number;
+  /** Mean flux that the best positive rings make at a speed |v − γ|, km/s. */
+  readonly roundProfile: (speed_kms: number) => number;
+  /** Skewness of the miss under noise of the mean profile: rings take up what is too bright, not what is too dark. */
+  readonly skewness: (random: RandomStream) => number;
 }
 
 /** Options of {@linkcode coreMiss}. */
@@ -81,14 +85,37 @@ export function coreMiss(trail: TrailSamples, options: CoreMissOptions): CoreMis
   const mean = meanProfile(trail, options);
   const core = coreOf(mean);
   const { core_kms = core.core_kms } = options;
-  const model = ringFit(ringKernels({ ...mean, rings_kms: mean.edges_kms }), mean);
-  let sum = 0, weight = 0;
-  for (let b = 0; b < model.length && mean.edges_kms[b + 1]! <= core_kms; b++) {
-    const w = 1 / mean.error[b]! ** 2;
-    sum += w * (mean.value[b]! - model[b]!);
-    weight += w;
-  }
-  return { miss: sum / weight, core_kms, peak: core.peak };
+  const kernels = ringKernels({ ...mean, rings_kms: mean.edges_kms });
+  const { fluxes, model } = ringFit(kernels, mean);
+  const missOf = (value: Float64Array, fitted: Float64Array) => {
+    let sum = 0, weight = 0;
+    for (let b = 0; b < fitted.length && mean.edges_kms[b + 1]! <= core_kms; b++) {
+      const w = 1 / mean.error[b]! ** 2;
+      sum += w * (value[b]! - fitted[b]!);
+      weight += w;
+    }
+    return sum / weight;
+  };
+  let profile: ((speed: number) => number) | undefined;
+  return {
+    ...{ miss: missOf(mean.value, model), core_kms, peak: core.peak },
+    roundProfile: (speed) => (profile ??= fineProfile(fluxes, mean))(speed),
+    skewness: (random) =>
+      skewnessOf(Float64Array.from({ length: DRAWS }, () => {
+        const value = model.map((m, b) => m + mean.error[b]! * random.normal());
+        return missOf(value, ringFit(kernels, { value, error: mean.error }).model);
+      })),
+  };
+}
+
+/** Draws of noise that a skewness is taken from: its error is √(6/draws). */
+const DRAWS = 40;
+
+function skewnessOf(values: Float64Array): number {
+  const mean = values.reduce((a, b) => a + b, 0) / values.length;
+  const moment = (power: number) =>
+    values.reduce((sum, v) => sum + (v - mean) ** power, 0) / values.length;
+  return moment(3) / moment(2) ** 1.5;
 }
 
 /** Bins and rings cost the cube of their number. */
@@ -165,18 +192,51 @@ function coreOf({ value, edges_kms }: MeanProfile): { core_kms: number; peak: nu
   return { core_kms: Math.max(2 * edges_kms[1]!, 0.5 * reach), peak };
 }
 
+/** Points of the interpolated profile per bin. */
+const FINE = 6;
+
+/** The profile of rings against speed. */
+function fineProfile(
+  fluxes: readonly number[],
+  mean: MeanProfile,
+): (speed_kms: number) => number {
+  const { edges_kms } = mean;
+  const rings = edges_kms.length - 1, bins = FINE * rings;
+  const step = edges_kms[rings]! / bins;
+  const kernels = ringKernels({
+    ...mean,
+    rings_kms: edges_kms,
+    edges_kms: Float64Array.from({ length: bins + 1 }, (_, b) => b * step),
+  });
+  const value = new Float64Array(bins);
+  fluxes.forEach((flux, r) => {
+    if (flux === 0) return;
+    for (let b = 0; b < bins; b++) value[b] = value[b]! + flux * kernels[r * bins + b]!;
+  });
+  return (speed) => {
+    const at = speed / step - 0.5, b = Math.floor(at);
+    if (b >= bins) return 0;
+    // The profile is even, and there is none beyond the last ring.
+    const low = value[Math.max(0, b)]!, high = b + 1 < bins ? value[b + 1]! : 0;
+    return low + (at - b) * (high - low);
+  };
+}
+
 /** The best sum of rings with positive fluxes. */
 function ringFit(
   kernels: Float64Array,
   { value, error }: { readonly value: Float64Array; readonly error: Float64Array },
-): Float64Array {
+): { fluxes: number[]; model: Float64Array } {
   const bins = value.length, rings = kernels.length / bins;
   const design = Matrix.zeros(bins, rings);
   for (let r = 0; r < rings; r++) {
     for (let b = 0; b < bins; b++) design.set(b, r, kernels[r * bins + b]! / error[b]!);
   }
-  const fluxes = nonNegativeLeastSquares(design, value.map((v, b) => v / error[b]!));
-  return value.map((_, b) =>
+  const fluxes = Array.from(
+    nonNegativeLeastSquares(design, value.map((v, b) => v / error[b]!)),
+  );
+  const model = value.map((_, b) =>
     fluxes.reduce((sum, flux, r) => sum + flux * kernels[r * bins + b]!, 0)
   );
+  return { fluxes, model };
 }
