@@ -1,15 +1,17 @@
 import { InputError } from "../errors.ts";
 
 /** A point of a contour, in units of the font size; y upwards. */
-interface Point {
+export interface GlyphPoint {
+  /** To the right. */
   readonly x: number;
+  /** Upwards. */
   readonly y: number;
   /** False for the control point of a quadratic curve. */
   readonly on: boolean;
 }
 
 /** The closed contours of a glyph. */
-export type GlyphContours = readonly (readonly Point[])[];
+export type GlyphContours = readonly (readonly GlyphPoint[])[];
 
 /**
  * Reads outlines from a TrueType font: the tables `head`, `maxp`, `loca` and `glyf` of the OpenType
@@ -51,7 +53,7 @@ export function glyphOutlines(bytes: Uint8Array): (glyph: number) => GlyphContou
     return contours >= 0 ? simple(view, { at, contours, unit }) : composite(at + 10);
   };
   const composite = (start: number): GlyphContours => {
-    const all: (readonly Point[])[] = [];
+    const all: (readonly GlyphPoint[])[] = [];
     let at = start;
     let flags: number;
     do {
@@ -118,7 +120,7 @@ function simple(
   };
   const xs = coordinates(0x2, 0x10);
   const ys = coordinates(0x4, 0x20);
-  const points = flags.map((flag, i): Point => ({
+  const points = flags.map((flag, i): GlyphPoint => ({
     x: xs[i]! * unit,
     y: ys[i]! * unit,
     on: (flag & 1) === 1,
