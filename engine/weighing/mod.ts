@@ -40,7 +40,9 @@ export {
   type Problem,
   type ProblemOptions,
   type ScanCandidate,
+  type ScanPlace,
 } from "./problem.ts";
+export type { Ring, RingTable } from "./ring_table.ts";
 export * from "./profile_likelihood.ts";
 export {
   isAdequate,
