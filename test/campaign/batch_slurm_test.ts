@@ -42,13 +42,21 @@ Deno.test({
           (await slurm.run("squeue", "--noheader", "--states=all", "--format=%T", `--jobs=${job}`))
             .split("\n").filter((line) => line !== "").join(" ");
 
-        // One task is killed outright while it has a target in hand.
-        const lock = join(folder, "night/.millrace-part-1-of-2.lock");
-        await until(async () => (await holder(lock)) > 0, { what: "the first part" });
-        Deno.kill(await holder(lock), "SIGKILL");
+        // One task is killed outright while it has a target in hand. Both are stopped first: had the
+        // other one ended before the requeue, the tables would not wait for the first any more.
+        const stopped: number[] = [];
+        for (const part of [1, 2]) {
+          const lock = join(folder, `night/.millrace-part-${part}-of-2.lock`);
+          await until(async () => (await holder(lock)) > 0, { what: `part ${part}` });
+          stopped.push(await holder(lock));
+          Deno.kill(stopped.at(-1)!, "SIGSTOP");
+        }
+        const [first, second] = stopped as [number, number];
+        Deno.kill(first, "SIGKILL");
         await until(async () => (await state(`${parts}_1`)) === "FAILED", { what: "the kill" });
         await slurm.run("scontrol", "requeue", `${parts}_1`);
         await slurm.run("scontrol", "update", `JobId=${parts}_1`, "StartTime=now");
+        Deno.kill(second, "SIGCONT");
 
         const ended = async (job: string) => !/PENDING|RUNNING|COMPLETING/.test(await state(job));
         await until(() => ended(gather), { seconds: 120, what: "the tables" });
