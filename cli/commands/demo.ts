@@ -1,6 +1,7 @@
 import { resolve } from "@std/path";
 import {
   binaryOf,
+  type MappedLine,
   mappedLines,
   openSession,
   type OrbitDocument,
@@ -32,14 +33,13 @@ import { checkLines } from "./check.ts";
 import { mapLines } from "./map.ts";
 import { orbitLines } from "./orbit.ts";
 
-/** Inversions that fit the data, shown beside the one of the target file. */
+/** Inversions that fit the data: the first line's spot by each is shown beside the target file's. */
 const FITTED = ["entropy", "total-variation"] as const;
 
 /** Runs a step of a target and records it, as the command of its name does. */
 type Recorder = <T>(
   command: string,
   run: (session: Session, output: StepOutput) => Promise<StepResult<T>>,
-  where?: { session: Session; output: StepOutput },
 ) => Promise<StepResult<T>>;
 
 /** Few resamples show the size of an error: most of it here is that of the zero of phase. */
@@ -77,16 +77,26 @@ export const demoCommand = (finish: (status: number) => void) =>
           const read = await readTarget(campaign.target_file, { set: options.set });
           const session = openSession(read, { workers: options.workers, progress, signal });
           const output = { folder: outputFolder(read), overwrite: options.overwrite };
-          const record: Recorder = (command, run, where = { session, output }) =>
+          const record: Recorder = (command, run) =>
             recordStep(
-              where.session.target,
-              { command, run: () => run(where.session, where.output) },
-              { output: where.output, now: utcNow, signal },
+              read,
+              { command, run: () => run(session, output) },
+              { output, now: utcNow, signal },
             );
           const check = await record("check", runCheck);
+          // Its trials are at work on other threads while this one maps and draws.
+          const verdict = quickVerdict(
+            openSession(read, {
+              from: session,
+              workers: options.workers ?? navigator.hardwareConcurrency,
+              progress,
+              signal,
+            }),
+          );
+          verdict.catch(() => {});
           const trail = await record("trail", runTrail);
           const map = await record("map", runMap);
-          const fitted: { method: string; map: Awaited<ReturnType<typeof runMap>> }[] = [];
+          const fitted: MappedLine[] = [];
           for (const method of FITTED) {
             const set = [...(options.set ?? []), `map.method="${method}"`, ...SOONER];
             const other = openSession(await readTarget(campaign.target_file, { set }), {
@@ -95,33 +105,27 @@ export const demoCommand = (finish: (status: number) => void) =>
               progress,
               signal,
             });
-            const own = { ...output, folder: `${output.folder}-${method}` };
-            fitted.push({
-              method,
-              map: await record("map", runMap, { session: other, output: own }),
-            });
+            fitted.push(await other.map(firstLine(other)));
           }
           const orbit = await record("orbit", runOrbit);
           const plate = await record("plate", runPlate);
-          const { verdict, line: weighed } = await quickVerdict(
-            openSession(read, {
-              from: session,
-              workers: options.workers ?? navigator.hardwareConcurrency,
-              progress,
-              signal,
-            }),
-          );
+          const { sentence, preferred, line: weighed } = await verdict;
           const parts = trueParts(campaign.recipe, weighed);
           const truth = binaryOf(campaign.recipe);
           const warnings = uniqueWarnings([
-            ...fitted.flatMap(({ map }) => map.warnings),
+            ...fitted.flatMap(({ warnings }) => warnings),
             ...orbit.warnings,
             ...plate.warnings,
           ]);
-          const all = [map, ...fitted.map(({ map }) => map)];
-          const spots = all.flatMap(({ document }) => document.maps).map((
-            { line, method, features },
-          ) => ({
+          const found = [
+            ...map.document.maps,
+            ...fitted.map(({ trail, method, features }) => ({
+              line: trail.line.name,
+              method,
+              features,
+            })),
+          ];
+          const spots = found.map(({ line, method, features }) => ({
             line,
             method,
             found: features[0] ?? null,
@@ -136,14 +140,15 @@ export const demoCommand = (finish: (status: number) => void) =>
               maps: map.document.maps,
               spots,
               orbit: orbit.document,
-              verdict: { line: weighed, ...verdict, truth: parts },
+              verdict: { line: weighed, preferred, sentence, truth: parts },
               truth: { binary: truth, systemic_kms: campaign.recipe.settings.orbit.systemic_kms },
               warnings,
             },
             lines: [
               ...checkLines(check.document),
               "",
-              ...all.flatMap(({ document }) => [...mapLines(document), ""]),
+              ...mapLines(map.document),
+              "",
               ...orbitLines(orbit.document),
               "",
               "  the bright spot, found and true",
@@ -174,13 +179,13 @@ export const demoCommand = (finish: (status: number) => void) =>
                 { heading: true, align: ["left", "right", "right"] },
               ),
               "",
-              `  ${weighed}, weighed: ${verdict.sentence}`,
+              `  ${weighed}, weighed: ${sentence}`,
               `  it was made of: ${parts.join(" + ")}`,
               "",
               `  target file ${campaign.target_file}, raw exposures in ${folder}/blue and ${folder}/red`,
             ],
             files: [
-              ...new Set([check, trail, ...all, orbit, plate].flatMap(({ files }) => files)),
+              ...new Set([check, trail, map, orbit, plate].flatMap(({ files }) => files)),
             ],
             warnings,
           };
@@ -188,11 +193,16 @@ export const demoCommand = (finish: (status: number) => void) =>
       );
     });
 
+/** The first line of the gas. */
+function firstLine(session: Session) {
+  return mappedLines(session.lines("map the demo"))[0]!;
+}
+
 /** Weighs a disc against a disc with a spot on the first line of the gas. */
 async function quickVerdict(session: Session) {
-  const [line] = mappedLines(session.lines("weigh hypotheses"));
-  const { verdict } = await weighLine(session, line!, QUICK_VERDICT);
-  return { line: line!.name, verdict };
+  const line = firstLine(session);
+  const { verdict: { sentence, preferred } } = await weighLine(session, line, QUICK_VERDICT);
+  return { line: line.name, sentence, preferred };
 }
 
 function trueParts({ settings }: Target, line: string): readonly string[] {
