@@ -43,7 +43,7 @@ type Recorder = <T>(
 ) => Promise<StepResult<T>>;
 
 /** Few resamples show the size of an error: most of it here is that of the zero of phase. */
-const SOONER = ["map.resamples=4", "map.structures=false"];
+const SOONER = "map.resamples=4";
 
 /** The least that gives a verdict: its sentence says from how few trials it comes. */
 const QUICK_VERDICT = { sets: [["disc"], ["disc", "spot"]], trials: 20, limit: false } as const;
@@ -98,7 +98,7 @@ export const demoCommand = (finish: (status: number) => void) =>
           const map = await record("map", runMap);
           const fitted: MappedLine[] = [];
           for (const method of FITTED) {
-            const set = [...(options.set ?? []), `map.method="${method}"`, ...SOONER];
+            const set = [...(options.set ?? []), `map.method="${method}"`, SOONER];
             const other = openSession(await readTarget(campaign.target_file, { set }), {
               from: session,
               workers: options.workers,
