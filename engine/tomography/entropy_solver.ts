@@ -3,7 +3,7 @@ import { type EntropyMeasure, POSITIVE_ENTROPY } from "./entropy_measure.ts";
 import type { LinearOperator } from "./linear_operator.ts";
 import type { Samples } from "./map_fit.ts";
 import { subspaceStep } from "./search_subspace.ts";
-import { type VectorMachine, vectorMachine } from "./vector_machine.ts";
+import { borrowMachine, type VectorMachine } from "./vector_machine.ts";
 
 /** A maximum-entropy problem. */
 export interface EntropyProblem {
@@ -133,7 +133,8 @@ const RAISED = 1.02;
  * @param problem Operator, data, default image, start.
  * @param options Goal, tolerances.
  * @returns A generator of states, the last of which is the solution; it throws `NotConverged` with
- * the last state when the goal is out of reach or the iterations run out.
+ * the last state when the goal is out of reach or the iterations run out. The arrays of a state that
+ * is not the last are the solver's own, and change with the next step.
  *
  * @example
  * ```ts
@@ -159,14 +160,39 @@ export function* entropySteps(
   problem: EntropyProblem,
   options: EntropyOptions = {},
 ): Generator<EntropyState, void, void> {
+  const { memory = 12, plain = false } = options;
+  const { image_size, sample_count } = problem.operator;
+  const bytes = 8 * ((memory + 8) * (image_size + 4) + (memory + 7) * (sample_count + 4));
+  const { machine, giveBack } = borrowMachine(bytes, { plain });
+  try {
+    for (const state of stepsOn(machine, { ...options, problem })) {
+      yield state.converged ? ownArrays(state) : state;
+    }
+  } catch (error) {
+    if (!(error instanceof NotConverged)) throw error;
+    throw new NotConverged(error.message, ownArrays(error.partial as EntropyState));
+  } finally {
+    giveBack();
+  }
+}
+
+/** A state that stays what it is when the machine is used again. */
+const ownArrays = (state: EntropyState): EntropyState => ({
+  ...state,
+  image: state.image.slice(),
+  model: state.model.slice(),
+});
+
+function* stepsOn(
+  machine: VectorMachine,
+  options: EntropyOptions & { readonly problem: EntropyProblem },
+): Generator<EntropyState, void, void> {
+  const { problem } = options;
   const { samples, measure = POSITIVE_ENTROPY } = problem;
   const { multiplier: fixed = null, memory = 12, raise_goal = false } = options;
   const { chi_square_tolerance = 1e-3, misalignment: aligned = 0.01 } = options;
   const { max_iterations = 200 } = options;
   const size = problem.operator.image_size, count = problem.operator.sample_count;
-  const machine = vectorMachine(8 * ((memory + 8) * (size + 4) + (memory + 7) * (count + 4)), {
-    plain: options.plain === true,
-  });
   const weight = machine.vector(count), flux = machine.vector(count);
   let used = 0;
   for (let k = 0; k < count; k++) {
@@ -213,7 +239,7 @@ export function* entropySteps(
     const converged = reached && misalignment <= aligned;
     const reduced_chi_square = chi_square / used;
     const state: EntropyState = {
-      ...{ image: image.slice(), model: model.slice(), prior },
+      ...{ image, model, prior },
       ...{ reduced_chi_square, goal: fixed === null ? goal : null },
       ...{ misalignment, entropy, multiplier },
       ...{ iterations, operator_calls: calls, converged },

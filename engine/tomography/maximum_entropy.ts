@@ -138,7 +138,8 @@ const START_FLOOR = 0.05;
  *
  * @param trail Exposures, data, errors.
  * @param options Map's shape, systemic velocity, default image, goal.
- * @returns A generator of maps; the last one is the solution.
+ * @returns A generator of maps; the last one is the solution. The arrays of one that is not the last
+ * change with the next step.
  * @throws {InputError} When the data cannot be mapped (see {@linkcode checkTrail}), or the line's mean
  * flux has the wrong sign.
  * @throws {NotConverged} With the last map when the goal is out of reach or iterations run out.

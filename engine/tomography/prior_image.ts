@@ -49,7 +49,11 @@ export function priorImage(
 ): (image: Float64Array) => Float64Array {
   const { level, pixels, half_width_kms } = options;
   const floor = FLOOR * level;
-  const raised = (values: Float64Array) => values.map((f) => Math.max(f, floor));
+  // In place: a new image at every step of a solution would cost as much as the blurring.
+  const raised = (values: Float64Array) => {
+    for (let k = 0; k < values.length; k++) if (values[k]! < floor) values[k] = floor;
+    return values;
+  };
   const rings = (centre: MapPlace, intensity: Float64Array) =>
     axisymmetricPart({ pixels, half_width_kms, intensity }, { centre, statistic: "mean" })
       .intensity;
@@ -68,11 +72,13 @@ export function priorImage(
       const blur = mapBlur({ ...options, fwhm_kms: prior.fwhm_kms });
       return (image) => {
         const round = raised(rings(prior.centre, image));
-        return raised(blur(image)).map((f, k) => Math.sqrt(f * round[k]!));
+        const mixed = raised(blur(image));
+        for (let k = 0; k < mixed.length; k++) mixed[k] = Math.sqrt(mixed[k]! * round[k]!);
+        return mixed;
       };
     }
     case "image": {
-      const image = raised(prior.map.intensity);
+      const image = raised(prior.map.intensity.slice());
       return () => image;
     }
   }

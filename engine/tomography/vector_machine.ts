@@ -106,6 +106,53 @@ export function vectorMachine(
   return module === null ? plainMachine() : kernelMachine(module, bytes);
 }
 
+/** The machine given back last. One is kept: its memory would cost more to make than to clear. */
+let kept: { readonly bytes: number; readonly machine: ReusableMachine } | null = null;
+
+/**
+ * Makes a vector machine, or lends one that was given back, with all its memory free again.
+ *
+ * @param bytes Memory to reserve for vectors, as for {@linkcode vectorMachine}.
+ * @param options `plain`: TypeScript even where WebAssembly has SIMD.
+ * @returns The machine, and what to call when its vectors are not used any more.
+ *
+ * @example
+ * ```ts
+ * import { borrowMachine } from "@millrace/millrace/tomography";
+ * import { assertEquals } from "@std/assert";
+ *
+ * const first = borrowMachine(1000, {});
+ * first.machine.vector(3).set([1, 2, 3]);
+ * first.giveBack();
+ * assertEquals(borrowMachine(1000, {}).machine.vector(3), new Float64Array(3));
+ * ```
+ */
+export function borrowMachine(
+  bytes: number,
+  options: {
+    /** @default {false} */
+    readonly plain?: boolean;
+  },
+): { readonly machine: VectorMachine; readonly giveBack: () => void } {
+  const module = options.plain === true ? null : kernelModule();
+  if (module === null) return { machine: plainMachine(), giveBack() {} };
+  const machine = kept?.bytes === bytes ? kept.machine : kernelMachine(module, bytes);
+  kept = null;
+  machine.clear();
+  return {
+    machine,
+    giveBack() {
+      kept = { bytes, machine };
+    },
+  };
+}
+
+/** A machine all of whose vectors can be given up at once. */
+interface ReusableMachine extends VectorMachine {
+  /** Gives up all vectors; those made from now on are zeros again. */
+  readonly clear: () => void;
+}
+
 let compiled: WebAssembly.Module | null | undefined;
 
 function kernelModule(): WebAssembly.Module | null {
@@ -120,7 +167,7 @@ function kernelModule(): WebAssembly.Module | null {
 
 type Run = (...numbers: number[]) => number;
 
-function kernelMachine(module: WebAssembly.Module, bytes: number): VectorMachine {
+function kernelMachine(module: WebAssembly.Module, bytes: number): ReusableMachine {
   const fixed = 4 * LONGEST_LIST + 8 * (LONGEST_LIST * LONGEST_LIST + LONGEST_LIST + CHUNK + 4);
   const memory = new WebAssembly.Memory({ initial: Math.ceil((fixed + bytes) / 65536) + 1 });
   const run = new WebAssembly.Instance(module, { env: { memory } })
@@ -134,7 +181,8 @@ function kernelMachine(module: WebAssembly.Module, bytes: number): VectorMachine
     factors.byteOffset + factors.byteLength,
     LONGEST_LIST * LONGEST_LIST,
   );
-  let top = 16 * Math.ceil((out.byteOffset + out.byteLength) / 16);
+  const bottom = 16 * Math.ceil((out.byteOffset + out.byteLength) / 16);
+  let top = bottom, used = bottom;
   const at = (v: Float64Array) => v.byteOffset;
   const listed = (vectors: readonly Float64Array[]) => {
     vectors.forEach((v, k) => list[k] = at(v));
@@ -144,8 +192,13 @@ function kernelMachine(module: WebAssembly.Module, bytes: number): VectorMachine
     code: "kernel",
     vector(length) {
       const made = new Float64Array(buffer, top, length);
+      if (top < used) made.fill(0);
       top += 16 * Math.ceil((8 * length + 16) / 16);
       return made;
+    },
+    clear() {
+      used = Math.max(used, top);
+      top = bottom;
     },
     residuals: ({ model, flux, weight, residual }) =>
       run.residuals!(at(model), at(flux), at(weight), at(residual), model.length),

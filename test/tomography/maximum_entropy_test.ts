@@ -191,6 +191,10 @@ Deno.test("maximumEntropySteps() shows progress and leaves its input alone", () 
   assertEquals(states.map((s) => s.converged).indexOf(true), states.length - 1);
   assertEquals(states.map((s) => s.iterations), states.map((_, i) => i));
   assertEquals(trail, before);
+  // The last map is the caller's own: another solution leaves it alone.
+  const last = states.at(-1)!.map.intensity, copy = last.slice();
+  maximumEntropy(noisyTrail(gaussianTrail(sampling, [POINT]), 0.02), { ...shape, prior: UNIFORM });
+  assertEquals(last, copy);
 });
 
 Deno.test("maximumEntropy() gives the same bits twice, and when a masked sample holds anything", () => {

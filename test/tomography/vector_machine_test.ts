@@ -1,6 +1,7 @@
 import { assertAlmostEquals, assertEquals } from "@std/assert";
 import { randomStream } from "@millrace/millrace/numerics";
 import {
+  borrowMachine,
   kernelAvailable,
   mapBlur,
   maximumEntropy,
@@ -92,4 +93,17 @@ Deno.test("maximumEntropy() gives the same bits in WebAssembly and TypeScript", 
   const kernel = maximumEntropy(trail, options);
   const plain = maximumEntropy(trail, { ...options, method: "plain", plain: true });
   assertEquals(kernel, plain);
+});
+
+Deno.test("borrowMachine() lends its memory again, cleared, and never to two at once", () => {
+  const first = borrowMachine(1000, {}), second = borrowMachine(1000, {});
+  const a = first.machine.vector(5), b = second.machine.vector(5);
+  a.fill(1);
+  b.fill(2);
+  assertEquals(a, new Float64Array(5).fill(1));
+  second.giveBack();
+  const third = borrowMachine(1000, {});
+  assertEquals(third.machine, second.machine);
+  assertEquals(third.machine.vector(5), new Float64Array(5));
+  assertEquals(a, new Float64Array(5).fill(1));
 });
