@@ -12,15 +12,17 @@ import { inTurns } from "./work_in_steps.ts";
 /** False-alarm rate above which a part is not taken as found. */
 export const NEEDED = 0.01;
 
+/** Trials below which no rate so low can be shown. */
+export const ENOUGH_TRIALS = Math.round(1 / NEEDED) - 1;
+
 /** What the data say of one part: whether the set without it would do. */
 export interface PartTest {
   /** The part. */
   readonly part: string;
-  /**
-   * Whether it is needed: the false-alarm rate is at most 0.01, or no trial gained as much where they
-   * are too few to show that.
-   */
+  /** Whether it is needed: the false-alarm rate is at most 0.01. */
   readonly needed: boolean;
+  /** Whether no trial gained as much, but they are too few to show such a rate: it may be needed. */
+  readonly unsettled: boolean;
   /** The rate, from trials of the set without the part. */
   readonly calibration: Calibration;
 }
@@ -41,7 +43,7 @@ export interface Contest {
 
 /** What the data say of the hypotheses. */
 export interface Judgement {
-  /** The hypothesis whose every part is needed, whether or not it is adequate. */
+  /** The hypothesis whose every part is needed or unsettled, whether or not it is adequate. */
   readonly best: WeighedHypothesis;
   /** Tests of parts, in the order in which they were made. */
   readonly part_tests: readonly PartTest[];
@@ -94,9 +96,10 @@ export async function judge(comparison: Comparison, options: JudgeOptions): Prom
     const part = rich.parts.filter((name) => !simple.parts.includes(name)).join(" + ");
     const calibration = await weighPair(simple, rich.parts, { ...options, what: part });
     const { value, exceeding } = calibration;
-    const made = { part, needed: value <= NEEDED || exceeding === 0, calibration };
-    part_tests.push(made);
-    return made.needed;
+    const needed = value <= NEEDED;
+    const unsettled = !needed && exceeding === 0;
+    part_tests.push({ part, needed, unsettled, calibration });
+    return needed || unsettled;
   };
 
   let best = eligible[0]!;

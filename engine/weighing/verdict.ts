@@ -2,14 +2,17 @@ import type { Calibration } from "./calibrate.ts";
 import type { WeighedHypothesis } from "./compare_hypotheses.ts";
 import type { DetectionLimit } from "./detection_limit.ts";
 import type { Hypothesis } from "./hypothesis.ts";
-import type { Judgement, PartTest } from "./judge.ts";
+import { ENOUGH_TRIALS, type Judgement, NEEDED, type PartTest } from "./judge.ts";
 import { ADEQUATE, type ResidualTests } from "./residual_tests.ts";
 
 /** A judgement in words, and what may be kept of it. */
 export interface Verdict {
   /** The parts that the data ask for; empty when no set explains them. */
   readonly preferred: Hypothesis;
-  /** Another set that the data do not tell from the preferred one; null when there is none. */
+  /**
+   * Another set that the data do not tell from the preferred one, or the simpler one that too few
+   * trials cannot rule out; null when there is none.
+   */
   readonly undecided_with: Hypothesis | null;
   /** The calibration behind the sentence: of the two leading nested sets. Null when none was made. */
   readonly false_alarm: Calibration | null;
@@ -41,11 +44,13 @@ export function verdictOf(
   const name = inWords(best.parts);
   const about = part_tests.filter(({ calibration }) => same(calibration.against_parts, best.parts));
   const needed = about.filter((test) => test.needed);
+  const unsettled = about.filter((test) => test.unsettled);
+  const kept = [...needed, ...unsettled];
   const beyond = part_tests.filter(({ calibration, needed }) =>
     !needed && same(calibration.null_parts, best.parts)
   );
-  const leading = needed.length > 0
-    ? needed.reduce((a, b) => b.calibration.value > a.calibration.value ? b : a)
+  const leading = kept.length > 0
+    ? kept.reduce((a, b) => b.calibration.value > a.calibration.value ? b : a)
     : beyond.reduce<PartTest | null>(
       (a, b) => a === null || b.calibration.value < a.calibration.value ? b : a,
       null,
@@ -68,7 +73,7 @@ export function verdictOf(
   }
   if (contest !== null && !contest.decided) {
     const either = [contest.leader, contest.rival];
-    const lost = contest.rival_true.value <= 0.01;
+    const lost = contest.rival_true.value <= NEEDED;
     const sentence = lost
       ? `Neither ${inWords(either[0]!)} nor ${inWords(either[1]!)} gives data like these: the ` +
         `first by ${rate(contest.leader_true)}, the second by ${rate(contest.rival_true)}.`
@@ -79,20 +84,29 @@ export function verdictOf(
       preferred: lost ? [] : best.parts,
       undecided_with: lost ? null : other,
       false_alarm,
-      sentence: needed.length > 0 ? `${sentence} Against simpler sets: ${list(needed)}.` : sentence,
+      sentence: kept.length > 0 ? `${sentence} Against simpler sets: ${list(kept)}.` : sentence,
     };
   }
   const base = { preferred: best.parts, undecided_with: null, false_alarm };
+  const doubtful = about.filter((test) => !kept.includes(test));
+  const doubt = doubtful.length === 0
+    ? ""
+    : ` Not established by itself: the ${doubtful.map(({ part }) => part).join(", the ")} (${
+      list(doubtful)
+    }).`;
+  if (unsettled.length > 0) {
+    const parts = unsettled.map(({ part }) => part).join(", the ");
+    return {
+      ...base,
+      undecided_with: unsettled[0]!.calibration.null_parts,
+      sentence: `The data favour ${name} and fit it, but the trials are too few to call the ` +
+        `${parts} needed: ${list(kept)}; ${ENOUGH_TRIALS} trials could show it.${doubt}`,
+    };
+  }
   if (needed.length > 0) {
     const versus = contest === null
       ? ""
       : ` ${capital(inWords(contest.rival))} would look like this in ${rate(contest.rival_true)}.`;
-    const doubtful = about.filter((test) => !test.needed);
-    const doubt = doubtful.length === 0
-      ? ""
-      : ` Not established by itself: the ${doubtful.map(({ part }) => part).join(", the ")} (${
-        list(doubtful)
-      }).`;
     return {
       ...base,
       sentence: `The data ask for ${name} and fit it: ${list(needed)}.${doubt}${versus}`,

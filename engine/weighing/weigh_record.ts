@@ -79,7 +79,7 @@ export interface WeighRecord {
   readonly hypotheses: readonly HypothesisRecord[];
   /** Parts that the data ask for; empty when no set explains them. */
   readonly preferred: readonly string[];
-  /** A set that the data do not tell from the preferred one. */
+  /** A set that the data do not tell from the preferred one, or too few trials do not rule out. */
   readonly undecided_with: readonly string[] | null;
   /** The conclusion in words. */
   readonly verdict: string;
@@ -89,8 +89,10 @@ export interface WeighRecord {
   readonly part_tests: readonly (FalseAlarmRecord & {
     /** The part. */
     readonly part: string;
-    /** Whether the data need it. */
+    /** Whether the data need it: the rate is 0.01 or less. */
     readonly needed: boolean;
+    /** Whether no trial gained as much, but they are too few to show such a rate. */
+    readonly unsettled: boolean;
   })[];
   /** The contest with the nearest rival, both ways; null without one. */
   readonly contest: {
@@ -177,9 +179,10 @@ export function weighRecord(weighed: WeighedLine): WeighRecord {
     undecided_with: verdict.undecided_with,
     verdict: verdict.sentence,
     false_alarm: verdict.false_alarm === null ? null : falseAlarmRecord(verdict.false_alarm),
-    part_tests: judgement.part_tests.map(({ part, needed, calibration }) => ({
+    part_tests: judgement.part_tests.map(({ part, needed, unsettled, calibration }) => ({
       part,
       needed,
+      unsettled,
       ...falseAlarmRecord(calibration),
     })),
     contest: contest === null ? null : {

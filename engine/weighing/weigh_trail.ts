@@ -5,7 +5,7 @@ import { type StrongestSource, strongestSource } from "./compact_source.ts";
 import { type DetectionLimit, limitInSteps } from "./detection_limit.ts";
 import type { HypothesisFit } from "./fit_hypothesis.ts";
 import type { FitSetup } from "./fit_setup.ts";
-import { judge, type Judgement, NEEDED } from "./judge.ts";
+import { ENOUGH_TRIALS, judge, type Judgement } from "./judge.ts";
 import { noiseBank } from "./noise_bank.ts";
 import type { NullTable } from "./null_table.ts";
 import { type PreparedProblem, prepareInSteps, type PrepareOptions } from "./prepare_problem.ts";
@@ -215,8 +215,11 @@ function warningsOf(
       } samples stand alone, more than 6 standard deviations from their neighbours and sharper than the instrument's profile, and were left out: cosmic rays that were not found before?`,
     );
   }
-  if (1 / (trials + 1) > NEEDED) {
-    warn("too-few-trials", `${trials} trials cannot show a false-alarm rate of 1 %: 99 can`);
+  if (trials < ENOUGH_TRIALS) {
+    warn(
+      "too-few-trials",
+      `${trials} trials cannot show a false-alarm rate of 1 %: ${ENOUGH_TRIALS} can`,
+    );
   }
   if (!donor) {
     warn("donor-not-weighed", "sets with a donor need an inclination and were left out");

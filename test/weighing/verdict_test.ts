@@ -28,8 +28,12 @@ function best(parts: Hypothesis, adequate = true): WeighedHypothesis {
   } as WeighedHypothesis;
 }
 
-function rate(exceeding: number, null_parts: Hypothesis, against_parts: Hypothesis): Calibration {
-  const trials = 200;
+function rate(
+  exceeding: number,
+  null_parts: Hypothesis,
+  against_parts: Hypothesis,
+  trials = 200,
+): Calibration {
   const value = (exceeding + 1) / (trials + 1);
   return {
     null_parts,
@@ -39,7 +43,7 @@ function rate(exceeding: number, null_parts: Hypothesis, against_parts: Hypothes
     error: Math.sqrt(value * (1 - value) / (trials + 1)),
     trials,
     exceeding,
-    stopping_points: [100, 200],
+    stopping_points: [trials],
     table: { key: "", first: 0, statistics: new Float64Array(0) },
   };
 }
@@ -48,7 +52,12 @@ function judgement(parts: Partial<Judgement> & Pick<Judgement, "best">): Judgeme
   return { part_tests: [], contest: null, ...parts };
 }
 
-const needed = { part: "spot", needed: true, calibration: rate(0, DISC, SPOT) };
+const needed = {
+  part: "spot",
+  needed: true,
+  unsettled: false,
+  calibration: rate(0, DISC, SPOT),
+};
 
 Deno.test("verdictOf() says at most what the number of trials allows when a part is needed", () => {
   const { sentence, preferred, false_alarm } = verdictOf(
@@ -58,6 +67,21 @@ Deno.test("verdictOf() says at most what the number of trials allows when a part
   assertEquals(false_alarm?.value, 1 / 201);
   assertStringIncludes(sentence, "at most 0.5 % of cases (none of 200 trials)");
   assertNotMatch(sentence, /σ|sigma|certain|proves|certainly/);
+});
+
+Deno.test("verdictOf() leaves a part open when no trial gained as much but they are too few", () => {
+  const calibration = rate(0, DISC, SPOT, 20);
+  const { sentence, preferred, undecided_with, false_alarm } = verdictOf(
+    judgement({
+      best: best(SPOT),
+      part_tests: [{ part: "spot", needed: false, unsettled: true, calibration }],
+    }),
+  );
+  assertEquals([preferred, undecided_with], [SPOT, DISC]);
+  assertEquals(false_alarm?.value, 1 / 21);
+  assertStringIncludes(sentence, "too few to call the spot needed");
+  assertStringIncludes(sentence, "at most 4.8 % of cases (none of 20 trials); 99 trials could");
+  assertNotMatch(sentence, /ask for/);
 });
 
 Deno.test("verdictOf() prefers no set when none explains the data", () => {
@@ -101,7 +125,12 @@ Deno.test("verdictOf() takes neither when both fail their own trials", () => {
 });
 
 Deno.test("verdictOf() turns seeing nothing into a number when there is a limit", () => {
-  const doubtful = { part: "spot", needed: false, calibration: rate(85, DISC, SPOT) };
+  const doubtful = {
+    part: "spot",
+    needed: false,
+    unsettled: false,
+    calibration: rate(85, DISC, SPOT),
+  };
   const limit = {
     cells: 1,
     half_width_kms: 975,
@@ -129,11 +158,13 @@ Deno.test("verdictOf() says which part is not established by itself", () => {
   const donor = {
     part: "donor",
     needed: false,
+    unsettled: false,
     calibration: rate(9, SPOT, ["disc", "spot", "donor"]),
   };
   const spot = {
     part: "spot",
     needed: true,
+    unsettled: false,
     calibration: rate(0, ["disc", "donor"], ["disc", "spot", "donor"]),
   };
   const { sentence } = verdictOf(

@@ -28,6 +28,21 @@ Deno.test("weighTrail() prefers disc and spot when a spot has 10 % of the light"
   assertEquals(trail, before);
   assertEquals(weighed.verdict.preferred, ["disc", "spot"]);
   assertEquals(weighed.verdict.false_alarm?.null_parts, ["disc"]);
+  // None of 20 trials is no 1 %: it stays open, and a kept table of 99 settles it.
+  assertEquals(weighed.verdict.undecided_with, ["disc"]);
+  const [test] = weighed.judgement.part_tests;
+  assertEquals([test!.needed, test!.unsettled], [false, true]);
+  const [table] = weighed.tables;
+  const gains = new Float64Array(99).map((_, k) => table!.statistics[k % 20]!);
+  const settled = await weighTrail(trail, {
+    ...short,
+    trials: 99,
+    tables: [{ ...table!, statistics: gains }],
+  });
+  assertEquals([settled.verdict.preferred, settled.verdict.undecided_with], [
+    ["disc", "spot"],
+    null,
+  ]);
   assert(weighed.warnings.some(({ code }) => code === "too-few-trials"));
   assertGreater(weighed.source!.structures["rim-impact"], 0.5);
 
