@@ -60,7 +60,7 @@ Deno.test({
         Deno.kill(second, "SIGCONT");
 
         const ended = async (job: string) => !/PENDING|RUNNING|COMPLETING/.test(await state(job));
-        await until(() => ended(gather), { seconds: 120, what: "the tables" });
+        await until(() => ended(gather), { seconds: 300, what: "the tables" });
         assertEquals(await state(`${parts}_1`), "COMPLETED");
         assertEquals(await state(`${parts}_2`), "COMPLETED");
         assertEquals(await state(gather), "COMPLETED");

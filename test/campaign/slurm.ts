@@ -105,7 +105,7 @@ export async function until(
   isSo: () => Promise<boolean>,
   options: { seconds?: number; what?: string } = {},
 ): Promise<void> {
-  const { seconds = 30, what = "the condition" } = options;
+  const { seconds = 120, what = "the condition" } = options;
   const end = performance.now() + 1000 * seconds;
   let last: unknown;
   while (performance.now() < end) {
