@@ -124,7 +124,7 @@ Deno.test({
       }
     }
     const { code, stdout } = await new Deno.Command("timeout", {
-      args: ["60", "fitsverify", "-q", ...names],
+      args: ["300", "fitsverify", "-q", ...names],
     }).output();
     const text = new TextDecoder().decode(stdout);
     assertEquals([code, text.match(/verification OK/g)?.length], [0, names.length], text);

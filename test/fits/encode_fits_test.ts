@@ -324,7 +324,7 @@ Deno.test({
       const path = join(folder, "all.fits");
       await Deno.writeFile(path, encodeFits(everything()));
       // It waits for ever on some files that it cannot handle, so the time is limited.
-      const { stdout } = await new Deno.Command("timeout", { args: ["20", "fitsverify", path] })
+      const { stdout } = await new Deno.Command("timeout", { args: ["120", "fitsverify", path] })
         .output();
       const text = new TextDecoder().decode(stdout);
       const verdict = /Verification found .*/.exec(text)?.[0];
