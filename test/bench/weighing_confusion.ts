@@ -1,66 +1,131 @@
 /**
- * Stream against spot: what N weighings (default 6) of each kind of data say, "undecided" allowed. Spots
- * have velocities between the stream's (mixing 0) and the disc's (1); each part has 4 % of the light.
+ * Stream against spot: what weighings of N sets (default 10) of each kind of data say, "undecided"
+ * allowed. Spots have velocities between the stream's (mixing 0) and the disc's (1); each part has 4 %
+ * or 1 % of the light. Seeds 1 to N; 24 exposures, pixels of a resolution element. A kind's sets share
+ * their tables of trials: 100 of each pair, from the first sets.
  *
- *     deno run --allow-read test/bench/weighing_confusion.ts [N]
+ *     deno run --allow-read test/bench/weighing_confusion.ts [N] [part of a row's name]
  */
 import type { Model } from "@millrace/millrace/synthesis";
-import { weighTrail } from "@millrace/millrace/weighing";
+import {
+  compareHypotheses,
+  type Hypothesis,
+  type HypothesisFit,
+  noiseBank,
+  nullKey,
+  prepareProblem,
+  type TrialJob,
+  trialJob,
+  type Verdict,
+  weighingData,
+} from "@millrace/millrace/weighing";
+import { judge } from "../../engine/weighing/judge.ts";
+import { runTrials } from "../../engine/weighing/pair_trials.ts";
+import { verdictOf } from "../../engine/weighing/verdict.ts";
 import { binary, row, trailOf, WIDTH } from "./weighing_data.ts";
 
-const sets = Number(Deno.args[0] ?? 6);
-const SHARE = 0.04;
-const disc = { equivalent_width_kms: (1 - SHARE) * WIDTH };
-const own = { equivalent_width_kms: SHARE * WIDTH };
-const truths: readonly (readonly [string, "spot" | "stream", Model])[] = [
-  ...[0, 0.5, 1].map((mixing) =>
-    [
-      `spot, mixing ${mixing}`,
-      "spot",
-      { parts: ["disc", "spot"], disc, spot: { ...own, mixing, sigma_kms: 60 } },
-    ] as const
-  ),
-  ...[0, 3].map((brightness_index) =>
-    [
-      `stream, n = ${brightness_index}`,
-      "stream",
-      { parts: ["disc", "stream"], disc, stream: { ...own, brightness_index } },
-    ] as const
-  ),
-];
+const count = Number(Deno.args[0] ?? 10);
+const chosen = Deno.args[1] ?? "";
+const TRIALS = 100;
+const sets: readonly Hypothesis[] = [["disc"], ["disc", "spot"], ["disc", "stream"]];
 
-let wrong = 0, all = 0;
-row("truth", "S/N", "right", "undecided", "nothing found", "outside", "wrong");
-row("---", "---", "---", "---", "---", "---", "---");
-for (const [name, part, model] of truths) {
+interface Truth {
+  readonly name: string;
+  readonly part: "spot" | "stream";
+  readonly model: Model;
+}
+
+function truths(share: number): Truth[] {
+  const disc = { equivalent_width_kms: (1 - share) * WIDTH };
+  const own = { equivalent_width_kms: share * WIDTH };
+  const spot = (mixing: number): Truth => ({
+    name: `spot, mixing ${mixing}`,
+    part: "spot",
+    model: { parts: ["disc", "spot"], disc, spot: { ...own, mixing, sigma_kms: 60 } },
+  });
+  const stream = (brightness_index: number): Truth => ({
+    name: `stream, index ${brightness_index}`,
+    part: "stream",
+    model: { parts: ["disc", "stream"], disc, stream: { ...own, brightness_index } },
+  });
+  return [...[0, 0.5, 1].map(spot), ...[0, 3].map(stream)];
+}
+
+/** One set, fitted, with the pairs whose trials a judgement may ask for. */
+function fitted(
+  model: Model,
+  options: { readonly seed: number; readonly signal_to_noise: number },
+) {
+  const { seed } = options;
+  const size = { flicker_rms: 0.05, exposures: 24, pixel_kms: 60 };
+  const trail = trailOf(model, { ...options, ...size });
+  const prepared = prepareProblem(weighingData(trail), { binary }, { sets });
+  const { problem, richest, line_scale } = prepared;
+  const comparison = compareHypotheses(prepared, sets, { seed });
+  const bank = noiseBank(problem, richest, { line_scale });
+  const bankFor = (fit: HypothesisFit) =>
+    bank.structured ? noiseBank(problem, fit, { line_scale }) : bank;
+  const of = (parts: Hypothesis) =>
+    comparison.hypotheses.find((one) => one.parts.join() === parts.join())!.fit;
+  const [disc, spot, stream] = sets as [Hypothesis, Hypothesis, Hypothesis];
+  const jobs = ([[disc, spot], [disc, stream], [spot, stream], [stream, spot]] as const).map((
+    [first, second],
+  ) => trialJob(problem, { fit: of(first), second, bank: bankFor(of(first)), seed }));
+  return { problem, comparison, bankFor, jobs, seed };
+}
+
+/** The verdict, with gains of trials that the sets of a kind share. */
+async function verdict(set: ReturnType<typeof fitted>, gains: readonly number[][]) {
+  const { comparison, jobs, ...rest } = set;
+  const tables = jobs.map((job: TrialJob, i) => ({
+    key: nullKey(job),
+    first: 0,
+    statistics: Float64Array.from(gains[i]!),
+  }));
+  return verdictOf(await judge(comparison, { ...rest, trials: TRIALS, tables, workers: 1 }));
+}
+
+function outcome({ preferred, undecided_with }: Verdict, part: Truth["part"]): string {
+  if (preferred.length === 0) return "outside";
+  if (preferred.length === 1) return "nothing found";
+  if (undecided_with !== null) return "undecided";
+  return preferred.includes(part) ? "right" : "wrong";
+}
+
+const OUTCOMES = ["right", "undecided", "nothing found", "outside", "wrong"];
+const all = new Map<string, number>();
+row("share of light", "S/N", "truth", "sets", ...OUTCOMES);
+row(..."---------".split("").map(() => "---"));
+for (const share of [0.04, 0.01]) {
   for (const signal_to_noise of [25, 8]) {
-    const counts = { right: 0, undecided: 0, nothing: 0, outside: 0, wrong: 0 };
-    for (let seed = 1; seed <= sets; seed++) {
-      const trail = trailOf(model, {
-        seed,
-        signal_to_noise,
-        flicker_rms: 0.05,
-        exposures: 30,
-        pixel_kms: 60,
-      });
-      const { verdict } = await weighTrail(trail, {
-        binary,
-        sets: [["disc"], ["disc", "spot"], ["disc", "stream"]],
-        trials: 100,
-        limit: false,
-        seed,
-      });
-      const { preferred, undecided_with } = verdict;
-      if (preferred.length === 0) counts.outside++;
-      else if (preferred.length === 1) counts.nothing++;
-      else if (undecided_with !== null && undecided_with.length > 1) counts.undecided++;
-      else if (preferred.includes(part)) counts.right++;
-      else counts.wrong++;
+    for (const { name, part, model } of truths(share)) {
+      const title = `${100 * share} %, S/N ${signal_to_noise}, ${name}`;
+      if (!title.includes(chosen)) continue;
+      const seeds = Array.from({ length: count }, (_, k) => k + 1);
+      const makers = seeds.slice(0, 5).map((seed) => fitted(model, { seed, signal_to_noise }));
+      const each = Math.ceil(TRIALS / makers.length);
+      const gains = makers[0]!.jobs.map((_, i) =>
+        makers.flatMap(({ jobs }) => [...runTrials(jobs[i]!, { from: 0, to: each })])
+          .slice(0, TRIALS)
+      );
+      const counts = new Map<string, number>();
+      for (const seed of seeds) {
+        const set = makers[seed - 1] ?? fitted(model, { seed, signal_to_noise });
+        const found = outcome(await verdict(set, gains), part);
+        counts.set(found, (counts.get(found) ?? 0) + 1);
+        all.set(found, (all.get(found) ?? 0) + 1);
+      }
+      const numbers = OUTCOMES.map((key) => counts.get(key) ?? 0);
+      row(`${100 * share} %`, signal_to_noise, name, count, ...numbers);
     }
-    all += sets;
-    wrong += counts.wrong;
-    const { right, undecided, nothing, outside } = counts;
-    row(name, signal_to_noise, right, undecided, nothing, outside, counts.wrong);
   }
 }
-console.log(`\nwrong: ${wrong} of ${all}, ${(100 * wrong / all).toFixed(1)} %`);
+const total = [...all.values()].reduce((a, b) => a + b, 0);
+const wrong = all.get("wrong") ?? 0;
+// Rule of three, for none; else the normal bound will do.
+const bound = wrong === 0
+  ? 1 - 0.05 ** (1 / total)
+  : wrong / total + 1.645 * Math.sqrt(wrong) / total;
+console.log(
+  `\nwrong: ${wrong} of ${total}; below ${(100 * bound).toFixed(1)} % at 95 % confidence`,
+);

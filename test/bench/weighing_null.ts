@@ -3,6 +3,7 @@
  * (default 2000) of discs with fitted continua: round and quiet, then asymmetric and flickering. Each has
  * M trials (default 4) of its own. The rank of the data among them must be uniform; trials of all discs
  * together make the null table whose quantiles are tried. Adequacy is counted, too: every set is true.
+ * Gains go to standard error, one row a set: its seed, its own, its trials'.
  *
  *     deno run --allow-read test/bench/weighing_null.ts [N] [M] [round|wild] [cheap|whole]
  */
@@ -76,6 +77,7 @@ for (const kind of kinds) {
     rates.push((above + random.uniform()) / (trials + 1));
     data.push(statistic);
     table.push(...gains);
+    console.error([seed, statistic, ...gains].map((value) => +value.toFixed(4)).join(" "));
     if (!simple.adequate) inadequate++;
     for (const [test, { probability }] of Object.entries(simple.residual_tests)) {
       if (probability < 1e-3) objections.set(test, (objections.get(test) ?? 0) + 1);
