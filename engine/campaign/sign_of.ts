@@ -1,7 +1,6 @@
 import { InputError } from "../errors.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { LineSign } from "./inversion/inverted.ts";
-import type { MappedLine } from "./map_line.ts";
 import type { Target } from "./target.ts";
 
 /**
@@ -47,6 +46,8 @@ export function turned(trail: Trail): Trail {
 }
 
 /** The trail of a map with the sign that the map has: that of absorption turned. */
-export function uprightTrail({ trail, sign }: Pick<MappedLine, "trail" | "sign">): Trail {
+export function uprightTrail(
+  { trail, sign }: { readonly trail: Trail; readonly sign: LineSign },
+): Trail {
   return sign === "absorption" ? turned(trail) : trail;
 }

@@ -1,12 +1,12 @@
 import { smearingRule } from "../tomography/mod.ts";
 import type { Binary } from "../binary/mod.ts";
 import { requirePossible } from "./check_model.ts";
+import type { CloudPlace } from "./cloud_place.ts";
 import { completeModel } from "./complete_model.ts";
 import { donorOccultation, type Occultation } from "./eclipse.ts";
 import { inclinationOf } from "./inclination.ts";
 import type { Model } from "./model.ts";
 import type { CompleteModel } from "./model_parameters.ts";
-import type { CloudPlace } from "./point_cloud.ts";
 import { legendre } from "./quadrature.ts";
 import { spotHead } from "./rim_gas.ts";
 

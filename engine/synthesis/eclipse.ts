@@ -1,5 +1,5 @@
 import { donorMassFraction, lagrangePoints, lobeSurface } from "../binary/mod.ts";
-import type { CloudPlace } from "./point_cloud.ts";
+import type { CloudPlace } from "./cloud_place.ts";
 
 /** What the donor hides from an observer. */
 export interface Occultation {

@@ -22,5 +22,6 @@ export * from "./plan_exposures.ts";
 export * from "./profile_at.ts";
 export * from "./ring_profile.ts";
 export * from "./rotation_profile.ts";
+export * from "./rim_place.ts";
 export * from "./spot_place.ts";
 export * from "./synthesize.ts";

@@ -1,4 +1,5 @@
 import { smearingRule } from "../tomography/mod.ts";
+import type { CloudPlace } from "./cloud_place.ts";
 import type { Occultation } from "./eclipse.ts";
 import type { ExposureSamples } from "./emission.ts";
 import {
@@ -28,16 +29,6 @@ export interface PointCloud {
   readonly brightness: ((phase: number, share: Float64Array) => void) | null;
   /** Local line profile beside the Gaussian; null for the Gaussian alone. */
   readonly profile: LocalProfile | null;
-}
-
-/** Places of a cloud's points, N values each, in units of the separation, origin at the accretor. */
-export interface CloudPlace {
-  /** Towards the donor. */
-  readonly x: Float64Array;
-  /** Along the donor's motion. */
-  readonly y: Float64Array;
-  /** Along the orbital axis. */
-  readonly z: Float64Array;
 }
 
 /** A local profile as shares of light, which add up to one, at offsets in velocity. */

@@ -1,6 +1,6 @@
 import { type Binary, keplerianVelocity } from "../binary/mod.ts";
 import type { CompleteModel } from "./model_parameters.ts";
-import type { RimPlace } from "./spot_place.ts";
+import type { RimPlace } from "./rim_place.ts";
 import { streamPath } from "./stream_path.ts";
 
 /** Radius of the impact: the spot's own, or the disc's rim. */

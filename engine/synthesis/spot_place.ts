@@ -2,18 +2,7 @@ import type { Binary } from "../binary/mod.ts";
 import { completeModel } from "./complete_model.ts";
 import type { Model } from "./model.ts";
 import { spotHead } from "./rim_gas.ts";
-
-/** A place on the rim and the velocity of its gas in map coordinates. */
-export interface RimPlace {
-  /** From the accretor towards the donor, a. */
-  readonly x: number;
-  /** Along the donor's orbital motion, a. */
-  readonly y: number;
-  /** Map coordinate, km/s. */
-  readonly vx_kms: number;
-  /** Map coordinate, km/s. */
-  readonly vy_kms: number;
-}
+import type { RimPlace } from "./rim_place.ts";
 
 /**
  * Where the stream meets the rim, and how fast the spot's gas moves there: (1 − m) times the
