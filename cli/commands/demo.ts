@@ -1,6 +1,9 @@
 import { resolve } from "@std/path";
 import {
   binaryOf,
+  gather,
+  type LineSettings,
+  type LineTask,
   type MappedLine,
   mappedLines,
   openSession,
@@ -22,6 +25,7 @@ import {
   uniqueWarnings,
   VERSION,
   weighLine,
+  workBeside,
 } from "../../engine/campaign/mod.ts";
 import recipe from "../../examples/demo/recipe.toml" with { type: "text" };
 import target from "../../examples/demo/vx-0417.toml" with { type: "text" };
@@ -44,6 +48,9 @@ type Recorder = <T>(
 
 /** Few resamples show the size of an error: most of it here is that of the zero of phase. */
 const SOONER = "map.resamples=4";
+
+/** Name of the weighing among what is done beside. */
+const VERDICT = "verdict";
 
 /** The least that gives a verdict: its sentence says from how few trials it comes. */
 const QUICK_VERDICT = { sets: [["disc"], ["disc", "spot"]], trials: 20, limit: false } as const;
@@ -75,7 +82,10 @@ export const demoCommand = (finish: (status: number) => void) =>
             `${campaign.exposures.length} raw exposures written; from here on they are treated as yours would be`,
           );
           const read = await readTarget(campaign.target_file, { set: options.set });
-          const session = openSession(read, { workers: options.workers, progress, signal });
+          const workers = options.workers ?? navigator.hardwareConcurrency;
+          const beside = workBeside({ workers, signal });
+          const common = { workers: options.workers, progress, signal };
+          const session = openSession(read, { ...common, keep: beside.take });
           const output = { folder: outputFolder(read), overwrite: options.overwrite };
           const record: Recorder = (command, run) =>
             recordStep(
@@ -83,33 +93,35 @@ export const demoCommand = (finish: (status: number) => void) =>
               { command, run: () => run(session, output) },
               { output, now: utcNow, signal },
             );
-          const check = await record("check", runCheck);
-          // Its trials are at work on other threads while this one maps and draws.
-          const verdict = quickVerdict(
-            openSession(read, {
-              from: session,
-              workers: options.workers ?? navigator.hardwareConcurrency,
-              progress,
-              signal,
-            }),
-          );
-          verdict.catch(() => {});
+          const gas = mappedLines(session.lines("map the demo"));
+          const line = gas[0]!;
+          const others = await Promise.all(FITTED.map((method) => {
+            const set = [...(options.set ?? []), `map.method="${method}"`, SOONER];
+            return readTarget(campaign.target_file, { set });
+          }));
+          beside.start(plannedBeside(read, { gas, others }), await gather(session));
+          const checking = record("check", runCheck);
+          goAhead(session, gas);
+          const check = await checking;
           const trail = await record("trail", runTrail);
           const map = await record("map", runMap);
-          const fitted: MappedLine[] = [];
-          for (const method of FITTED) {
-            const set = [...(options.set ?? []), `map.method="${method}"`, SOONER];
-            const other = openSession(await readTarget(campaign.target_file, { set }), {
-              from: session,
-              workers: options.workers,
-              progress,
-              signal,
-            });
-            fitted.push(await other.map(firstLine(other)));
-          }
           const orbit = await record("orbit", runOrbit);
           const plate = await record("plate", runPlate);
-          const { sentence, preferred, line: weighed } = await verdict;
+          const fitted: MappedLine[] = [];
+          for (const target of others) {
+            const other = openSession(target, { ...common, from: session });
+            fitted.push(
+              await beside.take(
+                mapBeside(target),
+                () => other.map(mappedLines(other.lines("map the demo"))[0]!),
+              ),
+            );
+          }
+          const { sentence, preferred } = await beside.take(
+            VERDICT,
+            async () => (await weighLine(session, line, QUICK_VERDICT)).verdict,
+          );
+          const weighed = line.name;
           const parts = trueParts(campaign.recipe, weighed);
           const truth = binaryOf(campaign.recipe);
           const warnings = uniqueWarnings([
@@ -193,16 +205,37 @@ export const demoCommand = (finish: (status: number) => void) =>
       );
     });
 
-/** The first line of the gas. */
-function firstLine(session: Session) {
-  return mappedLines(session.lines("map the demo"))[0]!;
+/** Name of a fitted map among what is done beside. */
+const mapBeside = (target: Target) => `map by ${target.settings.map.method}`;
+
+/** What other threads do: first what is wanted first, then what takes longest. */
+function plannedBeside(
+  target: Target,
+  options: { gas: readonly LineSettings[]; others: readonly Target[] },
+): LineTask[] {
+  const { gas, others } = options;
+  const line = gas[0]!.name;
+  return [
+    ...gas.map(({ name }): LineTask => ({
+      name: `tests of ${name}`,
+      target,
+      line: name,
+      work: "tests",
+    })),
+    { name: VERDICT, target, line, work: { weigh: QUICK_VERDICT } },
+    ...others.map((other): LineTask => ({
+      name: mapBeside(other),
+      target: other,
+      line,
+      work: "map",
+    })),
+  ];
 }
 
-/** Weighs a disc against a disc with a spot on the first line of the gas. */
-async function quickVerdict(session: Session) {
-  const line = firstLine(session);
-  const { verdict: { sentence, preferred } } = await weighLine(session, line, QUICK_VERDICT);
-  return { line: line.name, sentence, preferred };
+/** Makes what later steps ask for while other threads test; what goes wrong is told by those steps. */
+async function goAhead(session: Session, gas: readonly LineSettings[]): Promise<void> {
+  for (const line of gas) await session.map(line).catch(() => {});
+  await session.orbit().catch(() => {});
 }
 
 function trueParts({ settings }: Target, line: string): readonly string[] {

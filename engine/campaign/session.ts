@@ -34,6 +34,14 @@ export interface MapStudies {
   readonly periodScan: (line: LineSettings) => Promise<ScanStudy>;
 }
 
+/** What a session has read, as plain data that another thread can go on from. */
+export interface GatheredTarget {
+  /** The exposures. */
+  readonly exposures: TargetExposures;
+  /** Trails by the name of their line. */
+  readonly trails: ReadonlyMap<string, Trail>;
+}
+
 /**
  * One target at work: what several commands need is made once, when it is first asked for.
  */
@@ -79,6 +87,7 @@ export interface Session {
  * @default Makes it
  * @param options.from A session on the same target that differs in how maps are made alone: its
  * exposures, trails and tests are taken.
+ * @param options.gathered What was read of the target before, on another thread.
  * @param options.progress Told how far the work has come.
  * @param options.signal Aborts the work.
  * @returns The session.
@@ -90,14 +99,17 @@ export function openSession(
     force?: boolean;
     keep?: <T>(name: string, make: () => Promise<T>) => Promise<T>;
     from?: Session;
+    gathered?: GatheredTarget;
     progress?: Progress;
     signal?: AbortSignal;
   } = {},
 ): Session {
   const { workers = 1, force = false, keep = (_name, make) => make(), progress, signal } = options;
-  const { from } = options;
+  const { from, gathered } = options;
   const exposures = from?.exposures ??
-    once(() => readTargetExposures(target, { progress, signal }));
+    once(async () =>
+      gathered?.exposures ?? await readTargetExposures(target, { progress, signal })
+    );
   const ephemeris = once(async () => ephemerisOf(target, { direction: await directionOf() }));
   const directionOf = async () => {
     const { sky: { ra_deg, dec_deg }, exposures: groups } = target.settings;
@@ -111,6 +123,8 @@ export function openSession(
     ? perLine((line) => makeTrail(line))
     : (line: LineSettings) => from.trail(there(line));
   const makeTrail = async (line: LineSettings) => {
+    const known = gathered?.trails.get(line.name);
+    if (known !== undefined) return known;
     const [{ spectra, photometry }, folded] = [await exposures(), await ephemeris()];
     await pause(signal);
     return trailOf(spectra, { target, line, ephemeris: folded, photometry });
