@@ -17,6 +17,16 @@ function isPlain(value: unknown): boolean {
   return value === null || ["string", "boolean"].includes(typeof value);
 }
 
+/** Tables of 99 trials that repeat the few of a weighing: where gains are far beyond them or among them. */
+function asIfMany({ tables }: WeighedLine) {
+  const repeated = tables.map((table) => {
+    const { statistics } = table;
+    const many = Float64Array.from({ length: 99 }, (_, k) => statistics[k % statistics.length]!);
+    return { ...table, statistics: many };
+  });
+  return { trials: 99, tables: repeated };
+}
+
 function claimsSpot({ verdict }: WeighedLine): boolean {
   return verdict.preferred.includes("spot");
 }
@@ -32,17 +42,9 @@ Deno.test("weighTrail() prefers disc and spot when a spot has 10 % of the light"
   assertEquals(weighed.verdict.undecided_with, ["disc"]);
   const [test] = weighed.judgement.part_tests;
   assertEquals([test!.needed, test!.unsettled], [false, true]);
-  const [table] = weighed.tables;
-  const gains = new Float64Array(99).map((_, k) => table!.statistics[k % 20]!);
-  const settled = await weighTrail(trail, {
-    ...short,
-    trials: 99,
-    tables: [{ ...table!, statistics: gains }],
-  });
-  assertEquals([settled.verdict.preferred, settled.verdict.undecided_with], [
-    ["disc", "spot"],
-    null,
-  ]);
+  const settled = await weighTrail(trail, { ...short, ...asIfMany(weighed) });
+  assertEquals(settled.verdict.preferred, ["disc", "spot"]);
+  assertEquals(settled.verdict.undecided_with, null);
   assert(weighed.warnings.some(({ code }) => code === "too-few-trials"));
   assertGreater(weighed.source!.structures["rim-impact"], 0.5);
 
@@ -55,6 +57,26 @@ Deno.test("weighTrail() prefers disc and spot when a spot has 10 % of the light"
   assertEquals(plate.residuals.map(({ parts }) => parts), [["disc", "spot"], ["disc"]]);
   assertGreater(rms(plate.residuals[1]!.residual), rms(plate.residuals[0]!.residual));
   assertEquals(plate.null_distribution?.gains.length, 20);
+});
+
+// The short form; the long one is test/bench/weighing_confusion.ts. Seeds 1 and 2.
+Deno.test("weighTrail() tells a spot from a stream when either has 1.5 % of the light", async () => {
+  const disc = { equivalent_width_kms: 0.985 * WIDTH };
+  const own = { equivalent_width_kms: 0.015 * WIDTH };
+  const models = [
+    { parts: ["disc", "spot"], disc, spot: { ...own, mixing: 0.5, sigma_kms: 60 } },
+    { parts: ["disc", "stream"], disc, stream: own },
+  ] as const;
+  for (const [k, model] of models.entries()) {
+    const trail = quick(model, { seed: k + 1, exposures: 16, pixel_kms: 100 });
+    const three = { ...short, sets: [...sets, ["disc", "stream"]], trials: 4 };
+    const few = await weighTrail(trail, three);
+    const { judgement, verdict } = await weighTrail(trail, { ...three, ...asIfMany(few) });
+    assertEquals(verdict.preferred, model.parts);
+    assertEquals(verdict.undecided_with, null);
+    // Residual tests rule the stream out where there is a spot; the spot has to be ruled out by trials.
+    assertEquals(judgement.contest?.decided ?? null, model.parts[1] === "spot" ? null : true);
+  }
 });
 
 Deno.test("weighTrail() gives the same bytes on two workers", async () => {
