@@ -63,6 +63,7 @@ export type { LineTests, LineTestsSummary } from "./test_line.ts";
 export * from "./batch/batch_jobs.ts";
 export * from "./batch/gather_batch.ts";
 export * from "./batch/gather_job.ts";
+export type { GatheredRows } from "./batch/gather_rows.ts";
 export * from "./batch/manifest.ts";
 export * from "./batch/run_batch.ts";
 export * from "./batch/run_job.ts";

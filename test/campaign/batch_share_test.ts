@@ -1,7 +1,7 @@
 import { assert, assertEquals, assertThrows } from "@std/assert";
 import { InputError } from "@millrace/millrace/errors";
 import { randomStream } from "@millrace/millrace/numerics";
-import { parsePart, shareByCost, trialsOfPart } from "@millrace/millrace/campaign";
+import { dearestFirst, parsePart, shareByCost, trialsOfPart } from "@millrace/millrace/campaign";
 
 Deno.test("shareByCost() gives each piece to one share and loads within the bound", () => {
   for (let seed = 1; seed <= 20; seed++) {
@@ -29,6 +29,13 @@ Deno.test("shareByCost() divides in the same way whenever it is asked", () => {
 
 Deno.test("shareByCost() leaves shares empty when there are more than pieces", () => {
   assertEquals(shareByCost([1, 1], 4).toSorted(), [1, 2]);
+});
+
+Deno.test("dearestFirst() names every treatment once, the dearest first", () => {
+  const costs = [[2, 5], [5], [1, 7, 2]];
+  const pieces = dearestFirst(costs).map(({ job, run }) => [job, run]);
+  assertEquals(pieces, [[2, 1], [0, 1], [1, 0], [0, 0], [2, 2], [2, 0]]);
+  assertEquals(dearestFirst([]), []);
 });
 
 Deno.test("trialsOfPart() gives every trial to one part", () => {

@@ -90,15 +90,17 @@ function inOrder(commands: readonly StepName[]): StepName[] {
 const OPENING = 0.2;
 
 /**
- * Time that a job is expected to take, from the size of its exposures, its lines and its commands.
+ * Time that each treatment of a job is expected to take, from the size of its exposures, its lines and
+ * its commands.
  *
  * @param job The job.
- * @returns The time in units of reading a megabyte of exposures; that of opening alone where the
+ * @returns The times in units of reading a megabyte of exposures; that of opening alone where the
  * target is wrong and will fail at once.
  */
-export async function expectedCost(job: BatchJob): Promise<number> {
-  let cost = OPENING;
+export async function expectedCosts(job: BatchJob): Promise<number[]> {
+  const costs: number[] = [];
   for (const { set, commands } of job.runs) {
+    let cost = OPENING;
     try {
       const target = await readTarget(job.file, { set, seed: job.seed });
       const megabytes = await inputBytes(target) / 1e6;
@@ -109,6 +111,7 @@ export async function expectedCost(job: BatchJob): Promise<number> {
     } catch {
       // What is wrong with it is told when its turn comes.
     }
+    costs.push(cost);
   }
-  return cost;
+  return costs;
 }

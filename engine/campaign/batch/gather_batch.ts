@@ -5,18 +5,13 @@ import { jsonText } from "../output_head.ts";
 import type { Clock } from "../record_step.ts";
 import { VERSION } from "../version.ts";
 import type { BatchJob } from "./batch_jobs.ts";
-import { type GatheredRun, gatherJob } from "./gather_job.ts";
+import type { GatheredRun } from "./gather_job.ts";
+import { type GatheredRows, gatherRows } from "./gather_rows.ts";
 import { clearParts } from "./hold_part.ts";
 import { indexPage } from "./index_page.ts";
 import type { Manifest } from "./manifest.ts";
 import { samplePlates } from "./sample_plates.ts";
-import {
-  isSummaryCsv,
-  summaryCsv,
-  summaryEcsv,
-  type SummaryRow,
-  summaryRows,
-} from "./summary_tables.ts";
+import { isSummaryCsv, summaryCsv, summaryEcsv, type SummaryRow } from "./summary_tables.ts";
 import { stepError } from "../record_step.ts";
 import type { StepError } from "../provenance.ts";
 
@@ -87,6 +82,7 @@ export interface BatchResult {
  * @param options Of what, and where.
  * @param options.jobs What the manifest asks for.
  * @param options.folder Folder of the batch.
+ * @param options.gathered What is known of targets by their names. @default Nothing: their folders are read
  * @param options.overwrite Whether files that Millrace did not write may be replaced. @default false
  * @param options.cost How the work was done. @default null
  * @param options.owner Who gathers, for the message that another run gets. @default "millrace"
@@ -99,6 +95,7 @@ export async function gatherBatch(
   options: {
     jobs: readonly BatchJob[];
     folder: string;
+    gathered?: ReadonlyMap<string, Promise<GatheredRows>>;
     overwrite?: boolean;
     cost?: BatchCost | null;
     owner?: string;
@@ -106,16 +103,15 @@ export async function gatherBatch(
     signal?: AbortSignal;
   },
 ): Promise<BatchResult> {
-  const { jobs, folder, overwrite, cost = null, owner, now, signal } = options;
+  const { jobs, folder, gathered, overwrite, cost = null, owner, now, signal } = options;
   await makeFolder(folder);
   const runs: GatheredRun[] = [];
-  const rows: SummaryRow[][] = [];
+  const rows: (readonly SummaryRow[])[] = [];
   for (const job of jobs) {
     signal?.throwIfAborted();
-    for (const run of await gatherJob(job, folder)) {
-      runs.push(run);
-      rows.push(await summaryRows(run, folder));
-    }
+    const found = await (gathered?.get(job.name) ?? gatherRows(job, folder));
+    runs.push(...found.runs);
+    rows.push(...found.rows);
   }
   return holdFolder(folder, async () => {
     const files: string[] = [];

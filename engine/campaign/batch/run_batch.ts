@@ -1,12 +1,14 @@
 import { join } from "@std/path";
-import { type Progress, runTasks } from "../../workers/mod.ts";
+import type { Progress } from "../../workers/mod.ts";
 import { FOLDER_LOCK, holdFolder } from "../hold_folder.ts";
 import type { Clock } from "../record_step.ts";
-import { type BatchJob, batchJobs, expectedCost } from "./batch_jobs.ts";
+import { type BatchJob, batchJobs, expectedCosts } from "./batch_jobs.ts";
 import { type BatchCost, type BatchResult, gatherBatch } from "./gather_batch.ts";
+import { type GatheredRows, gatherRows } from "./gather_rows.ts";
 import { holdPart } from "./hold_part.ts";
 import type { Manifest } from "./manifest.ts";
-import { type JobOptions, type JobOutcome, runJob } from "./run_job.ts";
+import { type JobOutcome, runJob } from "./run_job.ts";
+import { runPieces } from "./run_pieces.ts";
 import { type Part, shareByCost } from "./share_jobs.ts";
 
 /** News of a batch at work: one target has come to its end. */
@@ -25,7 +27,7 @@ export interface BatchNews {
 export interface BatchOptions {
   /** Folder of the outputs. */
   readonly folder: string;
-  /** Number of workers, each with one target at a time. @default {1} */
+  /** Number of workers, each with one treatment of one target at a time. @default {1} */
   readonly workers?: number;
   /** The share to be done; tables are then left to `gatherBatch`. @default All */
   readonly part?: Part;
@@ -65,8 +67,9 @@ export interface BatchReport {
 const LOOK_MS = 200;
 
 /**
- * Runs a batch, or one share of it: each target on a worker, one at a time. A target that fails
- * does not stop the others; what an earlier run has done is kept.
+ * Runs a batch, or one share of it: each treatment of a target on a worker, one at a time, those that
+ * are expected to take longest first. A target that fails does not stop the others; what an earlier
+ * run has done is kept.
  *
  * @param manifest The manifest.
  * @param options Where and how.
@@ -77,21 +80,29 @@ export function runBatch(manifest: Manifest, options: BatchOptions): Promise<Bat
   const { folder, part, set, seed, force, owner = "millrace batch", now, signal } = options;
   return holdPart(folder, async () => {
     const jobs = batchJobs(manifest, { set, seed, force });
-    const costs: number[] = [];
-    for (const job of jobs) costs.push(await expectedCost(job));
-    const share = part === undefined ? null : shareByCost(costs, part.count);
+    const costs: number[][] = [];
+    for (const job of jobs) costs.push(await expectedCosts(job));
+    const share = part === undefined ? null : shareByCost(costs.map(sum), part.count);
     const mine = jobs.map((_, i) => i).filter((i) => share === null || share[i] === part!.index);
     const started = now?.() ?? null;
     const memory = watchMemory();
+    // While other targets are at work: at the end one thread alone would do it for all.
+    const gathered = new Map<string, Promise<GatheredRows>>();
+    const gather = (job: BatchJob) => {
+      const rows = gatherRows(job, folder);
+      rows.catch(() => {}); // told when it is its turn
+      gathered.set(job.name, rows);
+    };
     try {
       const outcomes = await runJobs(mine.map((i) => jobs[i]!), {
         ...options,
         owner,
         costs: mine.map((i) => costs[i]!),
+        onJob: part === undefined ? gather : undefined,
       });
       const cost = { workers: options.workers ?? 1, started, peak_memory_bytes: memory.peak() };
       const result = part === undefined
-        ? await gatherBatch(manifest, { ...options, jobs, cost, owner })
+        ? await gatherBatch(manifest, { ...options, jobs, gathered, cost, owner })
         : null;
       return { outcomes, result, cost };
     } catch (error) {
@@ -105,27 +116,28 @@ export function runBatch(manifest: Manifest, options: BatchOptions): Promise<Bat
 
 async function runJobs(
   jobs: readonly BatchJob[],
-  options: BatchOptions & { owner: string; costs: readonly number[] },
+  options: BatchOptions & {
+    owner: string;
+    costs: readonly (readonly number[])[];
+    onJob?: (job: BatchJob) => void;
+  },
 ): Promise<JobOutcome[]> {
-  const { workers = 1, module, onTarget, costs, folder, owner, overwrite, signal } = options;
-  const total = costs.reduce((sum, cost) => sum + cost, 0);
+  const { workers = 1, module, onTarget, onJob, costs } = options;
+  const total = sum(costs.flat());
   let done = 0;
   let spent = 0;
   const told = (index: number, outcome: JobOutcome) => {
-    spent += costs[index]!;
+    spent += sum(costs[index]!);
+    onJob?.(jobs[index]!);
     onTarget?.({ outcome, done: ++done, total: jobs.length, done_fraction: spent / total });
   };
   if (workers > 1) {
-    return runTasks<BatchJob, JobOutcome, Pick<JobOptions, "folder" | "owner" | "overwrite">>(
-      jobs,
-      {
-        module: module ?? new URL("./batch_worker.ts", import.meta.url),
-        workers,
-        shared: { folder, owner, overwrite },
-        onResult: told,
-        signal,
-      },
-    );
+    return runPieces(jobs, {
+      ...options,
+      module: module ?? new URL("./batch_worker.ts", import.meta.url),
+      workers,
+      onJob: told,
+    });
   }
   // On this thread an interrupt is heard within a target, and progress is seen.
   const outcomes: JobOutcome[] = [];
@@ -135,6 +147,10 @@ async function runJobs(
     told(index, outcome);
   }
   return outcomes;
+}
+
+function sum(values: readonly number[]): number {
+  return values.reduce((total, value) => total + value, 0);
 }
 
 /** Removes what workers that were ended at once have left: locks and half-written files. */

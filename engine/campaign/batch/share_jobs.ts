@@ -66,6 +66,35 @@ export function shareByCost(costs: readonly number[], count: number): number[] {
   return share;
 }
 
+/** One treatment of one job, by their numbers. */
+export interface Piece {
+  /** Number of the job. */
+  readonly job: number;
+  /** Number of the treatment. */
+  readonly run: number;
+}
+
+/**
+ * The order in which treatments are handed to workers: the dearest first, so that what is at work
+ * alone at the end is short.
+ *
+ * @param costs Expected cost of each treatment of each job.
+ * @returns The treatments; those of the same cost in the order of the jobs.
+ *
+ * @example
+ * ```ts
+ * import { dearestFirst } from "@millrace/millrace/campaign";
+ * import { assertEquals } from "@std/assert";
+ *
+ * assertEquals(dearestFirst([[1, 9], [1]]).map(({ job, run }) => [job, run]), [[0, 1], [0, 0], [1, 0]]);
+ * ```
+ */
+export function dearestFirst(costs: readonly (readonly number[])[]): Piece[] {
+  return costs.flatMap((own, job) => own.map((cost, run) => ({ job, run, cost })))
+    .sort((a, b) => b.cost - a.cost)
+    .map(({ job, run }) => ({ job, run }));
+}
+
 /**
  * Numbers of the trials of a share: every N-th, so that shares are equal to one.
  *
