@@ -64,6 +64,7 @@ export * from "./batch/batch_jobs.ts";
 export * from "./batch/gather_batch.ts";
 export * from "./batch/gather_job.ts";
 export type { GatheredRows } from "./batch/gather_rows.ts";
+export type { SummaryRow } from "./batch/summary_tables.ts";
 export * from "./batch/manifest.ts";
 export * from "./batch/run_batch.ts";
 export * from "./batch/run_job.ts";
