@@ -5,6 +5,7 @@ import {
   type BlendMember,
   featurePeaks,
   largestHalfOrbitGap,
+  mapExplainer,
   type MapFeature,
   mapFeatures,
   type MapPeak,
@@ -17,9 +18,11 @@ import {
 import type { SplitDate } from "../sky/mod.ts";
 import type { Trail } from "../trail/mod.ts";
 import type { Progress } from "../workers/mod.ts";
+import { centreErrorOf } from "./centre_error_of.ts";
 import { gridModel } from "./grid_model.ts";
 import { type InvertedLine, invertLine } from "./inversion/invert_line.ts";
 import { type JoinedLine, joinTrails } from "./join_trails.ts";
+import { pause } from "./pause.ts";
 import { priorOf } from "./prior_of.ts";
 import type { SystemicVelocity } from "./systemic_of.ts";
 import type { Target } from "./target.ts";
@@ -27,8 +30,8 @@ import type { MapSettings } from "./schema/map_section.ts";
 
 const FWHM_PER_SIGMA = Math.sqrt(8 * Math.LN2);
 
-// Eight exposures of a round disc, evenly over the orbit, give features at 6 to 17 of their errors by
-// either inversion; twenty give none by entropy.
+// Twelve directions show every other one next to none of the two beside it: what is no disc with spots
+// leaves streaks that no round disc explains.
 const FEW_EXPOSURES = 12;
 
 /** The map of one line and how well it meets the trail. */
@@ -75,6 +78,10 @@ export interface MappedLine extends
   readonly resolution_kms: number;
   /** Centre of the axisymmetric part that features stand out of: the accretor where it is known. */
   readonly centre: MapPlace;
+  /** One standard deviation of that centre along each axis, km/s. */
+  readonly centre_error_kms: MapPlace;
+  /** What the same exposures and inversion make of the round disc that fits the data best. */
+  readonly alone: VelocityMap;
   /** Largest gap in phase modulo half an orbit, where it is so large that the map had to be forced. */
   readonly phase_gap: number | null;
   /** What a user should know. */
@@ -140,14 +147,19 @@ export async function mapLine(
     progress,
     signal,
   });
-  const { map, data, sign } = inverted;
+  const { map, data, sign, recipe } = inverted;
+  const centre_error_kms = centreErrorOf(target, { binary, placed });
+  const explain = mapExplainer(data, { recipe, centre, resolution_kms });
+  const alone = explain([]);
+  await pause(signal);
   const spread = settings.resamples < 2 ? null : await resampleMaps(data, {
-    recipe: inverted.recipe,
+    recipe,
     count: settings.resamples,
     seed: target.settings.seed + stream,
     kind: settings.resampling,
-    peaks: featurePeaks(map, { resolution_kms, centre }),
+    peaks: featurePeaks(map, { resolution_kms, centre, alone }),
     centre,
+    alone,
     resolution_kms,
     workers: options.workers,
     progress,
@@ -157,6 +169,8 @@ export async function mapLine(
   const features = mapFeatures(map, {
     resolution_kms,
     centre,
+    centre_error_kms,
+    explain,
     spread,
     remade: inverted.remade,
     systemic_error_kms: systemic.error_kms ?? 0,
@@ -189,6 +203,8 @@ export async function mapLine(
       : null,
     resolution_kms,
     centre,
+    centre_error_kms,
+    alone,
     warnings: [
       ...inverted.warnings,
       ...(sign !== "absorption" ? [] : [{
@@ -206,7 +222,7 @@ export async function mapLine(
         code: "few-exposures-mapped",
         line,
         text:
-          `the map is of ${trail.sampling.count} exposures alone: their few directions make features of a round disc, too, which repeat whatever the noise, so that significance does not mean that they are the star's`,
+          `the map is of ${trail.sampling.count} exposures alone: what their few directions make of a round disc and of the features told is taken off, but a source of any other shape leaves streaks, which repeat whatever the noise`,
       }]),
       ...(settings.resamples >= 2 ? [] : [{
         code: "features-without-errors",

@@ -9,6 +9,20 @@ export interface ExcessBlob extends MapPlace {
   readonly flux_fraction: number;
 }
 
+/** Options of {@linkcode mapExcess}. */
+export interface MapExcessOptions {
+  /** Centre of symmetry. */
+  readonly centre: MapPlace;
+  /** Resolution (FWHM), km/s. */
+  readonly resolution_kms: number;
+  /**
+   * A map that is taken off first, as of {@linkcode mapExplainer}: what sampling and inversion make alone.
+   *
+   * @default {null}
+   */
+  readonly alone?: VelocityMap | null;
+}
+
 /** What a map has over its axisymmetric part, smoothed to the resolution. */
 export interface Excess {
   /** The excess, pixels². */
@@ -27,7 +41,7 @@ export interface Excess {
  * flux above half the peak, doubled, is the flux of a Gaussian.
  *
  * @param map The map.
- * @param options Centre of symmetry, resolution (FWHM).
+ * @param options Centre of symmetry, resolution, what is taken off first.
  * @returns The excess.
  *
  * @example
@@ -49,12 +63,15 @@ export interface Excess {
  */
 export function mapExcess(
   map: VelocityMap,
-  options: { readonly centre: MapPlace; readonly resolution_kms: number },
+  options: MapExcessOptions,
 ): Excess {
-  const { centre, resolution_kms } = options;
+  const { centre, resolution_kms, alone = null } = options;
   const { pixels } = map;
-  const round = axisymmetricPart(map, { centre }).intensity;
-  const values = blurMap(map.intensity.map((f, k) => f - round[k]!), {
+  const beyond = alone === null
+    ? map
+    : { ...map, intensity: map.intensity.map((f, k) => f - alone.intensity[k]!) };
+  const round = axisymmetricPart(beyond, { centre }).intensity;
+  const values = blurMap(beyond.intensity.map((f, k) => f - round[k]!), {
     ...map,
     fwhm_kms: resolution_kms,
   });

@@ -1,6 +1,7 @@
 import { normalQuantile, normalTail } from "../numerics/mod.ts";
 import type { MapPlace } from "./axisymmetric_part.ts";
-import { mapExcess } from "./map_excess.ts";
+import type { MapExplainer } from "./explained_map.ts";
+import { type Excess, type ExcessBlob, mapExcess, type MapExcessOptions } from "./map_excess.ts";
 import type { FollowedFeature, MapSpread } from "./map_replicas.ts";
 import { mapStep } from "./map_shape.ts";
 import type { BinaryPart, PartFinder } from "./nearest_part.ts";
@@ -12,11 +13,17 @@ export interface MapFeature extends MapPlace {
   readonly vx_error_kms: number | null;
   /** One standard deviation of Vy, km/s; null without replicas. */
   readonly vy_error_kms: number | null;
-  /** Flux of the excess over that of the whole map. Maps bias it: an error of it comes from a fit. */
+  /** Flux of the excess over that of the whole map. Maps bias it. */
   readonly flux_fraction: number;
   /**
-   * Height of the excess over its scatter among replicas, lowered by the number of places searched,
-   * in standard deviations; null without replicas.
+   * One standard deviation of that flux: what noise and the centre's error move it by. The map's bias is
+   * not in it, so that an error of the true flux comes from a fit; null without replicas.
+   */
+  readonly flux_fraction_error: number | null;
+  /**
+   * Height of the excess over its scatter among replicas and what the centre's error moves it by, lowered
+   * by the number of places searched, in standard deviations; null without replicas. With `explain` the
+   * height is what is left beyond what sampling and inversion make of a round disc and of the features before it.
    */
   readonly significance_sigma: number | null;
   /** The nearest part of the binary; null when the zero of phase is not the donor's. */
@@ -39,8 +46,22 @@ export interface MapFeaturesOptions {
    */
   readonly centre?: MapPlace;
   /**
+   * One standard deviation of the centre along each axis, km/s: that of K1 along Vy. Features are measured
+   * about centres an error to either side, too, and half the difference goes into their errors.
+   *
+   * @default {{ vx_kms: 0, vy_kms: 0 }}
+   */
+  readonly centre_error_kms?: MapPlace;
+  /**
+   * What sampling and inversion alone make, from {@linkcode mapExplainer}.
+   *
+   * @default {null}
+   */
+  readonly explain?: MapExplainer | null;
+  /**
    * The scatter of the map and of its features, from {@linkcode resampleMaps} with the peaks of
-   * {@linkcode featurePeaks} and the same centre and resolution.
+   * {@linkcode featurePeaks} and the same centre and resolution, and with `explain` what it gives for no
+   * spots as `alone` of both.
    *
    * @default {null}
    */
@@ -108,7 +129,7 @@ const MOST_PEAKS = 40;
  * the resolution, is higher than around, within the circle of the half-width.
  *
  * @param map The map.
- * @param options Resolution and centre.
+ * @param options Resolution, centre, and what is taken off first.
  * @returns Pixels, highest first, no more than 40.
  *
  * @example
@@ -124,10 +145,12 @@ const MOST_PEAKS = 40;
  */
 export function featurePeaks(
   map: VelocityMap,
-  options: Pick<MapFeaturesOptions, "resolution_kms" | "centre">,
+  options:
+    & Pick<MapFeaturesOptions, "resolution_kms" | "centre">
+    & Pick<MapExcessOptions, "alone">,
 ): number[] {
-  const { resolution_kms, centre = { vx_kms: 0, vy_kms: 0 } } = options;
-  const excess = mapExcess(map, { centre, resolution_kms });
+  const { resolution_kms, centre = ORIGIN, alone = null } = options;
+  const excess = mapExcess(map, { centre, resolution_kms, alone });
   const { pixels, half_width_kms } = map;
   const middle = (pixels - 1) / 2;
   // Beyond the circle not every profile was seen, and at its edge an excess has no other side.
@@ -144,9 +167,13 @@ export function featurePeaks(
  * Finds compact excesses over the part of a map that is axisymmetric about the accretor: peaks of the
  * excess smoothed to the resolution. The place is the centroid under a Gaussian window; the flux
  * is twice what lies above half the peak, which is exact for a Gaussian. Given the map of the map, the
- * place has the inversion's bias taken off. Errors are the scatter of the same measurement on replicas, what
- * more or less regularisation moves, and those of γ and phase zero. Significance counts the resolution
- * elements searched.
+ * place has the inversion's bias taken off. Errors are the scatter of the same measurement on replicas,
+ * what more or less regularisation moves, what the error of the centre moves, and those of γ and phase
+ * zero. Significance counts the resolution elements searched.
+ *
+ * Few exposures make structures of their own: given `explain`, what they and the inversion make of a
+ * round disc and of the features found so far is taken off before the next is looked for. Peaks within
+ * a resolution of a feature are that feature.
  *
  * @param map The map.
  * @param options Resolution, centre, scatter.
@@ -169,41 +196,127 @@ export function featurePeaks(
  */
 export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapFeature[] {
   const { resolution_kms, spread = null, find_part = null, least_sigma = 3, limit = 8 } = options;
-  const { remade = null } = options;
-  const { centre = { vx_kms: 0, vy_kms: 0 }, rim_speed_kms = null } = options;
-  const excess = mapExcess(map, { centre, resolution_kms });
+  const { centre = ORIGIN, rim_speed_kms = null } = options;
+  const explain = options.explain ?? null;
   const area = (map.pixels * mapStep(map)) ** 2;
   const places = Math.max(1, area / (Math.PI * (0.5 * resolution_kms) ** 2));
-  const others = (options.alternatives ?? []).map((m) => mapExcess(m, { centre, resolution_kms }));
-  const again = remade && mapExcess(remade, { centre, resolution_kms });
-  const features: (MapFeature & { readonly rank: number })[] = [];
-  featurePeaks(map, options).forEach((peak, f) => {
-    const seen = excess.blobAt(peak);
-    if (seen === null) return;
-    const blob = { ...seen, ...unmoved(seen, again && again.blobAt(again.climb(peak))) };
-    const followed = spread?.features[f];
-    const moved = others.flatMap((e) => e.blobAt(e.climb(peak)) ?? []);
-    const errors = followed === undefined
-      ? null
-      : placeErrors(followed, { ...options, blob: seen, moved });
-    const significance = followed === undefined
-      ? null
-      : globalSigma(excess.values[peak]! / deviation(followed.height), places);
-    if (significance !== null && !(significance >= least_sigma)) return;
+  const features: MapFeature[] = [];
+  let looks = looksAt(map, options, features);
+  const peaks = featurePeaks(map, { ...options, alone: looks.alone });
+  const measured = () =>
+    peaks.flatMap((peak, f) => {
+      const followed = spread?.features[f] ?? null;
+      return seenAt(peak, { ...options, looks, followed, places }) ?? [];
+    }).sort((a, b) => b.rank - a.rank);
+  const merged = ({ seen }: Seen) => features.some((one) => apart(one, seen) < resolution_kms);
+  let left = measured();
+  while (features.length < limit) {
+    const best = left.find((one) => !merged(one));
+    if (best === undefined || !((best.significance ?? Infinity) >= least_sigma)) break;
+    const { blob, errors, significance } = best;
     const reach = Math.max(resolution_kms, 2 * Math.max(errors?.vx ?? 0, errors?.vy ?? 0));
-    const speed = Math.hypot(blob.vx_kms - centre.vx_kms, blob.vy_kms - centre.vy_kms);
     features.push({
       ...blob,
       vx_error_kms: errors && errors.vx,
       vy_error_kms: errors && errors.vy,
+      flux_fraction_error: errors && errors.flux,
       significance_sigma: significance,
       nearest: find_part && find_part(blob, reach),
-      forbidden_to_disc: rim_speed_kms === null ? null : speed + reach < rim_speed_kms,
-      rank: significance ?? excess.values[peak]!,
+      forbidden_to_disc: rim_speed_kms === null
+        ? null
+        : apart(blob, centre) + reach < rim_speed_kms,
     });
-  });
-  return features.sort((a, b) => b.rank - a.rank).slice(0, limit)
-    .map(({ rank: _rank, ...feature }) => feature);
+    // Without scatter there is no telling which peaks are worth explaining.
+    if (explain === null || spread === null) continue;
+    looks = looksAt(map, options, features);
+    left = measured();
+  }
+  return features;
+}
+
+const ORIGIN: MapPlace = { vx_kms: 0, vy_kms: 0 };
+
+interface Looks {
+  /** What is taken off the map first. */
+  readonly alone: VelocityMap | null;
+  /** The excess that features are looked for in. */
+  readonly excess: Excess;
+  /** Excesses of maps with other regularisation. */
+  readonly others: readonly Excess[];
+  /** That of the map of the map. */
+  readonly again: Excess | null;
+  /** Excesses about centres an error to either side, along each axis that has one. */
+  readonly beside: readonly (readonly [Excess, Excess])[];
+}
+
+/** The excesses that features are measured on, when some have been found already. */
+function looksAt(
+  map: VelocityMap,
+  options: MapFeaturesOptions,
+  found: readonly MapPlace[],
+): Looks {
+  const { resolution_kms, centre = ORIGIN, centre_error_kms = ORIGIN, explain = null } = options;
+  const alone = explain && explain(found);
+  const look = { centre, resolution_kms, alone };
+  const moved = (vx_kms: number, vy_kms: number) =>
+    mapExcess(map, {
+      centre: { vx_kms: centre.vx_kms + vx_kms, vy_kms: centre.vy_kms + vy_kms },
+      resolution_kms,
+      alone: explain && explain(found, { vx_kms, vy_kms }),
+    });
+  const { vx_kms: x, vy_kms: y } = centre_error_kms;
+  return {
+    alone,
+    excess: mapExcess(map, look),
+    others: (options.alternatives ?? []).map((other) => mapExcess(other, look)),
+    again: options.remade ? mapExcess(options.remade, look) : null,
+    beside: [
+      ...(x > 0 ? [[moved(-x, 0), moved(x, 0)] as const] : []),
+      ...(y > 0 ? [[moved(0, -y), moved(0, y)] as const] : []),
+    ],
+  };
+}
+
+interface Seen {
+  /** As it is in the map. */
+  readonly seen: ExcessBlob;
+  /** With the inversion's bias taken off its place. */
+  readonly blob: ExcessBlob;
+  readonly errors: Errors | null;
+  readonly significance: number | null;
+  readonly rank: number;
+}
+
+/** A peak, measured. */
+function seenAt(
+  peak: number,
+  options: MapFeaturesOptions & {
+    readonly looks: Looks;
+    readonly followed: FollowedFeature | null;
+    readonly places: number;
+  },
+): Seen | null {
+  const { looks: { excess, others, again, beside }, followed, places } = options;
+  const top = excess.climb(peak);
+  const seen = excess.blobAt(top);
+  if (seen === null) return null;
+  const blob = { ...seen, ...unmoved(seen, again && again.blobAt(again.climb(peak))) };
+  const height = excess.values[top]!;
+  if (followed === null) return { seen, blob, errors: null, significance: null, rank: height };
+  const moved = others.flatMap((e) => e.blobAt(e.climb(peak)) ?? []);
+  const halves = beside.map(([low, high]) => ({
+    low: low.blobAt(low.climb(peak)),
+    high: high.blobAt(high.climb(peak)),
+    height: (high.values[high.climb(peak)]! - low.values[low.climb(peak)]!) / 2,
+  }));
+  const errors = errorsOf(followed, { ...options, blob: seen, moved, halves });
+  const scatter = Math.hypot(deviation(followed.height), ...halves.map((half) => half.height));
+  const significance = globalSigma(height / scatter, places);
+  return { seen, blob, errors, significance, rank: significance };
+}
+
+function apart(a: MapPlace, b: MapPlace): number {
+  return Math.hypot(a.vx_kms - b.vx_kms, a.vy_kms - b.vy_kms);
 }
 
 /** A place less what the inversion moved it, judged by how far it moves it once more. */
@@ -213,24 +326,39 @@ function unmoved(seen: MapPlace, again: MapPlace | null): MapPlace {
   return { vx_kms: 2 * vx_kms - again.vx_kms, vy_kms: 2 * vy_kms - again.vy_kms };
 }
 
-/** Scatter among replicas, with γ and phase zero in quadrature. */
-function placeErrors(
+interface Errors {
+  readonly vx: number;
+  readonly vy: number;
+  readonly flux: number;
+}
+
+interface Half {
+  readonly low: ExcessBlob | null;
+  readonly high: ExcessBlob | null;
+}
+
+/** Scatter among replicas, with regularisation, centre, γ and phase zero in quadrature. */
+function errorsOf(
   followed: FollowedFeature,
-  { blob, moved, systemic_error_kms = 0, phase_error = 0 }: MapFeaturesOptions & {
-    readonly blob: MapPlace;
-    readonly moved: readonly MapPlace[];
+  { blob, moved, halves, systemic_error_kms = 0, phase_error = 0 }: MapFeaturesOptions & {
+    readonly blob: ExcessBlob;
+    readonly moved: readonly ExcessBlob[];
+    readonly halves: readonly Half[];
   },
-): { vx: number; vy: number } {
+): Errors {
   const turn = 2 * Math.PI * phase_error;
-  const shift = (key: keyof MapPlace) =>
-    Math.sqrt(moved.reduce((sum, m) => sum + (m[key] - blob[key]) ** 2, 0) / (moved.length || 1));
+  const error = (key: keyof ExcessBlob) => {
+    const square = moved.reduce((sum, m) => sum + (m[key] - blob[key]) ** 2, 0);
+    return Math.hypot(
+      deviation(followed[key]),
+      Math.sqrt(square / (moved.length || 1)),
+      ...halves.map(({ low, high }) => low && high ? (high[key] - low[key]) / 2 : 0),
+    );
+  };
   return {
-    vx: Math.hypot(
-      ...[deviation(followed.vx_kms), shift("vx_kms"), turn * blob.vy_kms, systemic_error_kms],
-    ),
-    vy: Math.hypot(
-      ...[deviation(followed.vy_kms), shift("vy_kms"), turn * blob.vx_kms, systemic_error_kms],
-    ),
+    vx: Math.hypot(error("vx_kms"), turn * blob.vy_kms, systemic_error_kms),
+    vy: Math.hypot(error("vy_kms"), turn * blob.vx_kms, systemic_error_kms),
+    flux: error("flux_fraction"),
   };
 }
 

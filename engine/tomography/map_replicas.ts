@@ -39,6 +39,13 @@ export interface ResampleOptions {
    */
   readonly centre?: MapPlace;
   /**
+   * What sampling and inversion make alone, taken off each map before features are measured; as
+   * {@linkcode mapExplainer} gives it without spots.
+   *
+   * @default {null}
+   */
+  readonly alone?: VelocityMap | null;
+  /**
    * Resolution (FWHM) that features are measured at, km/s.
    *
    * @default {two map pixels}
@@ -64,6 +71,8 @@ export interface FollowedFeature {
   readonly vy_kms: Float64Array;
   /** Excess at the feature's own pixel in each replica. */
   readonly height: Float64Array;
+  /** Flux of the excess over that of the whole map in each replica; NaN where it was lost. */
+  readonly flux_fraction: Float64Array;
 }
 
 /** How maps scatter under resampling. */
@@ -125,7 +134,7 @@ export async function resampleMaps(
   options: ResampleOptions & { readonly recipe: InversionRecipe },
 ): Promise<MapSpread> {
   const { recipe, count, seed, kind = "noise", peaks = [], workers = 1 } = options;
-  const { progress, signal, centre = { vx_kms: 0, vy_kms: 0 } } = options;
+  const { progress, signal, centre = { vx_kms: 0, vy_kms: 0 }, alone = null } = options;
   const { pixels, half_width_kms } = recipe;
   const { resolution_kms = 4 * half_width_kms / (pixels - 1) } = options;
   const { block = Math.ceil(Math.cbrt(trail.sampling.count)) } = options;
@@ -147,7 +156,7 @@ export async function resampleMaps(
     recipe,
     seed,
     block: kind === "bootstrap" ? block : 0,
-    follow: { peaks, centre, resolution_kms },
+    follow: { peaks, centre, resolution_kms, alone },
   };
   const sums = await runTasks<ReplicaTask, ReplicaSums, ReplicaShared>(tasks, {
     module: new URL("./replica_task.ts", import.meta.url),
@@ -179,13 +188,14 @@ export async function resampleMaps(
       vx_kms: followed(sums, "vx_kms", f),
       vy_kms: followed(sums, "vy_kms", f),
       height: followed(sums, "height", f),
+      flux_fraction: followed(sums, "flux_fraction", f),
     })),
   };
 }
 
 function followed(
   sums: readonly ReplicaSums[],
-  key: "vx_kms" | "vy_kms" | "height",
+  key: keyof FollowedFeature,
   feature: number,
 ): Float64Array {
   return Float64Array.from(

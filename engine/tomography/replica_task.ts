@@ -6,6 +6,7 @@ import { type Excess, mapExcess } from "./map_excess.ts";
 import { type InversionRecipe, type Inverter, makeInverter } from "./invert_trail.ts";
 import type { MapPlace } from "./axisymmetric_part.ts";
 import { noiseReplica } from "./noise_replica.ts";
+import type { VelocityMap } from "./velocity_map.ts";
 
 /** What all replicas have in common. */
 export interface ReplicaShared {
@@ -25,6 +26,8 @@ export interface ReplicaShared {
     readonly centre: MapPlace;
     /** Resolution of the map, km/s. */
     readonly resolution_kms: number;
+    /** Map that is taken off first; null for none. */
+    readonly alone: VelocityMap | null;
   };
 }
 
@@ -50,6 +53,8 @@ export interface ReplicaSums {
   readonly vy_kms: Float64Array;
   /** The same of the excess at the feature's own pixel. */
   readonly height: Float64Array;
+  /** The same of its flux over that of the map; NaN where lost. */
+  readonly flux_fraction: Float64Array;
 }
 
 const REPLICAS_BETWEEN_PAUSES = 8;
@@ -83,7 +88,7 @@ export async function runTask(
   const mean = new Float64Array(size), square = new Float64Array(size);
   const places = follow.peaks.length * count;
   const vx_kms = new Float64Array(places).fill(NaN), vy_kms = new Float64Array(places).fill(NaN);
-  const height = new Float64Array(places);
+  const height = new Float64Array(places), flux_fraction = new Float64Array(places).fill(NaN);
   for (let r = task.from; r < task.to; r++) {
     if ((r - task.from) % REPLICAS_BETWEEN_PAUSES === 0) await pause();
     const random = randomStream(seed, r);
@@ -107,9 +112,11 @@ export async function runTask(
       if (blob === null) return;
       vx_kms[at] = blob.vx_kms;
       vy_kms[at] = blob.vy_kms;
+      flux_fraction[at] = blob.flux_fraction;
     });
   }
-  return { sum: mean.map((m) => m * count), square, count, vx_kms, vy_kms, height };
+  const sum = mean.map((m) => m * count);
+  return { sum, square, count, vx_kms, vy_kms, height, flux_fraction };
 }
 
 /** The sums are made for the result alone: they may be moved. */

@@ -2,10 +2,12 @@ import { axisymmetricPart, type MapPlace } from "./axisymmetric_part.ts";
 import { blendProjector } from "./blend_projector.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { type Inversion, type InversionRecipe, makeInverter } from "./invert_trail.ts";
+import { mapExplainer } from "./explained_map.ts";
 import { mapExcess } from "./map_excess.ts";
+import type { SimpleSourcesOptions } from "./simple_sources.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
-/** Options of {@linkcode samplingStructures} and {@linkcode featureBias}. */
+/** Options of {@linkcode featureBias}. */
 export interface ReinversionOptions {
   /** How the map is made; for entropy and variation with the multiplier or weight held. */
   readonly recipe: InversionRecipe;
@@ -20,17 +22,17 @@ export interface ReinversionOptions {
 }
 
 /**
- * Structures that the sampling alone makes: the part of the map that is axisymmetric about the accretor
- * is put through the same exposures and the same inversion, without noise, and taken off the result.
- * Features of the map that also show here are not to be trusted.
+ * Structures that the sampling alone makes: the round disc that fits the data best is put through the same
+ * exposures and the same inversion, without noise, and its axisymmetric part taken off the result.
+ * {@linkcode mapFeatures} states what features are beyond them.
  *
- * @param trail Exposures and errors.
- * @param options Recipe, map, centre.
- * @returns What the sampling makes of a round map.
+ * @param trail Exposures, data, errors.
+ * @param options Recipe, centre, resolution.
+ * @returns What the sampling makes of a round disc.
  *
  * @example Forty even phases make next to nothing
  * ```ts
- * import { makeInverter, makeProjector, samplingStructures } from "@millrace/millrace/tomography";
+ * import { makeProjector, samplingStructures } from "@millrace/millrace/tomography";
  * import { assert } from "@std/assert";
  *
  * const count = 40, bins = 81;
@@ -51,19 +53,20 @@ export interface ReinversionOptions {
  * const flux = makeProjector(sampling, shape).forward(round);
  * const trail = { sampling, flux, error: flux.map(() => 1e-4) };
  * const recipe = { inversion: "back-projection", ...shape } as const;
- * const made = samplingStructures(trail, { recipe, found: makeInverter(trail, recipe)(trail) });
+ * const made = samplingStructures(trail, { recipe, resolution_kms: 94 });
  * assert(made.intensity.every((f) => Math.abs(f) < 0.05e-4));
  * ```
  */
 export function samplingStructures(
   trail: TrailSamples,
-  options: ReinversionOptions,
+  options: SimpleSourcesOptions & {
+    /** What the explainer of these options gives without spots. @default {made here} */
+    readonly alone?: VelocityMap;
+  },
 ): VelocityMap {
-  const { found, centre = { vx_kms: 0, vy_kms: 0 } } = options;
-  const round = axisymmetricPart(found.map, { centre, statistic: "mean" });
-  const again = reinverted(trail, { ...options, intensity: round.intensity });
-  const kept = axisymmetricPart(again, { centre, statistic: "mean" });
-  return { ...again, intensity: again.intensity.map((f, k) => f - kept.intensity[k]!) };
+  const { centre = { vx_kms: 0, vy_kms: 0 }, alone = mapExplainer(trail, options)([]) } = options;
+  const kept = axisymmetricPart(alone, { centre, statistic: "mean" });
+  return { ...alone, intensity: alone.intensity.map((f, k) => f - kept.intensity[k]!) };
 }
 
 /**

@@ -419,7 +419,7 @@ Deno.test("trap: exposures of another grating are left out of a line, and named"
   assertEquals(codes(await read({ lines })), []);
 });
 
-Deno.test("trap: a map of very few exposures warns that its features are the sampling's", async () => {
+Deno.test("trap: a map of very few exposures warns of the streaks that its sampling leaves", async () => {
   const warned = async (count: number) => {
     const raw = madeExposures({ count, cadence_s: 7000 / count });
     const document = await (await writeCampaign([{ raw }])).map();

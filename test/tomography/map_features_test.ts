@@ -93,6 +93,7 @@ Deno.test("mapFeatures() adds the errors of systemic velocity and phase, and kno
       vx_kms: steady(-500),
       vy_kms: steady(150),
       height: steady(1e-9),
+      flux_fraction: steady(5).map((f) => f / 100),
     })),
   };
   const measure = (more: Partial<MapFeaturesOptions>) =>

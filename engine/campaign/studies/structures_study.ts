@@ -14,8 +14,8 @@ import { pause } from "../pause.ts";
 /** What the exposures and the inversion alone do to a feature. */
 export interface FeatureStudy {
   /**
-   * What a round disc, seen at these phases and inverted alike, shows at the feature's place, over the
-   * feature's height: near 1 the sampling alone could have made it.
+   * What a round disc, seen at these phases and inverted alike, shows at the feature's place, over the height
+   * that the map has there; the feature's significance is of what is beyond it.
    */
   readonly sampling_part: number;
   /** Flux of the feature after a second pass through the inversion, over its flux; null where it is lost. */
@@ -31,8 +31,8 @@ export interface FeatureStudy {
 /** What the sampling alone makes of a map, and what the inversion makes of its features. */
 export interface Structures {
   /**
-   * What the same exposures and inversion make of the map's axisymmetric part, beyond that part; null
-   * where the inversion does not settle.
+   * What the same exposures and inversion make of the round disc that fits the data best, beyond what is
+   * round; null where the inversion does not settle.
    */
   readonly sampling: VelocityMap | null;
   /** One entry a feature, in order. */
@@ -82,7 +82,7 @@ async function settled(
     iterations: mapped.iterations,
     multiplier: mapped.multiplier,
   };
-  const sampling = samplingStructures(data, { recipe, found, centre });
+  const sampling = samplingStructures(data, mapped);
   await pause(signal);
   if (features.length === 0) return { sampling, features: [], warnings: [] };
   const look = { centre, resolution_kms };
@@ -110,7 +110,7 @@ async function settled(
   };
 }
 
-/** A feature that the sampling could have made to this part is told. */
+/** A feature that the sampling made more than this part of in the map is told. */
 const SUSPECT = 0.5;
 
 function saidOf(
@@ -125,8 +125,8 @@ function saidOf(
   return [{
     code: "sampling-structure",
     line: trail.line.name,
-    text: `the sampling of the orbit alone would show a round disc with a structure at ${
+    text: `the sampling of the orbit makes most of what the map shows at ${
       suspects.length === 1 ? "feature" : "features"
-    } ${suspects.join(", ")}: not to be trusted`,
+    } ${suspects.join(", ")} of a round disc: only what is left beyond it counts, and is told`,
   }];
 }
