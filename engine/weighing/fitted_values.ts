@@ -35,8 +35,11 @@ export function fittedValues(
   for (let j = 0; j < size; j++) {
     const variance = covariance[j * size + j]!;
     if (!(variance > 0)) continue;
-    // A thousandth of the error: small against curvature, large against rounding.
-    const step = 1e-3 * Math.sqrt(variance);
+    // A thousandth of the error: small against curvature, large against rounding. Where a part hardly
+    // shines its errors are large without end, and near a bound there is room to one side only.
+    const { low = -Infinity, high = Infinity } = fit.parameters[j] ?? {};
+    const length = 1e-3 * Math.min(Math.sqrt(variance), high - low);
+    const step = values[j]! + length <= high ? length : -length;
     const there = values.slice();
     there[j]! += step;
     const moved = quantities(problem, fit, there);

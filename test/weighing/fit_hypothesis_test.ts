@@ -6,7 +6,14 @@ import {
   weighingData,
 } from "@millrace/millrace/weighing";
 import { InputError } from "@millrace/millrace/errors";
-import { assert, assertAlmostEquals, assertEquals, assertLess, assertThrows } from "@std/assert";
+import {
+  assert,
+  assertAlmostEquals,
+  assertEquals,
+  assertGreater,
+  assertLess,
+  assertThrows,
+} from "@std/assert";
 import { fitErrors } from "../../engine/weighing/fit_errors.ts";
 import { fittedValues } from "../../engine/weighing/fitted_values.ts";
 import { valuesOf } from "../../engine/weighing/fit_hypothesis.ts";
@@ -111,6 +118,25 @@ Deno.test("fittedValues() puts errors on the spot's place that noise bears out",
   }
   // 36 pulls of unit variance: their root mean square is 1 ± 0.12; three of that.
   assertAlmostEquals(rms(pulls), 1, 0.36);
+});
+
+Deno.test("fittedValues() keeps within the limits when a fit ends close to one of them", () => {
+  const problem = makeProblem(weighingData(quick(model, { seed: 1 })), { binary });
+  const fit = fitHypothesis(problem, { hypothesis });
+  const errors = fitErrors(problem, fit);
+  const mixing = errors.names.indexOf("spot.mixing");
+  const errorAt = (value: number) => {
+    const values = errors.values.slice();
+    values[mixing] = value;
+    return fittedValues(problem, fit, { ...errors, values }).errors["spot.vx_kms"]!;
+  };
+  assertAlmostEquals(errorAt(1 - 1e-9), errorAt(0.999), 0.01 * errorAt(0.999));
+  assertAlmostEquals(errorAt(1e-9), errorAt(0.001), 0.01 * errorAt(0.001));
+  // A spot that hardly shines says nothing of its mixing.
+  const covariance = errors.covariance.slice();
+  covariance[mixing * errors.names.length + mixing] = 1e8;
+  const { errors: wide } = fittedValues(problem, fit, { ...errors, covariance });
+  assertGreater(wide["spot.mixing"]!, 9999);
 });
 
 Deno.test("profileLikelihood() grows by one at one standard deviation", () => {
