@@ -22,7 +22,12 @@ export function quantile(values: ArrayLike<number>, p: number): number {
   if (!(p >= 0 && p <= 1)) {
     throw new InputError({ action: "find quantile", rule: "p must be from 0 to 1", value: p });
   }
-  const sorted = Float64Array.from(values).filter((value) => !Number.isNaN(value)).sort();
+  const room = new Float64Array(values.length);
+  let count = 0;
+  for (let i = 0; i < values.length; i++) {
+    if (!Number.isNaN(values[i]!)) room[count++] = values[i]!;
+  }
+  const sorted = room.subarray(0, count).sort();
   requireCount("find quantile", sorted, 1);
   const at = p * (sorted.length - 1);
   const below = Math.floor(at);

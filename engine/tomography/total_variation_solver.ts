@@ -193,16 +193,21 @@ export function* variationSteps(
   const metric = fourierMetric(pixels);
   const shape = { size: metric.size, pixels, profile_pixels: problem.profile_pixels };
   const { seen, bend } = symbols(shape);
-  let bound = largestRatio({
-    normal: (v, into) => {
-      const model = forward(v, new Float64Array(count));
-      for (let k = 0; k < count; k++) residual[k] = level * weight[k]! * model[k]!;
-      calls++;
-      operator.adjoint(residual, into);
-    },
-    solve: (v) => metric.solve(v, seen),
-    start: problem.start,
-  });
+  let bound = knownBound(
+    problem.operator,
+    { weight, level, blur: problem.profile_pixels },
+    () =>
+      largestRatio({
+        normal: (v, into) => {
+          const model = forward(v, new Float64Array(count));
+          for (let k = 0; k < count; k++) residual[k] = level * weight[k]! * model[k]!;
+          calls++;
+          operator.adjoint(residual, into);
+        },
+        solve: (v) => metric.solve(v, seen),
+        start: problem.start,
+      }),
+  );
 
   let g = problem.start.map((f) => f / level);
   const model = forward(g, new Float64Array(count)).slice();
@@ -294,6 +299,26 @@ function symbols(
     }
   }
   return { seen, bend };
+}
+
+/** What a bound depends on beside the operator. */
+interface BoundOf {
+  readonly weight: Float64Array;
+  readonly level: number;
+  readonly blur: number;
+}
+
+const bounds = new WeakMap<LinearOperator, BoundOf & { readonly bound: number }>();
+
+/** Replicas share operator, errors and level: their bound is found once. */
+function knownBound(operator: LinearOperator, of: BoundOf, find: () => number): number {
+  const known = bounds.get(operator);
+  const same = known?.level === of.level && known.blur === of.blur &&
+    known.weight.every((w, k) => w === of.weight[k]);
+  if (same) return known.bound;
+  const bound = find();
+  bounds.set(operator, { ...of, bound });
+  return bound;
 }
 
 /** Largest eigenvalue of the normal operator relative to the metric, by power iteration, with room. */

@@ -219,3 +219,26 @@ Deno.test("totalVariationSteps() shows progress; running out of iterations hands
   );
   assertEquals(error.partial.iterations, 10);
 });
+
+// Source: the same map with a projector of its own, for which nothing is known beforehand.
+Deno.test("totalVariation() finds the step size of a projector anew when the errors change", () => {
+  const small = { pixels: 41, half_width_kms: 1000, systemic_kms: 0, max_iterations: 10 };
+  const blurred = plainSampling({
+    phases: Array.from({ length: 12 }, (_, i) => i / 12),
+    bins: 61,
+    first_kms: -1500,
+    step_kms: 50,
+    sigma_kms: 70,
+  });
+  const flux = gaussianTrail(blurred, [{ vx: 300, vy: 0, s1: 100, s2: 100, flux: 100 }]);
+  const mapOf = (error: number, projector = makeProjector(blurred, small)) => {
+    const settings = { ...small, weight: 1, settled: 0, projector };
+    const data = { sampling: blurred, flux, error: flux.map(() => error) };
+    return assertThrows(() => totalVariation(data, settings), NotConverged).partial as VariationMap;
+  };
+  const shared = makeProjector(blurred, small);
+  const first = mapOf(0.02, shared), again = mapOf(0.02, shared), closer = mapOf(0.002, shared);
+  assertEquals(again.map, first.map);
+  assertLess(again.operator_calls, first.operator_calls);
+  assertEquals(closer.map, mapOf(0.002).map);
+});
