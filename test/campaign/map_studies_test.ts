@@ -121,11 +121,12 @@ Deno.test("map.systemic_scan finds γ, and says when another one was taken", asy
 
 Deno.test("map.period_scan finds the period from two nights, and says that one night tells little", async () => {
   const nights = await writeCampaign([
-    { name: "one", raw: exposures({ count: 16, cadence_s: 430 }) },
-    { name: "two", raw: exposures({ count: 16, cadence_s: 430, start: "2024-01-02T02:30:00" }) },
+    { name: "one", raw: exposures({ count: 10, cadence_s: 690 }) },
+    { name: "two", raw: exposures({ count: 10, cadence_s: 690, start: "2024-01-02T02:30:00" }) },
   ], { exposures: '[[exposures]]\nfiles = ["one/*.fits", "two/*.fits"]\n' });
   const off = EPHEMERIS.period_d * (1 + 0.002);
-  const set = [...ENTROPY, "map.period_scan=true", `orbit.period_d=${off}`];
+  const small = ["map.half_width_kms=700", "map.pixels=31"];
+  const set = [...ENTROPY, ...small, "map.period_scan=true", `orbit.period_d=${off}`];
   const document = await nights.map(set);
   const scan = document.maps[0]!.period_scan!;
   assertEquals([scan.shape, scan.adopted], ["minimum", off]);
@@ -133,11 +134,40 @@ Deno.test("map.period_scan finds the period from two nights, and says that one n
   assertLess(scan.error!, 1e-4 * EPHEMERIS.period_d);
   assertStringIncludes(textOf(document, "period-scan-disagrees"), " d, not 0.08016");
   assert(!codes(document).includes("period-scan-short"));
+  // A fifth of a cycle over the 13 orbits of both nights, and a cycle more or less between them.
+  assertAlmostEquals((scan.searched[1] - scan.searched[0]) / off, 0.4 / 13.5, 0.002);
+  assertEquals(scan.slips.map(({ cycles }) => cycles), [-1, 1]);
+  for (const { cycles, gap_cycles, period_d, excess } of scan.slips) {
+    assertAlmostEquals(period_d * (1 + cycles / gap_cycles), scan.best!, 0.003 * off);
+    assertGreater(excess, 9);
+  }
   const short = await night.map([...ENTROPY, "map.period_scan=true"], base);
   const [one] = short.maps;
   assertStringIncludes(textOf(short, "period-scan-short"), "the data span 1.0 orbits");
   // 1.04 orbits: a period is told by what is seen twice, a few hundredths of an orbit.
   assertGreater(one!.period_scan!.error ?? Infinity, 20 * scan.error!);
+});
+
+Deno.test("map.period_scan goes a whole cycle between nights away, and says where other counts fit as well", async () => {
+  const seen = { count: 8, cadence_s: 860, signal_to_noise: 1.5 };
+  const nights = await writeCampaign([
+    { name: "one", raw: exposures(seen) },
+    { name: "two", raw: exposures({ ...seen, start: "2024-01-02T02:30:00" }) },
+  ], { exposures: '[[exposures]]\nfiles = ["one/*.fits", "two/*.fits"]\n' });
+  // 12.75 cycles of the true period between the nights are 13.75 of this one.
+  const slipped = EPHEMERIS.period_d * 12.75 / 13.75;
+  const set = [...ENTROPY, "map.resamples=0", "map.half_width_kms=700", "map.pixels=31"];
+  const session = await nights.open([...set, `orbit.period_d=${slipped}`]);
+  const scan = await session.studies.periodScan(session.lines("test")[0]!);
+  assertLess(Math.abs(scan.best! - EPHEMERIS.period_d), 4 * scan.error!);
+  // So little signal does not choose between the counts of cycles, and the one that it began with is among them.
+  assertEquals(scan.shape, "several");
+  assert(
+    scan.slips.some(({ period_d, excess }) =>
+      Math.abs(period_d / slipped - 1) < 0.005 && excess > 0 && excess < 9
+    ),
+  );
+  assertStringIncludes(textOf(scan, "period-scan-several"), "one cycle");
 });
 
 Deno.test("map.coordinates = inside-out solves with speeds turned, and finds the source where it is", async () => {

@@ -3,6 +3,7 @@ import { type ParameterScan, scanPeriod, scanSystemic } from "../../tomography/m
 import type { MappedLine } from "../map_line.ts";
 import { pause } from "../pause.ts";
 import type { Target } from "../target.ts";
+import { type CycleSlip, cycleSlips, nightGaps } from "./cycle_slips.ts";
 import { entropyAround } from "./entropy_around.ts";
 
 /** A parameter that was searched with maps of one multiplier. */
@@ -21,6 +22,10 @@ export interface ScanStudy {
   readonly shape: ParameterScan["shape"];
   /** The value that the map was made with. */
   readonly adopted: number;
+  /** Between which values it was looked for: the first, wide look, about the best slip where one is. */
+  readonly searched: readonly [number, number];
+  /** Of the period, what comes of one cycle more or less between nights; none for γ. */
+  readonly slips: readonly CycleSlip[];
   /** What a user should know. */
   readonly warnings: readonly Warning[];
 }
@@ -57,12 +62,12 @@ interface ScanOptions {
  * @param options The target, and the error of the adopted γ, km/s.
  * @returns The curve.
  */
-export function systemicStudy(
+export async function systemicStudy(
   mapped: MappedLine,
   options: ScanOptions & { readonly error_kms: number | null },
 ): Promise<ScanStudy> {
   const { trail, options: around } = entropyAround(mapped, options);
-  return study(mapped, {
+  const { found } = await study(mapped, {
     ...options,
     parameter: "systemic_kms",
     adopted: mapped.systemic_kms,
@@ -70,11 +75,20 @@ export function systemicStudy(
     reach: REACH * mapped.map.half_width_kms,
     scan: (values_kms) => scanSystemic(trail, { ...around, values_kms }),
   });
+  return found;
 }
 
+/** How often a slipped period that fits better is gone to. */
+const MOST_SLIPS = 3;
+
+/** A slipped period is told as possible up to this excess: three standard deviations. */
+const POSSIBLE = 9;
+
 /**
- * Searches the period in the same way, phases turned about the middle of the data. Within one orbit a
- * period hardly shows; over several nights a slip by a whole cycle between them is not looked for.
+ * Searches the period in the same way, phases turned about the middle of the data, as far as phases slip by
+ * a fifth of a cycle over the data. Within one orbit a period hardly shows. Over several nights the periods
+ * with one cycle more or less between them are tried, too, for up to three gaps of different length; where
+ * one of these fits better, it is looked at in the same way, three times at most.
  *
  * @param mapped The map of the line.
  * @param options The target, the period and its error, d.
@@ -89,33 +103,91 @@ export async function periodStudy(
   const orbits = sampling.phase.map((phase, i) => phase + sampling.cycle[i]!);
   const span = Math.max(...orbits) - Math.min(...orbits);
   const { period_d } = options;
-  const found = await study(mapped, {
+  const scan = (values: readonly number[]): ParameterScan => {
+    const scanned = scanPeriod(trail, { ...around, ratios: values.map((p) => p / period_d) });
+    return {
+      ...scanned,
+      values: scanned.values.map((ratio) => ratio * period_d),
+      best: scanned.best && scanned.best * period_d,
+      error: scanned.error && scanned.error * period_d,
+    };
+  };
+  const reach = period_d * SLIP / Math.max(1, span);
+  const asked = {
     ...options,
     parameter: "period_d",
     adopted: period_d,
     adopted_error: options.error_d,
-    reach: period_d * SLIP / Math.max(1, span),
-    scan: (values) => {
-      const scanned = scanPeriod(trail, { ...around, ratios: values.map((p) => p / period_d) });
-      return {
-        ...scanned,
-        values: scanned.values.map((ratio) => ratio * period_d),
-        best: scanned.best && scanned.best * period_d,
-        error: scanned.error && scanned.error * period_d,
-      };
-    },
-  });
-  if (span >= FEW_ORBITS) return found;
+    reach,
+    scan,
+  } as const;
+  const gaps_cycles = nightGaps(sampling, { period_d });
+  const slipsAbout = (counted: Counted) =>
+    slipsOf(counted, { gaps_d: gaps_cycles.map((gap) => gap * period_d), scan, ...options });
+  let counted = await study(mapped, asked);
+  let slips = await slipsAbout(counted);
+  for (let slipped = 0; slipped < MOST_SLIPS; slipped++) {
+    const better = slips.toSorted((a, b) => a.excess - b.excess)[0];
+    if (better === undefined || !(better.excess < 0)) break;
+    counted = await study(mapped, { ...asked, around: better.period_d });
+    slips = await slipsAbout(counted);
+  }
+  const { found } = counted;
+  const line = trail.line.name;
+  const possible = slips.filter(({ excess }) => excess < POSSIBLE);
   return {
     ...found,
-    warnings: [...found.warnings, {
-      code: "period-scan-short",
-      line: trail.line.name,
-      text:
-        `the data span ${span.toFixed(1)} orbits: what the source does within one of them goes ` +
-        "into the period by maps, and its error leaves that out",
-    }],
+    slips,
+    shape: possible.length > 0 && found.shape === "minimum" ? "several" : found.shape,
+    warnings: [
+      ...found.warnings,
+      ...possible.map(({ cycles, gap_cycles, period_d, excess }) => ({
+        code: "period-scan-several",
+        line,
+        text: `a period of ${period_d.toFixed(7)} d, with one cycle ${
+          cycles > 0 ? "more" : "less"
+        } in ${gap_cycles.toFixed(1)} between nights, fits nearly as well: χ² − αS is only ${
+          excess.toFixed(1)
+        } higher`,
+      })),
+      ...(span >= FEW_ORBITS ? [] : [{
+        code: "period-scan-short",
+        line,
+        text:
+          `the data span ${span.toFixed(1)} orbits: what the source does within one of them goes ` +
+          "into the period by maps, and its error leaves that out",
+      }]),
+    ],
   };
+}
+
+/** Both slips over each gap, about a period that was found; none about a curve that tells nothing. */
+async function slipsOf(
+  { found: { best }, least }: Counted,
+  options: {
+    readonly gaps_d: readonly number[];
+    readonly scan: (values: readonly number[]) => ParameterScan;
+    readonly signal?: AbortSignal;
+  },
+): Promise<CycleSlip[]> {
+  if (best === null) return [];
+  const slips: CycleSlip[] = [];
+  for (const gap_d of options.gaps_d) {
+    try {
+      slips.push(...cycleSlips(gap_d, { ...options, period_d: best, least }));
+    } catch (error) {
+      // Maps of a period that is far off may not settle: they do not fit.
+      if (!(error instanceof NotConverged)) throw error;
+    }
+    await pause(options.signal);
+  }
+  return slips;
+}
+
+interface Counted {
+  readonly found: ScanStudy;
+  /** Least χ² − αS. */
+  readonly least: number;
 }
 
 async function study(
@@ -124,12 +196,14 @@ async function study(
     readonly parameter: ScanStudy["parameter"];
     readonly adopted: number;
     readonly adopted_error: number | null;
+    /** Middle of the first look. @default {adopted} */
+    readonly around?: number;
     readonly reach: number;
     readonly scan: (values: readonly number[]) => ParameterScan;
   },
-): Promise<ScanStudy> {
-  const { parameter, adopted, reach, scan, signal } = options;
-  let found = scan(WIDE.map((part) => adopted + part * reach));
+): Promise<Counted> {
+  const { parameter, adopted, around = adopted, reach, scan, signal } = options;
+  let found = scan(WIDE.map((part) => around + part * reach));
   await pause(signal);
   const { best: middle, error: sigma } = found;
   if (found.shape === "minimum" && middle !== null && sigma !== null && sigma < reach / 5) {
@@ -143,9 +217,14 @@ async function study(
   }
   const { values, objective, least, best, error, shape } = found;
   return {
-    ...{ parameter, values, best, error, shape, adopted },
-    excess: objective.map((value) => value - least),
-    warnings: saidOf(mapped, { ...options, best, error, shape }),
+    least,
+    found: {
+      ...{ parameter, values, best, error, shape, adopted },
+      searched: [around - reach, around + reach],
+      slips: [],
+      excess: objective.map((value) => value - least),
+      warnings: saidOf(mapped, { ...options, best, error, shape }),
+    },
   };
 }
 
