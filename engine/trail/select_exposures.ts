@@ -21,6 +21,12 @@ function isBlank({ flux, error }: Spectrum): boolean {
   return true;
 }
 
+/** Whether there is something in the flux of a blank exposure: it is its errors that leave nothing usable. */
+function lacksErrors({ flux, errors_given }: Spectrum): boolean {
+  const seen = flux.filter(Number.isFinite);
+  return errors_given && seen.some((value) => value !== seen[0]);
+}
+
 function isSame(a: Spectrum, b: Spectrum): boolean {
   return a.flux.length === b.flux.length && a.flux.every((f, i) => Object.is(f, b.flux[i])) &&
     Math.abs(a.wavelength_angstrom[0]! - b.wavelength_angstrom[0]!) < 1e-6;
@@ -36,7 +42,7 @@ function isSimultaneous(a: Spectrum, b: Spectrum): boolean {
 
 /**
  * Puts exposures in order of time and drops those that say nothing: blank ones (no two usable
- * samples differ) and exact copies of an earlier one. Exposures of one group that overlap in time
+ * samples differ), those whose errors are all zero, and exact copies of an earlier one. Exposures of one group that overlap in time
  * and wavelength but differ are kept with a warning: they may be two reductions of one exposure.
  *
  * @param spectra Exposures in any order.
@@ -68,14 +74,21 @@ function isSimultaneous(a: Spectrum, b: Spectrum): boolean {
 export function selectExposures(spectra: readonly Spectrum[]): SelectedExposures {
   const warnings: Warning[] = [];
   const blank = spectra.filter(isBlank);
-  if (blank.length > 0) {
-    warnings.push({
-      code: "blank-exposures",
-      text: `dropped as blank (no two usable samples differ): ${
-        listed(blank.map((s) => s.source))
-      }`,
-    });
-  }
+  const drop = (dropped: readonly Spectrum[], code: string, why: string) => {
+    if (dropped.length === 0) return;
+    const text = `dropped ${why}: ${listed(dropped.map((s) => s.source))}`;
+    warnings.push({ code, text });
+  };
+  drop(
+    blank.filter((s) => !lacksErrors(s)),
+    "blank-exposures",
+    "as blank (no two usable samples differ)",
+  );
+  drop(
+    blank.filter(lacksErrors),
+    "exposures-without-errors",
+    "as no two samples have an error above zero and are not masked (are the errors in the file all zero?)",
+  );
   const full = spectra.filter((s) => !blank.includes(s));
   const sorted = full.toSorted((a, b) => daysBetween(a.mid, b.mid));
   // Groups follow one another however their times interlace: order counts within each.

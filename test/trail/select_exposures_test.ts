@@ -7,7 +7,8 @@ Deno.test("selectExposures() drops blank and duplicate exposures, sorts the rest
   const blank = [
     { ...made[1]!, source: "zero.fits", flux: made[1]!.flux.map(() => 0) },
     { ...made[2]!, source: "nan.fits", flux: made[2]!.flux.map(() => NaN) },
-    { ...made[3]!, source: "masked.fits", error: made[3]!.error.map(() => Infinity) },
+    // What a reader makes of errors of zero, and of masked samples.
+    { ...made[3]!, source: "errorless.fits", error: made[3]!.error.map(() => Infinity) },
   ];
   const copy = { ...made[4]!, source: "copy.fits", group: 1, flux: made[4]!.flux.slice() };
   const mixed = [made[5]!, ...blank, copy, ...made.slice(0, 5)];
@@ -21,12 +22,20 @@ Deno.test("selectExposures() drops blank and duplicate exposures, sorts the rest
   );
   assertEquals(warnings.map((w) => w.code), [
     "blank-exposures",
+    "exposures-without-errors",
     "exposures-reordered",
     "duplicate-exposures",
   ]);
-  assertStringIncludes(warnings[0]!.text, "zero.fits, nan.fits, masked.fits");
   assertEquals(
-    warnings[2]!.text,
+    warnings[0]!.text,
+    "dropped as blank (no two usable samples differ): zero.fits, nan.fits",
+  );
+  assertEquals(
+    warnings[1]!.text,
+    "dropped as no two samples have an error above zero and are not masked (are the errors in the file all zero?): errorless.fits",
+  );
+  assertEquals(
+    warnings[3]!.text,
     "dropped as copies of another exposure: night-0/004.fits (as copy.fits)",
   );
 });
