@@ -30,20 +30,20 @@ export function commandWith(name: string, summary: string) {
  */
 export function refuseOptions(
   options: CommonOptions,
-  refused: { readonly action: string; readonly out?: string; readonly set?: string },
+  refused: { readonly action: string } & Partial<Record<RefusableOption, string>>,
 ): void {
-  const { action, out, set } = refused;
-  const refuse = (rule: string, value: string) => {
+  const { action, ...reasons } = refused;
+  for (const [name, reason] of Object.entries(reasons)) {
+    const given = options[name as RefusableOption];
+    const value = Array.isArray(given) ? given[0] : given;
+    if (value === undefined) continue;
+    const rule = `${reason}, so --${name} has no meaning`;
     throw new InputError({ action, rule, value, remedy: "leave it out" });
-  };
-  if (out !== undefined && options.out !== undefined) {
-    refuse(`${out}, so --out has no meaning`, options.out);
-  }
-  const [assigned] = options.set ?? [];
-  if (set !== undefined && assigned !== undefined) {
-    refuse(`${set}, so --set has no meaning`, assigned);
   }
 }
+
+/** Options with a value that a command may have no use for. */
+type RefusableOption = "out" | "set" | "seed" | "workers";
 
 /** Reads a whole number, zero or above. */
 export function wholeNumber(text: string): number {

@@ -36,6 +36,8 @@ export function geometryCommand(finish: (status: number) => void) {
             action: "describe geometry",
             out: "it writes to the terminal alone",
             set: "the binary is given by options such as --mass-ratio, not by a target file",
+            seed: "there is no chance in it",
+            workers: "it is done at once on one thread",
           });
           const given = {
             mass_ratio: options.massRatio,

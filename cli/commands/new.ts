@@ -19,6 +19,8 @@ export const newCommand = (finish: (status: number) => void) =>
             action: "start a target file",
             out: "it stands in the folder of the spectra",
             set: "its settings are filled in by hand",
+            seed: "there is no chance in it",
+            workers: "it is done at once on one thread",
           });
           const made = await newTarget(dir, { overwrite: options.overwrite });
           return {

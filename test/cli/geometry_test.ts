@@ -39,6 +39,14 @@ Deno.test("millrace geometry and new refuse the common options that they have no
       'millrace: Cannot describe geometry as the binary is given by options such as --mass-ratio, not by a target file, so --set has no meaning: current value is "binary.mass_ratio=0.5"; leave it out\n',
     ],
     [
+      ["geometry", "--mass-ratio", "0.2", "--workers", "2"],
+      "millrace: Cannot describe geometry as it is done at once on one thread, so --workers has no meaning: current value is 2; leave it out\n",
+    ],
+    [
+      ["new", ".", "--seed", "2"],
+      "millrace: Cannot start a target file as there is no chance in it, so --seed has no meaning: current value is 2; leave it out\n",
+    ],
+    [
       ["new", ".", "--set", "seed=2"],
       'millrace: Cannot start a target file as its settings are filled in by hand, so --set has no meaning: current value is "seed=2"; leave it out\n',
     ],
