@@ -99,7 +99,7 @@ export const demoCommand = (finish: (status: number) => void) =>
             const set = [...(options.set ?? []), `map.method="${method}"`, SOONER];
             return readTarget(campaign.target_file, { set });
           }));
-          beside.start(plannedBeside(read, { gas, others }), await gather(session));
+          beside.start(plannedBeside(read, { gas, others }), await gather(session, gas));
           const checking = record("check", runCheck);
           goAhead(session, gas);
           const check = await checking;

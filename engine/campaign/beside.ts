@@ -1,5 +1,7 @@
-import { runTasks } from "../workers/mod.ts";
+import { type Progress, runTasks } from "../workers/mod.ts";
+import type { Trail } from "../trail/mod.ts";
 import type { LineTask } from "./line_worker.ts";
+import type { LineSettings } from "./schema/lines_section.ts";
 import type { GatheredTarget, Session } from "./session.ts";
 
 /** Work that other threads do while this one goes on. */
@@ -28,11 +30,15 @@ export interface Beside {
  *
  * @param options How many threads.
  * @param options.workers Their number.
+ * @param options.what What is done, for `progress`. @default "lines"
+ * @param options.progress Told of each piece.
  * @param options.signal Aborts the work.
  * @returns The work, not started.
  */
-export function workBeside(options: { workers: number; signal?: AbortSignal }): Beside {
-  const { workers, signal } = options;
+export function workBeside(
+  options: { workers: number; what?: string; progress?: Progress; signal?: AbortSignal },
+): Beside {
+  const { workers, what = "lines", progress, signal } = options;
   const started = new Map<string, Promise<unknown>>();
   return {
     take: async <T>(name: string, make: () => Promise<T>) => {
@@ -54,6 +60,8 @@ export function workBeside(options: { workers: number; signal?: AbortSignal }): 
         module: new URL("./line_worker.ts", import.meta.url),
         workers,
         shared: gathered,
+        what,
+        progress,
         signal,
         onResult: (index, result) => parts[index]!.resolve(result),
       }).catch((error) => parts.forEach(({ reject }) => reject(error)));
@@ -65,12 +73,14 @@ export function workBeside(options: { workers: number; signal?: AbortSignal }): 
  * What a session has read, for other threads.
  *
  * @param session The session.
- * @returns Its exposures and the trails of its lines.
+ * @param lines Lines whose trails are made already.
+ * @returns Its exposures and these trails.
  */
-export async function gather(session: Session): Promise<GatheredTarget> {
-  const trails = new Map();
-  for (const line of session.lines("make the trails")) {
-    trails.set(line.name, await session.trail(line));
-  }
+export async function gather(
+  session: Pick<Session, "exposures" | "trail">,
+  lines: readonly LineSettings[],
+): Promise<GatheredTarget> {
+  const trails = new Map<string, Trail>();
+  for (const line of lines) trails.set(line.name, await session.trail(line));
   return { exposures: await session.exposures(), trails };
 }

@@ -15,6 +15,8 @@ export interface LineTask {
   readonly target: Target;
   /** Name of the line. */
   readonly line: string;
+  /** Whether maps are made in spite of a large gap in phase. @default {false} */
+  readonly force?: boolean;
   /** What is done: the tests before an inversion, the map, or a weighing, which may differ from the file's. */
   readonly work:
     | "tests"
@@ -35,8 +37,8 @@ export async function runTask(
   task: LineTask,
   gathered: GatheredTarget,
 ): Promise<LineTests | MappedLine | LineVerdict> {
-  const { target, work } = task;
-  const session = openSession(target, { gathered });
+  const { target, force, work } = task;
+  const session = openSession(target, { gathered, force });
   const line = linesOf(target, { action: task.name }).find(({ name }) => name === task.line)!;
   if (work === "tests") return await session.anyMap(line);
   if (work === "map") return await session.map(line);

@@ -1,6 +1,7 @@
 import type { Binary, Ephemeris } from "../binary/mod.ts";
 import type { Trail } from "../trail/mod.ts";
-import type { Progress } from "../workers/mod.ts";
+import { currentTaskStore, type Progress } from "../workers/mod.ts";
+import { gather, workBeside } from "./beside.ts";
 import { binaryOf } from "./binary_of.ts";
 import { ephemerisOf, hasHeliocentricZero } from "./ephemeris_of.ts";
 import { inFile } from "./in_file.ts";
@@ -157,8 +158,28 @@ export function openSession(
       signal,
     });
   };
+  // What shares its tasks with other processes goes through the same work as they do.
+  const threads = currentTaskStore() === undefined ? workers : 1;
+  const beside = workBeside({ workers: threads, what: "lines tested", progress, signal });
+  const testAll = once(async () => {
+    if (threads < 2) return;
+    const gas = mappedLines(target.settings.lines);
+    const made = await Promise.allSettled(gas.map(trail));
+    const tested = gas.filter((_, i) => made[i]!.status === "fulfilled");
+    if (tested.length < 2) return;
+    beside.start(
+      tested.map(({ name }) => ({ name, target, line: name, force, work: "tests" })),
+      await gather({ exposures, trail }, tested),
+    );
+  });
   const anyMap = from === undefined
-    ? perLine((line) => keep(`tests of ${line.name}`, () => placed(target, () => makeTests(line))))
+    ? perLine((line) =>
+      keep(`tests of ${line.name}`, () =>
+        placed(target, async () => {
+          await testAll();
+          return await beside.take(line.name, () => makeTests(line));
+        }))
+    )
     : (line: LineSettings) => from.anyMap(there(line));
   const makeTests = async (line: LineSettings) => {
     const made = await trail(line);
