@@ -66,7 +66,8 @@ export function mapExplainer(
   const projector = blendProjector(trail.sampling, { ...recipe, members });
   const turn = "absorption" in recipe && recipe.absorption === true ? -1 : 1;
   const invert = makeInverter(trail, withFilterOf(trail, recipe));
-  return (places, moved) => {
+  const known = new Map<string, VelocityMap>();
+  const made = (places: readonly MapPlace[], moved?: MapPlace) => {
     const flux = projector.forward(fit(places, moved)).map((f) => turn * f);
     try {
       return invert({ ...trail, flux }).map;
@@ -75,6 +76,12 @@ export function mapExplainer(
       if (!(error instanceof NotConverged)) throw error;
       return (error.partial as Inversion).map;
     }
+  };
+  return (places, moved) => {
+    const key = [...places, moved].map((p) => p && `${p.vx_kms} ${p.vy_kms}`).join();
+    const old = known.get(key) ?? made(places, moved);
+    known.set(key, old);
+    return old;
   };
 }
 

@@ -1,7 +1,8 @@
 import { normalQuantile, normalTail } from "../numerics/mod.ts";
 import type { MapPlace } from "./axisymmetric_part.ts";
 import type { MapExplainer } from "./explained_map.ts";
-import { type Excess, type ExcessBlob, mapExcess, type MapExcessOptions } from "./map_excess.ts";
+import { type FeatureLooks, featureLooks, movedCentres, ORIGIN } from "./feature_looks.ts";
+import { type ExcessBlob, mapExcess, type MapExcessOptions } from "./map_excess.ts";
 import type { FollowedFeature, MapSpread } from "./map_replicas.ts";
 import { mapStep } from "./map_shape.ts";
 import type { BinaryPart, PartFinder } from "./nearest_part.ts";
@@ -201,15 +202,18 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
   const area = (map.pixels * mapStep(map)) ** 2;
   const places = Math.max(1, area / (Math.PI * (0.5 * resolution_kms) ** 2));
   const features: MapFeature[] = [];
-  let looks = looksAt(map, options, features);
-  const peaks = featurePeaks(map, { ...options, alone: looks.alone });
-  const measured = () =>
-    peaks.flatMap((peak, f) => {
+  const alone = explain && explain([]);
+  const moved = spread === null ? [] : movedCentres(options);
+  const peaks = featurePeaks(map, { ...options, alone });
+  const measured = (alone: VelocityMap | null) => {
+    const looks = featureLooks(map, { ...options, alone, moved });
+    return peaks.flatMap((peak, f) => {
       const followed = spread?.features[f] ?? null;
       return seenAt(peak, { ...options, looks, followed, places }) ?? [];
     }).sort((a, b) => b.rank - a.rank);
+  };
   const merged = ({ seen }: Seen) => features.some((one) => apart(one, seen) < resolution_kms);
-  let left = measured();
+  let left = measured(alone);
   while (features.length < limit) {
     const best = left.find((one) => !merged(one));
     if (best === undefined || !((best.significance ?? Infinity) >= least_sigma)) break;
@@ -227,54 +231,10 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
         : apart(blob, centre) + reach < rim_speed_kms,
     });
     // Without scatter there is no telling which peaks are worth explaining.
-    if (explain === null || spread === null) continue;
-    looks = looksAt(map, options, features);
-    left = measured();
+    if (explain === null || spread === null || features.length === limit) continue;
+    left = measured(explain(features));
   }
   return features;
-}
-
-const ORIGIN: MapPlace = { vx_kms: 0, vy_kms: 0 };
-
-interface Looks {
-  /** What is taken off the map first. */
-  readonly alone: VelocityMap | null;
-  /** The excess that features are looked for in. */
-  readonly excess: Excess;
-  /** Excesses of maps with other regularisation. */
-  readonly others: readonly Excess[];
-  /** That of the map of the map. */
-  readonly again: Excess | null;
-  /** Excesses about centres an error to either side, along each axis that has one. */
-  readonly beside: readonly (readonly [Excess, Excess])[];
-}
-
-/** The excesses that features are measured on, when some have been found already. */
-function looksAt(
-  map: VelocityMap,
-  options: MapFeaturesOptions,
-  found: readonly MapPlace[],
-): Looks {
-  const { resolution_kms, centre = ORIGIN, centre_error_kms = ORIGIN, explain = null } = options;
-  const alone = explain && explain(found);
-  const look = { centre, resolution_kms, alone };
-  const moved = (vx_kms: number, vy_kms: number) =>
-    mapExcess(map, {
-      centre: { vx_kms: centre.vx_kms + vx_kms, vy_kms: centre.vy_kms + vy_kms },
-      resolution_kms,
-      alone: explain && explain(found, { vx_kms, vy_kms }),
-    });
-  const { vx_kms: x, vy_kms: y } = centre_error_kms;
-  return {
-    alone,
-    excess: mapExcess(map, look),
-    others: (options.alternatives ?? []).map((other) => mapExcess(other, look)),
-    again: options.remade ? mapExcess(options.remade, look) : null,
-    beside: [
-      ...(x > 0 ? [[moved(-x, 0), moved(x, 0)] as const] : []),
-      ...(y > 0 ? [[moved(0, -y), moved(0, y)] as const] : []),
-    ],
-  };
 }
 
 interface Seen {
@@ -291,7 +251,7 @@ interface Seen {
 function seenAt(
   peak: number,
   options: MapFeaturesOptions & {
-    readonly looks: Looks;
+    readonly looks: FeatureLooks;
     readonly followed: FollowedFeature | null;
     readonly places: number;
   },

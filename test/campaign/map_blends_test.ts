@@ -113,4 +113,14 @@ Deno.test("blends are refused where the inversion cannot tell them apart, with t
     await refused('map.method="total-variation"'),
     'Cannot map H beta with its blends as a blend has a map of its own by entropy alone: current value is "total-variation" (/star.toml:20, key lines[0].blends[1].map); use map.method = "entropy", or map = "shared"',
   );
+  // A blend is no mirror of itself about γ, as modulation is not: neither inversion of it is tried.
+  const quick = ["map.resamples=0", "map.modulation=true"];
+  for (const blend of ["ratio = 0.4", 'map = "own"']) {
+    const one = await night(`{ name = "He I 4922", air_angstrom = ${AIR}, ${blend} }`);
+    const { message } = await assertRejects(() => one.map(quick), InputError);
+    assertEquals(
+      message.replace(one.folder, ""),
+      'Cannot map the modulation of H beta as the line must be one alone, and of one sign: a blend is as little a mirror of itself about the systemic velocity as modulation: current value is "1 blend" (/star.toml, key map.modulation); leave the blends out, or map.modulation',
+    );
+  }
 });

@@ -48,8 +48,15 @@ export async function modulationStudy(
   if (blends.length > 0 || sign === "mixed") {
     throw new InputError({
       action: `map the modulation of ${line}`,
-      rule: "the line must be one alone, and of one sign",
-      value: blends.length > 0 ? `${blends.length} blends` : sign,
+      rule: "the line must be one alone, and of one sign" +
+        (blends.length === 0
+          ? ""
+          : ": a blend is as little a mirror of itself about the systemic velocity as modulation"),
+      value: blends.length === 0
+        ? sign
+        : blends.length === 1
+        ? "1 blend"
+        : `${blends.length} blends`,
       file: target.file,
       key: "map.modulation",
       remedy: "leave the blends out, or map.modulation",
