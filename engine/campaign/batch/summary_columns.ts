@@ -108,17 +108,30 @@ const systemic = (key: "systemic_kms" | "systemic_error_kms") => (source: Summar
   }
 };
 
-/** The weighing in a few words: "disc+spot", "disc+spot or disc+stream", "outside", "undecided". */
+/**
+ * The weighing in a few words: "disc+spot", "disc+spot or disc+stream", "outside", "undecided". What
+ * is left open for want of trials alone says so: a rival that no trial spoke for is no rival.
+ */
 function verdict(source: SummarySource): unknown {
   const preferred = weigh("preferred")(source);
   if (!Array.isArray(preferred)) return null;
-  const rival = weigh("undecided_with")(source);
-  if (preferred.length > 0) {
-    return preferred.join("+") + (Array.isArray(rival) ? ` or ${rival.join("+")}` : "");
+  if (preferred.length === 0) {
+    const hypotheses = weigh("hypotheses")(source);
+    const some = Array.isArray(hypotheses) && hypotheses.some((one) => at(one, ["adequate"]));
+    return some ? "undecided" : "outside";
   }
-  const hypotheses = weigh("hypotheses")(source);
-  const some = Array.isArray(hypotheses) && hypotheses.some((one) => at(one, ["adequate"]));
-  return some ? "undecided" : "outside";
+  const name = preferred.join("+");
+  const rival = weigh("undecided_with")(source);
+  if (!Array.isArray(rival)) return name;
+  const contest = weigh("contest")(source);
+  const held = at(contest, ["decided"]) === false;
+  const few = !held || (sameWords(at(contest, ["leader"]), preferred) &&
+    at(contest, ["rival_true", "exceeding"]) === 0);
+  return few ? `${name}, too few trials` : `${name} or ${rival.join("+")}`;
+}
+
+function sameWords(a: unknown, b: readonly unknown[]): boolean {
+  return Array.isArray(a) && a.join() === b.join();
 }
 
 /**
@@ -184,7 +197,11 @@ export const summaryColumns: readonly SummaryColumn[] = [
   number("feature_flux_fraction", "its share of the flux", map("features", 0, "flux_fraction")),
   number("feature_sigma", "its significance", map("features", 0, "significance_sigma")),
   word("feature_nearest", "structure nearest to it", map("features", 0, "nearest")),
-  word("verdict", "preferred parts; outside where no hypothesis explains the data", verdict),
+  word(
+    "verdict",
+    "preferred parts, or two sets that the data do not tell apart; outside where none explains them",
+    verdict,
+  ),
   number("false_alarm", "false-alarm rate as measured", weigh("false_alarm", "value")),
   number("false_alarm_error", "its error", weigh("false_alarm", "error")),
   word("warnings", "codes of the warnings about the line", ({ run, line }) =>
