@@ -4,5 +4,5 @@
 set -euo pipefail
 
 home=$(cd "$(dirname "$0")/../.." && pwd)
-exec "${DENO:-deno}" run --quiet --no-prompt --cached-only --frozen --config "$home/deno.json" \
-  --allow-read --allow-write "$home/cli/main.ts" "$@"
+exec "${DENO:-deno}" run --quiet --v8-flags=--single-threaded-gc --no-prompt --cached-only --frozen \
+  --config "$home/deno.json" --allow-read --allow-write "$home/cli/main.ts" "$@"

@@ -13,6 +13,7 @@ export interface Run {
 /** Arguments that start the command line as users do: read and write permission only. */
 export const LAUNCH: readonly string[] = [
   "run",
+  "--v8-flags=--single-threaded-gc",
   "--no-prompt",
   "--cached-only",
   "--config",
