@@ -1,6 +1,6 @@
 /**
  * How far noise moves a spot with 10 % of the light, to first order: the fit's response, known from its
- * derivatives, to the noise of seeds 1 to N (default 5000). So many fits would take hours; the first
+ * derivatives, to the noise of seeds 1 to N (default 2000). So many fits would take hours; the first
  * three are made, to show by how many standard deviations they differ from their response.
  *
  *     deno run --allow-read test/bench/weighing_response.ts [N]
@@ -17,7 +17,7 @@ import { withFlux } from "../../engine/weighing/problem.ts";
 import { spotted } from "../weighing/made.ts";
 import { binary, row, trailOf } from "./weighing_data.ts";
 
-const seeds = Number(Deno.args[0] ?? 5000);
+const seeds = Number(Deno.args[0] ?? 2000);
 const FITS = 3;
 const sets = [["disc", "spot"]] as const;
 const model = spotted(0.1);
