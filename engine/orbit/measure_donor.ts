@@ -72,6 +72,8 @@ export interface DonorOptions {
 const LEAST_MEASURED = 0.7;
 const LEAST_K_SIGMA = 3;
 const MOST_STATIONARY = 0.25;
+/** Least part of one template that another does not have in common with it. */
+const ALIKE = 0.05;
 
 /** Velocities that donors mostly have, km/s: common practice, no source. */
 const LIKELY_KMS = 400;
@@ -121,26 +123,40 @@ function hiddenShare(matches: readonly ExposureMatch[]): number {
   return whole > 0 ? 1 - seen / whole : 0;
 }
 
-/** Largest fall of chi-square by a template that stands still, over that by one that moves. */
+/**
+ * Largest fall of chi-square by a template that stands still beside one that moves, over that by the
+ * one that moves beside it. A line that moves alone leaves nothing to one that stands still, however
+ * much of it the other would explain by itself: a broad doublet a third and more.
+ */
 function stationaryShare(
   matches: readonly ExposureMatch[],
   moving: (exposure: number) => number,
   search: readonly [number, number],
   step: number,
 ): number {
-  const fall = (velocity: (i: number) => number) => {
-    let cross = 0, auto = 0;
+  const sums = (velocity: (i: number) => number) => {
+    let cross = 0, auto = 0, shared = 0;
     matches.forEach((match, i) => {
       const [c, a] = match.at(velocity(i));
       cross += c;
       auto += a;
+      shared += match.overlap(velocity(i), moving(i));
     });
-    return cross > 0 && auto > 0 ? cross * cross / auto : 0;
+    return { cross, auto, shared };
   };
-  const goal = fall(moving);
+  const goal = sums(moving);
   let most = 0;
-  for (let v = search[0]; v <= search[1]; v += step) most = Math.max(most, fall(() => v));
-  return goal > 0 ? most / goal : Infinity;
+  for (let v = search[0]; v <= search[1]; v += step) {
+    const still = sums(() => v);
+    const alone = 1 - still.shared ** 2 / (goal.auto * still.auto);
+    const left = still.cross - goal.cross * still.shared / goal.auto;
+    const own = goal.cross - still.cross * still.shared / still.auto;
+    // Where both are the same line nothing can be told.
+    if (!(alone > ALIKE) || left <= 0) continue;
+    const fall = left * left / still.auto, by_moving = own * own / goal.auto;
+    most = Math.max(most, own > 0 ? fall / by_moving : Infinity);
+  }
+  return most;
 }
 
 function orbitOf(method: string, fit: CircularFit | BackProjectedCorrelation): DonorOrbit {
@@ -164,7 +180,8 @@ function orbitOf(method: string, fit: CircularFit | BackProjectedCorrelation): D
  *
  * The velocities count when seven tenths of the exposures were measured; otherwise the sum counts
  * when its peak stands out of noise. Either way nothing counts when K is below three of its errors,
- * or when the same line standing still explains a quarter as much: a telluric or interstellar line.
+ * or when the same line standing still explains a quarter as much, each of what the other leaves: a
+ * telluric or interstellar line.
  *
  * @param trail The line's trail.
  * @param options Templates, search range.
@@ -234,8 +251,9 @@ export function measureDonor(trail: Trail, options: DonorOptions = {}): DonorLin
         reasons.push(
           "a line that stands still explains " +
             `${
-              (100 * still).toFixed(0)
-            } % as much as one that moves: telluric or interstellar absorption?`,
+              Number.isFinite(still) ? `${(100 * still).toFixed(0)} % as much as` : "more than"
+            } ` +
+            "one that moves, each of what the other leaves: telluric or interstellar absorption?",
         );
       }
     }

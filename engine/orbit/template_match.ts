@@ -16,6 +16,14 @@ export interface ExposureMatch {
    * @param velocity_kms Radial velocity of the template, km/s.
    */
   at(velocity_kms: number): readonly [cross: number, auto: number];
+  /**
+   * Weighted sum of the template at one velocity × the template at another, less what the baseline
+   * takes.
+   *
+   * @param a_kms One radial velocity, km/s.
+   * @param b_kms Another, km/s.
+   */
+  overlap(a_kms: number, b_kms: number): number;
   /** Template's derivative by velocity, squared and weighted: 1/σ_V² at strength 1. */
   information(velocity_kms: number): number;
   /** The same if no pixel were masked: a masked one then has the median error. */
@@ -126,6 +134,21 @@ function matchOne(profile: LineProfile, template: DonorTemplate, order: number):
       let cross = 0;
       for (let n = 0; n < count; n++) cross += weight[n]! * model[n]! * data[n]!;
       return [cross, power(model, weight, lines)];
+    },
+    overlap(a, b) {
+      placed(template, velocity_kms, a, model);
+      placed(template, velocity_kms, b, other);
+      let sum = 0;
+      for (let n = 0; n < count; n++) sum += weight[n]! * model[n]! * other[n]!;
+      for (const q of lines) {
+        let first = 0, second = 0;
+        for (let n = 0; n < count; n++) {
+          first += weight[n]! * q[n]! * model[n]!;
+          second += weight[n]! * q[n]! * other[n]!;
+        }
+        sum -= first * second;
+      }
+      return sum;
     },
     information: (velocity) => power(slope(velocity), weight, lines),
     informationUnmasked: (velocity) => power(slope(velocity), filled, filled_lines),
