@@ -147,13 +147,13 @@ export async function mapLine(
     progress,
     signal,
   });
-  const { map, data, sign, recipe } = inverted;
+  const { map, data, sign, recipe, resampled } = inverted;
   const centre_error_kms = centreErrorOf(target, { binary, placed });
   const explain = mapExplainer(data, { recipe, centre, resolution_kms });
   const alone = explain([]);
   await pause(signal);
-  const spread = settings.resamples < 2 ? null : await resampleMaps(data, {
-    recipe,
+  const spread = settings.resamples < 2 ? null : await resampleMaps(resampled?.data ?? data, {
+    recipe: resampled?.recipe ?? recipe,
     count: settings.resamples,
     seed: target.settings.seed + stream,
     kind: settings.resampling,
@@ -180,7 +180,7 @@ export async function mapLine(
       ? null
       : keplerianSpeed(disc.outer_radius_over_a, binary),
   });
-  const { remade: _again, model: samples, straight, ...rest } = inverted;
+  const { remade: _again, resampled: _all, model: samples, straight, ...rest } = inverted;
   return {
     ...rest,
     trail,

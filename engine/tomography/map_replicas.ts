@@ -5,6 +5,7 @@ import type { MapPlace } from "./axisymmetric_part.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import type { InversionRecipe } from "./invert_trail.ts";
 import type { ReplicaShared, ReplicaSums, ReplicaTask } from "./replica_task.ts";
+import type { SeparateRecipe } from "./separate_inverter.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
 /** Options of {@linkcode resampleMaps}. */
@@ -95,7 +96,8 @@ const RUNS = 40;
  * grow with the number of replicas.
  *
  * Errors of a maximum-entropy map need its multiplier held: give the recipe `multiplier` and `start`
- * of the map itself, since fixing chi-square fits noise on noise.
+ * of the map itself, since fixing chi-square fits noise on noise. With a recipe of overlapping lines all
+ * their maps are made anew in each replica, and the first one is looked at.
  *
  * @param trail The observed trail.
  * @param options How to make a map, and how to resample.
@@ -131,7 +133,7 @@ const RUNS = 40;
  */
 export async function resampleMaps(
   trail: TrailSamples,
-  options: ResampleOptions & { readonly recipe: InversionRecipe },
+  options: ResampleOptions & { readonly recipe: InversionRecipe | SeparateRecipe },
 ): Promise<MapSpread> {
   const { recipe, count, seed, kind = "noise", peaks = [], workers = 1 } = options;
   const { progress, signal, centre = { vx_kms: 0, vy_kms: 0 }, alone = null } = options;

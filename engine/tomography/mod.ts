@@ -56,6 +56,7 @@ export * from "./ring_profile.ts";
 export * from "./sampling_structures.ts";
 export * from "./search_subspace.ts";
 export * from "./sensitivity_maps.ts";
+export * from "./separate_inverter.ts";
 export * from "./separate_maps.ts";
 export * from "./simple_sources.ts";
 export * from "./slant_geometry.ts";

@@ -6,6 +6,7 @@ import { type Excess, mapExcess } from "./map_excess.ts";
 import { type InversionRecipe, type Inverter, makeInverter } from "./invert_trail.ts";
 import type { MapPlace } from "./axisymmetric_part.ts";
 import { noiseReplica } from "./noise_replica.ts";
+import { makeSeparateInverter, type SeparateRecipe } from "./separate_inverter.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
 /** What all replicas have in common. */
@@ -13,7 +14,7 @@ export interface ReplicaShared {
   /** The observed trail. */
   readonly trail: TrailSamples;
   /** How a map is made. */
-  readonly recipe: InversionRecipe;
+  readonly recipe: InversionRecipe | SeparateRecipe;
   /** Seed; replica r takes stream r. */
   readonly seed: number;
   /** Exposures in a block of the bootstrap; 0 adds noise instead. */
@@ -83,7 +84,7 @@ export async function runTask(
 ): Promise<ReplicaSums> {
   const { trail, recipe, seed, block, follow } = shared;
   let invert = prepared.get(shared);
-  if (invert === undefined) prepared.set(shared, invert = makeInverter(trail, recipe));
+  if (invert === undefined) prepared.set(shared, invert = inverterOf(trail, recipe));
   const size = recipe.pixels ** 2, count = task.to - task.from;
   const mean = new Float64Array(size), square = new Float64Array(size);
   const places = follow.peaks.length * count;
@@ -117,6 +118,12 @@ export async function runTask(
   }
   const sum = mean.map((m) => m * count);
   return { sum, square, count, vx_kms, vy_kms, height, flux_fraction };
+}
+
+function inverterOf(trail: TrailSamples, recipe: ReplicaShared["recipe"]): Inverter {
+  return recipe.inversion === "separate-entropy"
+    ? makeSeparateInverter(trail, recipe)
+    : makeInverter(trail, recipe);
 }
 
 /** The sums are made for the result alone: they may be moved. */

@@ -1,11 +1,13 @@
 import { InputError, NotConverged, type Warning } from "../errors.ts";
 import { median } from "../numerics/mod.ts";
 import type { Sampling } from "../trail/mod.ts";
+import { freeBaselines } from "./baseline.ts";
 import { checkTrail, type TrailSamples } from "./check_trail.ts";
 import { type EntropyState, entropySteps } from "./entropy_solver.ts";
 import { goalRaised } from "./goal_raised.ts";
 import { lineLevel } from "./line_level.ts";
 import type { LinearOperator } from "./linear_operator.ts";
+import type { Samples } from "./map_fit.ts";
 import type { MaximumEntropyOptions } from "./maximum_entropy.ts";
 import { priorImage } from "./prior_image.ts";
 import { makeProjector, type ProjectorOptions } from "./projector.ts";
@@ -84,8 +86,10 @@ export function separateProjector(
 export interface SeparateMaps {
   /** One map a line, in the order of the ratios. */
   readonly maps: readonly VelocityMap[];
-  /** Data of all maps together. */
+  /** Data of all maps together; baselines taken out when they were free. */
   readonly model: Float64Array;
+  /** Level of the uniform image. */
+  readonly level: number;
   /** Chi-square over the number of unmasked samples. */
   readonly reduced_chi_square: number;
   /** Chi-square per sample aimed for: higher than asked for when it was raised; null with a fixed multiplier. */
@@ -106,14 +110,29 @@ export interface SeparateMaps {
 export interface SeparateMapsOptions extends
   Omit<
     MaximumEntropyOptions,
-    "blends" | "start" | "projector" | "signed" | "absorption" | "free_baselines"
+    "blends" | "start" | "projector" | "signed" | "absorption" | "inside_out"
   > {
   /** Each line's rest wavelength over the one that made the velocities. */
   readonly rest_ratios: readonly number[];
+  /**
+   * Maps to start from, one a line.
+   *
+   * @default {flat ones}
+   */
+  readonly starts?: readonly VelocityMap[];
+  /**
+   * The operator made before by {@linkcode separateProjector} for this sampling and these options.
+   *
+   * @default {made here}
+   */
+  readonly operator?: LinearOperator;
 }
 
+/** Share of the level that a starting map never falls below. */
+const START_FLOOR = 0.05;
+
 /**
- * Maximum-entropy maps of lines that overlap in the data, one map a line, from flat starts. Where two
+ * Maximum-entropy maps of lines that overlap in the data, one map a line. Where two
  * lines overlap at all phases their axisymmetric parts trade against one another.
  *
  * @param trail Exposures, data, errors.
@@ -172,12 +191,24 @@ export function separateMaps(trail: TrailSamples, options: SeparateMapsOptions):
     },
     { ...shape, level },
   );
+  const { starts, free_baselines = false } = options;
+  let operator = options.operator ?? separateProjector(sampling, options);
+  let samples: Samples = { flux, error };
+  if (free_baselines) {
+    ({ operator, samples } = freeBaselines(operator, { sampling, samples }));
+  }
+  const flat = level / rest_ratios.length;
+  const start = new Float64Array(size * rest_ratios.length).fill(flat);
+  starts?.forEach(({ intensity }, m) =>
+    start.set(intensity.map((f) => Math.max(f, START_FLOOR * flat)), m * size)
+  );
   const describe = (state: EntropyState): SeparateMaps => ({
     maps: rest_ratios.map((_, m) => ({
       ...shape,
       intensity: state.image.slice(m * size, (m + 1) * size),
     })),
     model: state.model,
+    level,
     reduced_chi_square: state.reduced_chi_square,
     goal: state.goal,
     misalignment: state.misalignment,
@@ -190,8 +221,8 @@ export function separateMaps(trail: TrailSamples, options: SeparateMapsOptions):
     let last: EntropyState | undefined;
     for (
       last of entropySteps({
-        operator: separateProjector(sampling, options),
-        samples: { flux, error },
+        operator,
+        samples,
         prior: (images) => {
           const out = new Float64Array(images.length);
           for (let m = 0; m < images.length; m += size) {
@@ -199,7 +230,7 @@ export function separateMaps(trail: TrailSamples, options: SeparateMapsOptions):
           }
           return out;
         },
-        start: new Float64Array(size * rest_ratios.length).fill(level / rest_ratios.length),
+        start,
       }, options)
     );
     return describe(last!);

@@ -7,7 +7,7 @@ import { findHdu, parseFits } from "../../engine/fits/mod.ts";
 import { lineNamed, vacuumToAir } from "../../engine/sky/mod.ts";
 import type { RawExposure } from "../../engine/spectra/mod.ts";
 import { madeExposures } from "../spectra/made_exposures.ts";
-import { codes, SECTIONS, SOURCE, writeCampaign } from "./campaign_fixture.ts";
+import { SECTIONS, SOURCE, writeCampaign } from "./campaign_fixture.ts";
 
 const REST = lineNamed("H beta").vacuum_angstrom;
 /** The blend stands 900 km/s to the red of H beta, with 0.4 of its flux. */
@@ -83,11 +83,32 @@ Deno.test("a blend with a map of its own gets it, in map.fits too", async () => 
   // Two maps share what is between them by entropy alone: the ratio is not sharp.
   assertAlmostEquals(blend!.ratio, RATIO, 0.05);
   assertEquals([blend!.name, blend!.map, blend!.ratio_error], ["He I 4922", "own", null]);
-  assertEquals(codes(document).includes("own-maps-held"), true);
   const file = join(campaign.folder, "star", "map.fits");
   const hdu = findHdu(parseFits(await readBytes(file), { file }), "H BETA WITH HE I 4922");
   assertEquals(hdu.shape, [41, 41]);
   assertAlmostEquals(Number(hdu.header.card("RESTAIR")?.value), Number(AIR) * 1e-10, 1e-14);
+});
+
+Deno.test("the errors of a line hold what a blend with a map of its own takes from it", async () => {
+  const campaign = await night(`{ name = "He I 4922", air_angstrom = ${AIR}, map = "own" }`);
+  const session = await campaign.open(["map.resamples=4"]);
+  const map = await session.map(session.lines("test")[0]!);
+  assertEquals(map.warnings.filter(({ code }) => code.startsWith("own")), []);
+  assertAlmostEquals(map.features[0]!.vx_kms, SOURCE.vx_kms, 25);
+  const refused = async (...set: string[]) => {
+    const session = await campaign.open(["map.resamples=0", ...set]);
+    const { message } = await assertRejects(() => session.map(session.lines("t")[0]!), InputError);
+    return message.replace(campaign.folder, "");
+  };
+  const rule = "a blend has a map of its own beside a line of one sign, in the usual coordinates";
+  assertEquals(
+    await refused('map.coordinates="inside-out"'),
+    `Cannot map H beta with its blends as ${rule}: current value is "inside-out" (/star.toml, key map.coordinates); use map = "shared"`,
+  );
+  assertEquals(
+    await refused('lines[0].sign="mixed"'),
+    `Cannot map H beta with its blends as ${rule}: current value is "mixed" (/star.toml, key lines.sign); use map = "shared"`,
+  );
 });
 
 Deno.test("blends are refused where the inversion cannot tell them apart, with their place", async () => {

@@ -36,6 +36,7 @@ export async function byBackProjection(trail: Trail, options: InvertOptions): Pr
     misalignment: null,
     warnings: checkTrail(trail, recipe).map((warning) => ({ ...warning, line: trail.line.name })),
     recipe,
+    resampled: null,
     remade: null,
   };
 }

@@ -11,7 +11,7 @@ import { pause } from "../pause.ts";
 import type { Inverted, InvertOptions } from "./inverted.ts";
 
 /** A replica that does not settle would end the whole run: it is given time. */
-const REPLICA_ITERATIONS = 1000;
+export const REPLICA_ITERATIONS = 1000;
 
 /** A recipe of maximum entropy. */
 export type EntropyRecipe = Extract<InversionRecipe, { readonly inversion: "entropy" }>;
@@ -87,6 +87,7 @@ export async function byEntropy(trail: Trail, options: InvertOptions): Promise<I
       level: found.level,
       max_iterations: REPLICA_ITERATIONS,
     },
+    resampled: null,
     remade: null,
   };
 }

@@ -11,7 +11,7 @@ import type { Trail } from "../../trail/mod.ts";
 import type { LineBlend } from "../blends_of.ts";
 import { pause } from "../pause.ts";
 import { turned } from "../sign_of.ts";
-import { entropyOptions } from "./by_entropy.ts";
+import { entropyOptions, REPLICA_ITERATIONS } from "./by_entropy.ts";
 import type { Inverted, InvertOptions } from "./inverted.ts";
 
 /** The map of a blend that has its own. */
@@ -30,8 +30,8 @@ export interface OwnMap {
  * @param trail The trail.
  * @param options How.
  * @param options.own The blends that have maps of their own.
- * @returns The line's map, the others, and the trail less what the others make of it: further maps of the
- * line are made from that, so that they hold those of the blends.
+ * @returns The line's map, the others, and the trail less what the others make of it: studies of the line's
+ * map hold those of the blends. Its replicas do not: they fit all maps anew.
  */
 export async function bySeparateMaps(
   trail: Trail,
@@ -39,14 +39,16 @@ export async function bySeparateMaps(
 ): Promise<{ inverted: Inverted; own_maps: OwnMap[]; data: Trail }> {
   const { settings, sign, own, signal } = options;
   const asked = entropyOptions(options);
-  const { blends: _shared, signed: _signed, absorption: _turn, ...shape } = asked;
+  const { blends: _shared, signed: _signed, absorption: _turn, inside_out: _usual, ...shape } =
+    asked;
   const upright = sign === "absorption" ? turned(trail) : trail;
+  const rest_ratios = [1, ...own.map(({ rest_ratio }) => rest_ratio)];
   const warnings: Warning[] = [];
   let found: SeparateMaps;
   try {
     found = separateMaps(upright, {
       ...shape,
-      rest_ratios: [1, ...own.map(({ rest_ratio }) => rest_ratio)],
+      rest_ratios,
       reduced_chi_square: settings.reduced_chi_square,
       raise_goal: true,
     });
@@ -56,12 +58,7 @@ export async function bySeparateMaps(
     warnings.push({ code: "goal-not-reached", text: error.message });
   }
   await pause(signal);
-  warnings.push(...found.warnings, {
-    code: "own-maps-held",
-    text:
-      "the errors of this line's map hold the maps of its blends: they leave out what the lines " +
-      "take from one another",
-  });
+  warnings.push(...found.warnings);
   const [map, ...others] = found.maps;
   const turn = sign === "absorption" ? -1 : 1;
   const flux = trail.flux.slice();
@@ -98,8 +95,22 @@ export async function bySeparateMaps(
         inversion: "entropy",
         ...asked,
         blends: [],
+        max_iterations: REPLICA_ITERATIONS,
         multiplier: found.multiplier,
         start: map!,
+        level: found.level,
+      },
+      resampled: {
+        data: upright,
+        recipe: {
+          inversion: "separate-entropy",
+          ...shape,
+          rest_ratios,
+          multiplier: found.multiplier,
+          starts: found.maps,
+          level: found.level,
+          max_iterations: REPLICA_ITERATIONS,
+        },
       },
       remade: null,
     },

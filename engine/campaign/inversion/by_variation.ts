@@ -95,6 +95,7 @@ export async function byVariation(trail: Trail, options: InvertOptions): Promise
     misalignment: null,
     warnings: warnings.map((warning) => ({ ...warning, line: trail.line.name })),
     recipe,
+    resampled: null,
     remade: remadeMap(trail, { recipe, map: found.map }),
   };
 }

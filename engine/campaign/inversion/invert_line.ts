@@ -54,6 +54,16 @@ export async function invertLine(
       key: "lines.blends.map",
     });
   }
+  if (own.length > 0 && (sign === "mixed" || settings.coordinates !== "usual")) {
+    throw new InputError({
+      action: `map ${trail.line.name} with its blends`,
+      rule: "a blend has a map of its own beside a line of one sign, in the usual coordinates",
+      value: sign === "mixed" ? sign : settings.coordinates,
+      file: target.file,
+      key: sign === "mixed" ? "lines.sign" : "map.coordinates",
+      remedy: 'use map = "shared"',
+    });
+  }
   const plain = { blends: [], own_maps: [], sign, baselines: null, straight: trail };
   if (own.length > 0) {
     const { inverted, own_maps, data } = await bySeparateMaps(trail, {

@@ -3,6 +3,8 @@ import type {
   BlendMember,
   InversionRecipe,
   PriorImage,
+  SeparateRecipe,
+  TrailSamples,
   VelocityMap,
 } from "../../tomography/mod.ts";
 import type { Progress } from "../../workers/mod.ts";
@@ -37,6 +39,11 @@ export interface Inverted {
   readonly warnings: readonly Warning[];
   /** How maps of resampled data are made: with the multiplier of this one held, where it has one. */
   readonly recipe: InversionRecipe;
+  /**
+   * What replicas are made of in place of recipe and trail, where other lines' maps are fitted with this
+   * one: the whole trail, and a recipe that fits them all; else null.
+   */
+  readonly resampled: { readonly recipe: SeparateRecipe; readonly data: TrailSamples } | null;
   /** The map of the map, where what the inversion does to places must be taken off; else null. */
   readonly remade: VelocityMap | null;
 }
