@@ -31,10 +31,10 @@ Deno.test("shareByCost() leaves shares empty when there are more than pieces", (
   assertEquals(shareByCost([1, 1], 4).toSorted(), [1, 2]);
 });
 
-Deno.test("dearestFirst() names every treatment once, the dearest first", () => {
-  const costs = [[2, 5], [5], [1, 7, 2]];
+Deno.test("dearestFirst() names every treatment once, job by job, the dearest first", () => {
+  const costs = [[2, 5], [5], [1, 7, 2], [7]];
   const pieces = dearestFirst(costs).map(({ job, run }) => [job, run]);
-  assertEquals(pieces, [[2, 1], [0, 1], [1, 0], [0, 0], [2, 2], [2, 0]]);
+  assertEquals(pieces, [[2, 0], [2, 1], [2, 2], [0, 0], [0, 1], [3, 0], [1, 0]]);
   assertEquals(dearestFirst([]), []);
 });
 

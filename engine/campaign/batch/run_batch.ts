@@ -67,9 +67,9 @@ export interface BatchReport {
 const LOOK_MS = 200;
 
 /**
- * Runs a batch, or one share of it: each treatment of a target on a worker, one at a time, those that
- * are expected to take longest first. A target that fails does not stop the others; what an earlier
- * run has done is kept.
+ * Runs a batch, or one share of it: each treatment of a target on a worker, one at a time; with several
+ * workers those of the target that is expected to take longest first. A target that fails does not
+ * stop the others; what an earlier run has done is kept.
  *
  * @param manifest The manifest.
  * @param options Where and how.

@@ -7,7 +7,7 @@ import { dearestFirst } from "./share_jobs.ts";
 export type BatchShared = Pick<JobOptions, "folder" | "owner" | "overwrite">;
 
 /**
- * Runs jobs on several workers, one treatment of one target at a time, the dearest first.
+ * Runs jobs on several workers, one treatment of one target at a time, the dearest target first.
  *
  * @param jobs The jobs.
  * @param options How.

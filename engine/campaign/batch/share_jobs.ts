@@ -75,24 +75,25 @@ export interface Piece {
 }
 
 /**
- * The order in which treatments are handed to workers: the dearest first, so that what is at work
- * alone at the end is short.
+ * The order in which treatments are handed to workers: those of the dearest job first, so that what
+ * is at work alone at the end is short; those of one job one after another, so that jobs come to
+ * their end all along.
  *
  * @param costs Expected cost of each treatment of each job.
- * @returns The treatments; those of the same cost in the order of the jobs.
+ * @returns The treatments; jobs of the same cost in their order.
  *
  * @example
  * ```ts
  * import { dearestFirst } from "@millrace/millrace/campaign";
  * import { assertEquals } from "@std/assert";
  *
- * assertEquals(dearestFirst([[1, 9], [1]]).map(({ job, run }) => [job, run]), [[0, 1], [0, 0], [1, 0]]);
+ * assertEquals(dearestFirst([[3], [1, 9]]).map(({ job, run }) => [job, run]), [[1, 0], [1, 1], [0, 0]]);
  * ```
  */
 export function dearestFirst(costs: readonly (readonly number[])[]): Piece[] {
-  return costs.flatMap((own, job) => own.map((cost, run) => ({ job, run, cost })))
-    .sort((a, b) => b.cost - a.cost)
-    .map(({ job, run }) => ({ job, run }));
+  return costs.map((own, job) => ({ own, job, whole: own.reduce((a, b) => a + b, 0) }))
+    .sort((a, b) => b.whole - a.whole)
+    .flatMap(({ own, job }) => own.map((_, run) => ({ job, run })));
 }
 
 /**

@@ -60,7 +60,9 @@ export async function runWeigh(
   const warnings = uniqueWarnings([
     ...reading,
     ...(await session.systemic()).warnings,
-    ...weighed.flatMap((line) => line.warnings),
+    ...weighed.flatMap(({ trail, warnings }) =>
+      warnings.map((warning) => ({ ...warning, line: trail.line.name }))
+    ),
   ]);
   const document: WeighDocument = {
     ...outputHead(target, { schema: "weigh/1", inputs, warnings }),
