@@ -4,7 +4,7 @@ import type { MapPlace } from "./axisymmetric_part.ts";
 import { blendProjector } from "./blend_projector.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { type Inversion, type InversionRecipe, makeInverter } from "./invert_trail.ts";
-import { fitSimpleSources, type SimpleSourcesOptions } from "./simple_sources.ts";
+import { fitSimpleSources, type SimpleSourcesOptions, type SpotPlace } from "./simple_sources.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
 /**
@@ -13,7 +13,7 @@ import type { VelocityMap } from "./velocity_map.ts";
  * @param places Where the spots are.
  * @param moved How far the disc's centre is moved, km/s; not at all by default.
  */
-export type MapExplainer = (places: readonly MapPlace[], moved?: MapPlace) => VelocityMap;
+export type MapExplainer = (places: readonly SpotPlace[], moved?: MapPlace) => VelocityMap;
 
 /**
  * What exposures and inversion make of the simplest source that fits the data: a perfectly round disc and
@@ -67,7 +67,7 @@ export function mapExplainer(
   const turn = "absorption" in recipe && recipe.absorption === true ? -1 : 1;
   const invert = makeInverter(trail, withFilterOf(trail, recipe));
   const known = new Map<string, VelocityMap>();
-  const made = (places: readonly MapPlace[], moved?: MapPlace) => {
+  const made = (places: readonly SpotPlace[], moved?: MapPlace) => {
     const flux = projector.forward(fit(places, moved)).map((f) => turn * f);
     try {
       return invert({ ...trail, flux }).map;

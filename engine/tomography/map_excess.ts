@@ -31,6 +31,8 @@ export interface Excess {
   readonly climb: (from: number) => number;
   /** Centroid under a Gaussian window, and twice the flux above half the peak; null if not positive. */
   readonly blobAt: (peak: number) => ExcessBlob | null;
+  /** The excess of the pixels that hang together with a peak and are higher than a share of it; zero elsewhere. */
+  readonly regionAt: (peak: number, share: number) => Float64Array;
   /** Pixels higher than all their neighbours and than a share of the highest. */
   readonly peaks: (share: number) => number[];
 }
@@ -89,6 +91,13 @@ export function mapExcess(
       return k;
     },
     blobAt: (peak) => blobAround(values, peak, { map, total, resolution_kms }),
+    regionAt(peak, share) {
+      const region = new Float64Array(values.length);
+      for (const k of connectedAbove(values, { peak, level: share * values[peak]!, pixels })) {
+        region[k] = values[k]!;
+      }
+      return region;
+    },
     peaks(share) {
       const floor = share * values.reduce((a, b) => Math.max(a, b), 0);
       const found: number[] = [];
@@ -125,27 +134,14 @@ function blobAround(
   const step = mapStep(map);
   const half = 0.5 * values[peak]!;
   if (!(half > 0)) return null;
-  const seen = new Set<number>([peak]);
-  const queue = [peak];
   let weight = 0, x = 0, y = 0, sum = 0;
-  for (let k = queue.pop(); k !== undefined; k = queue.pop()) {
+  for (const k of connectedAbove(values, { peak, level: half, pixels })) {
     const column = k % pixels, row = (k - column) / pixels;
     const w = values[k]! - half;
     weight += w;
     x += w * column;
     y += w * row;
     sum += values[k]!;
-    const around = [
-      column > 0 ? k - 1 : -1,
-      column < pixels - 1 ? k + 1 : -1,
-      row > 0 ? k - pixels : -1,
-      row < pixels - 1 ? k + pixels : -1,
-    ];
-    for (const j of around) {
-      if (j < 0 || seen.has(j) || !(values[j]! > half)) continue;
-      seen.add(j);
-      queue.push(j);
-    }
   }
   const centre = windowedCentre(values, { x: x / weight, y: y / weight }, {
     pixels,
@@ -156,6 +152,30 @@ function blobAround(
     vy_kms: centre.y * step - half_width_kms,
     flux_fraction: total > 0 ? 2 * sum / total : 0,
   };
+}
+
+/** The pixels above a level that hang together with a peak, the peak first. */
+function connectedAbove(
+  values: Float64Array,
+  { peak, level, pixels }: {
+    readonly peak: number;
+    readonly level: number;
+    readonly pixels: number;
+  },
+): Set<number> {
+  const seen = new Set([peak]);
+  for (const k of seen) {
+    const column = k % pixels, row = (k - column) / pixels;
+    const around = [
+      column > 0 ? k - 1 : -1,
+      column < pixels - 1 ? k + 1 : -1,
+      row > 0 ? k - pixels : -1,
+      row < pixels - 1 ? k + pixels : -1,
+    ];
+    // Growing while it is walked through: what is added is visited, too.
+    for (const j of around) if (j >= 0 && values[j]! > level) seen.add(j);
+  }
+  return seen;
 }
 
 /** Rounds of the centroid, and how far each goes beyond the windowed mean: the window halves it. */

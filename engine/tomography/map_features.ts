@@ -6,6 +6,7 @@ import { type ExcessBlob, mapExcess, type MapExcessOptions } from "./map_excess.
 import type { FollowedFeature, MapSpread } from "./map_replicas.ts";
 import { mapStep } from "./map_shape.ts";
 import type { BinaryPart, PartFinder } from "./nearest_part.ts";
+import type { SpotPlace } from "./simple_sources.ts";
 import type { VelocityMap } from "./velocity_map.ts";
 
 /** A compact excess over the axisymmetric part of a map. */
@@ -122,6 +123,9 @@ export interface MapFeaturesOptions {
 /** Peaks below this share of the highest are not looked at. */
 const LEAST_PEAK = 0.05;
 
+/** A feature's shape is what hangs together with its peak above this share of it. */
+const SHAPE = 0.4;
+
 /** Most peaks that are looked at, highest first. */
 const MOST_PEAKS = 40;
 
@@ -202,6 +206,7 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
   const area = (map.pixels * mapStep(map)) ** 2;
   const places = Math.max(1, area / (Math.PI * (0.5 * resolution_kms) ** 2));
   const features: MapFeature[] = [];
+  const sources: SpotPlace[] = [];
   const alone = explain && explain([]);
   const moved = spread === null ? [] : movedCentres(options);
   const peaks = featurePeaks(map, { ...options, alone });
@@ -232,7 +237,8 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
     });
     // Without scatter there is no telling which peaks are worth explaining.
     if (explain === null || spread === null || features.length === limit) continue;
-    left = measured(explain(features));
+    sources.push({ ...best.seen, shape: best.shape() });
+    left = measured(explain(sources));
   }
   return features;
 }
@@ -240,6 +246,8 @@ export function mapFeatures(map: VelocityMap, options: MapFeaturesOptions): MapF
 interface Seen {
   /** As it is in the map. */
   readonly seen: ExcessBlob;
+  /** The excess that hangs together with it. */
+  readonly shape: () => Float64Array;
   /** With the inversion's bias taken off its place. */
   readonly blob: ExcessBlob;
   readonly errors: Errors | null;
@@ -262,7 +270,10 @@ function seenAt(
   if (seen === null) return null;
   const blob = { ...seen, ...unmoved(seen, again && again.blobAt(again.climb(peak))) };
   const height = excess.values[top]!;
-  if (followed === null) return { seen, blob, errors: null, significance: null, rank: height };
+  const shape = () => excess.regionAt(top, SHAPE);
+  if (followed === null) {
+    return { seen, shape, blob, errors: null, significance: null, rank: height };
+  }
   const moved = others.flatMap((e) => e.blobAt(e.climb(peak)) ?? []);
   const halves = beside.map(([low, high]) => ({
     low: low.blobAt(low.climb(peak)),
@@ -272,7 +283,7 @@ function seenAt(
   const errors = errorsOf(followed, { ...options, blob: seen, moved, halves });
   const scatter = Math.hypot(deviation(followed.height), ...halves.map((half) => half.height));
   const significance = globalSigma(height / scatter, places);
-  return { seen, blob, errors, significance, rank: significance };
+  return { seen, shape, blob, errors, significance, rank: significance };
 }
 
 function apart(a: MapPlace, b: MapPlace): number {

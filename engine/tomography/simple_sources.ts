@@ -23,6 +23,16 @@ export interface SimpleSourcesOptions {
   readonly centre?: MapPlace;
 }
 
+/** A spot, or what is as compact as that. */
+export interface SpotPlace extends MapPlace {
+  /**
+   * Its shape as a map shows it, pixels²; the fit may take it in place of a round spot.
+   *
+   * @default {a round spot}
+   */
+  readonly shape?: Float64Array;
+}
+
 /** Rings stand so far apart, resolutions. */
 const RING_STEP = 0.5;
 
@@ -75,7 +85,7 @@ const RIDGE = 1e-6;
 export function fitSimpleSources(
   trail: TrailSamples,
   options: SimpleSourcesOptions,
-): (places: readonly MapPlace[], moved?: MapPlace) => Float64Array {
+): (places: readonly SpotPlace[], moved?: MapPlace) => Float64Array {
   const { recipe, centre = { vx_kms: 0, vy_kms: 0 }, resolution_kms } = options;
   const signed = "signed" in recipe && recipe.signed === true;
   const { operator, samples } = problemOf(trail, recipe);
@@ -104,14 +114,17 @@ export function fitSimpleSources(
           () => ringImage(recipe, { centre: middle, ring, step }),
         ),
     );
-    const spots = places.flatMap((place) =>
-      SPOT_WIDTHS.map((width) =>
+    const spots = places.flatMap((place) => [
+      ...(place.shape === undefined
+        ? []
+        : [column(`${place.vx_kms} ${place.vy_kms} shape`, () => place.shape!)]),
+      ...SPOT_WIDTHS.map((width) =>
         column(
           `${place.vx_kms} ${place.vy_kms} ${width}`,
           () => spotImage(recipe, { place, fwhm_kms: width * resolution_kms }),
         )
-      )
-    );
+      ),
+    ]);
     return sumOf([...disc, ...spots], { target, signed });
   };
 }
