@@ -1,9 +1,10 @@
 /**
  * Stream against spot: what weighings of N sets (default 10) of each kind of data say, "undecided"
  * allowed. Spots have velocities between the stream's (mixing 0) and the disc's (1); each part has 4 %
- * or 1 % of the light. Seeds 1 to N; 24 exposures, pixels of a resolution element. To be cheap, sets
- * share their tables of 100 trials: those of a disc at one S/N, those of spot and stream of one kind,
- * which are made only where residual tests leave both open in some set.
+ * or 1 % of the light. Kind k has seeds 1000 k + 1 to 1000 k + N, or one kind's luck would be every
+ * kind's; 24 exposures, pixels of a resolution element. To be cheap, sets share their tables of 100
+ * trials: those of a disc at one S/N, those of spot and stream of one kind, which are made only where
+ * residual tests leave both open in some set.
  *
  *     deno run --allow-read test/bench/weighing_confusion.ts [N] [part of a row's name]
  */
@@ -94,6 +95,7 @@ function outcome({ preferred, undecided_with }: Verdict, part: Truth["part"]): s
 
 const OUTCOMES = ["right", "undecided", "nothing found", "outside", "wrong"];
 const all = new Map<string, number>();
+let kinds = 0;
 row("S/N", "share of light", "truth", "sets", ...OUTCOMES);
 row(..."---------".split("").map(() => "---"));
 for (const signal_to_noise of [25, 8]) {
@@ -101,9 +103,10 @@ for (const signal_to_noise of [25, 8]) {
   let ofDisc: number[][] | undefined;
   for (const share of [0.04, 0.01]) {
     for (const { name, part, model } of truths(share)) {
+      const before = 1000 * ++kinds;
       const title = `S/N ${signal_to_noise}, ${100 * share} %, ${name}`;
       if (!title.includes(chosen)) continue;
-      const seeds = Array.from({ length: count }, (_, k) => k + 1);
+      const seeds = Array.from({ length: count }, (_, k) => before + k + 1);
       const made = seeds.map((seed) => fitted(model, { seed, signal_to_noise }));
       const makers = made.slice(0, 5);
       const each = Math.ceil(TRIALS / makers.length);
