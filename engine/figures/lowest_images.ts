@@ -1,5 +1,5 @@
-import type { Box, Group, ImageItem, Item, Picture, TextItem } from "./display_list.ts";
-import { textWidth } from "./fonts.ts";
+import type { Box, Group, ImageItem, Item, Picture } from "./display_list.ts";
+import { itemExtent, meet, overlap, pathBox, type Shift } from "./item_extent.ts";
 
 /** An image with its place on the page. */
 export interface LowestImage {
@@ -41,7 +41,7 @@ export function lowestImages(picture: Picture): { images: LowestImage[]; rest: P
       }
       const box = item.kind === "image"
         ? { ...item, x: item.x + dx, y: item.y + dy }
-        : extent(item, around.shift);
+        : itemExtent(item, around.shift);
       if (box === null) return [item];
       const seen = around.clips.reduce((rest, clip) => overlap(rest, clip.box), box as Box);
       const free = around.clips.length <= 1 && !below.some((other) => meet(other, seen));
@@ -55,8 +55,6 @@ export function lowestImages(picture: Picture): { images: LowestImage[]; rest: P
   const rest = { ...picture, items: part(picture.items, { shift: [0, 0], clips: [] }) };
   return { images, rest };
 }
-
-type Shift = readonly [x: number, y: number];
 
 /** The groups around an item. */
 interface Around {
@@ -74,69 +72,3 @@ function within(around: Around, group: Group): Around {
 }
 
 const NOTHING: Box = { x: 0, y: 0, width: 0, height: 0 };
-
-/** A box that holds what an item draws; null when it draws nothing. */
-function extent(item: Exclude<Item, Group | ImageItem>, shift: Shift): Box | null {
-  if (item.kind === "text") return textBox(item, shift);
-  const box = pathBox(item.d, shift);
-  return box && grown(box, item.stroke === undefined ? 0 : item.stroke_pt ?? 0.5);
-}
-
-/** Control points hold a curve between them. */
-function pathBox(d: string, shift: Shift): Box | null {
-  const low = [Infinity, Infinity];
-  const high = [-Infinity, -Infinity];
-  let axis = 0;
-  for (const [text] of d.matchAll(/-?\d+(?:\.\d+)?/g)) {
-    const value = Number(text) + shift[axis]!;
-    if (value < low[axis]!) low[axis] = value;
-    if (value > high[axis]!) high[axis] = value;
-    axis = 1 - axis;
-  }
-  if (low[0] === Infinity) return null;
-  return { x: low[0]!, y: low[1]!, width: high[0]! - low[0]!, height: high[1]! - low[1]! };
-}
-
-function textBox(item: TextItem, shift: Shift): Box {
-  const { size_pt, anchor = "start", rotate_deg = 0, halo } = item;
-  const width = textWidth(item.runs, size_pt);
-  const part = anchor === "end" ? 1 : anchor === "middle" ? 0.5 : 0;
-  // Letters and scripts keep between these heights, in parts of the size.
-  const box = { x: -part * width, y: -size_pt, width, height: 1.4 * size_pt };
-  const angle = rotate_deg * Math.PI / 180;
-  const [cos, sin] = [Math.cos(angle), Math.sin(angle)];
-  const corners = [[box.x, box.y], [box.x + width, box.y], [box.x, box.y + box.height], [
-    box.x + width,
-    box.y + box.height,
-  ]].map(([u, v]) => [u! * cos - v! * sin, u! * sin + v! * cos] as const);
-  const xs = corners.map(([u]) => u + item.x + shift[0]);
-  const ys = corners.map(([, v]) => v + item.y + shift[1]);
-  const [x, y] = [Math.min(...xs), Math.min(...ys)];
-  const turned = { x, y, width: Math.max(...xs) - x, height: Math.max(...ys) - y };
-  return halo === undefined ? turned : grown(turned, 0.3 * size_pt);
-}
-
-function grown(box: Box, by: number): Box {
-  return {
-    x: box.x - by / 2,
-    y: box.y - by / 2,
-    width: box.width + by,
-    height: box.height + by,
-  };
-}
-
-function overlap(a: Box, b: Box): Box {
-  const x = Math.max(a.x, b.x);
-  const y = Math.max(a.y, b.y);
-  return {
-    x,
-    y,
-    width: Math.min(a.x + a.width, b.x + b.width) - x,
-    height: Math.min(a.y + a.height, b.y + b.height) - y,
-  };
-}
-
-function meet(a: Box, b: Box): boolean {
-  const { width, height } = overlap(a, b);
-  return width > 0 && height > 0;
-}

@@ -20,6 +20,7 @@ export * from "./font_rules.ts";
 export * from "./fonts.ts";
 export * from "./glyph_outlines.ts";
 export * from "./line_label.ts";
+export * from "./lowest_clips.ts";
 export * from "./lowest_images.ts";
 export * from "./marks.ts";
 export * from "./measured_text.ts";

@@ -1,7 +1,8 @@
-import { paintCells, resampleCells } from "./cells.ts";
-import type { Picture } from "./display_list.ts";
+import { type Coverage, paintCells, resampleCells } from "./cells.ts";
+import type { Item, Picture } from "./display_list.ts";
 import { type FaceName, TEXT_FAMILY } from "./font_names.ts";
 import { faceNames, fontFace } from "./fonts.ts";
+import { type ClippedItems, lowestClips } from "./lowest_clips.ts";
 import { type LowestImage, lowestImages } from "./lowest_images.ts";
 import type { Metadata } from "./marks.ts";
 import { packageFile } from "./package_file.ts";
@@ -73,15 +74,10 @@ async function drawLines(picture: Picture, dpi: number): Promise<ScanLines> {
   const scale = dpi / 72;
   // Pixels of large images are copied here many times faster than in the renderer.
   const { images, rest } = lowestImages(picture);
-  // Setting text takes the renderer longer than all the rest, when it has just been started.
-  const svg = svgText(outlineText(rest), {
-    embed_fonts: false,
-    rasterise(image) {
-      const columns = Math.max(1, Math.round(image.width * scale));
-      const rows = Math.max(1, Math.round(image.height * scale));
-      return pngOfLines(resampleCells(image, { columns, rows }), { level: 1 });
-    },
-  });
+  // Setting text takes the renderer longer than all the rest, when it has just been started. A clipped
+  // group takes it a layer and a mask of the group's size: on a canvas of its own it needs neither.
+  const { clipped, rest: free } = lowestClips(outlineText(rest));
+  const svg = svgOf(free, scale);
   // Before the renderer runs: it keeps the compiler's thread busy for a while.
   const paper = (columns: number, rows: number): ScanLines => {
     const canvas = blankLines({ columns, rows });
@@ -96,9 +92,55 @@ async function drawLines(picture: Picture, dpi: number): Promise<ScanLines> {
     const drawn = resvg.render();
     const { width, height } = drawn;
     if (canvas.columns !== width || canvas.rows !== height) canvas = paper(width, height);
-    layOver(canvas, drawn.pixels);
+    // As the renderer does it, the picture just fills its whole pixels.
+    const zoom = [width / picture.width, height / picture.height] as const;
+    for (const one of clipped) await drawClipped(canvas, one, { scale, zoom });
+    layOver(canvas, drawn.pixels, { left: 0, top: 0, columns: width, rows: height });
     drawn.free();
     return canvas;
+  } finally {
+    resvg.free();
+  }
+}
+
+function svgOf(picture: Picture, scale: number): string {
+  return svgText(picture, {
+    embed_fonts: false,
+    rasterise(image) {
+      const columns = Math.max(1, Math.round(image.width * scale));
+      const rows = Math.max(1, Math.round(image.height * scale));
+      return pngOfLines(resampleCells(image, { columns, rows }), { level: 1 });
+    },
+  });
+}
+
+/** Draws clipped items on a canvas of whole pixels that holds what is seen of them, and lays that over. */
+async function drawClipped(
+  canvas: ScanLines,
+  one: ClippedItems,
+  options: { readonly scale: number; readonly zoom: readonly [x: number, y: number] },
+): Promise<void> {
+  const { scale, zoom: [zx, zy] } = options;
+  const { box, shift, clip } = one;
+  const left = Math.max(0, Math.floor(box.x * scale));
+  const top = Math.max(0, Math.floor(box.y * scale));
+  const columns = Math.min(canvas.columns, Math.ceil((box.x + box.width) * scale)) - left;
+  const rows = Math.min(canvas.rows, Math.ceil((box.y + box.height) * scale)) - top;
+  if (columns <= 0 || rows <= 0) return;
+  const [x, y] = shift;
+  const items: Item[] = [{ kind: "group", x, y, items: one.items }];
+  const svg = svgOf({ width: columns, height: rows, items, title: "", description: "" }, scale);
+  const view = `${left / zx} ${top / zy} ${columns / zx} ${rows / zy}`;
+  const cut = svg.replace(
+    /width="[^"]*" height="[^"]*" viewBox="[^"]*"/,
+    `width="${columns}" height="${rows}" viewBox="${view}" preserveAspectRatio="none"`,
+  );
+  const resvg = await renderer(cut, { scale: 1, faces: [] });
+  try {
+    const drawn = resvg.render();
+    const place = { left, top, columns, rows };
+    layOver(canvas, drawn.pixels, pathCoverage(clip, { ...place, scale, shift }));
+    drawn.free();
   } finally {
     resvg.free();
   }
@@ -119,20 +161,26 @@ function paintImage(canvas: ScanLines, { image, clip }: LowestImage, scale: numb
   paintCells(canvas, image, { ...place, cover });
 }
 
-/** Lays pixels with transparency, their colours multiplied by it, over opaque ones. */
-function layOver({ columns, rows, lines }: ScanLines, rgba: Uint8Array): void {
+/** Lays pixels with transparency, their colours multiplied by it, over opaque ones, as far as they are covered. */
+function layOver(
+  canvas: ScanLines,
+  rgba: Uint8Array,
+  place: Omit<Coverage, "parts"> & { readonly parts?: Float32Array },
+): void {
+  const { lines } = canvas;
+  const { left, top, columns, rows, parts } = place;
   // Most pixels are clear: four bytes are looked at in one go.
   const words = new Uint32Array(rgba.buffer, rgba.byteOffset, columns * rows);
-  for (let row = 0, n = 0, j = 0; row < rows; row++) {
-    j++;
+  for (let row = 0, n = 0; row < rows; row++) {
+    let j = (top + row) * (1 + 3 * canvas.columns) + 1 + 3 * left;
     for (const end = n + columns; n < end; n++, j += 3) {
       if (words[n] === 0) continue;
       const i = 4 * n;
-      const alpha = rgba[i + 3]!;
-      const through = (255 - alpha) / 255;
-      lines[j] = rgba[i]! + through * lines[j]! + 0.5;
-      lines[j + 1] = rgba[i + 1]! + through * lines[j + 1]! + 0.5;
-      lines[j + 2] = rgba[i + 2]! + through * lines[j + 2]! + 0.5;
+      const part = parts === undefined ? 1 : parts[n]!;
+      const through = (255 - part * rgba[i + 3]!) / 255;
+      lines[j] = part * rgba[i]! + through * lines[j]! + 0.5;
+      lines[j + 1] = part * rgba[i + 1]! + through * lines[j + 1]! + 0.5;
+      lines[j + 2] = part * rgba[i + 2]! + through * lines[j + 2]! + 0.5;
     }
   }
 }
