@@ -55,6 +55,7 @@ export type { MappedBlend } from "./inversion/fit_ratios.ts";
 export type { InvertedLine } from "./inversion/invert_line.ts";
 export type { Inverted, LineSign } from "./inversion/inverted.ts";
 export type { Modulation, RegionStudy } from "./studies/modulation_study.ts";
+export type { CycleSlip } from "./studies/cycle_slips.ts";
 export type { ScanStudy } from "./studies/scan_study.ts";
 export type { FeatureThere, Sensitivity, SensitivityPart } from "./studies/sensitivity_study.ts";
 export type { FeatureStudy, Structures } from "./studies/structures_study.ts";
