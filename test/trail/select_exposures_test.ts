@@ -1,4 +1,4 @@
-import { assertEquals, assertStringIncludes } from "@std/assert";
+import { assertEquals } from "@std/assert";
 import { selectExposures } from "../../engine/trail/mod.ts";
 import { madeSpectra } from "./made_spectra.ts";
 
