@@ -14,7 +14,7 @@ export interface ProfileMomentsOptions {
    */
   readonly order?: number;
   /**
-   * Error of each exposure's continuum level, relative; P values.
+   * Error of each exposure's continuum level, relative; P values. It multiplies line and continuum.
    *
    * @default {none}
    */
@@ -92,7 +92,7 @@ export function profileMoments(
       for (let n = 0, p = w; n < size; n++, p *= x) power[n] = p;
       for (let n = 0; n < size; n++) {
         raw[n] = raw[n]! + power[n]! * flux[k]!;
-        level[n] = level[n]! + power[n]!;
+        level[n] = level[n]! + power[n]! * (1 + flux[k]!);
         for (let m = 0; m < size; m++) {
           const at = n * size + m;
           covariance[at] = covariance[at]! + power[n]! * power[m]! * error[k]! ** 2;
