@@ -249,6 +249,7 @@ function* simulatedTests(
   options: MaximumEntropyOptions & {
     readonly projector: LinearOperator;
     readonly half_range_kms: number;
+    readonly continuum_error: Float64Array | null;
     readonly best: BestPositiveMap;
     readonly seed: number;
     readonly simulations?: number;

@@ -1,3 +1,4 @@
+import { CholeskyDecomposition, Matrix } from "ml-matrix";
 import { chiSquareTail } from "../numerics/mod.ts";
 import type { TrailSamples } from "./check_trail.ts";
 import { shiftVelocities, systemFrame } from "./system_frame.ts";
@@ -40,6 +41,13 @@ export interface MirrorTestOptions {
    * @default {0.03}
    */
   readonly tolerance?: number;
+  /**
+   * Error of each exposure's continuum level, relative; P values. It multiplies line and continuum, so
+   * that all cells of an exposure are off together.
+   *
+   * @default {none}
+   */
+  readonly continuum_error?: Float64Array | null;
   /**
    * Share of chi-square that making the model left over, from simulations.
    *
@@ -91,15 +99,21 @@ export function mirrorTest(trail: TrailSamples, options: MirrorTestOptions): Mir
   const { half_range_kms, left = 1 } = options;
   const found = antisymmetricCells(trail, options);
   if (found === null) return null;
-  const { value, variance, cells, groups, pairs } = found;
+  const { value, variance, levels, cells, groups, pairs } = found;
+  const whole = variance.slice();
+  for (const { group, off } of levels) {
+    off.forEach((o, c) => whole[group * cells + c] = whole[group * cells + c]! + o * o);
+  }
   let chi_square = 0, degrees_of_freedom = 0, worst = 0, most = 0;
   value.forEach((d, at) => {
     if (!(variance[at]! < Infinity)) return;
-    const z = d / Math.sqrt(left * variance[at]!);
-    chi_square += z * z;
+    chi_square += d * d / variance[at]!;
     degrees_of_freedom++;
+    const z = d / Math.sqrt(left * whole[at]!);
     if (Math.abs(z) > Math.abs(most)) [worst, most] = [at, z];
   });
+  for (let group = 0; group < groups; group++) chi_square -= explainedByLevels(found, group);
+  chi_square /= left;
   if (degrees_of_freedom === 0) return null;
   return {
     p_value: chiSquareTail(chi_square, degrees_of_freedom),
@@ -114,12 +128,44 @@ export function mirrorTest(trail: TrailSamples, options: MirrorTestOptions): Mir
   };
 }
 
+/** What errors of the continuum's levels take off the chi-square of a group (Woodbury 1950, Princeton Memo. 42). */
+function explainedByLevels(found: AntisymmetricCells, group: number): number {
+  const { value, variance, cells } = found;
+  const levels = found.levels.filter((level) => level.group === group);
+  if (levels.length === 0) return 0;
+  const over = (a: (c: number) => number, b: (c: number) => number) => {
+    let sum = 0;
+    for (let c = 0; c < cells; c++) {
+      const v = variance[group * cells + c]!;
+      if (v < Infinity) sum += a(c) * b(c) / v;
+    }
+    return sum;
+  };
+  const size = levels.length;
+  const inner = Matrix.eye(size);
+  levels.forEach((one, i) => {
+    levels.forEach((other, j) => {
+      inner.set(i, j, inner.get(i, j) + over((c) => one.off[c]!, (c) => other.off[c]!));
+    });
+  });
+  const along = Matrix.columnVector(
+    levels.map(({ off }) => over((c) => off[c]!, (c) => value[group * cells + c]!)),
+  );
+  const solved = new CholeskyDecomposition(inner).solve(along);
+  return along.transpose().mmul(solved).get(0, 0);
+}
+
 /** Differences between profiles and their mirror images half an orbit later, in cells. */
 export interface AntisymmetricCells {
   /** Mean difference in each cell, groups × cells row-major. */
   readonly value: Float64Array;
-  /** Its variance; Infinity where there is none. */
+  /** Its variance from the errors of the samples; Infinity where there is none. */
   readonly variance: Float64Array;
+  /**
+   * What an error of the continuum's level of one exposure, one standard deviation, moves the cells of a
+   * group by: the covariance has the sum of their outer products beside the variance.
+   */
+  readonly levels: readonly { readonly group: number; readonly off: Float64Array }[];
   /** Number of cells of velocity. */
   readonly cells: number;
   /** Number of groups of phase in the half orbit. */
@@ -161,7 +207,7 @@ export function antisymmetricCells(
   trail: TrailSamples,
   options: Omit<MirrorTestOptions, "left">,
 ): AntisymmetricCells | null {
-  const { half_range_kms, tolerance = 0.03 } = options;
+  const { half_range_kms, tolerance = 0.03, continuum_error = null } = options;
   const { sampling } = trail;
   const pairs = pairsOf(sampling.phase, tolerance);
   if (pairs.length < 3) return null;
@@ -171,8 +217,13 @@ export function antisymmetricCells(
 
   const groups = Math.round(0.5 / CELL_CYCLES);
   const sum = new Float64Array(groups * cells), weight = new Float64Array(groups * cells);
+  const levels: { group: number; off: Float64Array }[] = [];
   for (const { first, second, phase } of pairs) {
     const group = Math.min(groups - 1, Math.floor(phase * 2 * groups));
+    const [one, two] = [first, second].map((exposure) => ({
+      scale: continuum_error?.[exposure] ?? 0,
+      off: new Float64Array(cells),
+    })) as [Level, Level];
     for (let c = 0; c < cells; c++) {
       const a = first * cells + c, b = second * cells + (cells - 1 - c);
       const together = binned.variance[a]! + binned.variance[b]!;
@@ -180,15 +231,27 @@ export function antisymmetricCells(
       const at = group * cells + c;
       sum[at] = sum[at]! + (binned.mean[a]! - binned.mean[b]!) / together;
       weight[at] = weight[at]! + 1 / together;
+      one.off[c] = one.scale * binned.light[a]! / together;
+      two.off[c] = -two.scale * binned.light[b]! / together;
     }
+    for (const { scale, off } of [one, two]) if (scale > 0) levels.push({ group, off });
+  }
+  for (const { group, off } of levels) {
+    off.forEach((o, c) => off[c] = o === 0 ? 0 : o / weight[group * cells + c]!);
   }
   return {
     value: sum.map((s, at) => weight[at]! > 0 ? s / weight[at]! : 0),
     variance: weight.map((w) => w > 0 ? 1 / w : Infinity),
+    levels,
     cells,
     groups,
     pairs: pairs.length,
   };
+}
+
+interface Level {
+  readonly scale: number;
+  readonly off: Float64Array;
 }
 
 interface Pair {
@@ -223,12 +286,13 @@ function pairsOf(phase: Float64Array, tolerance: number): Pair[] {
 function binResiduals(
   trail: TrailSamples,
   options: MirrorTestOptions & { readonly cells: number },
-): { mean: Float64Array; variance: Float64Array } {
+): { mean: Float64Array; variance: Float64Array; light: Float64Array } {
   const { sampling, flux, error } = trail;
   const { cells, half_range_kms, systemic_kms, model } = options;
   const velocity = shiftVelocities(sampling.velocity_kms, systemFrame(systemic_kms));
   const sum = new Float64Array(sampling.count * cells);
   const weight = new Float64Array(sampling.count * cells);
+  const light = new Float64Array(sampling.count * cells);
   for (let i = 0; i < sampling.count; i++) {
     for (let k = sampling.start[i]!; k < sampling.start[i + 1]!; k++) {
       if (!(error[k]! < Infinity)) continue;
@@ -240,10 +304,13 @@ function binResiduals(
       const at = i * cells + cell;
       sum[at] = sum[at]! + w * (flux[k]! - model[k]!);
       weight[at] = weight[at]! + w;
+      light[at] = light[at]! + w * (1 + model[k]!);
     }
   }
+  const mean = (sums: Float64Array) => sums.map((s, at) => weight[at]! > 0 ? s / weight[at]! : 0);
   return {
-    mean: sum.map((s, at) => weight[at]! > 0 ? s / weight[at]! : 0),
+    mean: mean(sum),
+    light: mean(light),
     variance: weight.map((w) => w > 0 ? 1 / w : Infinity),
   };
 }

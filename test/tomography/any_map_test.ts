@@ -3,6 +3,7 @@ import { kolmogorovSmirnov, randomStream } from "@millrace/millrace/numerics";
 import {
   canAnyMapFit,
   makeProjector,
+  mirrorTest,
   momentTest,
   profileMoments,
   ringKernels,
@@ -64,19 +65,22 @@ Deno.test("momentTest() and systemicByParity() are calibrated on data from a map
   assertAlmostEquals(pulls.reduce((a, b) => a + b, 0) / 200, 0, 3 / Math.sqrt(200));
 });
 
-Deno.test("momentTest() is calibrated on a strong line whose continuum levels are off, seeds 1 to 200", () => {
+Deno.test("momentTest() and mirrorTest() are calibrated on a strong line whose continuum levels are off, seeds 1 to 200", () => {
   // What divides the line's light is off, too: an error of the level multiplies line and continuum.
   const OFF = 0.02;
   const continuum_error = new Float64Array(sampling.count).fill(OFF);
-  const p: number[] = [];
+  const moments: number[] = [], mirror: number[] = [];
+  const line = CLEAN.map((f) => 6 * f);
   for (let seed = 1; seed <= 200; seed++) {
     const random = randomStream(seed, 1);
     const levels = PHASES.map(() => 1 + OFF * random.normal());
-    const strong = CLEAN.map((f, k) => (1 + 6 * f) * levels[Math.floor(k / 91)]! - 1);
+    const trail = observed(line.map((f, k) => (1 + f) * levels[Math.floor(k / 91)]! - 1), seed);
     const range = { systemic_kms: 20, half_range_kms: 1080, continuum_error };
-    p.push(momentTest(observed(strong, seed), range).p_value);
+    moments.push(momentTest(trail, range).p_value);
+    mirror.push(mirrorTest(trail, { ...range, model: line })!.p_value);
   }
-  assertGreater(kolmogorovSmirnov(p).probability, LEAST_KS);
+  assertGreater(kolmogorovSmirnov(moments).probability, LEAST_KS);
+  assertGreater(kolmogorovSmirnov(mirror).probability, LEAST_KS);
 });
 
 Deno.test("canAnyMapFit() gives uniform probabilities on data from a map, seeds 1 to 40", () => {
