@@ -33,7 +33,7 @@ const CASES: readonly Case[] = [
     name: `errors that are all ${value}`,
     change: errors(value),
     message:
-      "millrace: Cannot make trail of H beta as at least one exposure must hold a spectrum: current value is 0 (star.toml); dropped as blank (no two usable samples differ): e0.fits, e1.fits, e2.fits, e3.fits, e4.fits and 1 more",
+      "millrace: Cannot make trail of H beta as at least one exposure must hold a spectrum: current value is 0 (star.toml); dropped as no two samples have an error above zero and are not masked (are the errors in the file all zero?): e0.fits, e1.fits, e2.fits, e3.fits, e4.fits and 1 more",
   })),
   {
     name: "pixels over half the resolution",
